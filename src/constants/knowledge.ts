@@ -1,0 +1,380 @@
+/**
+ * What the program knows, as types: data with provenance, no behaviour. Every layer above reads these.
+ * Logs are base 10, amounts mol/L, temperatures as named; charges in units of e.
+ */
+
+/** Id of a component: a metal ion in the contract's canonical spelling ("Zn2+", "UO2^2+"), a ligand or dye by name ("EDTA", "ammonia", "xylenol-orange"), or "H+". */
+export type ComponentId = string;
+export type SpeciesId = string;
+export type ReactionId = string;
+export type SourceId = string;
+
+/** Whether the value was read in the named source, recalled from memory, or computed by us from other values. */
+export type Basis = "read" | "memory" | "computed";
+export type Confidence = "high" | "medium" | "low";
+
+/** Where a value comes from. */
+export interface Provenance {
+  readonly source: SourceId;
+  readonly record?: string; // e.g. "108224" for an SRD 46 record
+  readonly where?: string; // page, table, section
+  readonly basis: Basis;
+  readonly confidence: Confidence;
+}
+
+export interface SourceRecord {
+  readonly id: SourceId;
+  readonly citation: string;
+  readonly notice?: string; // an acknowledgement that must be shown with it
+}
+
+/** A component of the equilibrium model. */
+export interface ComponentRecord {
+  readonly id: ComponentId;
+  readonly kind: "proton" | "metal" | "ligand" | "dye" | "inert";
+  readonly charge: number; // of the component as modelled (metal ion; fully deprotonated ligand)
+  readonly name: string; // plain English: "zinc", "sulfate"
+  readonly ion: string; // canonical spelling in briefs and answers: "Zn2+", "SO4^2-", "citrate"
+  readonly forms: readonly ComponentForm[]; // every canonical spelling that means this component, the component itself included
+  readonly synonyms: readonly string[]; // further spellings a reader must understand, compared without case
+  readonly molarMassGPerMol: number; // of the component's own form
+}
+
+/** A spelling of a component with the protons it carries: HCO3- is carbonate with protons 1; CrO4^2- / Cr2O7^2- per formula unit. */
+export interface ComponentForm {
+  readonly spelling: string;
+  readonly protonsPerComponent: number;
+  readonly componentsPerFormula: number; // 2 for Cr2O7^2-
+  readonly charge: number; // of the formula
+  readonly molarMassGPerMol: number; // of the formula
+}
+
+/** One measured or recalled value of a reaction, as found. */
+export interface ConstantRecord {
+  readonly log10K: number;
+  readonly ionicStrengthMolPerL: number;
+  readonly temperatureC: number;
+  readonly medium?: string; // background salt in words where stated: "KNO3", "NaClO4"
+  readonly uncertainty: number; // standard uncertainty in log10 units
+  readonly uncertaintyStated: boolean; // false = none stated, assumed by the rule in constants/uncertainty.ts
+  readonly doubtful: boolean;
+  readonly provenance: Provenance;
+}
+
+export interface EnthalpyRecord {
+  readonly kJPerMol: number;
+  readonly ionicStrengthMolPerL: number;
+  readonly temperatureC: number;
+  readonly doubtful: boolean;
+  readonly provenance: Provenance;
+}
+
+/** A reaction as its source wrote it, e.g. "[ML2]/([ML][L])" for Zn2+ and ammonia; several records may stand for it. */
+export interface Reaction {
+  readonly id: ReactionId;
+  readonly text: string;
+  readonly deltaZ2: number; // sum of nu*z^2 over the reaction: the Davies factor
+  readonly records: readonly ConstantRecord[];
+  readonly enthalpies: readonly EnthalpyRecord[];
+}
+
+/** A species with its composition and the reactions whose log10 K, times the factors, add up to its overall log10 beta. */
+export interface SpeciesDefinition {
+  readonly id: SpeciesId; // readable and unique: "Zn(NH3)2 2+", "CaHEDTA-"
+  readonly components: Readonly<Record<ComponentId, number>>; // integers; hydroxo species carry a negative "H+"
+  readonly charge: number;
+  readonly chain: readonly { readonly reaction: ReactionId; readonly factor: number }[];
+}
+
+export type SolidPace = "fast" | "minutes" | "slow" | "no";
+
+/** A solid: composition per formula unit; the chain adds up to log10 of its formation constant from the components (= minus log10 Ksp). */
+export interface SolidDefinition {
+  readonly id: SpeciesId; // "CaCO3 (calcite)"
+  readonly components: Readonly<Record<ComponentId, number>>;
+  readonly chain: readonly { readonly reaction: ReactionId; readonly factor: number }[];
+  readonly pace: SolidPace; // how fast it forms on the time scale of a titration
+  readonly redissolvesWhileTitrated: boolean;
+  readonly fresh: boolean; // fresh or active phase (the one a titration meets)
+  readonly note?: string;
+  readonly provenance: Provenance; // of pace and redissolution
+}
+
+export type IndicatorClass =
+  | "azo"
+  | "triphenylmethane"
+  | "phthalein"
+  | "murexide-type"
+  | "pyridylazo"
+  | "redox"
+  | "extractive"
+  | "fluorescent"
+  | "self-coloured";
+export type EndPointModel = "two-colour" | "one-colour" | "redox" | "extractive" | "fluorescence";
+
+/** A pH window in which the dye is used for an ion, as published or remembered. */
+export interface IndicatorUse {
+  readonly ions: readonly ComponentId[]; // more than one: their sum
+  readonly mode: "direct" | "back" | "displacement" | "indirect";
+  readonly backTitrant?: ComponentId; // for back titrations where the use names one
+  readonly pH: readonly [number, number];
+  readonly detail: string;
+  readonly provenance: Provenance;
+}
+
+/** A metal that spoils this dye: it stays bound, or exchanges too slowly. */
+export interface IndicatorBlocker {
+  readonly ion: ComponentId;
+  /** Total in the titrated solution at which the end point is spoilt, mol/L; 0 = at every level; null = level not stated. */
+  readonly fromMolPerL: number | null;
+  readonly kind: "blocks" | "slow";
+  readonly detail: string;
+  readonly provenance: Provenance;
+}
+
+export interface IndicatorRecord {
+  readonly id: ComponentId; // also the component id of the dye where it has constants
+  readonly name: string;
+  readonly synonyms: readonly string[];
+  readonly class: IndicatorClass;
+  readonly endPointModel: EndPointModel;
+  readonly molarMassGPerMol: number | null;
+  readonly usualMolPerL: number; // in the titrated solution
+  readonly observerBandPM: number; // +/- in pM
+  readonly observerBandProvenance: Provenance;
+  readonly colours: readonly {
+    readonly pH: readonly [number, number];
+    readonly free: string;
+    readonly bound: string;
+    readonly contrast: "good" | "poor" | "none";
+    readonly provenance: Provenance;
+  }[];
+  /** Published pM at half change against pH, per metal. */
+  readonly transitions: readonly {
+    readonly ion: ComponentId;
+    readonly counts: "free-ion" | "not-bound-to-titrant";
+    readonly points: readonly (readonly [pH: number, pM: number])[];
+    readonly provenance: Provenance;
+  }[];
+  readonly uses: readonly IndicatorUse[];
+  readonly blockers: readonly IndicatorBlocker[];
+  readonly instability: readonly { readonly fact: string; readonly provenance: Provenance }[];
+  readonly needs: readonly { readonly fact: string; readonly provenance: Provenance }[];
+  readonly redox: { readonly potentialV: number; readonly provenance: Provenance } | null;
+  /** True where metal constants for the dye exist as reactions (component kind "dye"). */
+  readonly hasConstants: boolean;
+  readonly special: boolean; // not on the usual shelf
+}
+
+export interface BufferRecord {
+  readonly id: string;
+  readonly name: string;
+  readonly component: ComponentId | null; // the ligand whose protonation buffers ("ammonia"); null for strong acids, alkalis and pairs without constants
+  readonly counterIon: { readonly charge: number }; // of the salt that is weighed: the inert partner
+  readonly kind: "pair" | "strong-acid" | "strong-base";
+  readonly pKa: readonly { readonly value: number; readonly uncertainty: number; readonly acidCharge: number; readonly provenance: Provenance }[];
+  readonly workingPH: readonly [number, number];
+  readonly usualMolPerL: readonly [number, number];
+  readonly provenance: Provenance; // of working pH and amounts
+  readonly precipitates: readonly string[];
+  readonly incompatible: readonly { readonly with: string; readonly why: string; readonly provenance: Provenance }[];
+  readonly special: boolean;
+}
+
+export type MaskingEffect = "masks" | "partial" | "doesNotMask" | "auxiliary" | "demasks";
+export type MaskingVia = "complexation" | "precipitation" | "reduction" | "oxidation" | "kinetic";
+
+/** Practice knowledge of one agent with one ion. */
+export interface MaskingRecord {
+  readonly agent: string;
+  readonly ion: ComponentId;
+  readonly effect: MaskingEffect;
+  readonly via: MaskingVia | null;
+  readonly pH: readonly [number, number];
+  readonly usualMolPerL: number | null;
+  readonly upToMolPerL: number | null; // ion total in the titrated solution up to which it is reported to hold
+  readonly upToText: string | null;
+  readonly failsWhen: string | null;
+  readonly order: string | null;
+  readonly sideEffects: string | null;
+  readonly releasedBy: readonly string[];
+  readonly provenance: Provenance; // the strongest of its sources
+  readonly otherSources: readonly Provenance[];
+}
+
+/** A masking, demasking, auxiliary or reducing agent. */
+export interface AgentRecord {
+  readonly id: string;
+  readonly name: string;
+  readonly component: ComponentId | null; // the ligand it brings ("fluoride"), where the model has one
+  readonly counterIonCharge: number; // charge of the inert partner per component (Na+ salts: 1 each)
+  readonly usualMaxMolPerL: number;
+  readonly usualMolPerL: number;
+  readonly pH: readonly [number, number]; // where it may be used at all (cyanide from 9.5)
+  readonly special: boolean;
+  /** Complete conversions by reduction or oxidation, with the product ion and the conditions. */
+  readonly converts: readonly {
+    readonly from: ComponentId;
+    readonly to: ComponentId;
+    readonly via: "reduction" | "oxidation";
+    readonly pH: readonly [number, number];
+    readonly conditions: string;
+    readonly provenance: Provenance;
+  }[];
+  readonly provenance: Provenance;
+}
+
+export type KineticClass = "fast" | "slow" | "inert";
+
+/** What is known of the rate of one metal with one titrant (or with any), or of its release from one dye. */
+export interface KineticRecord {
+  readonly ion: ComponentId;
+  readonly titrant: string | null; // null = any
+  readonly indicator: string | null; // null = concerns the titrant reaction
+  readonly statement: string;
+  /** What follows for a method. */
+  readonly consequences: readonly (
+    | "heat"
+    | "boil"
+    | "warm"
+    | "back-only"
+    | "excess-and-wait"
+    | "kinetic-masking"
+    | "titrate-slowly"
+    | "titrate-at-once"
+    | "keep-cold"
+    | "depolymerise"
+    | "blocks-indicator"
+    | "none"
+  )[];
+  readonly temperatureC: readonly [number, number] | null;
+  readonly pH: readonly [number, number] | null;
+  readonly provenance: Provenance;
+}
+
+/** A reagent as bought: for preparation, molar mass, hazards. */
+export interface ReagentRecord {
+  readonly id: string; // reagent id of the contract where it has one
+  readonly name: string;
+  readonly formula: string;
+  readonly molarMassGPerMol: number | null;
+  readonly preparation: readonly string[];
+  readonly hazards: readonly string[]; // sentences
+  readonly hazardTags: readonly HazardTag[];
+  readonly disposal: readonly string[];
+  readonly provenance: Provenance;
+}
+
+export type HazardTag =
+  | "cyanide"
+  | "sulfide"
+  | "fluoride"
+  | "mercury"
+  | "perchlorate"
+  | "strong-acid"
+  | "strong-alkali"
+  | "lead"
+  | "cadmium"
+  | "thorium-uranium"
+  | "carcinogen"
+  | "stench"
+  | "oxidiser"
+  | "formaldehyde"
+  | "corrosive"
+  | "flammable"
+  | "toxic";
+
+/** The usual caution for a hazard, shown wherever a reagent with the tag is proposed under these conditions. */
+export interface CautionRecord {
+  readonly tag: HazardTag;
+  readonly when: "always" | "in-acid" | "hot" | "hot-acid";
+  readonly text: string;
+  readonly provenance: Provenance;
+}
+
+export interface GlasswareRecord {
+  readonly kind: "burette" | "pipette" | "flask";
+  readonly nominalML: number;
+  readonly toleranceML: number; // class A, maximum permissible error
+  readonly standard: string; // "ISO 385"
+  readonly provenance: Provenance;
+}
+
+export interface PrimaryStandardRecord {
+  readonly id: string;
+  readonly formula: string;
+  readonly forIon: ComponentId;
+  readonly molarMassGPerMol: number;
+  readonly purityMassFraction: number;
+  readonly purityExpandedUncertainty: number; // k = 2, mass fraction
+  readonly treatment: string;
+  readonly provenance: Provenance;
+}
+
+export interface TitrantRecord {
+  readonly id: ComponentId; // EDTA, ... ; also its component id
+  readonly name: string;
+  readonly usualMolPerL: readonly number[]; // strengths a bench keeps
+  readonly donors: number;
+  readonly special: boolean;
+}
+
+/** A metal salt solution used to back titrate, to standardise or as the metal of a chelate. */
+export interface MetalTitrantRecord {
+  readonly ion: ComponentId;
+  readonly usualMolPerL: readonly number[];
+  readonly special: boolean;
+  readonly provenance: Provenance;
+}
+
+export interface ElectrodeRecord {
+  readonly id: string;
+  readonly ion: ComponentId;
+  readonly slopeMVPerDecade: number;
+  readonly detectionLimitMolPerL: number;
+  readonly pH: readonly [number, number];
+  readonly interferingIons: readonly { readonly ion: ComponentId; readonly log10Selectivity: number | null; readonly provenance: Provenance }[];
+  readonly provenance: Provenance;
+}
+
+/** Something about the data that a reader must know: a gap, a value that looks wrong beside its neighbours, a record passed over. */
+export interface DataRemark {
+  readonly kind: "gap" | "suspect" | "passed-over" | "disagreement" | "unusable";
+  readonly about: string; // component, reaction or record ids
+  readonly text: string;
+}
+
+/** Hydrolysis and redox facts of a metal ion that equilibrium data do not hold. */
+export interface IonFact {
+  readonly ion: ComponentId;
+  readonly fact: string;
+  readonly kind: "oxidation-state" | "hydrolysis" | "hazard" | "not-by-this-technique" | "usual-practice";
+  readonly provenance: Provenance;
+}
+
+/** Everything the program knows. Immutable after loading. */
+export interface Knowledge {
+  readonly version: string;
+  readonly hash: string; // sha256 of the canonical content of all data files and rules read, first 16 hex digits shown
+  readonly sources: ReadonlyMap<SourceId, SourceRecord>;
+  readonly components: ReadonlyMap<ComponentId, ComponentRecord>;
+  readonly reactions: ReadonlyMap<ReactionId, Reaction>;
+  readonly species: readonly SpeciesDefinition[];
+  readonly solids: readonly SolidDefinition[];
+  readonly titrants: ReadonlyMap<string, TitrantRecord>;
+  readonly metalTitrants: ReadonlyMap<ComponentId, MetalTitrantRecord>;
+  readonly indicators: ReadonlyMap<string, IndicatorRecord>;
+  readonly buffers: ReadonlyMap<string, BufferRecord>;
+  readonly agents: ReadonlyMap<string, AgentRecord>;
+  readonly masking: readonly MaskingRecord[];
+  readonly kinetics: readonly KineticRecord[];
+  readonly electrodes: readonly ElectrodeRecord[];
+  readonly reagents: ReadonlyMap<string, ReagentRecord>;
+  readonly cautions: readonly CautionRecord[];
+  readonly glassware: readonly GlasswareRecord[];
+  readonly standards: readonly PrimaryStandardRecord[];
+  readonly ionFacts: readonly IonFact[];
+  readonly remarks: readonly DataRemark[];
+  /** Atomic weights, g/mol, by element symbol. */
+  readonly atomicWeights: ReadonlyMap<string, number>;
+}

@@ -1,0 +1,77 @@
+/**
+ * What a titration task and a titration method are. Amounts mol/L and L unless a name says otherwise.
+ * recommendation/ reads a brief into a Task; methods/ turns a Task into evaluated methods.
+ */
+import type { ComponentId } from "../constants/knowledge.ts";
+
+export type Detection = "visual" | "photometric" | "electrode";
+export type MethodMode = "direct" | "back" | "displacement" | "indirect" | "successive" | "difference" | "portions";
+export type StageMode = "direct" | "back" | "displacement";
+
+export interface TaskComponent {
+  readonly component: ComponentId;
+  /** The spelling to show: the canonical spelling of the form the brief wrote (HCO3- stays HCO3-). */
+  readonly shown: string;
+  readonly molPerL: number; // total in the sample solution, as component
+  /** Protons the written form brings along, per component (HCO3-: 1). */
+  readonly protonsPerComponent: number;
+}
+
+export interface TaskAnalyte extends TaskComponent {
+  readonly report: "individual" | "sum";
+}
+
+/** The normalised brief: one component one row, everything in mol/L. */
+export interface Task {
+  readonly title: string;
+  readonly analytes: readonly TaskAnalyte[];
+  readonly matrix: readonly TaskComponent[];
+  readonly portion: { readonly volumeML: number; readonly titrationVolumeML: number };
+  readonly requirementPercent: number; // relative expanded uncertainty, k = 2
+  readonly laboratory: {
+    readonly avoid: readonly string[];
+    readonly available: readonly string[] | null;
+    readonly detection: readonly Detection[];
+    readonly heating: boolean;
+    readonly buretteML: number;
+  };
+  readonly temperatureC: number;
+  /** Things done to the brief that its writer should see: rows added together, and the like. */
+  readonly notes: readonly string[];
+}
+
+export interface MaskingStep {
+  readonly agent: string;
+  readonly masks: readonly ComponentId[];
+  readonly via: "complexation" | "precipitation" | "reduction" | "oxidation" | "kinetic";
+  readonly molPerL: number;
+  /** What the claim rests on: constants of the equilibrium, an empirical record, or stoichiometric conversion. */
+  readonly basis: "equilibrium" | "empirical" | "conversion";
+}
+
+export interface AddedReagent {
+  readonly id: string;
+  readonly molPerL: number;
+  readonly purpose: string;
+}
+
+/** One titration as it is to be carried out. */
+export interface StagePlan {
+  readonly determines: readonly ComponentId[];
+  readonly mode: StageMode;
+  readonly titrant: { readonly id: string; readonly molPerL: number };
+  readonly backTitrant: { readonly id: ComponentId; readonly molPerL: number } | null;
+  readonly pH: number;
+  readonly buffer: { readonly id: string; readonly molPerL: number };
+  readonly detection: Detection;
+  readonly indicator: { readonly id: string; readonly molPerL: number } | null;
+  readonly masking: readonly MaskingStep[];
+  readonly auxiliary: readonly AddedReagent[];
+  readonly added: readonly AddedReagent[];
+  readonly preparation: readonly string[];
+}
+
+export interface MethodPlan {
+  readonly mode: MethodMode;
+  readonly stages: readonly StagePlan[];
+}
