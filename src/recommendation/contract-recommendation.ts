@@ -1,0 +1,192 @@
+import { z } from "zod";
+import { briefSchema } from "./contract-brief.ts";
+import {
+  DETECTIONS,
+  FINDING_KINDS,
+  INDICATOR_CLASSES,
+  MASKING_VIAS,
+  METHOD_MODES,
+  PREPARATION_STEPS,
+  RULE_EFFECTS,
+  STAGE_MODES,
+  VERDICTS,
+} from "./contract-vocabulary.ts";
+import type { Immutable } from "./contract-immutable.ts";
+
+const finite = z.number();
+const level = z.number().min(0);
+const text = z.string().min(1);
+
+/** Values behind a statement, by fact name. */
+export const factsSchema = z.record(text, z.union([finite, z.string(), z.boolean(), z.array(z.string())]));
+
+/** A rule that spoke, with what it saw. */
+export const becauseSchema = z.strictObject({
+  rule: text,
+  effect: z.enum(RULE_EFFECTS),
+  statement: text,
+  facts: factsSchema,
+  source: text,
+  basis: text.nullable(), // read, memory, common practice, computed
+  rationale: z.string().nullable(),
+  stage: z.int().min(0).nullable(), // index of the stage it speaks of; null = the whole method
+});
+
+const reagentSchema = z.strictObject({ id: text, molPerL: level });
+const addedSchema = z.strictObject({ id: text, molPerL: level, purpose: text });
+
+/** How the end of one titration is seen, and where it lies: pM of the ion followed, at the end point and at equivalence. */
+export const endPointSchema = z.strictObject({
+  basis: z.enum(["constants", "table", "empirical", "electrode"]),
+  pM: finite.nullable(),
+  pMEquivalence: finite.nullable(),
+  bandPM: level, // +/- of the observer
+  sharpnessPercent: level.nullable(), // half-width of the band in % of the titre
+  indicatorMetal: text.nullable(), // the metal that holds the dye before the end point
+});
+
+/** One titration of a method. */
+export const stageSchema = z.strictObject({
+  determines: z.array(text),
+  mode: z.enum(STAGE_MODES),
+  titrant: reagentSchema.nullable(), // only where it is not the method's
+  backTitrant: reagentSchema.nullable(),
+  added: z.array(addedSchema),
+  titreML: level.nullable(),
+  pH: z.strictObject({ target: finite, low: finite, high: finite }),
+  buffer: reagentSchema,
+  detection: z.enum(DETECTIONS),
+  indicator: z
+    .strictObject({ id: text, class: z.enum(INDICATOR_CLASSES), colourChange: z.tuple([text, text]), molPerL: level })
+    .nullable(),
+  masking: z.array(
+    z.strictObject({
+      agent: text,
+      masks: z.array(text).min(1),
+      via: z.enum(MASKING_VIAS),
+      molPerL: level,
+      basis: z.enum(["equilibrium", "empirical", "conversion"]),
+    }),
+  ),
+  auxiliary: z.array(addedSchema),
+  preparation: z.array(z.enum(PREPARATION_STEPS)),
+  ionicStrength: z.strictObject({ molPerL: level.nullable(), outOfModelRange: z.boolean() }),
+  endPoint: endPointSchema,
+  conditional: z.array(z.strictObject({ metal: text, log10ConditionalK: finite })),
+  interferents: z.array(
+    z.strictObject({
+      component: text,
+      titratedFraction: finite.nullable(),
+      biasPercent: finite.nullable(),
+      maskedBy: text.nullable(),
+    }),
+  ),
+});
+
+const perResult = {
+  biasPercent: finite,
+  relativeExpandedUncertaintyPercent: level,
+};
+
+/** What the calculation expects of a method: bias signed, uncertainty k = 2 with the bias included. */
+export const predictedSchema = z.strictObject({
+  ...perResult,
+  biasBySource: z.array(z.strictObject({ source: text, percent: finite })),
+  titreML: level,
+  perAnalyte: z.array(z.strictObject({ determines: z.array(text).min(1), ...perResult })),
+});
+
+/** One method, complete enough to be carried out and to be defended. */
+export const methodSchema = z.strictObject({
+  id: text, // stable key of the method: the same plan has the same id in every answer
+  rank: z.int().min(1),
+  summary: text, // one sentence
+  mode: z.enum(METHOD_MODES),
+  titrant: reagentSchema,
+  backTitrant: reagentSchema.nullable(),
+  stages: z.array(stageSchema).min(1),
+  predicted: predictedSchema,
+  meetsRequirement: z.boolean(),
+  verdict: z.enum(VERDICTS),
+  reservations: z.array(text),
+  tolerance: z.array(
+    z.strictObject({ component: text, limitMolPerL: level, presentMolPerL: level, withMasking: z.boolean() }),
+  ),
+  uncertaintyBudget: z.array(z.strictObject({ source: text, percent: level })), // standard uncertainties, largest first
+  workingConditions: z.strictObject({
+    ionicStrengthMolPerL: level.nullable(),
+    temperatureC: finite,
+    outOfModelRange: z.boolean(),
+  }),
+  scores: z.array(z.strictObject({ rule: text, weight: finite, statement: text })),
+  because: z.array(becauseSchema),
+  cautions: z.array(text),
+});
+
+/** What one component would do if nothing were done about it. */
+export const findingSchema = z.strictObject({
+  component: text,
+  as: z.enum(FINDING_KINDS),
+  statement: text,
+  facts: factsSchema,
+});
+
+/** A family of methods that was looked at and put aside, and why. */
+export const rejectedSchema = z.strictObject({
+  mode: z.enum(METHOD_MODES),
+  titrant: text,
+  backTitrant: text.nullable(),
+  indicator: text.nullable(),
+  pH: finite.nullable(),
+  because: z.array(becauseSchema).min(1),
+});
+
+/** A constant that the first-ranked methods rest on, followed down to its records. */
+export const constantUsedSchema = z.strictObject({
+  species: text,
+  log10Beta: finite, // as used, at the working ionic strength and temperature
+  uncertainty: level,
+  evidence: z.array(
+    z.strictObject({
+      reaction: text,
+      text,
+      record: text.nullable(),
+      source: text,
+      basis: z.enum(["read", "memory", "computed"]),
+      log10KFound: finite,
+      ionicStrengthMolPerL: level,
+      temperatureC: finite,
+      log10KUsed: finite,
+      passedOver: z.int().min(0),
+    }),
+  ),
+});
+
+/** The answer to one brief. */
+export const recommendationSchema = z.strictObject({
+  contract: z.literal(1),
+  knowledge: z.strictObject({ version: text, hash: text }),
+  brief: briefSchema,
+  verdict: z.enum(VERDICTS),
+  findings: z.array(findingSchema),
+  methods: z.array(methodSchema),
+  rejected: z.array(rejectedSchema),
+  decidedBy: z
+    .strictObject({
+      statement: text,
+      differences: z.array(z.strictObject({ rule: text, first: finite, second: finite, statement: text })),
+    })
+    .nullable(), // null where there is no second method
+  notes: z.array(text),
+  constants: z.array(constantUsedSchema),
+});
+
+export type Recommendation = Immutable<z.output<typeof recommendationSchema>>;
+export type RecommendedMethod = Immutable<z.output<typeof methodSchema>>;
+export type StageDocument = Immutable<z.output<typeof stageSchema>>;
+export type Finding = Immutable<z.output<typeof findingSchema>>;
+export type RejectedMethod = Immutable<z.output<typeof rejectedSchema>>;
+export type Because = Immutable<z.output<typeof becauseSchema>>;
+export type ConstantUsed = Immutable<z.output<typeof constantUsedSchema>>;
+export type EndPointDocument = Immutable<z.output<typeof endPointSchema>>;
+export type Predicted = Immutable<z.output<typeof predictedSchema>>;

@@ -1,0 +1,5 @@
+/** The contract's public door: the schemas and types of the brief and of the recommendation document. */
+export * from "./contract-brief.ts";
+export * from "./contract-recommendation.ts";
+export * from "./contract-vocabulary.ts";
+export type { Immutable } from "./contract-immutable.ts";
