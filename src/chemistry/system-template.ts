@@ -1,0 +1,135 @@
+import type { ComponentId, ConstantRecord, Knowledge, Reaction, SpeciesId } from "../constants/knowledge.ts";
+import { selectRecord } from "../constants/select-constant.ts";
+import { AppError } from "../errors.ts";
+import type { MovableConstant } from "./move-constant.ts";
+import { movableConstant, selectionConditions } from "./move-constant.ts";
+import type { Conditions } from "./types.ts";
+
+/** A row of a template: a species or a solid, with the reactions its constant is made of (indices into `reactions`). */
+export interface TemplateRow {
+  readonly id: SpeciesId;
+  readonly components: Readonly<Record<ComponentId, number>>;
+  readonly charge: number;
+  readonly chain: readonly { readonly reaction: number; readonly factor: number }[];
+}
+
+/** Everything about a set of components that does not depend on ionic strength or temperature. */
+export interface SystemTemplate {
+  readonly components: readonly ComponentId[];
+  readonly index: ReadonlyMap<ComponentId, number>;
+  readonly species: readonly TemplateRow[]; // the free components first, in the order of the columns
+  readonly solids: readonly TemplateRow[];
+  readonly reactions: readonly Reaction[];
+  readonly stoichiometry: Int8Array; // species x components
+  readonly solidStoichiometry: Int8Array; // solids x components
+  readonly charges: Float64Array;
+  readonly componentCharges: Float64Array;
+}
+
+/** The records chosen for each reaction of a template, ready to be moved to any ionic strength. */
+export interface ChosenConstants {
+  readonly records: readonly ConstantRecord[];
+  readonly passedOver: readonly number[];
+  readonly movable: readonly MovableConstant[];
+}
+
+/**
+ * Builds the template of a set of components: columns H+ first, then `componentIds` as given; rows the free components, then every
+ * species of `knowledge` made of these components alone. Throws AppError "unknown-component" or "unknown-reaction".
+ */
+export function buildTemplate(knowledge: Knowledge, componentIds: readonly ComponentId[]): SystemTemplate {
+  const components = ["H+", ...componentIds.filter((id, i) => id !== "H+" && componentIds.indexOf(id) === i)];
+  const index = new Map(components.map((id, column) => [id, column]));
+  const componentCharges = Float64Array.from(components, (id) => chargeOf(knowledge, id));
+  const reactions: Reaction[] = [];
+  const reactionIndex = new Map<string, number>();
+  const chainOf = (chain: readonly { readonly reaction: string; readonly factor: number }[]) =>
+    chain.map(({ reaction, factor }) => {
+      let at = reactionIndex.get(reaction);
+      if (at === undefined) {
+        const found = knowledge.reactions.get(reaction);
+        if (found === undefined)
+          throw new AppError("unknown-reaction", `reaction ${reaction} is not known`, { reaction });
+        at = reactions.push(found) - 1;
+        reactionIndex.set(reaction, at);
+      }
+      return { reaction: at, factor };
+    });
+  const inside = (row: { readonly components: Readonly<Record<ComponentId, number>> }) =>
+    Object.keys(row.components).every((id) => index.has(id));
+  const species: TemplateRow[] = components.map((id, column) => ({
+    id,
+    components: { [id]: 1 },
+    charge: componentCharges[column]!,
+    chain: [],
+  }));
+  for (const found of knowledge.species) {
+    if (inside(found) && !isFreeComponent(found.components)) species.push({ ...found, chain: chainOf(found.chain) });
+  }
+  const solids = knowledge.solids
+    .filter(inside)
+    .map((found) => ({ id: found.id, components: found.components, charge: 0, chain: chainOf(found.chain) }));
+  return {
+    components,
+    index,
+    species,
+    solids,
+    reactions,
+    stoichiometry: matrixOf(species, index),
+    solidStoichiometry: matrixOf(solids, index),
+    charges: Float64Array.from(species, (row) => row.charge),
+    componentCharges,
+  };
+}
+
+/** Chooses a record for every reaction of `template` (on the selection grid of `conditions`) and prepares it for moving. */
+export function chooseConstants(template: SystemTemplate, conditions: Conditions): ChosenConstants {
+  const selection = selectionConditions(conditions);
+  const chosen = template.reactions.map((reaction) => selectRecord(reaction, selection));
+  return {
+    records: chosen.map((c) => c.record),
+    passedOver: chosen.map((c) => c.passedOver.length),
+    movable: chosen.map((c, i) => movableConstant(template.reactions[i]!, c.record, selection)),
+  };
+}
+
+/** The template with only the species and solids that the masks keep; the free components always stay. */
+export function filterTemplate(
+  template: SystemTemplate,
+  keepSpecies: readonly boolean[],
+  keepSolids: readonly boolean[],
+): SystemTemplate {
+  const free = template.components.length;
+  const species = template.species.filter((_, i) => i < free || keepSpecies[i]!);
+  const solids = template.solids.filter((_, i) => keepSolids[i]!);
+  return {
+    ...template,
+    species,
+    solids,
+    stoichiometry: matrixOf(species, template.index),
+    solidStoichiometry: matrixOf(solids, template.index),
+    charges: Float64Array.from(species, (row) => row.charge),
+  };
+}
+
+/** Charge of a component in units of e. Throws AppError "unknown-component". */
+export function chargeOf(knowledge: Knowledge, id: ComponentId): number {
+  if (id === "H+") return 1;
+  const record = knowledge.components.get(id);
+  if (record === undefined) throw new AppError("unknown-component", `component ${id} is not known`, { component: id });
+  return record.charge;
+}
+
+function isFreeComponent(components: Readonly<Record<ComponentId, number>>): boolean {
+  const entries = Object.values(components);
+  return entries.length === 1 && entries[0] === 1;
+}
+
+function matrixOf(rows: readonly TemplateRow[], index: ReadonlyMap<ComponentId, number>): Int8Array {
+  const width = index.size;
+  const matrix = new Int8Array(rows.length * width);
+  rows.forEach((row, i) => {
+    for (const [id, count] of Object.entries(row.components)) matrix[i * width + index.get(id)!] = count;
+  });
+  return matrix;
+}
