@@ -119,6 +119,12 @@ export interface IndicatorUse {
   readonly backTitrant?: ComponentId; // for back titrations where the use names one
   readonly pH: readonly [number, number];
   readonly detail: string;
+  /** What the use asks for besides pH, as far as the record says: temperature, solvent, the chelate added, the titrant where it is not EDTA, agents. */
+  readonly temperature?: "warm" | "heat" | "boil";
+  readonly alcohol?: boolean;
+  readonly chelate?: "Mg-EDTA" | "Zn-EDTA" | "Zn-EGTA" | "Cu-EDTA";
+  readonly titrant?: string;
+  readonly auxiliaryAnyOf?: readonly string[];
   readonly provenance: Provenance;
 }
 
@@ -249,6 +255,8 @@ export interface KineticRecord {
   )[];
   readonly temperatureC: readonly [number, number] | null;
   readonly pH: readonly [number, number] | null;
+  /** Rate constant of water exchange on the aqua ion at 25 C, 1/s, where the row states one: the upper limit for complex formation. */
+  readonly waterExchangePerS?: number;
   readonly provenance: Provenance;
 }
 

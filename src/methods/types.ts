@@ -69,6 +69,12 @@ export interface StagePlan {
   readonly auxiliary: readonly AddedReagent[];
   readonly added: readonly AddedReagent[];
   readonly preparation: readonly string[];
+  /** Ions taken out before the titration by a separation step (named with preparation "separate" or "precipitate-and-filter"). */
+  readonly removed: readonly ComponentId[];
+  /** A metal-titrant complex added to make the dye respond (Mg-EDTA, Zn-EDTA, Cu-EDTA, Zn-EGTA). */
+  readonly chelate: { readonly metal: ComponentId; readonly ligand: string; readonly molPerL: number } | null;
+  /** Titrant put in at once, in excess, before the back titration; mol/L in the titrated solution; 0 in a direct titration. */
+  readonly excessTitrantMolPerL: number;
 }
 
 export interface MethodPlan {

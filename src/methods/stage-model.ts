@@ -1,0 +1,269 @@
+import { ionicStrengthOf } from "../chemistry/ionic-strength.ts";
+import { prepareSystem } from "../chemistry/prepare-system.ts";
+import { solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
+import type { PreparedSystem, SolveResult } from "../chemistry/types.ts";
+import type { ComponentId, IndicatorRecord, Knowledge, SolidDefinition } from "../constants/knowledge.ts";
+import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
+import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
+import type { StagePlan, Task } from "./types.ts";
+
+/** What the burette delivers, and everything else that stays the same while it runs. */
+export interface StageModel {
+  readonly plan: StagePlan;
+  readonly solution: StageSolution;
+  readonly system: PreparedSystem;
+  readonly volumeL: number;
+  readonly indicator: IndicatorRecord | null;
+  readonly dyeBasis: DyeBasis;
+  readonly ionicStrengthMolPerL: number;
+  readonly held: readonly HeldAmount[];
+  /** Solids that stand in equilibrium during the titration. */
+  readonly solids: readonly string[];
+  /** Burette strength, mol/L, and which component it brings. */
+  readonly burette: { readonly component: ComponentId; readonly molPerL: number };
+  /** Solves the vessel after `volumeL` from the burette. */
+  readonly at: (volumeL: number) => VesselState;
+  readonly metals: readonly ComponentId[];
+}
+
+/** The vessel at one burette volume, amounts in mol per litre of the vessel as it then is. */
+export interface VesselState {
+  readonly volumeFromBuretteL: number;
+  readonly dilution: number; // V0 / (V0 + V)
+  readonly ok: boolean;
+  readonly residual: number;
+  readonly result: SolveResult;
+  readonly boundToTitrant: (metal: ComponentId) => number;
+  readonly unbound: (metal: ComponentId) => number; // summed over species without titrant, so exact also when tiny
+  readonly titrantUnbound: number; // not bound to any metal of the sample, the burette or the chelate
+  readonly titrantTotal: number;
+  readonly free: (component: ComponentId) => number;
+  readonly total: (component: ComponentId) => number;
+  /** Bound over free dye summed over the metals; NaN-free, 0 where nothing binds. */
+  readonly dyeRatio: number;
+  readonly dyeRatioOf: (metal: ComponentId) => number;
+}
+
+interface Rows {
+  readonly unboundByMetal: ReadonlyMap<ComponentId, readonly (readonly [row: number, metals: number])[]>;
+  readonly titrantFree: readonly (readonly [row: number, titrants: number])[];
+  readonly titrantByMetal: ReadonlyMap<ComponentId, readonly (readonly [row: number, titrants: number])[]>;
+  readonly dyeByMetal: ReadonlyMap<ComponentId, readonly (readonly [row: number, dyes: number])[]>;
+  readonly dyeFree: readonly (readonly [row: number, dyes: number])[];
+}
+
+const MIN_IONIC_STRENGTH_MOL_PER_L = 1e-4; // pure water never stands in a titration vessel
+const IONIC_STRENGTH_AGREES = 0.03; // relative; a shift below this moves no log K by more than 0.005
+
+function classifyRows(system: PreparedSystem, titrant: string, dye: ComponentId | null, metals: ReadonlySet<ComponentId>): Rows {
+  const titrantByMetal = new Map<ComponentId, [number, number][]>();
+  const dyeByMetal = new Map<ComponentId, [number, number][]>();
+  const dyeFree: [number, number][] = [];
+  const titrantFree: [number, number][] = [];
+  const unboundByMetal = new Map<ComponentId, [number, number][]>();
+  const push = (map: Map<ComponentId, [number, number][]>, key: ComponentId, value: [number, number]): void => {
+    const list = map.get(key);
+    if (list) list.push(value);
+    else map.set(key, [value]);
+  };
+  system.species.forEach((species, row) => {
+    const inIt = Object.keys(species.components).filter((c) => metals.has(c));
+    const titrants = species.components[titrant] ?? 0;
+    if (titrants > 0) {
+      if (inIt.length === 0) titrantFree.push([row, titrants]);
+      for (const metal of inIt) push(titrantByMetal, metal, [row, titrants]);
+    } else for (const metal of inIt) push(unboundByMetal, metal, [row, species.components[metal]!]);
+    const dyes = dye === null ? 0 : (species.components[dye] ?? 0);
+    if (dyes > 0) {
+      if (inIt.length === 0) dyeFree.push([row, dyes]);
+      for (const metal of inIt) push(dyeByMetal, metal, [row, dyes]);
+    }
+  });
+  return { titrantByMetal, titrantFree, unboundByMetal, dyeByMetal, dyeFree };
+}
+
+/**
+ * Builds the model of one titration: composition, constants at its own ionic strength, and a solver for any burette volume.
+ * @param inert metals that do not react with the titrant in the time and at the temperature of the titration
+ * @param options.burette "titrant" for direct titrations, "back-titrant" for the second step of back titrations and releases
+ */
+export function stageModel(
+  task: Task,
+  plan: StagePlan,
+  knowledge: Knowledge,
+  options: { readonly inert?: ReadonlySet<ComponentId>; readonly frozen?: ReadonlyMap<ComponentId, number> } = {},
+): StageModel {
+  const solution = stageSolution(task, plan, knowledge);
+  const inert = options.inert ?? new Set<ComponentId>();
+  const frozen = options.frozen ?? new Map<ComponentId, number>();
+  const indicator = plan.indicator ? (knowledge.indicators.get(plan.indicator.id) ?? null) : null;
+  const totals = new Map(solution.totals);
+  const burette = plan.backTitrant
+    ? { component: plan.backTitrant.id, molPerL: plan.backTitrant.molPerL }
+    : { component: plan.titrant.id, molPerL: plan.titrant.molPerL };
+  if (!totals.has(plan.titrant.id)) totals.set(plan.titrant.id, 0);
+  totals.set(plan.titrant.id, totals.get(plan.titrant.id)! + plan.excessTitrantMolPerL);
+  if (!totals.has(burette.component)) totals.set(burette.component, 0);
+  const held: HeldAmount[] = [...solution.held];
+  // Complexes that formed before and do not exchange any more leave the equilibrium together with their titrant.
+  for (const [metal, molPerL] of frozen) {
+    const amount = Math.min(molPerL, totals.get(metal) ?? 0);
+    totals.set(metal, (totals.get(metal) ?? 0) - amount);
+    totals.set(plan.titrant.id, Math.max(0, totals.get(plan.titrant.id)! - amount));
+    held.push({ component: metal, molPerL: amount, why: "kinetically-inert", by: plan.titrant.id });
+  }
+  const metals = new Set([...totals.keys()].filter((c) => knowledge.components.get(c)?.kind === "metal"));
+  const dyeBasis: DyeBasis =
+    indicator && plan.indicator
+      ? pickDyeBasis(knowledge, indicator, plan.pH, metals)
+      : { byConstants: new Set(), byTable: new Map(), dye: null };
+  const dye = dyeBasis.dye;
+  if (dye && plan.indicator) totals.set(dye, (totals.get(dye) ?? 0) + plan.indicator.molPerL);
+
+  const components = [...totals.keys()].filter((c) => {
+    const kind = knowledge.components.get(c)?.kind;
+    return kind !== undefined && kind !== "inert" && kind !== "proton";
+  });
+  const titrant = plan.titrant.id;
+  const exclude = (species: { readonly components: Readonly<Record<ComponentId, number>> }): boolean => {
+    const names = Object.keys(species.components);
+    if ((species.components[titrant] ?? 0) > 0 && names.some((c) => inert.has(c))) return true;
+    if (dye !== null && (species.components[dye] ?? 0) > 0)
+      return names.some((c) => metals.has(c) && !dyeBasis.byConstants.has(c));
+    return false;
+  };
+  const maskedSolids = new Set(plan.masking.filter((m) => m.via === "precipitation").flatMap((m) => m.masks));
+  const wantsSolid = (solid: SolidDefinition): boolean =>
+    solid.pace === "fast" || Object.keys(solid.components).some((c) => maskedSolids.has(c));
+
+  let chosenSolids: ReadonlySet<string> = new Set();
+  const prepare = (ionicStrengthMolPerL: number, withSolids: (s: SolidDefinition) => boolean): PreparedSystem =>
+    prepareSystem(knowledge, components, { ionicStrengthMolPerL, temperatureC: task.temperatureC }, { solids: withSolids, exclude });
+  const volumeL = solution.volumeL;
+  const columns = (system: PreparedSystem): Float64Array => {
+    const t = new Float64Array(system.components.length);
+    system.components.forEach((c, i) => (t[i] = c === "H+" ? 0 : (totals.get(c) ?? 0)));
+    return t;
+  };
+  const solve = (system: PreparedSystem, base: Float64Array, fromBuretteL: number, start: Float64Array | null): SolveResult => {
+    const dilution = volumeL / (volumeL + fromBuretteL);
+    const t = base.map((v) => v * dilution);
+    const column = system.index.get(burette.component)!;
+    t[column] = t[column]! + (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL);
+    const fixedLnFree = new Float64Array(t.length).fill(Number.NaN);
+    fixedLnFree[0] = Math.LN10 * (-plan.pH - system.log10GammaH);
+    return solveEquilibrium(system.problem, t, start ? { fixedLnFree, start } : { fixedLnFree });
+  };
+
+  // Ionic strength of the vessel itself, half way: start from 0.1 mol/L and correct until it agrees.
+  let ionicStrengthMolPerL = 0.1;
+  let system = prepare(ionicStrengthMolPerL, wantsSolid);
+  let first = solve(system, columns(system), 0, null);
+  for (let round = 0; round < 4; round++) {
+    const inert = inertIonsOf(totals, knowledge);
+    const found = Math.max(MIN_IONIC_STRENGTH_MOL_PER_L, ionicStrengthOf(system, first, inert.cz2, inert.cz).molPerL);
+    const agrees = Math.abs(found - ionicStrengthMolPerL) <= IONIC_STRENGTH_AGREES * ionicStrengthMolPerL;
+    if (agrees) break;
+    ionicStrengthMolPerL = found;
+    system = prepare(ionicStrengthMolPerL, wantsSolid);
+    first = solve(system, columns(system), 0, null);
+  }
+  // Solids that formed and do not redissolve in time are out of the game; those that do stay in equilibrium.
+  const definitions = new Map(knowledge.solids.map((s) => [s.id, s]));
+  const stays = new Set<string>();
+  system.solids.forEach((solid, i) => {
+    const amount = first.solidsMolPerL[i] ?? 0;
+    if (amount <= 0) return;
+    if (definitions.get(solid.id)?.redissolvesWhileTitrated) {
+      stays.add(solid.id);
+      return;
+    }
+    for (const [component, count] of Object.entries(solid.components)) {
+      if (component === "H+" || count <= 0) continue;
+      const lost = Math.min(count * amount, totals.get(component) ?? 0);
+      totals.set(component, (totals.get(component) ?? 0) - lost);
+      if (metals.has(component)) held.push({ component, molPerL: lost, why: "precipitated", by: solid.id });
+    }
+  });
+  chosenSolids = stays;
+  system = prepare(ionicStrengthMolPerL, (s) => chosenSolids.has(s.id));
+  const base = columns(system);
+  const rows = classifyRows(system, titrant, dye, metals);
+
+  let warm: Float64Array | null = null;
+  const at = (fromBuretteL: number): VesselState => {
+    const result = solve(system, base, fromBuretteL, warm);
+    if (result.status === "converged") warm = result.lnFree;
+    const dilution = volumeL / (volumeL + fromBuretteL);
+    const sum = (list: readonly (readonly [number, number])[] | undefined): number =>
+      (list ?? []).reduce((s, [row, n]) => s + n * result.speciesMolPerL[row]!, 0);
+    const boundToTitrant = (metal: ComponentId): number => sum(rows.titrantByMetal.get(metal));
+    const totalOf = (component: ComponentId): number => {
+      const column = system.index.get(component);
+      if (column === undefined) return 0;
+      const fromBurette = component === burette.component ? (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL) : 0;
+      return base[column]! * dilution + fromBurette;
+    };
+    const free = (component: ComponentId): number => {
+      const column = system.index.get(component);
+      return column === undefined ? 0 : Math.exp(result.lnFree[column]!);
+    };
+    const titrantTotal = totalOf(titrant);
+    const unbound = (metal: ComponentId): number => sum(rows.unboundByMetal.get(metal));
+    const dyeFree = sum(rows.dyeFree);
+    const dyeRatioOf = (metal: ComponentId): number => {
+      const half = dyeBasis.byTable.get(metal);
+      if (half !== undefined) {
+        const concentration = half.counts === "free-ion" ? free(metal) : unbound(metal);
+        return concentration * 10 ** half.pM;
+      }
+      return dyeFree > 0 ? sum(rows.dyeByMetal.get(metal)) / dyeFree : 0;
+    };
+    return {
+      volumeFromBuretteL: fromBuretteL,
+      dilution,
+      ok: result.status === "converged",
+      residual: result.residual,
+      result,
+      boundToTitrant,
+      unbound,
+      titrantUnbound: sum(rows.titrantFree),
+      titrantTotal,
+      free,
+      total: totalOf,
+      dyeRatioOf,
+      get dyeRatio(): number {
+        let ratio = 0;
+        for (const metal of metals) ratio += dyeRatioOf(metal);
+        return ratio;
+      },
+    };
+  };
+  return {
+    plan,
+    solution,
+    system,
+    volumeL,
+    indicator,
+    dyeBasis,
+    ionicStrengthMolPerL,
+    held,
+    solids: [...stays],
+    burette,
+    at,
+    metals: [...metals],
+  };
+}
+
+/** Ions of the composition that take no part but carry charge (perchlorate, …): sums of c·z² and c·z, mol/L. */
+function inertIonsOf(totals: ReadonlyMap<ComponentId, number>, knowledge: Knowledge): { cz2: number; cz: number } {
+  let cz2 = 0;
+  let cz = 0;
+  for (const [id, molPerL] of totals) {
+    const component = knowledge.components.get(id);
+    if (component?.kind !== "inert") continue;
+    cz2 += molPerL * component.charge ** 2;
+    cz += molPerL * component.charge;
+  }
+  return { cz2, cz };
+}
