@@ -23,7 +23,10 @@ export interface RuleFinding {
   readonly effect: RuleEffect;
   readonly weight: number; // points: favours > 0, disfavours < 0, excludes/requires/cautions 0
   readonly reservation: boolean; // a caution that makes a fit a fit-with-reservations
-  readonly requires: { readonly kind: "preparation" | "auxiliary" | "masking"; readonly anyOf: readonly string[] } | null;
+  readonly requires: {
+    readonly kind: "preparation" | "auxiliary" | "masking";
+    readonly anyOf: readonly string[];
+  } | null;
   readonly statement: string; // template filled with the values seen
   readonly facts: Facts; // only those the rule looked at or quotes
   readonly rationale: string;
