@@ -1,0 +1,36 @@
+import type { CurveAnswer, EquilibriumAnswer } from "../recommendation/calculate.ts";
+import type { Recommendation } from "../recommendation/contract.ts";
+
+/** What the knowledge base holds, counted, and what it is known to lack. */
+export interface KnowledgeSummary {
+  readonly version: string;
+  readonly hash: string;
+  readonly counts: readonly { readonly what: string; readonly count: number }[];
+  readonly remarks: readonly { readonly kind: string; readonly about: string; readonly text: string }[];
+}
+
+/** The outcome of checking a folder of rules. */
+export interface RuleCheck {
+  readonly rules: number;
+  readonly faults: readonly string[];
+}
+
+/** What the commands call; the composition root supplies it, and loads only what the one command needs. All throw InputError on faulty input. */
+export interface Doors {
+  readonly recommend: (brief: unknown) => Promise<Recommendation>;
+  readonly equilibrium: (question: unknown) => Promise<EquilibriumAnswer>;
+  readonly curve: (question: unknown) => Promise<CurveAnswer>;
+  readonly knowledge: () => Promise<KnowledgeSummary>;
+  /** `folder` null means the project's own rules. */
+  readonly checkRules: (folder: string | null) => Promise<RuleCheck>;
+  /** Starts the pages; resolves with their address once they answer. */
+  readonly serve: (host: string, port: number) => Promise<string>;
+}
+
+/** Where commands read and write. */
+export interface CommandIO {
+  readonly out: (text: string) => void;
+  readonly err: (text: string) => void;
+  readonly standardInput: AsyncIterable<Uint8Array>;
+  readonly environment: Readonly<Record<string, string | undefined>>;
+}

@@ -1,0 +1,113 @@
+import { Command, CommanderError } from "commander";
+import { AppError, InputError } from "../errors.ts";
+import { recommendationText } from "../recommendation/text.ts";
+import type { CommandIO, Doors, KnowledgeSummary } from "./doors.ts";
+import { readJsonFile } from "./read-input.ts";
+
+/** Exit codes: an answer was given (also "not fit"); something failed or rules are faulty; the input or the command is not valid. */
+export const EXIT = { answered: 0, failed: 1, invalid: 2 } as const;
+
+/** Runs one command and returns its exit code. On any fault nothing stands on standard output and one line per fault on standard error. */
+export async function runCommandLine(argv: readonly string[], io: CommandIO, doors: Doors): Promise<number> {
+  let code: number = EXIT.answered;
+  const program = commands(io, doors, (exit) => {
+    code = exit;
+  });
+  try {
+    await program.parseAsync([...argv], { from: "user" });
+    return code;
+  } catch (error) {
+    if (error instanceof CommanderError) return error.exitCode === 0 ? EXIT.answered : EXIT.invalid;
+    if (error instanceof InputError) {
+      for (const fault of error.faults)
+        io.err(`${oneLine(`${fault.path}: expected ${fault.expected}, found ${fault.found}`)}\n`);
+      return EXIT.invalid;
+    }
+    if (!(error instanceof AppError)) throw error;
+    io.err(`${oneLine(error.message)}\n`);
+    return EXIT.failed;
+  }
+}
+
+function commands(io: CommandIO, doors: Doors, exit: (code: number) => void): Command {
+  const read = (file: string): Promise<unknown> => readJsonFile(file, io.standardInput);
+  const json = (document: unknown): void => io.out(`${JSON.stringify(document, null, 1)}\n`);
+  const program = new Command("chelwright")
+    .description("Designs and justifies complexometric titration methods by calculation.")
+    .exitOverride()
+    .configureOutput({ writeOut: io.out, writeErr: io.err })
+    .showHelpAfterError("(chelwright --help lists the commands)");
+
+  program
+    .command("recommend")
+    .description("recommend a titration method for a brief")
+    .argument("<brief>", 'brief as a JSON file; "-" reads standard input')
+    .option("--json", "print the whole recommendation document as JSON")
+    .action(async (file: string, options: { readonly json?: boolean }) => {
+      const document = await doors.recommend(await read(file));
+      if (options.json === true) json(document);
+      else io.out(recommendationText(document));
+    });
+  program
+    .command("equilibrium")
+    .description("solve one solution at fixed acidity; prints JSON")
+    .argument("<file>", 'question as a JSON file; "-" reads standard input')
+    .action(async (file: string) => json(await doors.equilibrium(await read(file))));
+  program
+    .command("curve")
+    .description("compute a titration curve; prints JSON")
+    .argument("<file>", 'question as a JSON file; "-" reads standard input')
+    .action(async (file: string) => json(await doors.curve(await read(file))));
+  program
+    .command("rules")
+    .description("work with the rules")
+    .command("check")
+    .description("check every rule of a folder against the schema, the fact catalogue and its own examples")
+    .argument("[folder]", "folder with *.rules.json files (default: the rules that come with the program)")
+    .action(async (folder: string | undefined) => {
+      const { rules, faults } = await doors.checkRules(folder ?? null);
+      if (faults.length === 0) io.out(`rules: ${rules} checked with their examples, no faults\n`);
+      for (const fault of faults) io.err(`${oneLine(fault)}\n`);
+      if (faults.length > 0) exit(EXIT.failed);
+    });
+  program
+    .command("knowledge")
+    .description("count what the knowledge base holds, and list its gaps and doubts")
+    .option("--json", "print it as JSON")
+    .action(async (options: { readonly json?: boolean }) => {
+      const summary = await doors.knowledge();
+      if (options.json === true) json(summary);
+      else io.out(summaryText(summary));
+    });
+  program
+    .command("serve")
+    .description("serve the pages; HOST and PORT come from the environment (127.0.0.1, 3000)")
+    .action(async () => {
+      const address = await doors.serve(io.environment.HOST || "127.0.0.1", readPort(io.environment.PORT));
+      io.out(`chelwright answers at ${address}\n`);
+    });
+  return program;
+}
+
+function readPort(text: string | undefined): number {
+  if (text === undefined || text === "") return 3000;
+  const port = /^\d{1,5}$/.test(text) ? Number(text) : Number.NaN;
+  if (port >= 0 && port <= 65_535) return port;
+  throw new InputError([{ path: "PORT", expected: "a port from 0 to 65535", found: JSON.stringify(text) }]);
+}
+
+function summaryText(summary: KnowledgeSummary): string {
+  const width = Math.max(...summary.counts.map(({ what }) => what.length));
+  return [
+    `Knowledge ${summary.version}, ${summary.hash}`,
+    "",
+    ...summary.counts.map(({ what, count }) => `  ${what.padEnd(width)} ${String(count).padStart(6)}`),
+    "",
+    `Gaps and doubts: ${summary.remarks.length}`,
+    ...summary.remarks.map((remark) => `  ${remark.kind}: ${remark.about}: ${remark.text}`),
+    "",
+  ].join("\n");
+}
+
+/** A fault is one line, whatever stands in it; other control characters could move a terminal's cursor. */
+const oneLine = (text: string): string => text.replace(/[\u0000-\u001f\u007f-\u009f]+/g, " ");

@@ -1,0 +1,95 @@
+import type { Brief, RecommendedMethod, StageDocument } from "./contract.ts";
+import { figures, listed, PREPARATION_WORDS, reagentWords } from "./text-words.ts";
+
+/**
+ * Agents that go in only when the buffer has set the pH: in acid they would give off hydrogen cyanide, hydrogen sulfide or
+ * hydrogen fluoride. All others go in first, while metals that hydrolyse are still dissolved.
+ */
+const AFTER_THE_BUFFER = new Set(["cyanide", "sulfide", "fluoride"]);
+const FLASK_FIRST = new Set([
+  "remove-carbonate",
+  "separate",
+  "precipitate-and-filter",
+  "depolymerise",
+  "reduce",
+  "air-oxidise",
+]);
+
+/** The steps of a method at the bench, in order: one sentence each. */
+export function stepsOf(method: RecommendedMethod, brief: Brief): readonly string[] {
+  return method.stages.flatMap((stage, index) => stageSteps(stage, index, method, brief));
+}
+
+function stageSteps(stage: StageDocument, index: number, method: RecommendedMethod, brief: Brief): readonly string[] {
+  const titrant = stage.titrant ?? method.titrant;
+  const backTitrant = stage.backTitrant ?? method.backTitrant;
+  const agents = [
+    ...stage.masking.map((step) => ({
+      id: step.agent,
+      words: `${amount(step.agent, step.molPerL)}, which masks ${listed(step.masks)}`,
+    })),
+    ...stage.auxiliary.map((added) => ({
+      id: added.id,
+      words: `${amount(added.id, added.molPerL)} (${added.purpose})`,
+    })),
+  ];
+  const early = agents.filter((agent) => !AFTER_THE_BUFFER.has(agent.id));
+  const late = agents.filter((agent) => AFTER_THE_BUFFER.has(agent.id));
+  const before = stage.preparation.filter((step) => FLASK_FIRST.has(step));
+  const after = stage.preparation.filter((step) => !FLASK_FIRST.has(step));
+  const titrantFirst = after.includes("excess-titrant-first");
+  return [
+    opening(index, method, brief),
+    ...before.map((step) => PREPARATION_WORDS[step]),
+    ...early.map((agent) => `Add ${agent.words}.`),
+    ...(titrantFirst ? addTitrant(stage) : []),
+    `Bring to pH ${figures(stage.pH.target)} with ${amount(stage.buffer.id, stage.buffer.molPerL)} as buffer; it must stay between pH ${figures(stage.pH.low)} and ${figures(stage.pH.high)}.`,
+    ...late.map((agent) => `Now that the pH is set, add ${agent.words}.`),
+    ...(titrantFirst ? [] : addTitrant(stage)),
+    ...after
+      .filter((step) => step !== "excess-titrant-first" && !isAddition(step, stage))
+      .map((step) => PREPARATION_WORDS[step]),
+    ...endPoint(stage, backTitrant ?? titrant, backTitrant !== null && stage.mode !== "direct"),
+  ];
+}
+
+function opening(index: number, method: RecommendedMethod, brief: Brief): string {
+  const { volumeML, titrationVolumeML } = brief.portion;
+  const take = `${figures(volumeML)} mL of the sample and make up to about ${figures(titrationVolumeML)} mL`;
+  if (index === 0) return `Take ${take}.`;
+  return method.mode === "difference" || method.mode === "portions"
+    ? `Take another portion: ${take}.`
+    : "Go on with the same solution.";
+}
+
+function addTitrant(stage: StageDocument): readonly string[] {
+  return stage.added.map((added) => `Add ${amount(added.id, added.molPerL)}: ${added.purpose}.`);
+}
+
+const isAddition = (step: string, stage: StageDocument): boolean =>
+  stage.added.some((added) => step === `add-${added.id}`);
+
+function endPoint(
+  stage: StageDocument,
+  last: { readonly id: string; readonly molPerL: number },
+  isBack: boolean,
+): readonly string[] {
+  const titre = stage.titreML === null ? "" : `; about ${figures(stage.titreML)} mL`;
+  const withWhat = `Titrate${isBack ? " back" : ""} with ${figures(last.molPerL)} mol/L ${last.id}`;
+  const gives =
+    stage.determines.length > 0
+      ? `${titre}. This gives ${listed(stage.determines)}.`
+      : `${titre}. Discard this reading.`;
+  if (stage.indicator === null)
+    return [
+      `${withWhat} to the end point of the ${stage.detection === "electrode" ? "electrode" : stage.detection} reading${gives}`,
+    ];
+  const [from, to] = stage.indicator.colourChange;
+  return [
+    `Add ${reagentWords(stage.indicator.id)} (about ${figures(stage.indicator.molPerL)} mol/L).`,
+    `${withWhat} until the colour has gone from ${from} to ${to}${gives}`,
+  ];
+}
+
+const amount = (id: string, molPerL: number): string =>
+  molPerL > 0 ? `${reagentWords(id)} to ${figures(molPerL)} mol/L` : reagentWords(id);
