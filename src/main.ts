@@ -1,0 +1,160 @@
+import { createHash } from "node:crypto";
+import { fileURLToPath } from "node:url";
+import type { CommandIO, Doors, KnowledgeSummary } from "./cli/doors.ts";
+import { runCommandLine } from "./cli/run-command-line.ts";
+import type { Knowledge } from "./constants/knowledge.ts";
+import { AppError } from "./errors.ts";
+import type { RuleBase, RuleRunner } from "./inference/index.ts";
+import type { Recommendation } from "./recommendation/contract.ts";
+
+// Composition root: the only place that knows every layer. Modules are loaded when a command needs them, so that `recommend` starts without the web server.
+
+const RULES_FOLDER = fileURLToPath(new URL("../rules", import.meta.url));
+
+/** Constants and rules, loaded and checked, with the one function that answers a brief. */
+export interface Engine {
+  readonly knowledge: Knowledge; // its hash covers the rules too
+  readonly ruleBase: RuleBase;
+  readonly rules: RuleRunner;
+  /** Answers a brief given as JSON; throws InputError with one fault per error. */
+  readonly recommend: (brief: unknown) => Promise<Recommendation>;
+}
+
+/** Loads constants and rules once and joins them into an engine. Throws DataError or RuleError where they do not keep their schemas. */
+export async function openEngine(): Promise<Engine> {
+  const [{ loadKnowledge }, { createRuleRunner, loadRules }, { readBrief }, { recommend }] = await Promise.all([
+    import("./constants/index.ts"),
+    import("./inference/index.ts"),
+    import("./recommendation/brief.ts"),
+    import("./recommendation/recommend.ts"),
+  ]);
+  const constants = loadKnowledge();
+  const ruleBase = loadRules(RULES_FOLDER);
+  const rules = createRuleRunner(ruleBase);
+  const hash = createHash("sha256").update(constants.hash).update(ruleBase.content).digest("hex").slice(0, 16);
+  const knowledge: Knowledge = { ...constants, hash };
+  return { knowledge, ruleBase, rules, recommend: (brief) => recommend(readBrief(brief, knowledge), knowledge, rules) };
+}
+
+/** Runs the program with the words after its name; returns the exit code. Faults go to standard error, one a line. */
+export async function main(argv: readonly string[], io: CommandIO = processIO()): Promise<number> {
+  try {
+    return await runCommandLine(argv, io, doors(io));
+  } catch (error) {
+    // Nobody asked for this one: say what it is, with its trace, so that it can be reported.
+    io.err(
+      `chelwright failed unexpectedly\n${error instanceof Error ? (error.stack ?? error.message) : String(error)}\n`,
+    );
+    return 1;
+  }
+}
+
+function doors(io: CommandIO): Doors {
+  return {
+    recommend: async (brief) => (await openEngine()).recommend(brief),
+    equilibrium: async (question) => {
+      const [{ answerEquilibrium }, { loadKnowledge }] = await calculators();
+      return answerEquilibrium(question, loadKnowledge());
+    },
+    curve: async (question) => {
+      const [{ answerCurve }, { loadKnowledge }] = await calculators();
+      return answerCurve(question, loadKnowledge());
+    },
+    knowledge: async () => summary(await openEngine()),
+    checkRules: async (folder) => {
+      const { checkRules } = await import("./inference/index.ts");
+      const { rules, faults } = await checkRules(folder ?? RULES_FOLDER);
+      return { rules: rules.length, faults: faults.map((fault) => fault.message) };
+    },
+    serve: (host, port) => serve(host, port, io),
+  };
+}
+
+const calculators = () => Promise.all([import("./recommendation/calculate.ts"), import("./constants/index.ts")]);
+
+async function serve(host: string, port: number, io: CommandIO): Promise<string> {
+  const [
+    engine,
+    { startServer },
+    { FACT_CATALOGUE, OPERATORS },
+    { answerCurve, answerEquilibrium },
+    { readBrief },
+    { figureSeries },
+  ] = await Promise.all([
+    openEngine(),
+    import("./web/index.ts"),
+    import("./inference/index.ts"),
+    import("./recommendation/calculate.ts"),
+    import("./recommendation/brief.ts"),
+    import("./recommendation/calculate-series.ts"),
+  ]);
+  const { knowledge, ruleBase, recommend } = engine;
+  try {
+    const server = await startServer(
+      {
+        knowledge,
+        rules: ruleBase.rules,
+        facts: FACT_CATALOGUE,
+        operators: OPERATORS,
+        readBrief: (brief) => readBrief(brief, knowledge),
+        recommend,
+        figureSeries: (document, methodId) => figureSeries(document, methodId, knowledge),
+        equilibrium: (question) => answerEquilibrium(question, knowledge),
+        curve: (question) => answerCurve(question, knowledge),
+        log: (line) => io.err(`${line}\n`),
+      },
+      { host, port },
+    );
+    for (const signal of ["SIGINT", "SIGTERM"] as const) process.once(signal, () => void server.stop());
+    return server.url;
+  } catch (cause) {
+    const code = cause instanceof Error && "code" in cause ? String(cause.code) : null;
+    if (code === null) throw cause;
+    throw new AppError("listen", `cannot listen on ${host} port ${port} (${code})`, { host, port }, cause);
+  }
+}
+
+function summary({ knowledge, ruleBase }: Engine): KnowledgeSummary {
+  const components = [...knowledge.components.values()];
+  const reactions = [...knowledge.reactions.values()];
+  const ofKind = (kind: string): number => components.filter((component) => component.kind === kind).length;
+  const records = reactions.reduce((sum, reaction) => sum + reaction.records.length, 0);
+  const counts: readonly (readonly [string, number])[] = [
+    ["metal ions", ofKind("metal")],
+    ["ligands", ofKind("ligand")],
+    ["dyes with constants", ofKind("dye")],
+    ["species", knowledge.species.length],
+    ["solids", knowledge.solids.length],
+    ["reactions", reactions.length],
+    ["values of constants", records],
+    ["titrants", knowledge.titrants.size],
+    ["metal titrants", knowledge.metalTitrants.size],
+    ["indicators", knowledge.indicators.size],
+    ["buffers", knowledge.buffers.size],
+    ["masking and auxiliary agents", knowledge.agents.size],
+    ["masking records", knowledge.masking.length],
+    ["kinetic records", knowledge.kinetics.length],
+    ["electrodes", knowledge.electrodes.length],
+    ["rules", ruleBase.rules.length],
+    ["sources", knowledge.sources.size],
+  ];
+  return {
+    version: knowledge.version,
+    hash: knowledge.hash,
+    counts: counts.map(([what, count]) => ({ what, count })),
+    remarks: knowledge.remarks,
+  };
+}
+
+function processIO(): CommandIO {
+  // A reader that stops early (head, a pager) is no fault of ours.
+  process.stdout.on("error", (error: NodeJS.ErrnoException) => {
+    if (error.code !== "EPIPE") throw error;
+  });
+  return {
+    out: (text) => void process.stdout.write(text),
+    err: (text) => void process.stderr.write(text),
+    standardInput: process.stdin,
+    environment: process.env,
+  };
+}
