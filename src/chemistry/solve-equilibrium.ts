@@ -230,7 +230,7 @@ function assemble(
       sum += term;
       bulk += Math.abs(term);
     }
-    const relative = Math.abs(sum) / (total > 0 && st.nonNegative ? total : bulk);
+    const relative = Math.abs(sum) / (st.mixedSign[j] === 1 ? bulk : total);
     if (relative > residual || worstComponent === -1) {
       residual = Math.max(residual, relative);
       worstComponent = component;

@@ -9,7 +9,9 @@ const OVERTAKEN = 20; // a species this much above its basis species calls for a
 const SMALL_STEP = 0.05; // below it concentrations are updated by factors, so that no digit is lost in large exponents
 const MAX_STEP = 6; // ln units of any basis species in one step
 const MAX_GROWTH = 40; // doublings and halvings of one line search
-const FLATTENED = 0.9; // a trial slope below this share of the first one ends the search
+const FLATTENED = 0.1; // the search goes on while the slope still falls by more than this share of the first one
+const OVERSHOT = 0.9; // and turns back when it rises by more than this share
+const MAX_SHIFT = 8; // ln units by which a solid taken in is brought towards saturation per iteration
 const CAP = 600; // exponents are capped here in trials: larger ones only say "far too much"
 
 /** What the reduced method ended with. */
@@ -56,7 +58,6 @@ export function solveReduced(st: SolveStructure, active: readonly number[], maxI
   }
   let basis = chooseBasis(st, active);
   if (basis === null) return { status: "nonFinite", iterations: 0, cancellation: 1 };
-  imposeSolids(st, basis, w);
   const gradient = new Float64Array(n);
   const bulk = new Float64Array(n);
   const direction = new Float64Array(n);
@@ -70,6 +71,7 @@ export function solveReduced(st: SolveStructure, active: readonly number[], maxI
   let status: ReducedOutcome["status"] = "maxIterations";
   fillConcentrations(exponent, concentration, m);
   for (; ; iteration++) {
+    const unsaturated = approachSaturation(st, basis, w);
     if (overtaken(basis, exponent, m, w)) {
       basis = chooseBasis(st, active);
       if (basis === null) return { status: "nonFinite", iterations: iteration, cancellation: 1 };
@@ -81,11 +83,13 @@ export function solveReduced(st: SolveStructure, active: readonly number[], maxI
       status = "nonFinite";
       break;
     }
-    if (worst <= TARGET) {
+    if (worst <= TARGET && !unsaturated) {
       status = "converged";
       break;
     }
-    if (worst < 0.5 * best) {
+    if (unsaturated) {
+      best = Infinity;
+    } else if (worst < 0.5 * best) {
       best = worst;
       stalled = 0;
     } else if (worst <= ENOUGH && ++stalled >= 2) {
@@ -182,12 +186,21 @@ function chooseBasis(st: SolveStructure, active: readonly number[]): Basis | nul
   };
 }
 
-/** Moves the point onto "every active solid saturated", leaving the other basis species as they are. */
-function imposeSolids(st: SolveStructure, basis: Basis, w: number): void {
-  if (w === 0) return;
-  const { exponent } = st.scratch;
+/**
+ * Moves the point towards "every active solid saturated", leaving the other basis species as they are; true while not there.
+ * In steps, because one long move can send other species hundreds of ln units away.
+ */
+function approachSaturation(st: SolveStructure, basis: Basis, w: number): boolean {
+  const { exponent, concentration } = st.scratch;
   const shift = new Float64Array(w);
-  for (let k = 0; k < w; k++) shift[k] = -exponent[basis.rows[k]!]!;
+  let unsaturated = false;
+  for (let k = 0; k < w; k++) {
+    const e = exponent[basis.rows[k]!]!;
+    if (e === 0) continue;
+    shift[k] = Math.max(-MAX_SHIFT, Math.min(MAX_SHIFT, -e));
+    unsaturated = true;
+  }
+  if (!unsaturated) return false;
   for (let i = 0; i < exponent.length; i++) {
     let sum = 0;
     for (let p = basis.start[i]!; p < basis.start[i + 1]!; p++) {
@@ -196,7 +209,8 @@ function imposeSolids(st: SolveStructure, basis: Basis, w: number): void {
     }
     exponent[i] = exponent[i]! + sum;
   }
-  for (let k = 0; k < w; k++) exponent[basis.rows[k]!] = 0;
+  fillConcentrations(exponent, concentration, st.m);
+  return unsaturated;
 }
 
 function fillConcentrations(exponent: Float64Array, concentration: Float64Array, m: number): void {
@@ -296,7 +310,7 @@ function searchSlope(
   let high = Infinity;
   for (let trialCount = 0; trialCount < MAX_GROWTH; trialCount++) {
     const here = slope(t);
-    if (Math.abs(here) <= FLATTENED * Math.abs(first)) return t;
+    if (here >= FLATTENED * first && here <= -OVERSHOT * first) return t;
     if (here < 0) low = t;
     else high = t;
     t = high === Infinity ? 2 * t : 0.5 * (low + high);

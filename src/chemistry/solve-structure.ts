@@ -35,7 +35,8 @@ export interface SolveStructure {
   readonly hessianStart: Int32Array;
   readonly hessianRow: Int32Array;
   readonly hessianValue: Float64Array;
-  readonly nonNegative: boolean; // no unknown has a negative coefficient in any species
+  readonly mixedSign: Uint8Array; // 1 where an unknown has a negative coefficient in some species of the problem
+  readonly nonNegative: boolean; // no unknown is of mixed sign
   readonly scratch: Scratch;
 }
 
@@ -109,7 +110,7 @@ export function compileProblem(problem: MassBalanceProblem): CompiledProblem {
       for (let j = 0; j < n; j++) key += String(state[j]!);
       let found = structures.get(key);
       if (found === undefined) {
-        found = buildStructure(problem, state, unitRow);
+        found = buildStructure(problem, state, unitRow, nonNegativeColumn);
         structures.set(key, found);
       }
       return found;
@@ -119,7 +120,12 @@ export function compileProblem(problem: MassBalanceProblem): CompiledProblem {
   return compiled;
 }
 
-function buildStructure(problem: MassBalanceProblem, state: ArrayLike<number>, unitRow: Int32Array): SolveStructure {
+function buildStructure(
+  problem: MassBalanceProblem,
+  state: ArrayLike<number>,
+  unitRow: Int32Array,
+  nonNegativeColumn: Uint8Array,
+): SolveStructure {
   const nComponents = problem.nComponents;
   const unknown: number[] = [];
   const local = new Int32Array(nComponents).fill(-1);
@@ -205,7 +211,8 @@ function buildStructure(problem: MassBalanceProblem, state: ArrayLike<number>, u
     hessianStart: hessian.start,
     hessianRow: hessian.column,
     hessianValue: hessian.value,
-    nonNegative: dense.subarray(0, m * n).every((value) => value >= 0),
+    mixedSign: Uint8Array.from(unknown, (j) => 1 - nonNegativeColumn[j]!),
+    nonNegative: unknown.every((j) => nonNegativeColumn[j] === 1),
     scratch: {
       base: new Float64Array(rows.length),
       total: new Float64Array(n),
