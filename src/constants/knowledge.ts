@@ -178,7 +178,12 @@ export interface BufferRecord {
   readonly component: ComponentId | null; // the ligand whose protonation buffers ("ammonia"); null for strong acids, alkalis and pairs without constants
   readonly counterIon: { readonly charge: number }; // of the salt that is weighed: the inert partner
   readonly kind: "pair" | "strong-acid" | "strong-base";
-  readonly pKa: readonly { readonly value: number; readonly uncertainty: number; readonly acidCharge: number; readonly provenance: Provenance }[];
+  readonly pKa: readonly {
+    readonly value: number;
+    readonly uncertainty: number;
+    readonly acidCharge: number;
+    readonly provenance: Provenance;
+  }[];
   readonly workingPH: readonly [number, number];
   readonly usualMolPerL: readonly [number, number];
   readonly provenance: Provenance; // of working pH and amounts
@@ -290,6 +295,7 @@ export type HazardTag =
   | "formaldehyde"
   | "corrosive"
   | "flammable"
+  | "heat-sensitive" // decomposes when heated: hydroxylamine, ammonium nitrate, dithionite
   | "toxic";
 
 /** The usual caution for a hazard, shown wherever a reagent with the tag is proposed under these conditions. */
@@ -341,7 +347,11 @@ export interface ElectrodeRecord {
   readonly slopeMVPerDecade: number;
   readonly detectionLimitMolPerL: number;
   readonly pH: readonly [number, number];
-  readonly interferingIons: readonly { readonly ion: ComponentId; readonly log10Selectivity: number | null; readonly provenance: Provenance }[];
+  readonly interferingIons: readonly {
+    readonly ion: ComponentId;
+    readonly log10Selectivity: number | null;
+    readonly provenance: Provenance;
+  }[];
   readonly provenance: Provenance;
 }
 

@@ -1,0 +1,64 @@
+import { z } from "zod";
+import type {
+  AgentRecord,
+  BufferRecord,
+  CautionRecord,
+  DataRemark,
+  ElectrodeRecord,
+  GlasswareRecord,
+  IndicatorRecord,
+  IonFact,
+  KineticRecord,
+  MaskingRecord,
+  MetalTitrantRecord,
+  PrimaryStandardRecord,
+  ReagentRecord,
+  SourceRecord,
+  TitrantRecord,
+} from "./knowledge.ts";
+import * as schema from "./practice-schema.ts";
+import { type ReadFile, readRecords } from "./read-records.ts";
+
+/** Handbook and trade knowledge as its files hold it: ions still in the spelling of the files, nothing joined. */
+export interface PracticeData {
+  readonly sources: readonly SourceRecord[];
+  readonly titrants: readonly TitrantRecord[];
+  readonly metalTitrants: readonly MetalTitrantRecord[];
+  readonly indicators: readonly IndicatorRecord[];
+  readonly buffers: readonly BufferRecord[];
+  readonly agents: readonly AgentRecord[];
+  readonly masking: readonly MaskingRecord[];
+  readonly kinetics: readonly KineticRecord[];
+  readonly electrodes: readonly ElectrodeRecord[];
+  readonly reagents: readonly ReagentRecord[];
+  readonly cautions: readonly CautionRecord[];
+  readonly glassware: readonly GlasswareRecord[];
+  readonly standards: readonly PrimaryStandardRecord[];
+  readonly ionFacts: readonly IonFact[];
+  readonly remarks: readonly DataRemark[];
+  readonly atomicWeights: readonly z.infer<typeof schema.atomicWeightSchema>[];
+}
+
+/** Reads and validates every practice file. Throws a DataError (file, JSON path) for the first one that breaks its schema. */
+export function loadPractice(readFile: ReadFile): PracticeData {
+  const list = <T>(name: string, record: z.ZodType<T>): readonly T[] =>
+    readRecords(readFile, name, z.array(record).min(1));
+  return {
+    sources: list("sources-practice.json", schema.sourceSchema),
+    titrants: list("titrants.json", schema.titrantSchema),
+    metalTitrants: list("metal-titrants.json", schema.metalTitrantSchema),
+    indicators: list("indicators.json", schema.indicatorSchema),
+    buffers: list("buffers.json", schema.bufferSchema),
+    agents: list("agents.json", schema.agentSchema),
+    masking: list("masking.json", schema.maskingSchema),
+    kinetics: list("kinetics.json", schema.kineticSchema),
+    electrodes: list("electrodes.json", schema.electrodeSchema),
+    reagents: list("reagents.json", schema.reagentSchema),
+    cautions: list("cautions.json", schema.cautionSchema),
+    glassware: list("glassware.json", schema.glasswareSchema),
+    standards: list("standards.json", schema.standardSchema),
+    ionFacts: list("ion-facts.json", schema.ionFactSchema),
+    remarks: list("practice-remarks.json", schema.remarkSchema),
+    atomicWeights: list("atomic-weights.json", schema.atomicWeightSchema),
+  };
+}
