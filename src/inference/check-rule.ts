@@ -142,17 +142,28 @@ function checkEffect(rule: Rule, report: Report): void {
     report(".weight", `${rule.effect} weighs ${range[0]} to ${range[1]} points, found ${rule.weight}`);
   if (range === undefined && rule.weight !== 0)
     report(".weight", `${rule.effect} carries no weight, found ${rule.weight}`);
+  if (rule.per !== null) checkPer(rule.per, rule, report);
   if (rule.effect === "requires" && rule.requires === null)
     report(".requires", "a rule that requires says what: kind and anyOf");
   if (rule.effect !== "requires" && rule.requires !== null) report(".requires", `${rule.effect} requires nothing`);
   if (rule.reservation && rule.effect !== "cautions") report(".reservation", "only a caution can be a reservation");
 }
 
+function checkPer(per: NonNullable<Rule["per"]>, rule: Rule, report: Report): void {
+  if (rule.weight === 0) report(".per", "only a weight can be counted per unit");
+  const definition = definitionOf(per.fact, rule.scope, ".per.fact", report);
+  if (definition !== undefined && (definition.type !== "number" || definition.optional))
+    report(".per.fact", `${per.fact} is not a number that always exists`);
+}
+
 /** The facts that have a value whenever the condition holds, though they may be absent otherwise. */
 function certainFacts(condition: Condition): readonly string[] {
   if ("all" in condition) return condition.all.flatMap(certainFacts);
-  if ("any" in condition || "not" in condition) return [];
-  return factsReadBy(condition);
+  if ("any" in condition) {
+    const [first = [], ...others] = condition.any.map(certainFacts);
+    return first.filter((fact) => others.every((facts) => facts.includes(fact)));
+  }
+  return "not" in condition ? [] : factsReadBy(condition);
 }
 
 function checkStatement(rule: Rule, report: Report): void {

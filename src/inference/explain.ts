@@ -22,7 +22,7 @@ export function findingOf(rule: Rule, facts: Facts): RuleFinding {
   return {
     rule: rule.id,
     effect: rule.effect,
-    weight: rule.weight,
+    weight: weightOf(rule, facts),
     reservation: rule.reservation,
     requires: rule.requires,
     statement: fillStatement(rule.statement, facts),
@@ -31,6 +31,16 @@ export function findingOf(rule: Rule, facts: Facts): RuleFinding {
     source: rule.source.cite,
     basis: rule.source.basis,
   };
+}
+
+// A count may be large; no single reason outweighs an exclusion's worth of points.
+const LARGEST_WEIGHT = 60;
+
+/** The points of a rule that fired: its weight, times the units beyond the free ones where it is counted per unit, at most 60 either way. */
+export function weightOf(rule: Rule, facts: Facts): number {
+  if (rule.per === null) return rule.weight;
+  const units = Math.max(0, Number(facts[rule.per.fact]) - rule.per.beyond);
+  return Math.max(-LARGEST_WEIGHT, Math.min(LARGEST_WEIGHT, rule.weight * units));
 }
 
 /** The rules that exclude or favour and failed by exactly one comparison: what nearly decided otherwise. `facts` complete. */
@@ -75,6 +85,7 @@ function factsSeen(rule: Rule, facts: Facts): Facts {
   const names = new Set([
     ...leavesOf(rule.when).flatMap(factsReadBy),
     ...placeholdersOf(rule.statement).map(({ fact }) => fact),
+    ...(rule.per === null ? [] : [rule.per.fact]),
   ]);
   const seen: Record<string, FactValue> = {};
   for (const name of names) {

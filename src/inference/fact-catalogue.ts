@@ -49,7 +49,7 @@ const METHOD_FACTS = facts("method", "evaluationStatus", [
   ["hazards", "strings", null, "always", "tags of the cautions that apply"],
   ["reagentCount", "number", null, "always", "masking, auxiliary and added reagents and buffers"],
   ["specialReagentCount", "number", null, "always", "reagents that are not on the usual shelf"],
-  ["heats", "boolean", null, "always", "some step is done warm or hot, boiling not included"],
+  ["heats", "boolean", null, "always", "some step needs a temperature above ambient"],
   ["boils", "boolean", null, "always", "some step is done at the boil"],
   ["separates", "boolean", null, "always", "something is removed before the titration"],
   ["preparation", "strings", null, "always", "ids of the preparation steps of all stages"],

@@ -115,7 +115,7 @@ function readRule(raw: unknown, topic: string, file: string, report: Report): Ru
   const when =
     typeof raw === "object" && raw !== null && "when" in raw ? readCondition(raw.when, ".when", report) : null;
   if (!parsed.success || when === null) return null;
-  const { id, weight = 0, requires = null, reservation = false, ...rest } = parsed.data;
+  const { id, weight = 0, per = null, requires = null, reservation = false, ...rest } = parsed.data;
   if (!id.startsWith(`${topic}/`)) report(".id", `expected an id of this file's topic, ${topic}/…`);
-  return { ...rest, id, topic, file, when, weight, requires, reservation };
+  return { ...rest, id, topic, file, when, weight, per, requires, reservation };
 }

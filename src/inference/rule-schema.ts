@@ -28,6 +28,8 @@ export interface Rule {
   readonly when: Condition;
   readonly effect: RuleEffect;
   readonly weight: number;
+  /** Where present, the weight counts once for each unit of the fact beyond this number: -3 per reagent beyond the first. */
+  readonly per: { readonly fact: string; readonly beyond: number } | null;
   readonly requires: RuleFinding["requires"];
   readonly reservation: boolean;
   readonly statement: string;
@@ -52,6 +54,7 @@ export const ruleFrame = z.strictObject({
   when: z.unknown().refine((when) => when !== undefined, "expected a condition"),
   effect: z.enum(["excludes", "requires", "favours", "disfavours", "cautions"]),
   weight: z.number().optional(),
+  per: z.strictObject({ fact: text, beyond: z.number() }).optional(),
   requires: z
     .strictObject({ kind: z.enum(["preparation", "auxiliary", "masking"]), anyOf: z.array(text).min(1) })
     .optional(),
