@@ -8,7 +8,10 @@ export interface DyeBasis {
   readonly dye: ComponentId | null;
   readonly byConstants: ReadonlySet<ComponentId>;
   /** Published pM at half change at this pH. */
-  readonly byTable: ReadonlyMap<ComponentId, { readonly pM: number; readonly counts: "free-ion" | "not-bound-to-titrant" }>;
+  readonly byTable: ReadonlyMap<
+    ComponentId,
+    { readonly pM: number; readonly counts: "free-ion" | "not-bound-to-titrant" }
+  >;
 }
 
 /** Metals with which a dye has constants, by dye component. */
@@ -52,7 +55,8 @@ export function pickDyeBasis(
     const pM = table ? transitionPM(table.points, pH) : null;
     // Azo dyes of the mordant type are reproduced by their constants within 0.1 (worked example IN-01), and the
     // constants let the dye's amount and 1:2 complexes count; there the constants go first.
-    if (table && pM !== null && !(indicator.class === "azo" && withConstants.has(metal))) byTable.set(metal, { pM, counts: table.counts });
+    if (table && pM !== null && !(indicator.class === "azo" && withConstants.has(metal)))
+      byTable.set(metal, { pM, counts: table.counts });
     else if (withConstants.has(metal)) byConstants.add(metal);
   }
   return { dye: byConstants.size > 0 ? dye : null, byConstants, byTable };

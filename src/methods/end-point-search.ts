@@ -73,3 +73,41 @@ function refine(
   }
   return { found: true, volumeL: (low + high) / 2 };
 }
+
+/**
+ * The crossing next to a known end point, walking away from it in growing steps; null when none is met within the scale.
+ * @param criterion shifted criterion, negative before its crossing
+ * @param direction -1 to look at smaller volumes, 1 at larger ones
+ */
+export function nearCrossing(
+  criterion: (volumeL: number) => number,
+  fromL: number,
+  direction: -1 | 1,
+  scaleL: number,
+): number | null {
+  let near = fromL;
+  for (let step = 2e-4 * scaleL; step < 4 * scaleL; step *= 3) {
+    const far = Math.max(0, fromL + direction * step);
+    const value = criterion(far);
+    if (!Number.isFinite(value)) return null;
+    if (direction === -1 ? value < 0 : value >= 0) {
+      const [low, high] = direction === -1 ? [far, near] : [near, far];
+      return bisect(criterion, low, high);
+    }
+    near = far;
+    if (far === 0) return 0;
+  }
+  return null;
+}
+
+/** A few halvings are enough for the edge of an observer's band. */
+function bisect(criterion: (volumeL: number) => number, lowStart: number, highStart: number): number {
+  let low = lowStart;
+  let high = highStart;
+  for (let i = 0; i < 5; i++) {
+    const mid = (low + high) / 2;
+    if (criterion(mid) >= 0) high = mid;
+    else low = mid;
+  }
+  return (low + high) / 2;
+}

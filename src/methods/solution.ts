@@ -24,7 +24,7 @@ export interface StageSolution {
 export const dyeComponentOf = (indicator: string): ComponentId => (indicator === "Cu-PAN" ? "PAN" : indicator);
 
 /** How much of each sample component stands in the vessel, mol/L at the titration volume. */
-export function dilutedSample(task: Task): (TaskComponent & { readonly inVesselMolPerL: number })[] {
+export function vesselSample(task: Task): (TaskComponent & { readonly inVesselMolPerL: number })[] {
   const dilution = task.portion.volumeML / task.portion.titrationVolumeML;
   return [...task.analytes, ...task.matrix].map((c) => ({ ...c, inVesselMolPerL: c.molPerL * dilution }));
 }
@@ -40,7 +40,7 @@ export function stageSolution(task: Task, plan: StagePlan, knowledge: Knowledge)
   const add = (map: Map<ComponentId, number>, id: ComponentId, molPerL: number): void => {
     if (molPerL > 0) map.set(id, (map.get(id) ?? 0) + molPerL);
   };
-  for (const { component, inVesselMolPerL } of dilutedSample(task)) {
+  for (const { component, inVesselMolPerL } of vesselSample(task)) {
     if (plan.removed.includes(component)) {
       held.push({ component, molPerL: inVesselMolPerL, why: "separated", by: "separate" });
       continue;

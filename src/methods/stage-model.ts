@@ -55,7 +55,12 @@ interface Rows {
 const MIN_IONIC_STRENGTH_MOL_PER_L = 1e-4; // pure water never stands in a titration vessel
 const IONIC_STRENGTH_AGREES = 0.03; // relative; a shift below this moves no log K by more than 0.005
 
-function classifyRows(system: PreparedSystem, titrant: string, dye: ComponentId | null, metals: ReadonlySet<ComponentId>): Rows {
+function classifyRows(
+  system: PreparedSystem,
+  titrant: string,
+  dye: ComponentId | null,
+  metals: ReadonlySet<ComponentId>,
+): Rows {
   const titrantByMetal = new Map<ComponentId, [number, number][]>();
   const dyeByMetal = new Map<ComponentId, [number, number][]>();
   const dyeFree: [number, number][] = [];
@@ -102,7 +107,10 @@ export function stageModel(
     ? { component: plan.backTitrant.id, molPerL: plan.backTitrant.molPerL }
     : { component: plan.titrant.id, molPerL: plan.titrant.molPerL };
   if (!totals.has(plan.titrant.id)) totals.set(plan.titrant.id, 0);
-  totals.set(plan.titrant.id, totals.get(plan.titrant.id)! + plan.excessTitrantMolPerL);
+  totals.set(
+    plan.titrant.id,
+    totals.get(plan.titrant.id)! + plan.excessTitrantMolPerL + (plan.carried?.titrantMolPerL ?? 0),
+  );
   if (!totals.has(burette.component)) totals.set(burette.component, 0);
   const held: HeldAmount[] = [...solution.held];
   // Complexes that formed before and do not exchange any more leave the equilibrium together with their titrant.
@@ -138,14 +146,24 @@ export function stageModel(
 
   let chosenSolids: ReadonlySet<string> = new Set();
   const prepare = (ionicStrengthMolPerL: number, withSolids: (s: SolidDefinition) => boolean): PreparedSystem =>
-    prepareSystem(knowledge, components, { ionicStrengthMolPerL, temperatureC: task.temperatureC }, { solids: withSolids, exclude });
+    prepareSystem(
+      knowledge,
+      components,
+      { ionicStrengthMolPerL, temperatureC: task.temperatureC },
+      { solids: withSolids, exclude },
+    );
   const volumeL = solution.volumeL;
   const columns = (system: PreparedSystem): Float64Array => {
     const t = new Float64Array(system.components.length);
     system.components.forEach((c, i) => (t[i] = c === "H+" ? 0 : (totals.get(c) ?? 0)));
     return t;
   };
-  const solve = (system: PreparedSystem, base: Float64Array, fromBuretteL: number, start: Float64Array | null): SolveResult => {
+  const solve = (
+    system: PreparedSystem,
+    base: Float64Array,
+    fromBuretteL: number,
+    start: Float64Array | null,
+  ): SolveResult => {
     const dilution = volumeL / (volumeL + fromBuretteL);
     const t = base.map((v) => v * dilution);
     const column = system.index.get(burette.component)!;
@@ -201,7 +219,8 @@ export function stageModel(
     const totalOf = (component: ComponentId): number => {
       const column = system.index.get(component);
       if (column === undefined) return 0;
-      const fromBurette = component === burette.component ? (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL) : 0;
+      const fromBurette =
+        component === burette.component ? (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL) : 0;
       return base[column]! * dilution + fromBurette;
     };
     const free = (component: ComponentId): number => {

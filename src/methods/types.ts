@@ -75,6 +75,8 @@ export interface StagePlan {
   readonly chelate: { readonly metal: ComponentId; readonly ligand: string; readonly molPerL: number } | null;
   /** Titrant put in at once, in excess, before the back titration; mol/L in the titrated solution; 0 in a direct titration. */
   readonly excessTitrantMolPerL: number;
+  /** Titrant that an earlier titration of the same solution left in it, mol/L of the vessel, and the metals it went to. */
+  readonly carried: { readonly metals: readonly ComponentId[]; readonly titrantMolPerL: number } | null;
 }
 
 export interface MethodPlan {

@@ -1,5 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { evaluateStage } from "../methods/evaluate-stage.ts";
+import { evaluate } from "../methods/develop.ts";
 import { stageModel, type StageModel } from "../methods/stage-model.ts";
 import type { StagePlan, Task } from "../methods/types.ts";
 import { readBrief } from "./brief.ts";
@@ -48,7 +48,7 @@ export function figureSeries(document: Recommendation, methodId: string, knowled
 }
 
 function stageSeries(task: Task, plan: StagePlan, stage: StageDocument, knowledge: Knowledge): StageSeries {
-  const evaluation = evaluateStage(task, plan, knowledge);
+  const evaluation = evaluate(task, plan, knowledge);
   const { model, equivalenceML } = evaluation;
   const followed = plan.backTitrant?.id ?? plan.determines[0] ?? "";
   const pMAt = (volumeML: number): number | null => pM(model, volumeML, followed);
@@ -133,7 +133,7 @@ function planOf(method: RecommendedMethod, stage: StageDocument, knowledge: Know
     indicator: stage.indicator && { id: stage.indicator.id, molPerL: stage.indicator.molPerL },
     masking: stage.masking.map((step) => ({ ...step, masks: step.masks.map(component) })),
     auxiliary: stage.auxiliary,
-    added: stage.added,
+    added: stage.added.filter((reagent) => reagent.id !== titrant.id), // the excess stands in the vessel already
     preparation: stage.preparation,
     removed: removed.map(component),
     chelate: chelate && { ...chelate, metal: component(chelate.metal) },

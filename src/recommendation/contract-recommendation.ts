@@ -45,34 +45,6 @@ export const endPointSchema = z.strictObject({
   indicatorMetal: text.nullable(), // the metal that holds the dye before the end point
 });
 
-/** The titration exactly as it was evaluated, in component ids: what figures and re-evaluations start from. */
-export const planSchema = z.strictObject({
-  determines: z.array(text),
-  mode: z.enum(STAGE_MODES),
-  titrant: reagentSchema,
-  backTitrant: reagentSchema.nullable(),
-  pH: finite,
-  buffer: reagentSchema,
-  detection: z.enum(DETECTIONS),
-  indicator: reagentSchema.nullable(),
-  masking: z.array(
-    z.strictObject({
-      agent: text,
-      masks: z.array(text),
-      via: z.enum(MASKING_VIAS),
-      molPerL: level,
-      basis: z.enum(["equilibrium", "empirical", "conversion"]),
-    }),
-  ),
-  auxiliary: z.array(addedSchema),
-  added: z.array(addedSchema),
-  preparation: z.array(text),
-  removed: z.array(text),
-  chelate: z.strictObject({ metal: text, ligand: text, molPerL: level }).nullable(),
-  excessTitrantMolPerL: level,
-  carried: z.strictObject({ metals: z.array(text), titrantMolPerL: level }).nullable(),
-});
-
 /** One titration of a method. */
 export const stageSchema = z.strictObject({
   determines: z.array(text),
@@ -105,7 +77,6 @@ export const stageSchema = z.strictObject({
     excessTitrantMolPerL: level,
     carried: z.strictObject({ metals: z.array(text), titrantMolPerL: level }).nullable(), // left by an earlier titration of the same solution
   }),
-  plan: planSchema,
   ionicStrength: z.strictObject({ molPerL: level.nullable(), outOfModelRange: z.boolean() }),
   endPoint: endPointSchema,
   conditional: z.array(z.strictObject({ metal: text, log10ConditionalK: finite })),

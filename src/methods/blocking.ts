@@ -1,0 +1,57 @@
+import type { ComponentId, IndicatorBlocker, IndicatorRecord, Knowledge } from "../constants/knowledge.ts";
+import type { StageModel, VesselState } from "./stage-model.ts";
+
+/** Where no level is stated a metal spoils the change from about a tenth of the dye's concentration (inference from read levels). */
+const UNSTATED_LEVEL_OF_DYE = 0.1;
+/** "At every level" still means a level that an analyst could notice: a hundredth of the dye. */
+const EVERY_LEVEL_OF_DYE = 0.01;
+
+/** The record that speaks for a metal and a dye: a read one before memory, then the lower level. */
+export function blockerOf(indicator: IndicatorRecord, ion: ComponentId): IndicatorBlocker | null {
+  const rows = indicator.blockers.filter((b) => b.ion === ion && b.kind === "blocks");
+  if (rows.length === 0) return null;
+  const read = rows.filter((b) => b.provenance.basis === "read");
+  const pool = read.length > 0 ? read : rows;
+  return [...pool].sort((a, b) => (a.fromMolPerL ?? 0) - (b.fromMolPerL ?? 0))[0]!;
+}
+
+/** Level of a metal, mol/L in the vessel and free of masks, from which the dye is spoilt; null when the dye minds nothing. */
+export function blockingLevel(indicator: IndicatorRecord, ion: ComponentId, dyeMolPerL: number): number | null {
+  const row = blockerOf(indicator, ion);
+  if (!row) return null;
+  if (row.fromMolPerL === null) return UNSTATED_LEVEL_OF_DYE * dyeMolPerL;
+  return Math.max(row.fromMolPerL, EVERY_LEVEL_OF_DYE * dyeMolPerL);
+}
+
+/**
+ * The metals that spoil the dye in this vessel before anything comes from the burette. In a back titration the titrant
+ * is there first, so only what it leaves unbound can block; a masked metal blocks only by what the mask leaves.
+ */
+export function blockersOf(model: StageModel, start: VesselState, knowledge: Knowledge): ComponentId[] {
+  const { indicator, plan } = model;
+  if (!indicator || !plan.indicator) return [];
+  const masks = new Set(
+    [...plan.masking.map((m) => m.agent), ...plan.auxiliary.map((a) => a.id)]
+      .map((agent) => knowledge.agents.get(agent)?.component)
+      .filter((c): c is ComponentId => c !== null && c !== undefined),
+  );
+  const published = new Set(
+    indicator.uses
+      .filter((u) => u.mode === "direct" && plan.pH >= u.pH[0] - 0.05 && plan.pH <= u.pH[1] + 0.05)
+      .flatMap((u) => u.ions),
+  );
+  return model.metals.filter((metal) => {
+    const level = blockingLevel(indicator, metal, plan.indicator!.molPerL);
+    if (level === null) return false;
+    // A dye that is in use for the very metal at this pH is not blocked by it (hot, or with a catalyst: its use says so).
+    if (plan.determines.includes(metal) && published.has(metal)) return false;
+    const unmasked = model.system.species.reduce((sum, species, row) => {
+      const n = species.components[metal] ?? 0;
+      if (n <= 0 || (species.components[plan.titrant.id] ?? 0) > 0) return sum;
+      return Object.keys(species.components).some((c) => masks.has(c))
+        ? sum
+        : sum + n * start.result.speciesMolPerL[row]!;
+    }, 0);
+    return unmasked > level;
+  });
+}

@@ -1,0 +1,52 @@
+import type { ComponentId, KineticClass, KineticRecord, Knowledge } from "../constants/knowledge.ts";
+
+/** How fast a metal meets a titrant, and what the slow ones need. */
+export interface MetalKinetics {
+  readonly class: KineticClass;
+  /** What brings the reaction to completion: nothing, standing, heat or boiling (with the titrant in excess). */
+  readonly needs: "none" | "wait" | "heat" | "boil";
+  readonly records: readonly KineticRecord[]; // those that decided
+}
+
+/**
+ * Water exchange limits complex formation (dissociative interchange): below 1e-2 /s a metal does not react in the time of a
+ * titration (Cr(III), Rh(III)), below 50 /s it needs minutes or heat (Al(III), 1.3 /s); Fe(III), 160 /s, still titrates.
+ */
+const INERT_BELOW_PER_S = 1e-2;
+const SLOW_BELOW_PER_S = 50;
+
+/** Kinetic class of a metal with a titrant, from the kinetic records. */
+export function metalKinetics(knowledge: Knowledge, ion: ComponentId, titrant: string): MetalKinetics {
+  const all = knowledge.kinetics.filter((k) => k.ion === ion && k.indicator === null);
+  const own = all.filter((k) => k.titrant === titrant);
+  const rate = all.find((k) => k.waterExchangePerS !== undefined);
+  const polymer = all.filter((k) => k.consequences.includes("depolymerise"));
+  const exchange = rate?.waterExchangePerS ?? Number.POSITIVE_INFINITY;
+  if (exchange >= SLOW_BELOW_PER_S && polymer.length === 0)
+    return { class: "fast", needs: "none", records: rate ? [rate] : [] };
+  // A record of this very titrant that asks only for time (Al with CDTA) needs no heat.
+  const time = own.filter((k) => k.consequences.includes("excess-and-wait"));
+  const hot = own.filter((k) => k.consequences.includes("boil") || k.consequences.includes("heat"));
+  if (time.length > 0 && hot.length === 0)
+    return { class: "slow", needs: "wait", records: [...time, ...(rate ? [rate] : [])] };
+  const kineticClass: KineticClass = exchange < INERT_BELOW_PER_S ? "inert" : "slow";
+  const boils = [...own, ...polymer].some((k) => k.consequences.includes("boil"));
+  return {
+    class: kineticClass,
+    needs: boils || kineticClass === "inert" ? "boil" : "heat",
+    records: [...(rate ? [rate] : []), ...hot, ...polymer],
+  };
+}
+
+/** Metals of the vessel that stay out of the titration because they do not react unless boiled with the titrant. */
+export function inertMetals(
+  knowledge: Knowledge,
+  metals: Iterable<ComponentId>,
+  titrant: string,
+  boiled: boolean,
+): Set<ComponentId> {
+  const out = new Set<ComponentId>();
+  if (boiled) return out;
+  for (const metal of metals) if (metalKinetics(knowledge, metal, titrant).class === "inert") out.add(metal);
+  return out;
+}

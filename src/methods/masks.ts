@@ -1,0 +1,191 @@
+import type { AgentRecord, ComponentId, Knowledge, MaskingRecord } from "../constants/knowledge.ts";
+import type { Shelf } from "./shelf.ts";
+import type { Threat } from "./threats.ts";
+import type { MaskingStep, StagePlan } from "./types.ts";
+
+/** One way of keeping one component out of a titration. */
+interface MaskOption {
+  readonly agent: AgentRecord;
+  readonly record: MaskingRecord;
+}
+
+const PH_SLACK = 0.3; // printed ranges are round figures
+const SETS_KEPT = 4;
+const COMBINATIONS_LIMIT = 400;
+
+/**
+ * Burden of an agent for choosing which sets are worth evaluating (the rules weigh the evaluated ones): hazard first,
+ * then one more bottle. Same order as the weights in rules/, which decide.
+ */
+const HAZARD_BURDEN: Readonly<Record<string, number>> = {
+  cyanide: 18,
+  mercury: 20,
+  sulfide: 10,
+  carcinogen: 6,
+  stench: 6,
+  toxic: 3,
+  fluoride: 2,
+  formaldehyde: 3,
+};
+
+function burdenOf(agent: AgentRecord, knowledge: Knowledge): number {
+  const tags = knowledge.reagents.get(agent.id)?.hazardTags ?? [];
+  return 3 + (agent.special ? 15 : 0) + Math.max(0, ...tags.map((t) => HAZARD_BURDEN[t] ?? 0));
+}
+
+const inside = (pH: number, range: readonly [number, number]): boolean =>
+  pH >= range[0] - PH_SLACK && pH <= range[1] + PH_SLACK;
+
+/** Rows of practice for an agent and an ion at this pH. */
+function rowsFor(knowledge: Knowledge, agent: string, ion: ComponentId, pH: number): MaskingRecord[] {
+  return knowledge.masking.filter((r) => r.agent === agent && r.ion === ion && inside(pH, r.pH));
+}
+
+/** Whether the model has constants for this pair: a soluble complex, or a solid where the mask precipitates. */
+export function pairHasConstants(
+  knowledge: Knowledge,
+  agent: AgentRecord,
+  ion: ComponentId,
+  via: MaskingRecord["via"],
+): boolean {
+  if (agent.id === "hydroxide")
+    return knowledge.solids.some((s) => (s.components[ion] ?? 0) > 0 && (s.components["H+"] ?? 0) < 0);
+  const ligand = agent.component;
+  if (ligand === null) return false;
+  const both = (components: Readonly<Record<ComponentId, number>>): boolean =>
+    (components[ion] ?? 0) > 0 && (components[ligand] ?? 0) > 0;
+  return via === "precipitation"
+    ? knowledge.solids.some((s) => both(s.components))
+    : knowledge.species.some((s) => both(s.components));
+}
+
+/** Agents that practice uses for this component at the pH of the plan and that leave analyte, chelate and back titrant alone. */
+function optionsFor(threat: Threat, plan: StagePlan, knowledge: Knowledge, shelf: Shelf): MaskOption[] {
+  const spared = [
+    ...plan.determines,
+    ...(plan.backTitrant ? [plan.backTitrant.id] : []),
+    ...(plan.chelate ? [plan.chelate.metal] : []),
+  ];
+  const out: MaskOption[] = [];
+  for (const agent of knowledge.agents.values()) {
+    // Hydroxide is what the pH itself does; its precipitates are in the equilibrium of the plan already.
+    if (agent.id !== "hydroxide" && !shelf(agent.id)) continue;
+    if (!inside(plan.pH, agent.pH)) continue;
+    const record = rowsFor(knowledge, agent.id, threat.component, plan.pH).find(
+      (r) => r.effect === "masks" || r.effect === "partial",
+    );
+    if (!record) continue;
+    const harms = spared.some((ion) =>
+      rowsFor(knowledge, agent.id, ion, plan.pH).some(
+        (r) => r.effect === "masks" || (r.effect === "partial" && !pairHasConstants(knowledge, agent, ion, r.via)),
+      ),
+    );
+    if (harms) continue;
+    out.push({ agent, record });
+  }
+  return out;
+}
+
+/** A set of masking steps, and which threats it leaves unanswered. */
+export interface MaskSet {
+  readonly steps: readonly MaskingStep[];
+  readonly unanswered: readonly Threat[];
+  readonly burden: number;
+}
+
+/**
+ * Sets of agents, alone and combined, that answer the threats as practice does, least burden first.
+ * Threats for which no agent serves are named as unanswered (they must be separated, or the method fails).
+ */
+export function maskSets(threats: readonly Threat[], plan: StagePlan, knowledge: Knowledge, shelf: Shelf): MaskSet[] {
+  if (threats.length === 0) return [{ steps: [], unanswered: [], burden: 0 }];
+  const options = threats.map((t) => optionsFor(t, plan, knowledge, shelf));
+  const answered = threats.map((_, i) => i).filter((i) => options[i]!.length > 0);
+  const unanswered = threats.filter((_, i) => options[i]!.length === 0);
+  if (answered.length === 0) return [{ steps: [], unanswered, burden: 0 }];
+  // Agents that answer several threats come first, so that the limited product still meets them.
+  const reach = new Map<string, number>();
+  for (const list of options) for (const o of list) reach.set(o.agent.id, (reach.get(o.agent.id) ?? 0) + 1);
+  const sorted = answered.map((i) =>
+    [...options[i]!].sort(
+      (a, b) =>
+        reach.get(b.agent.id)! - reach.get(a.agent.id)! || burdenOf(a.agent, knowledge) - burdenOf(b.agent, knowledge),
+    ),
+  );
+  let combinations: MaskOption[][] = [[]];
+  for (const list of sorted) {
+    const next: MaskOption[][] = [];
+    for (const head of combinations) for (const option of list) next.push([...head, option]);
+    combinations = next.sort((a, b) => setBurden(a, knowledge) - setBurden(b, knowledge)).slice(0, COMBINATIONS_LIMIT);
+  }
+  const seen = new Set<string>();
+  const sets: MaskSet[] = [];
+  for (const combination of combinations) {
+    const key = [...new Set(combination.map((o) => o.agent.id))].sort().join("+");
+    if (seen.has(key)) continue;
+    seen.add(key);
+    sets.push({
+      steps: stepsOf(
+        combination,
+        answered.map((i) => threats[i]!),
+        knowledge,
+      ),
+      unanswered,
+      burden: setBurden(combination, knowledge),
+    });
+    if (sets.length >= SETS_KEPT) break;
+  }
+  return sets;
+}
+
+function setBurden(combination: readonly MaskOption[], knowledge: Knowledge): number {
+  const agents = new Map(combination.map((o) => [o.agent.id, o.agent]));
+  let burden = 0;
+  for (const agent of agents.values()) burden += burdenOf(agent, knowledge);
+  for (const option of combination) if (option.record.effect === "partial") burden += 4;
+  return burden;
+}
+
+/** Ligands needed per metal ion when an agent binds it fully: enough for the highest usual coordination. */
+const LIGANDS_PER_METAL = 6;
+const EXCESS = 1.2;
+
+function stepsOf(combination: readonly MaskOption[], threats: readonly Threat[], knowledge: Knowledge): MaskingStep[] {
+  const byKey = new Map<
+    string,
+    { option: MaskOption; basis: MaskingStep["basis"]; masks: ComponentId[]; need: number }
+  >();
+  combination.forEach((option, i) => {
+    const threat = threats[i]!;
+    const via = option.record.via ?? "complexation";
+    const basis: MaskingStep["basis"] =
+      via === "reduction" || via === "oxidation" || threat.holdsAnalyte
+        ? "conversion"
+        : pairHasConstants(knowledge, option.agent, threat.component, option.record.via)
+          ? "equilibrium"
+          : "empirical";
+    const key = `${option.agent.id} ${via} ${basis}`;
+    const entry = byKey.get(key) ?? { option, basis, masks: [], need: 0 };
+    entry.masks.push(threat.component);
+    entry.need += threat.molPerL * (basis === "conversion" ? 1 : LIGANDS_PER_METAL) * EXCESS;
+    byKey.set(key, entry);
+  });
+  return [...byKey.values()].map(({ option, basis, masks, need }) => ({
+    agent: option.agent.id,
+    masks,
+    via: option.record.via ?? "complexation",
+    molPerL:
+      option.agent.id === "hydroxide"
+        ? 0
+        : benchAmount(Math.max(option.agent.usualMolPerL, Math.min(need, option.agent.usualMaxMolPerL))),
+    basis,
+  }));
+}
+
+/** Rounded up to what a bench uses: 1, 1.5, 2, 3, 5, 8 times a power of ten. */
+export function benchAmount(molPerL: number): number {
+  if (!(molPerL > 0)) return 0;
+  const decade = 10 ** Math.floor(Math.log10(molPerL) + 1e-9);
+  const step = [1, 1.5, 2, 3, 5, 8, 10].find((s) => s * decade >= molPerL * (1 - 1e-9)) ?? 10;
+  return Number((step * decade).toPrecision(3));
+}

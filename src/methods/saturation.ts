@@ -1,0 +1,44 @@
+import { prepareSystem } from "../chemistry/prepare-system.ts";
+import { solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
+import type { ComponentId, Knowledge, SolidPace } from "../constants/knowledge.ts";
+import { stageSolution } from "./solution.ts";
+import type { StagePlan, Task } from "./types.ts";
+
+/** A solid that the solution would deposit at the pH of the titration before the titrant is in. */
+export interface Supersaturation {
+  readonly solid: string;
+  readonly pace: SolidPace;
+  readonly saturationIndex: number;
+  readonly components: readonly ComponentId[];
+}
+
+/** Saturation of every solid of the vessel before titration, nothing allowed to form; those above saturation, worst first. */
+export function supersaturations(
+  task: Task,
+  plan: StagePlan,
+  knowledge: Knowledge,
+  ionicStrengthMolPerL: number,
+): Supersaturation[] {
+  const { totals } = stageSolution(task, plan, knowledge);
+  const components = [...totals.keys()].filter((c) => {
+    const kind = knowledge.components.get(c)?.kind;
+    return kind === "metal" || kind === "ligand" || kind === "dye";
+  });
+  const system = prepareSystem(knowledge, components, { ionicStrengthMolPerL, temperatureC: task.temperatureC });
+  if (system.solids.length === 0) return [];
+  const t = Float64Array.from(system.components, (c) => totals.get(c) ?? 0);
+  const fixedLnFree = new Float64Array(t.length).fill(Number.NaN);
+  fixedLnFree[0] = Math.LN10 * (-plan.pH - system.log10GammaH);
+  const result = solveEquilibrium(system.problem, t, { fixedLnFree, solids: "saturation-only" });
+  if (result.status !== "converged") return [];
+  const paces = new Map(knowledge.solids.map((s) => [s.id, s.pace]));
+  return system.solids
+    .map((solid, i) => ({
+      solid: solid.id,
+      pace: paces.get(solid.id) ?? "no",
+      saturationIndex: result.saturationIndex[i]!,
+      components: Object.keys(solid.components).filter((c) => c !== "H+"),
+    }))
+    .filter((s) => s.saturationIndex > 0)
+    .sort((a, b) => b.saturationIndex - a.saturationIndex);
+}

@@ -1,0 +1,85 @@
+import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
+import { blockingLevel } from "./blocking.ts";
+import type { StageEvaluation } from "./evaluate-stage.ts";
+import { vesselSample } from "./solution.ts";
+import type { Task } from "./types.ts";
+
+/** A component of the sample that the titration cannot leave alone. */
+export interface Threat {
+  readonly component: ComponentId;
+  readonly titrates: boolean;
+  readonly blocks: boolean;
+  /** A ligand of the sample that takes the analyte away from the titrant. */
+  readonly holdsAnalyte: boolean;
+  readonly biasFraction: number;
+  readonly molPerL: number; // in the vessel
+}
+
+/** A bias smaller than this part of the requirement is left alone. */
+const IGNORED_PART_OF_REQUIREMENT = 0.12;
+/** log alpha of the analyte from one ligand of the sample beyond which a titration suffers noticeably. */
+const HELD_LOG10_ALPHA = 3;
+
+/** What must be masked, removed or freed before this titration can be trusted, judged from its evaluation as it stands. */
+export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): Threat[] {
+  const { model } = evaluation;
+  const { plan } = model;
+  const allowed = (IGNORED_PART_OF_REQUIREMENT * task.requirementPercent) / 100;
+  const equivalence = evaluation.status === "failed" ? model.at(Math.max(evaluation.equivalenceML, 1e-6) / 1000) : null;
+  const threats: Threat[] = [];
+  const determined = new Set(plan.determines);
+  const present = evaluation.presentMol / model.volumeL;
+  for (const { component, inVesselMolPerL } of vesselSample(task)) {
+    if (determined.has(component) || inVesselMolPerL <= 0) continue;
+    if (!model.metals.includes(component)) {
+      const held = knowledge.components.get(component)?.kind === "ligand" && holds(evaluation, component, knowledge);
+      if (held)
+        threats.push({
+          component,
+          titrates: false,
+          blocks: false,
+          holdsAnalyte: true,
+          biasFraction: 0,
+          molPerL: inVesselMolPerL,
+        });
+      continue;
+    }
+    const share = equivalence
+      ? equivalence.boundToTitrant(component) / Math.max(equivalence.total(component), Number.MIN_VALUE)
+      : (evaluation.titrated.get(component) ?? 0);
+    const biasFraction = (share * inVesselMolPerL) / present;
+    const titrates = biasFraction > allowed;
+    const blocks =
+      evaluation.blockedBy.includes(component) ||
+      (!plan.backTitrant && model.indicator !== null && plan.indicator !== null && heldDye(evaluation, component));
+    if (titrates || blocks)
+      threats.push({ component, titrates, blocks, holdsAnalyte: false, biasFraction, molPerL: inVesselMolPerL });
+  }
+  return threats;
+}
+
+/** Whether the equilibrium alone lets this metal keep a tenth of the dye 5 % past equivalence. */
+function heldDye(evaluation: StageEvaluation, metal: ComponentId): boolean {
+  if (evaluation.status !== "failed" || evaluation.why !== "no-end-point") return false;
+  const state = evaluation.model.at((1.05 * evaluation.equivalenceML) / 1000);
+  const ratio = state.dyeRatioOf(metal);
+  return ratio / (1 + ratio) >= 0.1;
+}
+
+function holds(evaluation: StageEvaluation, ligand: ComponentId, knowledge: Knowledge): boolean {
+  const { model } = evaluation;
+  const metal = model.plan.determines[0];
+  if (metal === undefined || !knowledge.components.has(ligand)) return false;
+  const start = model.at(0);
+  const held = model.system.species.reduce((sum, s, row) => {
+    const takes = (s.components[metal] ?? 0) > 0 && (s.components[ligand] ?? 0) > 0;
+    return takes ? sum + start.result.speciesMolPerL[row]! : sum;
+  }, 0);
+  return Math.log10(1 + held / start.free(metal)) > HELD_LOG10_ALPHA;
+}
+
+/** The level of a metal at which the dye of this plan is spoilt, mol/L in the vessel; null when it never is. */
+export const spoilingLevel = (evaluation: StageEvaluation, metal: ComponentId): number | null =>
+  evaluation.model.indicator && evaluation.model.plan.indicator
+    ? blockingLevel(evaluation.model.indicator, metal, evaluation.model.plan.indicator.molPerL)
+    : null;

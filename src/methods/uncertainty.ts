@@ -1,0 +1,74 @@
+import type { GlasswareRecord, Knowledge } from "../constants/knowledge.ts";
+import type { StageEvaluation } from "./evaluate-stage.ts";
+import type { Task } from "./types.ts";
+
+/** One term of the budget: standard uncertainty relative to the result, dimensionless. */
+export interface BudgetTerm {
+  readonly source: string;
+  readonly relative: number;
+}
+
+export interface Budget {
+  readonly terms: readonly BudgetTerm[]; // largest first
+  readonly combined: number; // u_c, relative
+  readonly expanded: number; // 2 u_c + |bias|, relative: an uncorrected bias is added, never hidden inside u_c
+}
+
+/** Limits are read as triangular distributions: class A ware clusters about its nominal volume (JCGM 100, 4.3.9). */
+const TRIANGULAR = Math.sqrt(6);
+const RECTANGULAR = Math.sqrt(3);
+/** Reading of a meniscus on a 0.05 to 0.1 mL scale, standard uncertainty, mL (common practice; 0.005 to 0.02). */
+const READING_ML = 0.01;
+/** Room temperature against 20 C: within 3 K, water expands 2.1e-4 per K, glass 1e-5 (common practice, as QUAM A2 treats it). */
+const TEMPERATURE_RELATIVE = (3 * 2.0e-4) / RECTANGULAR;
+/** Titrant strength: purity of the standard and its own titration in triplicate, standard uncertainty, relative. */
+const TITRANT_STRENGTH_RELATIVE = 1.0e-3;
+/** Smallest end-point uncertainty by eye: half a drop of 0.03 mL, rectangular. */
+const DROP_ML = 0.03;
+/** Relative standard uncertainty of an excess pipetted by a class A pipette of 25 mL (0.03 mL). */
+const PIPETTE_FALLBACK_RELATIVE = 1e-3;
+
+function toleranceOf(knowledge: Knowledge, kind: GlasswareRecord["kind"], nominalML: number): number | null {
+  const ware = knowledge.glassware.filter((g) => g.kind === kind);
+  const fitting = ware
+    .filter((g) => g.nominalML >= nominalML)
+    .sort((a, b) => a.nominalML - b.nominalML || b.toleranceML - a.toleranceML);
+  return fitting[0]?.toleranceML ?? null;
+}
+
+/**
+ * First budget of one titration by the GUM (JCGM 100): portion, burette, end point, titrant strength, temperature, blank,
+ * and for back titrations the excess; uncorrected bias added to the expanded value.
+ */
+export function stageBudget(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): Budget {
+  const { plan } = evaluation.model;
+  const back = plan.backTitrant !== null;
+  // In a back titration the result is a difference: the same millilitre weighs more against it.
+  const resultML = back ? (evaluation.presentMol / plan.backTitrant.molPerL) * 1000 : evaluation.endPointML;
+  const fills = Math.max(1, Math.ceil(evaluation.endPointML / task.laboratory.buretteML));
+  const buretteTolerance = toleranceOf(knowledge, "burette", task.laboratory.buretteML) ?? 0.05;
+  const portionTolerance = toleranceOf(knowledge, "pipette", task.portion.volumeML);
+  const terms: BudgetTerm[] = [];
+  const add = (source: string, relative: number): void => {
+    if (relative > 0) terms.push({ source, relative });
+  };
+  add(
+    "portion",
+    portionTolerance === null ? PIPETTE_FALLBACK_RELATIVE : portionTolerance / TRIANGULAR / task.portion.volumeML,
+  );
+  add("burette", (Math.sqrt(fills) * Math.hypot(buretteTolerance / TRIANGULAR, Math.SQRT2 * READING_ML)) / resultML);
+  // Half the observer's band as a rectangular limit, and never better than half a drop.
+  const bandML = Math.abs(evaluation.bandML[1] - evaluation.bandML[0]) / 2;
+  add("end point", Math.hypot(bandML / RECTANGULAR, DROP_ML / 2 / RECTANGULAR) / resultML);
+  add("titrant strength", TITRANT_STRENGTH_RELATIVE);
+  add("temperature", TEMPERATURE_RELATIVE);
+  add("blank", DROP_ML / 2 / RECTANGULAR / resultML);
+  if (back) {
+    const excess = (plan.excessTitrantMolPerL * evaluation.model.volumeL) / evaluation.presentMol;
+    add("excess titrant", excess * 5e-4);
+    add("back titrant strength", Math.max(0, excess - 1) * TITRANT_STRENGTH_RELATIVE);
+  }
+  terms.sort((a, b) => b.relative - a.relative);
+  const combined = Math.sqrt(terms.reduce((s, t) => s + t.relative ** 2, 0));
+  return { terms, combined, expanded: 2 * combined + Math.abs(evaluation.biasFraction) };
+}

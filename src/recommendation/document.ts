@@ -1,0 +1,246 @@
+import type { Knowledge } from "../constants/knowledge.ts";
+import type { DevelopedStage } from "../methods/develop.ts";
+import type { ToleranceLimit } from "../methods/tolerance.ts";
+import { vesselSample } from "../methods/solution.ts";
+import type { Task } from "../methods/types.ts";
+import type { WorkingRange } from "../methods/working-range.ts";
+import type { Because, ConstantUsed, RecommendedMethod, StageDocument } from "./contract.ts";
+import type { JudgedMethod, Verdict } from "./judge.ts";
+import { cautionTexts } from "./reagents.ts";
+import { shownIon } from "./spelling.ts";
+import { summaryOf } from "./summary.ts";
+
+type Preparation = StageDocument["preparation"][number];
+
+const signif = (value: number, digits = 6): number => (Number.isFinite(value) ? Number(value.toPrecision(digits)) : 0);
+
+/** A rule's word as the contract writes it. */
+export function becauseOf({ finding, stage }: Verdict): Because {
+  return {
+    rule: finding.rule,
+    effect: finding.effect,
+    statement: finding.statement,
+    facts: Object.fromEntries(
+      Object.entries(finding.facts).map(([k, v]) => [k, Array.isArray(v) ? [...v] : v]),
+    ) as Because["facts"],
+    source: finding.source,
+    basis: finding.basis,
+    rationale: finding.rationale,
+    stage,
+  };
+}
+
+/** Colours of a dye at a pH as [before, after] the end point. */
+export function colourChangeOf(stage: DevelopedStage): readonly [string, string] {
+  const indicator = stage.evaluation.model.indicator;
+  if (!indicator) return ["not stated", "not stated"];
+  const { pH } = stage.plan;
+  const distance = (range: readonly [number, number]): number =>
+    pH < range[0] ? range[0] - pH : pH > range[1] ? pH - range[1] : 0;
+  const nearest = [...indicator.colours].sort((a, b) => distance(a.pH) - distance(b.pH))[0];
+  if (!nearest) return ["not stated", "not stated"];
+  return stage.plan.backTitrant ? [nearest.free, nearest.bound] : [nearest.bound, nearest.free];
+}
+
+function stageDocument(
+  task: Task,
+  stage: DevelopedStage,
+  range: WorkingRange | null,
+  method: JudgedMethod,
+  knowledge: Knowledge,
+): StageDocument {
+  const { plan, evaluation } = stage;
+  const head = method.method.stages[0]!.plan;
+  const ion = (id: string): string => shownIon(task, id, knowledge);
+  const added = [
+    ...plan.added.map((a) => ({ ...a })),
+    ...(plan.chelate
+      ? [
+          {
+            id: `${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}`,
+            molPerL: plan.chelate.molPerL,
+            purpose: "lends the indicator its metal",
+          },
+        ]
+      : []),
+    ...(plan.excessTitrantMolPerL > 0
+      ? [{ id: plan.titrant.id, molPerL: signif(plan.excessTitrantMolPerL, 4), purpose: "titrant in excess" }]
+      : []),
+  ];
+  const sameTitrant = plan.titrant.id === head.titrant.id && plan.titrant.molPerL === head.titrant.molPerL;
+  const sameBack = plan.backTitrant?.id === head.backTitrant?.id;
+  const change = colourChangeOf(stage);
+  const converged = evaluation.status !== "failed";
+  return {
+    determines: plan.determines.map(ion),
+    mode: plan.mode,
+    titrant: sameTitrant ? null : { ...plan.titrant },
+    backTitrant: sameBack ? null : plan.backTitrant && { ...plan.backTitrant },
+    added,
+    titreML: converged ? signif(evaluation.endPointML, 5) : null,
+    pH: { target: plan.pH, low: range?.low ?? plan.pH, high: range?.high ?? plan.pH },
+    buffer: { ...plan.buffer },
+    detection: plan.detection,
+    indicator:
+      plan.indicator && evaluation.model.indicator
+        ? {
+            id: plan.indicator.id,
+            class: evaluation.model.indicator.class,
+            colourChange: [change[0], change[1]],
+            molPerL: plan.indicator.molPerL,
+          }
+        : null,
+    masking: plan.masking.map((m) => ({
+      agent: m.agent,
+      masks: m.masks.map(ion),
+      via: m.via,
+      molPerL: m.molPerL,
+      basis: m.basis,
+    })),
+    auxiliary: plan.auxiliary.map((a) => ({ ...a })),
+    preparation: [...plan.preparation] as Preparation[],
+    vessel: {
+      removed: [...plan.removed],
+      chelate: plan.chelate && { ...plan.chelate },
+      excessTitrantMolPerL: plan.excessTitrantMolPerL,
+      carried: plan.carried && { metals: [...plan.carried.metals], titrantMolPerL: plan.carried.titrantMolPerL },
+    },
+    ionicStrength: {
+      molPerL: signif(evaluation.model.ionicStrengthMolPerL, 4),
+      outOfModelRange: evaluation.model.system.outOfModelRange,
+    },
+    endPoint: {
+      basis: evaluation.basis,
+      pM: evaluation.pM === null ? null : signif(evaluation.pM, 5),
+      pMEquivalence: evaluation.pMEquivalence === null ? null : signif(evaluation.pMEquivalence, 5),
+      bandPM: evaluation.bandPM,
+      sharpnessPercent: converged ? signif(100 * evaluation.sharpnessFraction, 4) : null,
+      indicatorMetal: evaluation.indicatorMetal === null ? null : ion(evaluation.indicatorMetal),
+    },
+    conditional: [...evaluation.log10ConditionalK].map(([metal, k]) => ({
+      metal: ion(metal),
+      log10ConditionalK: signif(k, 4),
+    })),
+    interferents: vesselSample(task)
+      .filter((c) => !plan.determines.includes(c.component) && knowledge.components.get(c.component)?.kind === "metal")
+      .map((c) => {
+        const mask = plan.masking.find((m) => m.masks.includes(c.component));
+        const share = evaluation.titrated.get(c.component);
+        return {
+          component: ion(c.component),
+          titratedFraction: share === undefined ? null : signif(share, 4),
+          biasPercent: share === undefined ? null : signif(100 * (evaluation.biasOf.get(c.component) ?? 0), 4),
+          maskedBy: mask?.agent ?? (plan.removed.includes(c.component) ? "separate" : null),
+        };
+      }),
+  };
+}
+
+/** One judged method as the contract writes it. */
+export function methodDocument(
+  task: Task,
+  judged: JudgedMethod,
+  rankNumber: number,
+  tolerance: readonly ToleranceLimit[],
+  knowledge: Knowledge,
+): RecommendedMethod {
+  const { method } = judged;
+  const head = method.stages[0]!;
+  const ion = (id: string): string => shownIon(task, id, knowledge);
+  const worst = [...method.results].sort((a, b) => b.budget.expanded - a.budget.expanded)[0]!;
+  const ledger = method.stages.flatMap((s, i) =>
+    s.evaluation.ledger.map((line) => ({
+      source: method.stages.length > 1 ? `${ion(line.source)} (titration ${i + 1})` : ion(line.source),
+      percent: signif(100 * line.fraction, 4),
+    })),
+  );
+  const meets = judged.meets;
+  return {
+    id: method.id,
+    rank: rankNumber,
+    summary: summaryOf(task, judged, knowledge),
+    mode: method.mode,
+    titrant: { ...head.plan.titrant },
+    backTitrant: method.stages.find((s) => s.plan.backTitrant)?.plan.backTitrant ?? null,
+    stages: method.stages.map((stage, i) => stageDocument(task, stage, judged.ranges[i] ?? null, judged, knowledge)),
+    predicted: {
+      biasPercent: signif(100 * worst.biasFraction, 4),
+      relativeExpandedUncertaintyPercent: signif(100 * worst.budget.expanded, 4),
+      biasBySource: ledger.sort((a, b) => Math.abs(b.percent) - Math.abs(a.percent)),
+      titreML: signif(head.evaluation.endPointML, 5),
+      perAnalyte: method.results.map((r) => ({
+        determines: r.determines.map(ion),
+        biasPercent: signif(100 * r.biasFraction, 4),
+        relativeExpandedUncertaintyPercent: signif(100 * r.budget.expanded, 4),
+      })),
+    },
+    meetsRequirement: meets,
+    verdict: !meets ? "not-fit" : judged.reservations.length > 0 ? "fit-with-reservations" : "fit",
+    reservations: [...judged.reservations],
+    tolerance: tolerance.map((t) => ({
+      component: ion(t.component),
+      limitMolPerL: signif(t.limitMolPerL, 3),
+      presentMolPerL: signif(t.presentMolPerL, 6),
+      withMasking: t.withMasking,
+    })),
+    uncertaintyBudget: worst.budget.terms.map((t) => ({ source: t.source, percent: signif(100 * t.relative, 3) })),
+    workingConditions: {
+      ionicStrengthMolPerL: signif(head.evaluation.model.ionicStrengthMolPerL, 4),
+      temperatureC: task.temperatureC,
+      outOfModelRange: method.stages.some((s) => s.evaluation.model.system.outOfModelRange),
+    },
+    scores: judged.verdicts
+      .filter(({ finding }) => finding.weight !== 0)
+      .map(({ finding }) => ({ rule: finding.rule, weight: finding.weight, statement: finding.statement })),
+    because: judged.verdicts.map(becauseOf),
+    cautions: cautionTexts(
+      method.stages.map((s) => s.plan),
+      sampleReagents(task, knowledge),
+      knowledge,
+    ),
+  };
+}
+
+/** Reagent ids under which the hazards of the sample's own components are kept (a cyanide bath, a mercury solution). */
+function sampleReagents(task: Task, knowledge: Knowledge): string[] {
+  return [...task.analytes, ...task.matrix].map((c) => c.component).filter((id) => knowledge.reagents.has(id));
+}
+
+/** Part of a component from which a species counts as taking part. */
+const TAKES_PART = 1e-4;
+
+/** The constants that decide the evaluation of these titrations: species that hold a noticeable part of some component. */
+export function constantsUsed(stages: readonly DevelopedStage[], knowledge: Knowledge): ConstantUsed[] {
+  const out = new Map<string, ConstantUsed>();
+  for (const { evaluation } of stages) {
+    const { model } = evaluation;
+    const states = [model.at(0), model.at(evaluation.endPointML / 1000)].filter((s) => s.ok);
+    model.system.species.forEach((species, row) => {
+      if (species.evidence.length === 0 || out.has(species.id)) return;
+      const matters = states.some((state) =>
+        Object.entries(species.components).some(
+          ([c, n]) => c !== "H+" && n > 0 && n * state.result.speciesMolPerL[row]! > TAKES_PART * state.total(c),
+        ),
+      );
+      if (!matters) return;
+      out.set(species.id, {
+        species: species.id,
+        log10Beta: signif(species.log10Beta, 5),
+        uncertainty: signif(species.uncertainty, 2),
+        evidence: species.evidence.map((use) => ({
+          reaction: use.reaction,
+          text: knowledge.reactions.get(use.reaction)?.text ?? use.reaction,
+          record: use.record.provenance.record ?? null,
+          source: use.record.provenance.source,
+          basis: use.record.provenance.basis,
+          log10KFound: use.record.log10K,
+          ionicStrengthMolPerL: use.record.ionicStrengthMolPerL,
+          temperatureC: use.record.temperatureC,
+          log10KUsed: signif(use.log10KUsed, 5),
+          passedOver: use.passedOver,
+        })),
+      });
+    });
+  }
+  return [...out.values()];
+}

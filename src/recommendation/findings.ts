@@ -1,0 +1,160 @@
+import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
+import type { DevelopedStage } from "../methods/develop.ts";
+import type { EvaluatedMethod } from "../methods/methods.ts";
+import { metalKinetics } from "../methods/kinetics.ts";
+import { supersaturations } from "../methods/saturation.ts";
+import { vesselSample } from "../methods/solution.ts";
+import type { Task } from "../methods/types.ts";
+import type { Finding } from "./contract.ts";
+import { OXIDANTS } from "./facts.ts";
+import { shownIon } from "./spelling.ts";
+
+/** A bias below this part of the requirement is not worth a finding. */
+const REPORTED_PART_OF_REQUIREMENT = 0.1;
+/** log10 alpha of the analyte from one ligand of the sample, from which its binding is reported. */
+const REPORTED_LOG10_ALPHA = 0.3;
+
+const percentText = (fraction: number): string => {
+  const p = 100 * fraction;
+  return `${Math.abs(p) >= 10 ? p.toFixed(0) : Math.abs(p) >= 0.1 ? p.toPrecision(2) : p.toFixed(2)} %`;
+};
+
+/**
+ * What each component would do if nothing were done: judged under the simplest direct titration of the analyte and under the
+ * first-ranked method without its masking; one row for each thing it does.
+ * @param simplest direct titrations of the analyte with its usual dyes, best first; may be empty
+ */
+export function findingsOf(
+  task: Task,
+  first: EvaluatedMethod | null,
+  simplest: readonly DevelopedStage[],
+  knowledge: Knowledge,
+): Finding[] {
+  const rows = new Map<string, Finding>();
+  const put = (component: ComponentId, as: Finding["as"], statement: string, facts: Finding["facts"]): void => {
+    const shown = shownIon(task, component, knowledge);
+    const key = `${shown} ${as}`;
+    if (!rows.has(key)) rows.set(key, { component: shown, as, statement: `${shown} ${statement}`, facts });
+  };
+  const stages = [...(first?.stages ?? []), ...simplest];
+  for (const stage of stages) {
+    titration(task, stage, put, knowledge);
+    deposits(task, stage, put, knowledge);
+  }
+  for (const analyte of task.analytes) slowness(analyte.component, first, put, knowledge);
+  for (const row of task.matrix)
+    if (OXIDANTS.has(row.component))
+      put(row.component, "oxidises-indicator", "oxidises metallochromic dyes: reduce it before the dye goes in", {});
+  return [...rows.values()];
+}
+
+type Put = (component: ComponentId, as: Finding["as"], statement: string, facts: Finding["facts"]) => void;
+
+function titration(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowledge): void {
+  const { bare } = stage;
+  const { plan } = bare.model;
+  const allowed = (REPORTED_PART_OF_REQUIREMENT * task.requirementPercent) / 100;
+  const dye = plan.indicator ? (knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id) : null;
+  const present = bare.presentMol / bare.model.volumeL;
+  const atEquivalence = bare.status === "failed" ? bare.model.at(bare.equivalenceML / 1000) : null;
+  const where = `at pH ${plan.pH} with ${plan.titrant.id}${dye ? ` and ${dye}` : ""}`;
+  for (const { component, inVesselMolPerL } of vesselSample(task)) {
+    const isAnalyte = plan.determines.includes(component);
+    if (bare.model.metals.includes(component) && !isAnalyte) {
+      const share = atEquivalence
+        ? atEquivalence.boundToTitrant(component) / Math.max(atEquivalence.total(component), Number.MIN_VALUE)
+        : (bare.titrated.get(component) ?? 0);
+      const bias = (share * inVesselMolPerL) / present;
+      if (Math.abs(bias) > allowed)
+        put(
+          component,
+          "titrates-with-analyte",
+          `is titrated to ${percentText(share)} ${where}: ${percentText(bias)} of the result`,
+          {
+            titratedFraction: share,
+            biasPercent: 100 * bias,
+            pH: plan.pH,
+          },
+        );
+    }
+    const blocks =
+      bare.blockedBy.includes(component) || stage.threats.some((t) => t.component === component && t.blocks);
+    if (blocks && dye && !isAnalyte) {
+      const row = knowledge.indicators.get(plan.indicator!.id)?.blockers.find((b) => b.ion === component);
+      put(
+        component,
+        "blocks-indicator",
+        `spoils ${dye} at pH ${plan.pH}: ${row?.detail ?? "the dye stays bound past equivalence"}`,
+        {
+          presentMolPerL: inVesselMolPerL,
+          pH: plan.pH,
+          indicator: plan.indicator!.id,
+        },
+      );
+    }
+  }
+  bindings(task, stage, put, knowledge);
+}
+
+/** Ligands of the sample that hold the analyte before the titrant comes. */
+function bindings(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowledge): void {
+  const { model } = stage.bare;
+  const metal = model.plan.determines[0];
+  if (metal === undefined) return;
+  const start = model.at(0);
+  if (!start.ok) return;
+  for (const { component } of task.matrix) {
+    if (knowledge.components.get(component)?.kind !== "ligand") continue;
+    const held = model.system.species.reduce((sum, s, row) => {
+      const takes = (s.components[metal] ?? 0) > 0 && (s.components[component] ?? 0) > 0;
+      return takes ? sum + start.result.speciesMolPerL[row]! : sum;
+    }, 0);
+    const log10Alpha = Math.log10(1 + held / start.free(metal));
+    if (log10Alpha >= REPORTED_LOG10_ALPHA)
+      put(
+        component,
+        "complexes-analyte",
+        `binds ${metal}: log alpha ${log10Alpha.toFixed(1)} at pH ${model.plan.pH} before the titrant`,
+        {
+          log10Alpha,
+          pH: model.plan.pH,
+        },
+      );
+  }
+}
+
+/** Solids of the mixture: the row goes to the partner from the matrix. */
+function deposits(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowledge): void {
+  const { plan } = stage.bare.model;
+  for (const solid of supersaturations(task, plan, knowledge, stage.bare.model.ionicStrengthMolPerL)) {
+    if (solid.pace === "no") continue;
+    const fromSample = vesselSample(task)
+      .map((c) => c.component)
+      .filter((c) => solid.components.includes(c));
+    // Solids of reagents with each other are the plan's business, not the sample's.
+    if (fromSample.length === 0) continue;
+    const partners = fromSample.filter((c) => !plan.determines.includes(c));
+    for (const component of partners.length > 0 ? partners : fromSample)
+      put(
+        component,
+        "precipitates",
+        `can deposit ${solid.solid} at pH ${plan.pH}: supersaturated by ${solid.saturationIndex.toFixed(1)} in log10 (${PACE_WORDS[solid.pace]})`,
+        { saturationIndex: solid.saturationIndex, pH: plan.pH, solid: solid.solid },
+      );
+  }
+}
+
+const PACE_WORDS = { fast: "at once", minutes: "within minutes", slow: "slowly", no: "not in this time" } as const;
+
+function slowness(ion: ComponentId, first: EvaluatedMethod | null, put: Put, knowledge: Knowledge): void {
+  const titrant = first?.stages.find((s) => s.plan.determines.includes(ion))?.plan.titrant.id ?? "EDTA";
+  const kinetics = [metalKinetics(knowledge, ion, "EDTA"), metalKinetics(knowledge, ion, titrant)].find(
+    (k) => k.class !== "fast",
+  );
+  if (!kinetics) return;
+  const record = kinetics.records[0];
+  put(ion, "slow", `reacts slowly with the titrant: ${record?.statement ?? kinetics.class}`, {
+    kinetics: kinetics.class,
+    ...(record?.waterExchangePerS === undefined ? {} : { waterExchangePerS: record.waterExchangePerS }),
+  });
+}

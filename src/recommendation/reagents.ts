@@ -1,0 +1,53 @@
+import { cautionsFor, type Knowledge } from "../constants/index.ts";
+import type { StagePlan } from "../methods/types.ts";
+
+/** Every reagent id that a titration uses, once each. */
+export function reagentsOf(plan: StagePlan): string[] {
+  return [
+    ...new Set([
+      plan.titrant.id,
+      ...(plan.backTitrant ? [plan.backTitrant.id] : []),
+      ...(plan.indicator ? [plan.indicator.id] : []),
+      plan.buffer.id,
+      ...plan.masking.map((m) => m.agent).filter((id) => id !== "hydroxide"),
+      ...plan.auxiliary.map((a) => a.id),
+      ...plan.added.map((a) => a.id),
+      ...(plan.chelate ? [plan.chelate.metal] : []),
+    ]),
+  ];
+}
+
+/** Whether any step of the titration is hot. */
+export const isHot = (plan: StagePlan): boolean =>
+  plan.preparation.some((p) => p === "warm" || p === "heat" || p === "boil");
+
+/** Reagents that come with the sample itself count for cautions too: a cyanide bath is a cyanide hazard whatever is added. */
+function hazardousIds(plan: StagePlan, sampleIds: readonly string[]): string[] {
+  return [...reagentsOf(plan), ...sampleIds];
+}
+
+/** Hazard tags that apply to these titrations under their conditions. */
+export function hazardTagsOf(plans: readonly StagePlan[], knowledge: Knowledge): string[] {
+  return [
+    ...new Set(
+      plans.flatMap((plan) =>
+        cautionsFor(reagentsOf(plan), { pH: plan.pH, hot: isHot(plan) }, knowledge).map((c) => c.tag),
+      ),
+    ),
+  ];
+}
+
+/** Caution sentences for these titrations, each once. */
+export function cautionTexts(
+  plans: readonly StagePlan[],
+  sampleIds: readonly string[],
+  knowledge: Knowledge,
+): string[] {
+  return [
+    ...new Set(
+      plans.flatMap((plan) =>
+        cautionsFor(hazardousIds(plan, sampleIds), { pH: plan.pH, hot: isHot(plan) }, knowledge).map((c) => c.text),
+      ),
+    ),
+  ];
+}
