@@ -9,6 +9,8 @@ export interface ExplicitCurve {
   point(lnFreeTitrant: number): CurvePoint;
   /** The point at a volume (mL, 0 or more), found by bracketing on the monotone volume. */
   at(volumeML: number): CurvePoint;
+  /** The point at which what is followed has this pM, found by bracketing; null where no volume of this titrant reaches it. */
+  atPM(pM: number): CurvePoint | null;
   /** Points at `n` values of u evenly spaced from `from` to `to` (ln mol/L): no point needs iteration. */
   sweep(from: number, to: number, n: number): CurvePoint[];
 }
@@ -57,10 +59,23 @@ export function explicitCurve(titration: Titration): ExplicitCurve {
     const u = invert(volumeML, wantedML);
     return pointAt(titration, columns, rows, u, wantedML);
   };
+  const atPM = (pM: number): CurvePoint | null => {
+    // Following a component of the sample its pM rises with the free titrant; following the titrant it falls.
+    const sign = columns.follow === columns.titrant ? -1 : 1;
+    const u = invert((lnFree) => {
+      const volume = volumeML(lnFree);
+      return volume < 0 || volume === Number.POSITIVE_INFINITY
+        ? volume
+        : sign * (pointAt(titration, columns, rows, lnFree, volume).pM - pM);
+    }, 0);
+    const found = point(u);
+    return found.volumeML >= 0 && Number.isFinite(found.volumeML) && Math.abs(found.pM - pM) < 1e-6 ? found : null;
+  };
   return {
     volumeML,
     point,
     at,
+    atPM,
     sweep: (from, to, n) => Array.from({ length: n }, (_, i) => point(from + ((to - from) * i) / Math.max(n - 1, 1))),
   };
 }

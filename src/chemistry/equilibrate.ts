@@ -40,8 +40,8 @@ const IONIC_STRENGTH_TOLERANCE = 1e-4;
 const IONIC_STRENGTH_ITERATIONS = 40;
 
 /**
- * Brings a solution of fixed pH to equilibrium, the ionic strength computed from its own composition ("auto", by damped fixed-point
- * iteration to 1e-4) or given (mol/L). Charge that the totals leave over is balanced by singly charged inert ions.
+ * Brings a solution of fixed pH to equilibrium, the ionic strength computed from its own composition ("auto", by secant steps
+ * to 1e-4) or given (mol/L). Charge that the totals leave over is balanced by singly charged inert ions.
  * A solve that does not converge, or an ionic strength that does not settle, is a status. Throws AppError "unknown-component" for
  * a component or inert ion that cannot be read, "bad-amount" for a negative or non-finite amount.
  */
@@ -58,15 +58,13 @@ export function equilibrate(knowledge: Knowledge, request: EquilibrateRequest): 
   let ionicStrength =
     request.ionicStrength === "auto" ? firstGuess(knowledge, ids, amounts, inert) : request.ionicStrength;
   let start = request.startLnFree;
-  let damping = 1;
-  let lastChange = Number.POSITIVE_INFINITY;
+  const search: IonicStrengthSearch = { low: 0, high: Number.POSITIVE_INFINITY, last: null };
   for (let iteration = 1; ; iteration++) {
     const solved = solveAt(knowledge, request, ids, ionicStrength, start);
     const { system, result } = solved;
     const found = ionicStrengthOf(system, result, inert.sumCz2, inert.sumCz);
     const change = found.molPerL - ionicStrength;
-    const settled =
-      request.ionicStrength !== "auto" || Math.abs(change) <= IONIC_STRENGTH_TOLERANCE * Math.max(found.molPerL, 1e-7);
+    const settled = request.ionicStrength !== "auto" || hasSettled(search, ionicStrength, change);
     if (settled || iteration === IONIC_STRENGTH_ITERATIONS || result.status !== "converged") {
       const status: SolveStatus =
         result.status !== "converged"
@@ -91,12 +89,39 @@ export function equilibrate(knowledge: Knowledge, request: EquilibrateRequest): 
         },
       };
     }
-    // A change of sign means the step was too long: the record chosen or a solid flips between two ionic strengths.
-    if (change * lastChange < 0) damping = Math.max(damping / 2, 1 / 64);
-    lastChange = change;
-    ionicStrength = Math.max(ionicStrength + damping * change, 0);
+    ionicStrength = nextGuess(search, ionicStrength, change, iteration);
     start = new Map(system.components.map((id, column) => [id, result.lnFree[column]!]));
   }
+}
+
+/** The search for the ionic strength that the composition confirms: below `low` it asks for more, above `high` for less. */
+interface IonicStrengthSearch {
+  low: number;
+  high: number;
+  last: { readonly at: number; readonly change: number } | null;
+}
+
+/** Secant steps do it in three or four; after this many the bracket is halved instead. */
+const SECANT_STEPS = 8;
+
+/**
+ * Settled: the composition confirms the ionic strength, or the bracket has closed on a jump (another record is nearest, a solid
+ * appears), where neither side confirms itself.
+ */
+function hasSettled(search: IonicStrengthSearch, at: number, change: number): boolean {
+  const tolerance = IONIC_STRENGTH_TOLERANCE * Math.max(at + change, 1e-7);
+  return Math.abs(change) <= tolerance || search.high - search.low <= tolerance;
+}
+
+function nextGuess(search: IonicStrengthSearch, at: number, change: number, iteration: number): number {
+  if (change > 0) search.low = Math.max(search.low, at);
+  else search.high = Math.min(search.high, at);
+  const { last, low, high } = search;
+  search.last = { at, change };
+  const slope = last === null ? -1 : (change - last.change) / (at - last.at);
+  const proposed = slope < 0 ? at - change / slope : Number.NaN;
+  if (iteration <= SECANT_STEPS && proposed > low && proposed < high) return proposed;
+  return high === Number.POSITIVE_INFINITY ? Math.max(at + change, 2 * low) : (low + high) / 2;
 }
 
 function solveAt(
