@@ -1,11 +1,11 @@
-import { Engine, type RuleProperties, type TopLevelCondition } from "json-rules-engine";
+import { Engine, Rule as EngineRule, type TopLevelCondition } from "json-rules-engine";
 import { assertFacts } from "./check-facts.ts";
-import { factsReadBy, leavesOf } from "./conditions.ts";
+import { factsReadBy, leafHolds, leavesOf } from "./conditions.ts";
 import { findingOf, nearMisses, type NearMiss } from "./explain.ts";
 import { factsOfScope } from "./fact-catalogue.ts";
 import type { RuleBase } from "./load-rules.ts";
 import { holds, OPERATORS, type Operand } from "./operators.ts";
-import type { Condition, Rule } from "./rule-schema.ts";
+import type { Condition, Leaf, Rule } from "./rule-schema.ts";
 import type { Facts, FactValue, RuleFinding, RuleScope } from "./types.ts";
 
 /** One question to the rules. */
@@ -30,8 +30,8 @@ const CERTAIN_PRIORITY = 2;
 const OPTIONAL_PRIORITY = 1;
 
 /**
- * Prepares one engine per scope, with the catalogued operators only. Each engine runs one set of facts at a time: overlapping runs of one
- * engine lose rules.
+ * Prepares the rules of each scope for the engine, which knows the catalogued operators only. Each scope runs one set of facts at a time:
+ * overlapping runs lose rules.
  * The runner throws TypeError on facts that the catalogue does not describe, and where the engine did not answer for every rule.
  */
 export function createRuleRunner(base: RuleBase): RuleRunner {
@@ -47,7 +47,7 @@ export function createRuleRunner(base: RuleBase): RuleRunner {
       const answered = new Map<string, readonly RuleFinding[]>();
       const answers: (readonly RuleFinding[])[] = [];
       for (const { scope, facts } of questions) {
-        const key = `${scope} ${engines[scope].keyOf(facts)}`;
+        const key = `${scope} ${JSON.stringify(facts)}`;
         const answer = answered.get(key) ?? (await run(scope, facts));
         answered.set(key, answer);
         answers.push(answer);
@@ -61,26 +61,23 @@ export function createRuleRunner(base: RuleBase): RuleRunner {
   };
 }
 
+/** A rule as the engine takes it, with the comparisons of words that must hold before anything else is looked at. */
+interface PreparedRule {
+  readonly rule: Rule;
+  readonly gates: readonly Leaf[];
+  readonly engineRule: EngineRule;
+}
+
 class ScopeEngine {
   readonly #scope: RuleScope;
-  readonly #rules: readonly Rule[];
-  readonly #engine: Engine;
+  readonly #rules: readonly PreparedRule[];
   readonly #reads: readonly string[]; // facts some rule of the scope looks at
   #last: Promise<unknown> = Promise.resolve();
 
   constructor(scope: RuleScope, rules: readonly Rule[]) {
     this.#scope = scope;
-    this.#rules = rules;
+    this.#rules = rules.map((rule) => ({ rule, gates: gatesOf(rule.when, scope), engineRule: engineRule(rule) }));
     this.#reads = [...new Set(rules.flatMap((rule) => leavesOf(rule.when).flatMap(factsReadBy)))];
-    this.#engine = engineFor(scope, rules);
-  }
-
-  keyOf(facts: Facts): string {
-    return JSON.stringify(
-      Object.keys(facts)
-        .sort()
-        .map((name) => [name, facts[name]]),
-    );
   }
 
   run(facts: Facts): Promise<readonly RuleFinding[]> {
@@ -91,34 +88,44 @@ class ScopeEngine {
   }
 
   async #runNow(facts: Facts): Promise<readonly RuleFinding[]> {
-    if (this.#rules.length === 0) return [];
+    // A rule whose words do not fit cannot fire: four in five need not go to the engine at all.
+    const open = this.#rules.filter(({ gates }) => gates.every((leaf) => leafHolds(leaf, facts)));
+    if (open.length === 0) return [];
+    const engine = emptyEngine();
+    for (const { engineRule } of open) engine.addRule(engineRule);
     // A number that does not exist is null to the operators, never undefined: the engine would refuse the whole run.
     const read: Record<string, FactValue | null> = {};
     for (const name of this.#reads) read[name] = facts[name] ?? null;
-    const { results, failureResults } = await this.#engine.run(read);
-    if (results.length + failureResults.length !== this.#rules.length)
-      throw new TypeError(
-        `the engine answered for ${results.length + failureResults.length} of ${this.#rules.length} rules`,
-      );
+    const { results, failureResults } = await engine.run(read);
+    const answered = results.length + failureResults.length;
+    if (answered !== open.length) throw new TypeError(`the engine answered for ${answered} of ${open.length} rules`);
     const fired = new Set(results.map((result) => result.name));
-    return this.#rules.filter((rule) => fired.has(rule.id)).map((rule) => findingOf(rule, facts));
+    return open.filter(({ rule }) => fired.has(rule.id)).map(({ rule }) => findingOf(rule, facts));
   }
 }
 
-function engineFor(scope: RuleScope, rules: readonly Rule[]): Engine {
+/** Comparisons of words, lists and truth values that stand in the top `all`: certain facts, cheap to compare. */
+function gatesOf(condition: Condition, scope: RuleScope): readonly Leaf[] {
+  if ("all" in condition) return condition.all.flatMap((member) => gatesOf(member, scope));
+  if ("any" in condition || "not" in condition) return [];
+  const numeric = factsReadBy(condition).some((name) => factsOfScope(scope).get(name)?.type === "number");
+  return numeric ? [] : [condition];
+}
+
+function emptyEngine(): Engine {
   const engine = new Engine([], { allowUndefinedFacts: false });
   for (const operator of OPERATORS.values())
     engine.addOperator(operator.name, (fact: FactValue | null, operand: Operand | null) =>
       holds(operator, fact, operand),
     );
-  for (const rule of rules) {
-    const condition = engineCondition(rule.when, scope);
-    // A single comparison needs a group around it at the top.
-    const conditions = ("fact" in condition ? { all: [condition] } : condition) as TopLevelCondition;
-    const properties: RuleProperties = { name: rule.id, conditions, event: { type: rule.effect } };
-    engine.addRule(properties);
-  }
   return engine;
+}
+
+function engineRule(rule: Rule): EngineRule {
+  const condition = engineCondition(rule.when, rule.scope);
+  // A single comparison needs a group around it at the top.
+  const conditions = ("fact" in condition ? { all: [condition] } : condition) as TopLevelCondition;
+  return new EngineRule({ name: rule.id, conditions, event: { type: rule.effect } });
 }
 
 type EngineCondition = { readonly priority: number } & (
