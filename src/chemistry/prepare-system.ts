@@ -3,7 +3,7 @@ import { beyondDaviesRange, daviesTerm, log10ActivityCoefficient } from "./activ
 import { constantUse, log10KAt, uncertaintyAt } from "./move-constant.ts";
 import type { ChosenConstants, SystemTemplate, TemplateRow } from "./system-template.ts";
 import { buildTemplate, chooseConstants, filterTemplate } from "./system-template.ts";
-import type { Conditions, PreparedSpecies, PreparedSystem } from "./types.ts";
+import type { Conditions, ConstantUse, PreparedSpecies, PreparedSystem } from "./types.ts";
 
 /** Which solids and species a system is made with. */
 export interface PrepareOptions {
@@ -91,43 +91,73 @@ function chosenOf(cached: CachedTemplate, conditions: Conditions): ChosenConstan
   return remember(cached.chosen, key, () => chooseConstants(cached.template, conditions));
 }
 
+/** A prepared species; its evidence is put together only when it is asked for, for a search asks for it seldom. */
+class PreparedRow implements PreparedSpecies {
+  readonly id: string;
+  readonly components: Readonly<Record<ComponentId, number>>;
+  readonly charge: number;
+  readonly log10Beta: number;
+  readonly uncertainty: number;
+  readonly #row: TemplateRow;
+  readonly #basis: EvidenceBasis;
+
+  constructor(row: TemplateRow, log10Beta: number, uncertainty: number, basis: EvidenceBasis) {
+    this.id = row.id;
+    this.components = row.components;
+    this.charge = row.charge;
+    this.log10Beta = log10Beta;
+    this.uncertainty = uncertainty;
+    this.#row = row;
+    this.#basis = basis;
+  }
+
+  get evidence(): readonly ConstantUse[] {
+    const { template, chosen, conditions } = this.#basis;
+    return this.#row.chain.map(({ reaction: at, factor }) => ({
+      ...constantUse(
+        template.reactions[at]!,
+        chosen.records[at]!,
+        chosen.passedOver[at]!,
+        chosen.movable[at]!,
+        conditions,
+      ),
+      factor,
+    }));
+  }
+}
+
+interface EvidenceBasis {
+  readonly template: SystemTemplate;
+  readonly chosen: ChosenConstants;
+  readonly conditions: Conditions;
+}
+
 function assemble(template: SystemTemplate, chosen: ChosenConstants, conditions: Conditions): PreparedSystem {
   const term = daviesTerm(conditions.ionicStrengthMolPerL);
-  const log10K = Float64Array.from(chosen.movable, (constant) => log10KAt(constant, term));
-  const variance = Float64Array.from(
-    chosen.movable,
-    (constant, i) => uncertaintyAt(constant, template.reactions[i]!.deltaZ2, term) ** 2,
-  );
-  const prepare = (row: TemplateRow): PreparedSpecies => {
-    let log10Beta = 0;
-    let sum = 0;
-    for (const { reaction, factor } of row.chain) {
-      log10Beta += factor * log10K[reaction]!;
-      sum += factor * factor * variance[reaction]!;
-    }
-    return {
-      id: row.id,
-      components: row.components,
-      charge: row.charge,
-      log10Beta,
-      uncertainty: Math.sqrt(sum),
-      get evidence() {
-        return row.chain.map(({ reaction: at, factor }) => ({
-          ...constantUse(
-            template.reactions[at]!,
-            chosen.records[at]!,
-            chosen.passedOver[at]!,
-            chosen.movable[at]!,
-            conditions,
-          ),
-          factor,
-        }));
-      },
-    };
-  };
-  const species = template.species.map(prepare);
-  const solids = template.solids.map(prepare);
-  const water = species.find((s) => s.components["H+"] === -1 && Object.keys(s.components).length === 1);
+  const { reactions } = template;
+  const log10K = new Float64Array(reactions.length);
+  const variance = new Float64Array(reactions.length);
+  for (let i = 0; i < reactions.length; i++) {
+    const constant = chosen.movable[i]!;
+    log10K[i] = log10KAt(constant, term);
+    variance[i] = uncertaintyAt(constant, reactions[i]!.deltaZ2, term) ** 2;
+  }
+  const basis = { template, chosen, conditions };
+  const prepare = (rows: readonly TemplateRow[], lnBeta: Float64Array): PreparedRow[] =>
+    rows.map((row, i) => {
+      let log10Beta = 0;
+      let sum = 0;
+      for (const { reaction, factor } of row.chain) {
+        log10Beta += factor * log10K[reaction]!;
+        sum += factor * factor * variance[reaction]!;
+      }
+      lnBeta[i] = log10Beta * Math.LN10;
+      return new PreparedRow(row, log10Beta, Math.sqrt(sum), basis);
+    });
+  const lnBeta = new Float64Array(template.species.length);
+  const lnBetaOfSolids = new Float64Array(template.solids.length);
+  const species = prepare(template.species, lnBeta);
+  const solids = prepare(template.solids, lnBetaOfSolids);
   return {
     conditions,
     outOfModelRange: beyondDaviesRange(conditions.ionicStrengthMolPerL),
@@ -140,15 +170,11 @@ function assemble(template: SystemTemplate, chosen: ChosenConstants, conditions:
       nComponents: template.components.length,
       nSpecies: species.length,
       stoichiometry: template.stoichiometry,
-      lnBeta: Float64Array.from(species, (s) => s.log10Beta * Math.LN10),
-      solids: {
-        stoichiometry: template.solidStoichiometry,
-        lnBeta: Float64Array.from(solids, (s) => s.log10Beta * Math.LN10),
-        n: solids.length,
-      },
+      lnBeta,
+      solids: { stoichiometry: template.solidStoichiometry, lnBeta: lnBetaOfSolids, n: solids.length },
     },
     log10GammaH: log10ActivityCoefficient(1, conditions.ionicStrengthMolPerL, conditions.temperatureC),
-    log10Kw: water === undefined ? LOG10_KW_25C : water.log10Beta,
+    log10Kw: template.waterRow < 0 ? LOG10_KW_25C : species[template.waterRow]!.log10Beta,
   };
 }
 

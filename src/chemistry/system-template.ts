@@ -23,7 +23,7 @@ export interface SystemTemplate {
   readonly stoichiometry: Int8Array; // species x components
   readonly solidStoichiometry: Int8Array; // solids x components
   readonly charges: Float64Array;
-  readonly componentCharges: Float64Array;
+  readonly waterRow: number; // row of the hydroxide ion, -1 where the knowledge has none
 }
 
 /** The records chosen for each reaction of a template, ready to be moved to any ionic strength. */
@@ -40,7 +40,6 @@ export interface ChosenConstants {
 export function buildTemplate(knowledge: Knowledge, componentIds: readonly ComponentId[]): SystemTemplate {
   const components = ["H+", ...componentIds.filter((id, i) => id !== "H+" && componentIds.indexOf(id) === i)];
   const index = new Map(components.map((id, column) => [id, column]));
-  const componentCharges = Float64Array.from(components, (id) => chargeOf(knowledge, id));
   const reactions: Reaction[] = [];
   const reactionIndex = new Map<string, number>();
   const chainOf = (chain: readonly { readonly reaction: string; readonly factor: number }[]) =>
@@ -57,10 +56,10 @@ export function buildTemplate(knowledge: Knowledge, componentIds: readonly Compo
     });
   const inside = (row: { readonly components: Readonly<Record<ComponentId, number>> }) =>
     Object.keys(row.components).every((id) => index.has(id));
-  const species: TemplateRow[] = components.map((id, column) => ({
+  const species: TemplateRow[] = components.map((id) => ({
     id,
     components: { [id]: 1 },
-    charge: componentCharges[column]!,
+    charge: chargeOf(knowledge, id),
     chain: [],
   }));
   for (const found of knowledge.species) {
@@ -78,7 +77,7 @@ export function buildTemplate(knowledge: Knowledge, componentIds: readonly Compo
     stoichiometry: matrixOf(species, index),
     solidStoichiometry: matrixOf(solids, index),
     charges: Float64Array.from(species, (row) => row.charge),
-    componentCharges,
+    waterRow: waterRowOf(species),
   };
 }
 
@@ -109,6 +108,7 @@ export function filterTemplate(
     stoichiometry: matrixOf(species, template.index),
     solidStoichiometry: matrixOf(solids, template.index),
     charges: Float64Array.from(species, (row) => row.charge),
+    waterRow: waterRowOf(species),
   };
 }
 
@@ -123,6 +123,10 @@ export function chargeOf(knowledge: Knowledge, id: ComponentId): number {
 function isFreeComponent(components: Readonly<Record<ComponentId, number>>): boolean {
   const entries = Object.values(components);
   return entries.length === 1 && entries[0] === 1;
+}
+
+function waterRowOf(species: readonly TemplateRow[]): number {
+  return species.findIndex(({ components }) => components["H+"] === -1 && Object.keys(components).length === 1);
 }
 
 function matrixOf(rows: readonly TemplateRow[], index: ReadonlyMap<ComponentId, number>): Int8Array {
