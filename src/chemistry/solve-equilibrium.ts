@@ -12,6 +12,7 @@ export const ABSENT_LN_FREE = -690;
 /** Worst relative residual of a mass balance at which a solve counts as converged. */
 export const BALANCE_TOLERANCE = 1e-12;
 
+const NEAR_TOLERANCE = 5e-13; // the plain iteration's, with room for the residual to be summed in another order
 const DEFAULT_ITERATIONS = 500;
 const NEAR_ITERATIONS = 30; // the plain iteration gets this many before the safe method takes over
 const LN_10 = Math.LN10;
@@ -137,7 +138,7 @@ function iterate(problem: MassBalanceProblem, st: SolveStructure, options: Solve
   let spent = 0;
   const guess = anyAllowed ? (options.activeSolids ?? []).map((s) => st.solids.indexOf(s)).filter((s) => s >= 0) : [];
   if (near && st.nonNegative && guess.length === 0) {
-    const fast = newtonFromNear(st, BALANCE_TOLERANCE, Math.min(limit, NEAR_ITERATIONS));
+    const fast = newtonFromNear(st, NEAR_TOLERANCE, Math.min(limit, NEAR_ITERATIONS));
     spent = fast.iterations;
     if (fast.ok && !(anyAllowed && supersaturated(st, allowed)))
       return { status: "converged", iterations: spent, active: [], cancellation: 1 };
