@@ -88,7 +88,12 @@ export function vocabularyCoverage(knowledge: Knowledge, ids: ContractIds): read
       row("indicatorClasses", id, [[[...knowledge.indicators.values()].some((i) => i.class === id), "indicators"]], []),
     ),
     ...ids.preparation.map((id) =>
-      row("preparation", id, [reagent(id), [OPERATIONS.has(id), "operation without a reagent of its own"]], []),
+      row(
+        "preparation",
+        id,
+        [[knowledge.reagents.has(id) || OPERATIONS.has(id), "reagent record, or a mere operation"]],
+        [],
+      ),
     ),
   ];
 }
