@@ -1,0 +1,35 @@
+import { Router } from "express";
+import { answerCurve, answerEquilibrium } from "../../recommendation/calculate.ts";
+import { decodeBrief } from "../form/brief-link.ts";
+import type { Answers } from "../pages/answers.ts";
+import { shell } from "../pages/shell.ts";
+import { renderView } from "../render/render-view.ts";
+import type { WebServices } from "../services.ts";
+import { openApiDocument } from "./openapi.ts";
+
+/** The JSON doors: the recommendation, the two calculators, and their description. */
+export function apiRoutes({ knowledge }: WebServices, answers: Answers): Router {
+  const router = Router();
+  const description = openApiDocument(knowledge.version);
+
+  router.post("/api/recommendations", async (request, response) => {
+    response.json(await answers.answer(request.body as unknown));
+  });
+  router.get("/api/recommendations", async (request, response) => {
+    const { brief } = request.query;
+    response.json(await answers.answer(decodeBrief(typeof brief === "string" ? brief : "")));
+  });
+  router.post("/api/equilibrium", (request, response) => {
+    response.json(answerEquilibrium(request.body as unknown, knowledge));
+  });
+  router.post("/api/curve", (request, response) => {
+    response.json(answerCurve(request.body as unknown, knowledge));
+  });
+  router.get("/api/openapi.json", (_request, response) => {
+    response.json(description);
+  });
+  router.get("/api", (_request, response) => {
+    response.send(renderView("api", { shell: shell(knowledge, "Interface for programs", "none") }));
+  });
+  return router;
+}

@@ -1,0 +1,78 @@
+import { z } from "zod";
+import { briefSchema, recommendationSchema } from "../../recommendation/contract.ts";
+import { curveRequestSchema, equilibriumRequestSchema } from "../../recommendation/calculate.ts";
+
+const faultsSchema = z.object({
+  faults: z.array(z.object({ path: z.string(), expected: z.string(), found: z.string() })),
+});
+const errorSchema = z.object({ error: z.string(), id: z.string().optional() });
+
+const json = (schema: object): object => ({ "application/json": { schema } });
+const ref = (name: string): object => ({ $ref: `#/components/schemas/${name}` });
+
+const failures = {
+  "400": { description: "The body is not JSON.", content: json(ref("Error")) },
+  "413": { description: "The body is larger than 256 kB.", content: json(ref("Error")) },
+  "422": {
+    description: "The body is JSON but not a valid question: one fault per error, each at its place.",
+    content: json(ref("Faults")),
+  },
+  "500": { description: "Something failed on our side; the id stands in the log.", content: json(ref("Error")) },
+};
+
+const operation = (id: string, summary: string, body: string, answer: object): object => ({
+  post: {
+    operationId: id,
+    summary,
+    requestBody: { required: true, content: json(ref(body)) },
+    responses: { "200": { description: "The answer.", content: json(answer) }, ...failures },
+  },
+});
+
+/** The API as an OpenAPI 3.1 document, its schemas taken from those that check the data. */
+export function openApiDocument(version: string): object {
+  const input = (schema: z.ZodType): object => stripSchema(z.toJSONSchema(schema, { io: "input" }));
+  const output = (schema: z.ZodType): object => stripSchema(z.toJSONSchema(schema, { io: "output" }));
+  return {
+    openapi: "3.1.0",
+    info: {
+      title: "Chelwright",
+      version,
+      summary: "Designs and justifies complexometric titration methods by calculation.",
+      license: { name: "MIT", identifier: "MIT" },
+    },
+    servers: [{ url: "/" }],
+    paths: {
+      "/api/recommendations": operation(
+        "recommend",
+        "Answers a brief with ranked titration methods, their predicted errors and the reasons.",
+        "Brief",
+        ref("Recommendation"),
+      ),
+      "/api/equilibrium": operation(
+        "equilibrium",
+        "Solves a solution at a fixed acidity: species, side-reaction coefficients, conditional constants, solids.",
+        "EquilibriumQuestion",
+        { type: "object" },
+      ),
+      "/api/curve": operation("curve", "Computes a titration curve: pM at each volume.", "CurveQuestion", {
+        type: "object",
+      }),
+    },
+    components: {
+      schemas: {
+        Brief: input(briefSchema),
+        Recommendation: output(recommendationSchema),
+        EquilibriumQuestion: input(equilibriumRequestSchema),
+        CurveQuestion: input(curveRequestSchema),
+        Faults: output(faultsSchema),
+        Error: output(errorSchema),
+      },
+    },
+  };
+}
+
+/** The dialect is that of OpenAPI 3.1 itself; a schema inside it names none. */
+function stripSchema(schema: object): object {
+  return Object.fromEntries(Object.entries(schema).filter(([key]) => key !== "$schema"));
+}

@@ -1,0 +1,26 @@
+import type { FigureSeries } from "../services.ts";
+
+const cell = (value: string | number | null): string => {
+  if (value === null) return "";
+  const text = String(value);
+  const safe = typeof value === "string" && /^[=+@\-\t]/.test(text) ? `'${text}` : text;
+  return /[",\n]/.test(safe) ? `"${safe.replaceAll('"', '""')}"` : safe;
+};
+const rows = (table: readonly (readonly (string | number | null)[])[]): string =>
+  `${table.map((r) => r.map(cell).join(",")).join("\r\n")}\r\n`;
+
+/** The log K' figure as CSV: pH, then one column for each line. */
+export function logKCsv(series: FigureSeries["logK"]): string {
+  return rows([
+    ["pH", ...series.lines.map((l) => `log K' ${l.label}`)],
+    ...series.pH.map((pH, i) => [pH, ...series.lines.map((l) => l.values[i] ?? null)]),
+  ]);
+}
+
+/** The titration curve as CSV: volume in mL, pM. */
+export function curveCsv(series: FigureSeries["curve"]): string {
+  return rows([
+    ["titrant added / mL", `p(${series.label})`],
+    ...series.volumeML.map((v, i) => [v, series.pM[i] ?? null]),
+  ]);
+}

@@ -1,0 +1,223 @@
+import type { Recommendation, RecommendedMethod, StageDocument } from "../../recommendation/contract.ts";
+import { colourMarkup } from "../format/colour-words.ts";
+import type { Names } from "../format/names.ts";
+import { amount, fixed, percent, signedPercent, significant } from "../format/numbers.ts";
+import {
+  END_POINT_BASIS_WORDS,
+  MASKING_BASIS_WORDS,
+  MODE_WORDS,
+  PREPARATION_WORDS,
+  VIA_WORDS,
+  wordsOf,
+} from "../format/words.ts";
+import { Markup, joinMarkup } from "../render/markup.ts";
+
+/** One line of the bench conditions: what, how much, and in the margin where it comes from. */
+export interface BenchRow {
+  readonly label: string;
+  readonly lines: readonly Markup[];
+  readonly notes: readonly Markup[];
+}
+
+export interface StageView {
+  readonly heading: Markup;
+  readonly rows: readonly BenchRow[];
+}
+
+const text = (value: string): Markup => joinMarkup([value]);
+const list = (items: readonly Markup[]): Markup => joinMarkup(items, ", ");
+
+/** The bench conditions of each titration of a method, in order. */
+export function stageViews(
+  method: RecommendedMethod,
+  brief: Recommendation["brief"],
+  names: Names,
+): readonly StageView[] {
+  return method.stages.map((stage, i) => ({
+    heading: joinMarkup([
+      method.stages.length > 1 ? `Titration ${i + 1}: ` : "",
+      stage.determines.length === 0 ? "first reading, discarded" : list(stage.determines.map((d) => names.name(d))),
+      `, ${wordsOf(MODE_WORDS, stage.mode)}`,
+    ]),
+    rows: benchRows(method, stage, brief, names),
+  }));
+}
+
+function benchRows(
+  method: RecommendedMethod,
+  stage: StageDocument,
+  brief: Recommendation["brief"],
+  names: Names,
+): readonly BenchRow[] {
+  const titrant = stage.titrant ?? method.titrant;
+  const back = stage.mode === "direct" ? null : (stage.backTitrant ?? method.backTitrant);
+  const rows: BenchRow[] = [];
+  const add = (label: string, lines: readonly Markup[], notes: readonly Markup[] = []): void => {
+    if (lines.length > 0) rows.push({ label, lines, notes });
+  };
+  const reagent = (r: { id: string; molPerL: number }): Markup =>
+    joinMarkup([names.link(r.id), `, ${amount(r.molPerL)}`]);
+
+  add("Portion", [
+    text(
+      `${significant(brief.portion.volumeML, 4)} mL, made up to ${significant(brief.portion.titrationVolumeML, 4)} mL`,
+    ),
+  ]);
+  const constants = stage.conditional.map((c) =>
+    joinMarkup([names.set("log K'"), " of ", names.name(c.metal), ` ${fixed(c.log10ConditionalK, 2)} `]),
+  );
+  add(
+    "Titrant",
+    [reagent(titrant)],
+    constants.length === 0
+      ? []
+      : [
+          joinMarkup([
+            ...constants.slice(0, 4).flatMap((c, i) => (i === 0 ? [c] : ["; ", c])),
+            new Markup('<a href="#constants-used">constants</a>'),
+          ]),
+        ],
+  );
+  if (back) add("Back titrant", [reagent(back)]);
+  add(
+    "pH",
+    [text(fixed(stage.pH.target, 1))],
+    [text(`works from ${fixed(stage.pH.low, 1)} to ${fixed(stage.pH.high, 1)}`)],
+  );
+  add(
+    "Buffer",
+    [reagent(stage.buffer)],
+    stage.ionicStrength.molPerL === null
+      ? []
+      : [
+          text(
+            `ionic strength ${amount(stage.ionicStrength.molPerL, 2)}${stage.ionicStrength.outOfModelRange ? ", beyond the range of the model" : ""}`,
+          ),
+        ],
+  );
+  if (stage.indicator) {
+    const [before, after] = stage.indicator.colourChange;
+    add(
+      "Indicator",
+      [joinMarkup([names.link(stage.indicator.id), `, ${amount(stage.indicator.molPerL, 2)}`])],
+      [text(`${stage.indicator.class} dye`)],
+    );
+    add(
+      "Colour change",
+      [joinMarkup(["from ", colourMarkup(before), " to ", colourMarkup(after)])],
+      stage.endPoint.indicatorMetal === null
+        ? []
+        : [joinMarkup([names.name(stage.endPoint.indicatorMetal), " holds the dye until then"])],
+    );
+  } else
+    add("End point", [text(stage.detection === "electrode" ? "read with an electrode" : `seen by ${stage.detection}`)]);
+  add(
+    "Masking",
+    stage.masking.map((m) =>
+      joinMarkup([
+        names.link(m.agent),
+        `, ${amount(m.molPerL, 2)}, for `,
+        list(m.masks.map((c) => names.name(c))),
+        ` ${wordsOf(VIA_WORDS, m.via)}`,
+      ]),
+    ),
+    [...new Set(stage.masking.map((m) => wordsOf(MASKING_BASIS_WORDS, m.basis)))].map(text),
+  );
+  const purposes = (entries: StageDocument["auxiliary"]): Markup[] =>
+    entries.map((a) => joinMarkup([names.link(a.id), `, ${amount(a.molPerL, 2)}: `, names.set(a.purpose)]));
+  add("Also present", purposes(stage.auxiliary));
+  add("Added", purposes(stage.added));
+  add(
+    "Steps, in order",
+    stage.preparation.map((p) => text(wordsOf(PREPARATION_WORDS, p))),
+  );
+  if (stage.titreML !== null)
+    add(
+      "Expected titre",
+      [text(`${fixed(stage.titreML, 2)} mL`)],
+      [text(`burette ${significant(brief.laboratory.buretteML, 3)} mL`)],
+    );
+  add("End point lies at", endPointLines(stage), [text(wordsOf(END_POINT_BASIS_WORDS, stage.endPoint.basis))]);
+  return rows;
+}
+
+function endPointLines(stage: StageDocument): readonly Markup[] {
+  const { pM, pMEquivalence, bandPM, sharpnessPercent } = stage.endPoint;
+  if (pM === null) return [];
+  const equivalence = pMEquivalence === null ? "" : `; equivalence at ${fixed(pMEquivalence, 2)}`;
+  const sharpness = sharpnessPercent === null ? "" : `, which is ±${percent(sharpnessPercent)} of the titre`;
+  return [text(`pM ${fixed(pM, 2)} ± ${fixed(bandPM, 2)}${sharpness}${equivalence}`)];
+}
+
+export interface PartView {
+  readonly source: Markup;
+  readonly value: string;
+  /** Length of the bar, 0 to 100, and the side it grows to. */
+  readonly bar: Markup;
+}
+
+const bar = (share: number, negative: boolean): Markup => {
+  const width = Math.round(Math.min(1, Math.max(0, share)) * 60 * 10) / 10;
+  const x = negative ? 60 - width : 60;
+  return new Markup(
+    `<svg class="bar" viewBox="0 0 120 10" width="120" height="10" aria-hidden="true" focusable="false"><path class="tick" d="M60 0V10"/><rect class="${negative ? "bar-minus" : "bar-plus"}" x="${x}" y="2" width="${width}" height="6"/></svg>`,
+  );
+};
+
+/** The error of a method by its causes, and the uncertainty by its terms, each with a bar against the largest. */
+export function errorParts(
+  method: RecommendedMethod,
+  names: Names,
+): { readonly bias: readonly PartView[]; readonly budget: readonly PartView[] } {
+  const view = (parts: readonly { source: string; percent: number }[], isSigned: boolean): readonly PartView[] => {
+    const largest = Math.max(...parts.map((p) => Math.abs(p.percent)), 1e-12);
+    return parts.map((p) => ({
+      source: sourceName(p.source, names),
+      value: isSigned ? signedPercent(p.percent) : percent(p.percent),
+      bar: bar(Math.abs(p.percent) / largest, p.percent < 0),
+    }));
+  };
+  return { bias: view(method.predicted.biasBySource, true), budget: view(method.uncertaintyBudget, false) };
+}
+
+const sourceName = (source: string, names: Names): Markup =>
+  /[+-]$/.test(source) || source === names.plain(source)
+    ? names.set(source.replaceAll(/(?<=[a-z])-(?=[a-z])/g, " "))
+    : names.name(source);
+
+export interface RoomView {
+  readonly component: Markup;
+  readonly present: string;
+  readonly without: string;
+  readonly withMasking: string;
+  readonly room: string;
+}
+
+/** For each matrix component: what is present, the level at which the requirement breaks, and how much room that leaves. */
+export function roomViews(method: RecommendedMethod, names: Names): readonly RoomView[] {
+  const byComponent = new Map<string, { present: number; plain: number | null; masked: number | null }>();
+  for (const t of method.tolerance) {
+    const entry = byComponent.get(t.component) ?? { present: t.presentMolPerL, plain: null, masked: null };
+    if (t.withMasking) entry.masked = t.limitMolPerL;
+    else entry.plain = t.limitMolPerL;
+    byComponent.set(t.component, entry);
+  }
+  return [...byComponent].map(([component, { present, plain, masked }]) => {
+    const limit = masked ?? plain;
+    const factor = limit === null || present === 0 ? null : limit / present;
+    return {
+      component: names.link(component),
+      present: amount(present),
+      without: plain === null ? "not computed" : amount(plain, 2),
+      withMasking: masked === null ? "no masking" : amount(masked, 2),
+      room:
+        factor === null
+          ? "none present"
+          : factor < 1
+            ? "over the limit"
+            : factor > 1000
+              ? "more than a thousandfold"
+              : `${significant(factor, 2)} times the level present`,
+    };
+  });
+}

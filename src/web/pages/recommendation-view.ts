@@ -1,0 +1,283 @@
+import type { Brief, Recommendation, RecommendedMethod } from "../../recommendation/contract.ts";
+import { curveFigure, curveDescription } from "../figures/curve-figure.ts";
+import { NARROW, WIDE } from "../figures/frame.ts";
+import { logKDescription, logKFigure } from "../figures/log-k-figure.ts";
+import { encodeBrief } from "../form/brief-link.ts";
+import { linkMarkup, reactionHref, type Names } from "../format/names.ts";
+import { amount, fixed, percent, signed, signedPercent } from "../format/numbers.ts";
+import { BASIS_WORDS, FINDING_WORDS, MODE_WORDS, VERDICT_WORDS, wordsOf } from "../format/words.ts";
+import { Markup, joinMarkup } from "../render/markup.ts";
+import type { FactListing, FigureSeries, WebServices } from "../services.ts";
+import { errorParts, roomViews, stageViews } from "./method-view.ts";
+import { factViews, reasonViews } from "./reasons-view.ts";
+import { shell } from "./shell.ts";
+
+/** What the page of an answer is made from. */
+export interface AnswerOnPage {
+  readonly recommendation: Recommendation;
+  readonly sent: unknown; // the brief as the link carries it
+  readonly method: RecommendedMethod | null; // the one laid out in full
+  readonly figures: FigureSeries | null;
+}
+
+/** The view model of one answer: flat, formatted, in the order in which a chemist asks. */
+export function recommendationView(
+  services: WebServices,
+  names: Names,
+  catalogue: ReadonlyMap<string, FactListing>,
+  answer: AnswerOnPage,
+): object {
+  const { recommendation, method, figures } = answer;
+  const { brief } = recommendation;
+  const link = `brief=${encodeBrief(answer.sent)}`;
+  const hrefOf = (id: string): string => `/recommendation?${link}&method=${encodeURIComponent(id)}`;
+  const best = recommendation.methods[0];
+  return {
+    shell: shell(services.knowledge, brief.title, "brief"),
+    title: brief.title,
+    changeHref: `/?${link}`,
+    jsonHref: `/api/recommendations?${link}`,
+    question: questionRows(brief, names),
+    verdict: wordsOf(VERDICT_WORDS, recommendation.verdict),
+    verdictClass: `verdict-${recommendation.verdict}`,
+    asked: percent(brief.requirement.relativeExpandedUncertaintyPercent),
+    howWell: method ? percent(method.predicted.relativeExpandedUncertaintyPercent) : "",
+    method: method === null ? null : methodView(method, recommendation, names, catalogue, figures, link),
+    isBest: method === null || method === best,
+    bestHref: best ? hrefOf(best.id) : "",
+    findings: recommendation.findings.map((f) => ({
+      component: names.link(f.component),
+      as: wordsOf(FINDING_WORDS, f.as),
+      statement: names.set(f.statement),
+      facts: factViews(f.facts, catalogue, names),
+    })),
+    decidedBy:
+      recommendation.decidedBy === null
+        ? null
+        : {
+            statement: names.set(recommendation.decidedBy.statement),
+            differences: recommendation.decidedBy.differences.map((d) => ({
+              rule: d.rule.includes("/") ? linkMarkup(`/rules/${d.rule}`, d.rule) : joinMarkup([d.rule]),
+              first: signed(d.first, 1),
+              second: signed(d.second, 1),
+              statement: names.set(d.statement),
+            })),
+          },
+    rivals: rivalsTable(recommendation, names, method, hrefOf),
+    rejected: recommendation.rejected.map((r) => ({
+      what: joinMarkup([
+        `${wordsOf(MODE_WORDS, r.mode)} with `,
+        names.name(r.titrant),
+        ...(r.backTitrant === null ? [] : [", back with ", names.name(r.backTitrant)]),
+        ...(r.indicator === null ? [] : [", ", names.name(r.indicator)]),
+        r.pH === null ? "" : `, pH ${fixed(r.pH, 1)}`,
+      ]),
+      reasons: reasonViews(r.because, catalogue, names),
+    })),
+    constants: constantViews(recommendation, names),
+    notes: recommendation.notes.map((n) => names.set(n)),
+    knowledge: `${recommendation.knowledge.version}, ${recommendation.knowledge.hash}`,
+  };
+}
+
+function methodView(
+  method: RecommendedMethod,
+  recommendation: Recommendation,
+  names: Names,
+  catalogue: ReadonlyMap<string, FactListing>,
+  figures: FigureSeries | null,
+  link: string,
+): object {
+  const csv = (kind: string): string => `/figures/${kind}.csv?${link}&method=${encodeURIComponent(method.id)}`;
+  const conditions = conditionsText(method, recommendation.brief);
+  const plainSet = names.set;
+  return {
+    rank: String(method.rank),
+    summary: names.set(method.summary),
+    meets: method.meetsRequirement ? "keeps the requirement" : "does not keep the requirement",
+    uncertainty: percent(method.predicted.relativeExpandedUncertaintyPercent),
+    bias: signedPercent(method.predicted.biasPercent),
+    titre: `${fixed(method.predicted.titreML, 2)} mL`,
+    reservations: method.reservations.map((r) => names.set(r)),
+    cautions: method.cautions.map((c) => names.set(c)),
+    stages: stageViews(method, recommendation.brief, names),
+    perAnalyte:
+      method.predicted.perAnalyte.length < 2
+        ? []
+        : method.predicted.perAnalyte.map((p) => ({
+            what: joinMarkup(
+              p.determines.map((d) => names.name(d)),
+              " + ",
+            ),
+            bias: signedPercent(p.biasPercent),
+            uncertainty: percent(p.relativeExpandedUncertaintyPercent),
+          })),
+    parts: errorParts(method, names),
+    room: roomViews(method, names),
+    interferents: method.stages.flatMap((stage, i) =>
+      stage.interferents.map((x) => ({
+        stage: String(i + 1),
+        component: names.link(x.component),
+        titrated: x.titratedFraction === null ? "not computed" : percent(x.titratedFraction * 100),
+        bias: x.biasPercent === null ? "–" : signedPercent(x.biasPercent),
+        maskedBy: x.maskedBy === null ? joinMarkup(["not masked"]) : names.link(x.maskedBy),
+      })),
+    ),
+    severalStages: method.stages.length > 1,
+    reasons: reasonViews(method.because, catalogue, names),
+    scores: method.scores.map((s) => ({
+      rule: linkMarkup(`/rules/${s.rule}`, s.rule),
+      weight: signed(s.weight, 1),
+      statement: names.set(s.statement),
+    })),
+    figures:
+      figures === null
+        ? []
+        : [
+            {
+              wide: logKFigure("logk-wide", figures.logK, WIDE, plainSet),
+              narrow: logKFigure("logk-narrow", figures.logK, NARROW, plainSet),
+              caption: names.set(`log K' against pH. ${conditions}`),
+              description: names.set(logKDescription(figures.logK)),
+              csvHref: csv("log-k"),
+            },
+            {
+              wide: curveFigure("curve-wide", figures.curve, WIDE, plainSet),
+              narrow: curveFigure("curve-narrow", figures.curve, NARROW, plainSet),
+              caption: names.set(`Titration curve with the band in which the end point is seen. ${conditions}`),
+              description: names.set(curveDescription(figures.curve)),
+              csvHref: csv("curve"),
+            },
+          ],
+  };
+}
+
+/** The conditions a figure was computed for, as one sentence. */
+function conditionsText(method: RecommendedMethod, brief: Brief): string {
+  const stage = method.stages[0];
+  const strength = method.workingConditions.ionicStrengthMolPerL;
+  return [
+    `Computed for ${fixed(method.workingConditions.temperatureC, 0)} °C`,
+    strength === null ? "" : `, ionic strength ${amount(strength, 2)}`,
+    stage ? `, pH ${fixed(stage.pH.target, 1)}` : "",
+    `, ${fixed(brief.portion.titrationVolumeML, 0)} mL titrated.`,
+  ].join("");
+}
+
+function questionRows(brief: Brief, names: Names): readonly { label: string; value: Markup }[] {
+  const level = (id: string, c: Brief["analytes"][number]["concentration"]): Markup =>
+    joinMarkup([names.name(id), ` ${amount(c.value)}`]);
+  const lab = brief.laboratory;
+  const rows: [string, Markup][] = [
+    [
+      "To determine",
+      joinMarkup(
+        brief.analytes.map((a) => level(a.ion, a.concentration)),
+        brief.analytes.some((a) => a.report === "sum") ? " + " : ", ",
+      ),
+    ],
+    [
+      "Also in it",
+      brief.matrix.length === 0
+        ? joinMarkup(["nothing stated"])
+        : joinMarkup(
+            brief.matrix.map((m) => level(m.component, m.concentration)),
+            ", ",
+          ),
+    ],
+    ["Portion", joinMarkup([`${brief.portion.volumeML} mL, made up to ${brief.portion.titrationVolumeML} mL`])],
+    ["Asked for", joinMarkup([`${percent(brief.requirement.relativeExpandedUncertaintyPercent)} expanded (k = 2)`])],
+    [
+      "Laboratory",
+      joinMarkup([
+        `${brief.laboratory.buretteML} mL burette, ${brief.temperatureC} °C, ${lab.heating ? "heating possible" : "no heating"}, end point ${lab.detection.join(" or ")}`,
+      ]),
+    ],
+  ];
+  if (lab.avoid.length > 0)
+    rows.push([
+      "Never proposed",
+      joinMarkup(
+        lab.avoid.map((id) => names.name(id)),
+        ", ",
+      ),
+    ]);
+  if (lab.available)
+    rows.push([
+      "Shelf",
+      joinMarkup(
+        lab.available.map((id) => names.name(id)),
+        ", ",
+      ),
+    ]);
+  return rows.map(([label, value]) => ({ label, value }));
+}
+
+function rivalsTable(
+  recommendation: Recommendation,
+  names: Names,
+  shown: RecommendedMethod | null,
+  hrefOf: (id: string) => string,
+): object {
+  const methods = recommendation.methods.slice(0, 6);
+  const stageList = (m: RecommendedMethod, part: (s: RecommendedMethod["stages"][number]) => Markup): Markup =>
+    joinMarkup(m.stages.map(part), "; then ");
+  const row = (label: string, part: (m: RecommendedMethod) => Markup | string): object => ({
+    label,
+    cells: methods.map((m) => joinMarkup([part(m)])),
+  });
+  return {
+    heads: methods.map((m) => ({ text: `${m.rank}`, href: hrefOf(m.id), current: m === shown })),
+    rows: [
+      row("Mode", (m) => wordsOf(MODE_WORDS, m.mode)),
+      row("Titrant", (m) =>
+        joinMarkup([
+          names.name(m.titrant.id),
+          ...(m.backTitrant ? [", back with ", names.name(m.backTitrant.id)] : []),
+        ]),
+      ),
+      row("pH", (m) =>
+        stageList(m, (s) => joinMarkup([`${fixed(s.pH.target, 1)} (${fixed(s.pH.low, 1)} to ${fixed(s.pH.high, 1)})`])),
+      ),
+      row("Buffer", (m) => stageList(m, (s) => names.name(s.buffer.id))),
+      row("End point", (m) =>
+        stageList(m, (s) => (s.indicator ? names.name(s.indicator.id) : joinMarkup([s.detection]))),
+      ),
+      row("Masking", (m) => {
+        const agents = [...new Set(m.stages.flatMap((s) => s.masking.map((x) => x.agent)))];
+        return agents.length === 0
+          ? "none"
+          : joinMarkup(
+              agents.map((a) => names.name(a)),
+              ", ",
+            );
+      }),
+      row("Titre", (m) => `${fixed(m.predicted.titreML, 2)} mL`),
+      row("Bias", (m) => signedPercent(m.predicted.biasPercent)),
+      row("Expanded uncertainty", (m) => percent(m.predicted.relativeExpandedUncertaintyPercent)),
+      row("Requirement", (m) => (m.meetsRequirement ? "kept" : "not kept")),
+      row("Points from rules", (m) =>
+        signed(
+          m.scores.reduce((sum, s) => sum + s.weight, 0),
+          1,
+        ),
+      ),
+      row("Reservations", (m) => (m.reservations.length === 0 ? "none" : String(m.reservations.length))),
+    ],
+    more: recommendation.methods.slice(6).map((m) => ({ text: names.set(m.summary), href: hrefOf(m.id) })),
+  };
+}
+
+function constantViews(recommendation: Recommendation, names: Names): readonly object[] {
+  return recommendation.constants.map((c) => ({
+    species: names.set(c.species),
+    value: fixed(c.log10Beta, 2),
+    uncertainty: fixed(c.uncertainty, 2),
+    evidence: c.evidence.map((e) => ({
+      reaction: linkMarkup(reactionHref(e.reaction), names.set(e.text)),
+      used: fixed(e.log10KUsed, 2),
+      found: `${fixed(e.log10KFound, 2)} at ${amount(e.ionicStrengthMolPerL, 2)}, ${fixed(e.temperatureC, 0)} °C`,
+      source: `${e.source}${e.record === null ? "" : ` ${e.record}`}, ${wordsOf(BASIS_WORDS, e.basis)}${e.passedOver === 0 ? "" : `; ${e.passedOver} passed over`}`,
+    })),
+  }));
+}

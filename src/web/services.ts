@@ -1,0 +1,73 @@
+import type { Knowledge } from "../constants/knowledge.ts";
+import type { Recommendation } from "../recommendation/contract.ts";
+
+/** A condition of a rule, as the rule layer hands it over after its checks. */
+export type RuleCondition =
+  | { readonly fact: string; readonly operator: string; readonly value: unknown }
+  | { readonly all: readonly RuleCondition[] }
+  | { readonly any: readonly RuleCondition[] }
+  | { readonly not: RuleCondition };
+
+/** One rule as the pages list it: the part of the rule layer's own type that is shown. */
+export interface RuleListing {
+  readonly id: string;
+  readonly topic: string;
+  readonly scope: string;
+  readonly when: RuleCondition;
+  readonly effect: string;
+  readonly weight: number;
+  readonly requires: { readonly kind: string; readonly anyOf: readonly string[] } | null;
+  readonly reservation: boolean;
+  readonly statement: string;
+  readonly rationale: string;
+  readonly source: { readonly cite: string; readonly basis: string };
+  readonly examples: {
+    readonly fires: readonly Readonly<Record<string, unknown>>[];
+    readonly silent: readonly Readonly<Record<string, unknown>>[];
+  };
+}
+
+/** What a fact means, for rules in words. */
+export interface FactListing {
+  readonly name: string;
+  readonly meaning: string;
+  readonly unit: string | null;
+}
+
+/** The numbers behind the two figures of one method. */
+export interface FigureSeries {
+  readonly logK: {
+    readonly pH: readonly number[];
+    readonly lines: readonly { readonly label: string; readonly values: readonly (number | null)[] }[];
+    readonly workingRange: readonly [number, number];
+  };
+  readonly curve: {
+    readonly volumeML: readonly number[];
+    readonly pM: readonly (number | null)[];
+    readonly label: string;
+    readonly endPoint: {
+      readonly volumeML: number;
+      readonly low: number;
+      readonly high: number;
+      readonly pMLow: number;
+      readonly pMHigh: number;
+      readonly pM: number;
+    } | null;
+    readonly equivalenceML: number;
+  };
+}
+
+/** Everything the pages need from the layers below; the composition root supplies it. */
+export interface WebServices {
+  readonly knowledge: Knowledge;
+  readonly rules: readonly RuleListing[];
+  readonly facts: readonly FactListing[];
+  /** The operators of the rule language, by name, with the words they are read as. */
+  readonly operators: ReadonlyMap<string, { readonly words: string }>;
+  /** Answers a brief; throws InputError with one fault per error of the brief. */
+  readonly recommend: (brief: unknown) => Promise<Recommendation>;
+  /** The figures of one method of an answer; null where they cannot be computed. */
+  readonly figureSeries: (recommendation: Recommendation, methodId: string) => FigureSeries | null;
+  /** Where one line about an unexpected failure goes; the page shows only its id. */
+  readonly log: (line: string) => void;
+}
