@@ -1,11 +1,12 @@
 import { z } from "zod";
 
-/** One JSON file of practice data is one array of these; every object is strict, so that a misspelt key is an error. */
+// One JSON file of practice data is one array of records; every object is strict, so that a misspelt key is an error.
 const text = z.string().min(1);
 const positive = z.number().positive();
 const range = z.tuple([z.number(), z.number()]).refine(([low, high]) => low <= high, "low end above high end");
 const molPerL = z.number().positive().max(20);
 
+/** Where a value comes from. */
 export const provenanceSchema = z.strictObject({
   source: text,
   record: text.exactOptional(),
@@ -15,6 +16,7 @@ export const provenanceSchema = z.strictObject({
 });
 const factSchema = z.strictObject({ fact: text, provenance: provenanceSchema });
 
+/** A source that records cite by id. */
 export const sourceSchema = z.strictObject({ id: text, citation: text, notice: text.exactOptional() });
 
 const indicatorUseSchema = z.strictObject({
@@ -23,9 +25,15 @@ const indicatorUseSchema = z.strictObject({
   backTitrant: text.exactOptional(),
   pH: range,
   detail: z.string(),
+  temperature: z.enum(["warm", "heat", "boil"]).exactOptional(),
+  alcohol: z.boolean().exactOptional(),
+  chelate: z.enum(["Mg-EDTA", "Zn-EDTA", "Zn-EGTA", "Cu-EDTA"]).exactOptional(),
+  titrant: text.exactOptional(),
+  auxiliaryAnyOf: z.array(text).min(1).exactOptional(),
   provenance: provenanceSchema,
 });
 
+/** An indicator: colours, transitions, uses, blockers; pH on the activity scale, amounts mol/L in the titrated solution. */
 export const indicatorSchema = z.strictObject({
   id: text,
   name: text,
@@ -85,6 +93,7 @@ export const indicatorSchema = z.strictObject({
   special: z.boolean(),
 });
 
+/** A buffer, strong acid or alkali: pKa as concentration quotients, amounts mol/L. */
 export const bufferSchema = z.strictObject({
   id: text,
   name: text,
@@ -107,6 +116,7 @@ export const bufferSchema = z.strictObject({
   special: z.boolean(),
 });
 
+/** What one agent does to one ion; amounts mol/L in the titrated solution. */
 export const maskingSchema = z.strictObject({
   agent: text,
   ion: text,
@@ -124,6 +134,7 @@ export const maskingSchema = z.strictObject({
   otherSources: z.array(provenanceSchema),
 });
 
+/** A masking, demasking, auxiliary or reducing agent with its usual amounts (mol/L). */
 export const agentSchema = z
   .strictObject({
     id: text,
@@ -148,6 +159,7 @@ export const agentSchema = z
   })
   .refine((agent) => agent.usualMolPerL <= agent.usualMaxMolPerL, "usual amount above the usual maximum");
 
+/** A fact about rates and what follows for a method; temperatures in C. */
 export const kineticSchema = z.strictObject({
   ion: text,
   titrant: text.nullable(),
@@ -173,95 +185,11 @@ export const kineticSchema = z.strictObject({
     .min(1),
   temperatureC: range.nullable(),
   pH: range.nullable(),
+  waterExchangePerS: z.number().positive().exactOptional(),
   provenance: provenanceSchema,
 });
 
-export const hazardTagSchema = z.enum([
-  "cyanide",
-  "sulfide",
-  "fluoride",
-  "mercury",
-  "perchlorate",
-  "strong-acid",
-  "strong-alkali",
-  "lead",
-  "cadmium",
-  "thorium-uranium",
-  "carcinogen",
-  "stench",
-  "oxidiser",
-  "formaldehyde",
-  "corrosive",
-  "flammable",
-  "heat-sensitive",
-  "toxic",
-]);
-
-export const reagentSchema = z.strictObject({
-  id: text,
-  name: text,
-  formula: text,
-  molarMassGPerMol: positive.nullable(),
-  preparation: z.array(text),
-  hazards: z.array(text),
-  hazardTags: z.array(hazardTagSchema),
-  disposal: z.array(text),
-  provenance: provenanceSchema,
-});
-
-export const cautionSchema = z.strictObject({
-  tag: hazardTagSchema,
-  when: z.enum(["always", "in-acid", "hot", "hot-acid"]),
-  text,
-  provenance: provenanceSchema,
-});
-
-export const glasswareSchema = z.strictObject({
-  kind: z.enum(["burette", "pipette", "flask"]),
-  nominalML: positive,
-  toleranceML: positive,
-  standard: text,
-  provenance: provenanceSchema,
-});
-
-export const standardSchema = z.strictObject({
-  id: text,
-  formula: text,
-  forIon: text,
-  molarMassGPerMol: positive,
-  purityMassFraction: positive.max(1),
-  purityExpandedUncertainty: positive.max(0.05),
-  treatment: text,
-  provenance: provenanceSchema,
-});
-
-export const titrantSchema = z.strictObject({
-  id: text,
-  name: text,
-  usualMolPerL: z.array(molPerL).min(1),
-  donors: z.number().int().positive(),
-  special: z.boolean(),
-});
-
-export const metalTitrantSchema = z.strictObject({
-  ion: text,
-  usualMolPerL: z.array(molPerL).min(1),
-  special: z.boolean(),
-  provenance: provenanceSchema,
-});
-
-export const electrodeSchema = z.strictObject({
-  id: text,
-  ion: text,
-  slopeMVPerDecade: z.number(),
-  detectionLimitMolPerL: positive,
-  pH: range,
-  interferingIons: z.array(
-    z.strictObject({ ion: text, log10Selectivity: z.number().nullable(), provenance: provenanceSchema }),
-  ),
-  provenance: provenanceSchema,
-});
-
+/** A fact about an ion that equilibrium data do not hold. */
 export const ionFactSchema = z.strictObject({
   ion: text,
   fact: text,
@@ -277,6 +205,7 @@ export const atomicWeightSchema = z.strictObject({
   provenance: provenanceSchema,
 });
 
+/** Something about the data that a reader must know. */
 export const remarkSchema = z.strictObject({
   kind: z.enum(["gap", "suspect", "passed-over", "disagreement", "unusable"]),
   about: text,
