@@ -2,6 +2,7 @@ import type { ComponentId, Knowledge } from "../../constants/knowledge.ts";
 import { explicitCurve, whyNotExplicit } from "../curve-explicit.ts";
 import { generalCurve } from "../curve-general.ts";
 import { equilibrate } from "../equilibrate.ts";
+import { formsInTitration } from "../forming-solids.ts";
 import type { CurvePoint, Titration } from "../titration.ts";
 import type { SolveStatus } from "../types.ts";
 import { givenLog10H, givenSystem } from "./given-system.ts";
@@ -63,7 +64,6 @@ function givenCurve(request: CurveRequest, knowledge: Knowledge): Run {
 }
 
 function knownCurve(request: CurveRequest, knowledge: Knowledge): Run {
-  const atOnce = new Map(knowledge.solids.map((s) => [s.id, s.pace === "fast"]));
   const free = request.free ?? {};
   let start: ReadonlyMap<ComponentId, number> | undefined;
   let first: number | null = null;
@@ -81,7 +81,7 @@ function knownCurve(request: CurveRequest, knowledge: Knowledge): Run {
       temperatureC: request.temperatureC ?? 25,
       ionicStrength: request.ionicStrengthMolPerL ?? "auto",
       solids: request.solids === false ? "saturation-only" : "equilibrium",
-      options: { solids: (s) => atOnce.get(s.id) === true },
+      options: { solids: (s) => formsInTitration(s, "at-once") },
       ...(start === undefined ? {} : { startLnFree: start }),
     });
     const { system, result } = state;

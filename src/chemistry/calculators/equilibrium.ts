@@ -1,6 +1,7 @@
 import type { ComponentId, Knowledge } from "../../constants/knowledge.ts";
 import type { EquilibriumState } from "../equilibrate.ts";
 import { equilibrate } from "../equilibrate.ts";
+import { formsInTitration } from "../forming-solids.ts";
 import { prepareSystem } from "../prepare-system.ts";
 import { solveEquilibrium } from "../solve-equilibrium.ts";
 import { conditionalConstantAt, log10SideReaction } from "../speciation.ts";
@@ -104,7 +105,6 @@ function solveKnown(
   free: Readonly<Record<ComponentId, number>>,
   knowledge: Knowledge,
 ): Solved {
-  const mayForm = new Map(knowledge.solids.map((s) => [s.id, s.pace === "fast" || s.pace === "minutes"]));
   const state: EquilibriumState = equilibrate(knowledge, {
     totals: request.totals,
     free,
@@ -113,7 +113,7 @@ function solveKnown(
     temperatureC: request.temperatureC ?? 25,
     ionicStrength: request.ionicStrengthMolPerL ?? "auto",
     solids: request.solids === false ? "saturation-only" : "equilibrium",
-    options: { solids: (s) => mayForm.get(s.id) === true },
+    options: { solids: (s) => formsInTitration(s, "minutes") },
   });
   return {
     ...state,
