@@ -1,0 +1,72 @@
+import { describe, expect, it } from "vitest";
+import { checkRules, FACT_CATALOGUE, leavesOf, loadRules } from "../../src/inference/index.ts";
+import { factFaults } from "../../src/inference/check-facts.ts";
+import { neutralFacts } from "../../src/inference/neutral-facts.ts";
+
+const folder = new URL("../../rules", import.meta.url).pathname;
+const base = loadRules(folder);
+
+describe("the built-in rules", () => {
+  it("pass every check, their examples in the engine too", async () => {
+    const { rules, faults } = await checkRules(folder);
+    expect(faults.map((fault) => fault.message)).toEqual([]);
+    expect(rules.length).toBeGreaterThanOrEqual(60);
+  });
+
+  it("cover the eight topics, one file each", () => {
+    expect([...base.topics.keys()].sort()).toEqual(
+      ["indicator", "kinetics", "masking", "mode", "practicability", "precipitation", "precision", "safety"].sort(),
+    );
+    for (const rule of base.rules) expect(rule.file).toBe(`${rule.topic}.rules.json`);
+  });
+
+  it("show a value on each side of every limit that a rule sets alone", () => {
+    const without = base.rules.flatMap((rule) => {
+      const examples = [...rule.examples.fires, ...rule.examples.silent];
+      return leavesOf(rule.when)
+        .filter((leaf) => typeof leaf.value === "number")
+        .filter((leaf) => new Set(examples.map((example) => example[leaf.fact])).size < 2)
+        .map((leaf) => `${rule.id} ${leaf.fact}`);
+    });
+    expect(without).toEqual([]);
+  });
+
+  it("weigh only whole methods and titrations where a count of components would add up, but for partial titration and masks", () => {
+    const weighing = base.byScope.component.filter((rule) => rule.weight !== 0).map((rule) => rule.id);
+    expect(weighing).toEqual([
+      "masking/cyanide-zinc-cadmium-excess",
+      "masking/acetylacetone-iron-colour",
+      "masking/partly-titrated",
+    ]);
+  });
+
+  it("never let an extra titration gain points: what favours a titration weighs less than a further one costs", () => {
+    const gain = base.byScope.stage.filter((rule) => rule.effect === "favours").map((rule) => rule.weight);
+    const cost = base.byId.get("mode/further-titration")!.weight;
+    expect(Math.max(...gain)).toBeLessThan(-cost);
+  });
+
+  it("refuse cyanide below 9.5 and sulfide below 9", () => {
+    for (const id of ["safety/cyanide-below-9-5", "safety/sulfide-below-9"])
+      expect(base.byId.get(id)?.effect).toBe("excludes");
+  });
+});
+
+describe("FACT_CATALOGUE", () => {
+  it("names each fact once a scope, with a guard of the same scope for every number that may be absent", () => {
+    const names = FACT_CATALOGUE.map((fact) => `${fact.scope} ${fact.name}`);
+    expect(new Set(names).size).toBe(names.length);
+    for (const fact of FACT_CATALOGUE) {
+      expect(fact.optional).toBe(fact.guard !== null);
+      if (fact.guard !== null) expect(names).toContain(`${fact.scope} ${fact.guard}`);
+    }
+  });
+
+  it("is satisfied by the neutral facts, on which no rule but praise for precedent fires", () => {
+    const firing = (["method", "stage", "component"] as const).flatMap((scope) => {
+      expect(factFaults(scope, neutralFacts(scope))).toEqual([]);
+      return base.byScope[scope].filter((rule) => rule.examples.fires.some((facts) => Object.keys(facts).length === 0));
+    });
+    expect(firing.map((rule) => rule.id)).toEqual(["indicator/use-published"]);
+  });
+});
