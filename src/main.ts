@@ -73,19 +73,10 @@ function doors(io: CommandIO): Doors {
 const calculators = () => Promise.all([import("./recommendation/calculate.ts"), import("./constants/index.ts")]);
 
 async function serve(host: string, port: number, io: CommandIO): Promise<string> {
-  const [
-    engine,
-    { startServer },
-    { FACT_CATALOGUE, OPERATORS },
-    { answerCurve, answerEquilibrium },
-    { readBrief },
-    { figureSeries },
-  ] = await Promise.all([
+  const [engine, { startServer }, { FACT_CATALOGUE, OPERATORS }, { figureSeries }] = await Promise.all([
     openEngine(),
     import("./web/index.ts"),
     import("./inference/index.ts"),
-    import("./recommendation/calculate.ts"),
-    import("./recommendation/brief.ts"),
     import("./recommendation/calculate-series.ts"),
   ]);
   const { knowledge, ruleBase, recommend } = engine;
@@ -96,11 +87,8 @@ async function serve(host: string, port: number, io: CommandIO): Promise<string>
         rules: ruleBase.rules,
         facts: FACT_CATALOGUE,
         operators: OPERATORS,
-        readBrief: (brief) => readBrief(brief, knowledge),
         recommend,
         figureSeries: (document, methodId) => figureSeries(document, methodId, knowledge),
-        equilibrium: (question) => answerEquilibrium(question, knowledge),
-        curve: (question) => answerCurve(question, knowledge),
         log: (line) => io.err(`${line}\n`),
       },
       { host, port },

@@ -2,7 +2,7 @@ import { readIon } from "../constants/ion-names.ts";
 import type { ComponentForm, ComponentRecord, Knowledge } from "../constants/knowledge.ts";
 import { type Fault, InputError } from "../errors.ts";
 import type { Task, TaskAnalyte, TaskComponent } from "../methods/types.ts";
-import { readReagents } from "./brief-reagents.ts";
+import { nearest, readReagents } from "./brief-reagents.ts";
 import { addRows, type BriefRow, doubledReports, inBothLists } from "./brief-rows.ts";
 import {
   analyteSchema,
@@ -119,9 +119,17 @@ export function readComponent(
   const expected =
     reading.kind === "ambiguous"
       ? `one ion, written so that it can be read in one way: ${reading.readings.join(" or ")}`
-      : `a known ion or component (nearest: ${reading.nearest.join(", ")})`;
+      : `a known ion or component (nearest: ${(reading.nearest.length > 0 ? reading.nearest : nearestSpellings(text, knowledge)).join(", ")})`;
   faults.push({ path: jsonPath(path), expected, found: describeFound(text) });
   return null;
+}
+
+/** The reader of ions offers only what is close; where nothing is, the least distant spellings still show how ions are written. */
+function nearestSpellings(text: string, knowledge: Knowledge): readonly string[] {
+  return nearest(
+    text,
+    [...knowledge.components.values()].flatMap((component) => component.forms.map((form) => form.spelling)),
+  );
 }
 
 function readLaboratory(json: unknown, knowledge: Knowledge, faults: Fault[]): Task["laboratory"] | null {

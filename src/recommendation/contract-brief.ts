@@ -58,7 +58,12 @@ export const laboratorySchema = z.strictObject({
 
 /** The brief as its writer sends it: shape, limits and defaults; what the words mean is settled by `readBrief`. */
 export const briefSchema = z.strictObject({
-  title: z.string().trim().min(1).max(BRIEF_LIMITS.titleCharacters),
+  title: z
+    .string()
+    .trim()
+    .min(1)
+    .max(BRIEF_LIMITS.titleCharacters)
+    .refine((title) => !/\p{Cc}/u.test(title), "a text without control characters"),
   analytes: z.array(analyteSchema).min(1).max(BRIEF_LIMITS.analytes),
   matrix: z.array(matrixRowSchema).max(BRIEF_LIMITS.matrixRows).default([]),
   portion: portionSchema.default({ volumeML: 50, titrationVolumeML: 100 }),

@@ -1,7 +1,8 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { RuleRunner } from "../inference/index.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
-import { roughCost, searchMethods, singleMethod, type EvaluatedMethod } from "../methods/methods.ts";
+import { roughCost, singleMethod, type EvaluatedMethod } from "../methods/methods.ts";
+import { searchMethods } from "../methods/search.ts";
 import { toleranceLimits } from "../methods/tolerance.ts";
 import type { Task } from "../methods/types.ts";
 import { centred, workingRange, type WorkingRange } from "../methods/working-range.ts";
