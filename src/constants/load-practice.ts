@@ -18,6 +18,7 @@ import type {
 } from "./knowledge.ts";
 import * as schema from "./practice-schema.ts";
 import { type ReadFile, readRecords } from "./read-records.ts";
+import * as shelf from "./shelf-schema.ts";
 
 /** Handbook and trade knowledge as its files hold it: ions still in the spelling of the files, nothing joined. */
 export interface PracticeData {
@@ -45,18 +46,18 @@ export function loadPractice(readFile: ReadFile): PracticeData {
     readRecords(readFile, name, z.array(record).min(1));
   return {
     sources: list("sources-practice.json", schema.sourceSchema),
-    titrants: list("titrants.json", schema.titrantSchema),
-    metalTitrants: list("metal-titrants.json", schema.metalTitrantSchema),
+    titrants: list("titrants.json", shelf.titrantSchema),
+    metalTitrants: list("metal-titrants.json", shelf.metalTitrantSchema),
     indicators: list("indicators.json", schema.indicatorSchema),
     buffers: list("buffers.json", schema.bufferSchema),
     agents: list("agents.json", schema.agentSchema),
     masking: list("masking.json", schema.maskingSchema),
     kinetics: list("kinetics.json", schema.kineticSchema),
-    electrodes: list("electrodes.json", schema.electrodeSchema),
-    reagents: list("reagents.json", schema.reagentSchema),
-    cautions: list("cautions.json", schema.cautionSchema),
-    glassware: list("glassware.json", schema.glasswareSchema),
-    standards: list("standards.json", schema.standardSchema),
+    electrodes: list("electrodes.json", shelf.electrodeSchema),
+    reagents: list("reagents.json", shelf.reagentSchema),
+    cautions: list("cautions.json", shelf.cautionSchema),
+    glassware: list("glassware.json", shelf.glasswareSchema),
+    standards: list("standards.json", shelf.standardSchema),
     ionFacts: list("ion-facts.json", schema.ionFactSchema),
     remarks: list("practice-remarks.json", schema.remarkSchema),
     atomicWeights: list("atomic-weights.json", schema.atomicWeightSchema),
