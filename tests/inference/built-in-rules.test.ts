@@ -31,13 +31,10 @@ describe("the built-in rules", () => {
     expect(without).toEqual([]);
   });
 
-  it("weigh only whole methods and titrations where a count of components would add up, but for partial titration and masks", () => {
-    const weighing = base.byScope.component.filter((rule) => rule.weight !== 0).map((rule) => rule.id);
-    expect(weighing).toEqual([
-      "masking/cyanide-zinc-cadmium-excess",
-      "masking/acetylacetone-iron-colour",
-      "masking/partly-titrated",
-    ]);
+  it("weigh single components lightly, for several of them add up", () => {
+    const weights = base.byScope.component.map((rule) => rule.weight);
+    expect(Math.min(...weights)).toBeGreaterThanOrEqual(-10);
+    expect(Math.max(...weights)).toBe(0);
   });
 
   it("never let an extra titration gain points: what favours a titration weighs less than a further one costs", () => {
