@@ -63,6 +63,22 @@ export function solveEquilibrium(
   totals: ArrayLike<number>,
   options: SolveOptions = {},
 ): EquilibriumResult {
+  const loaded = loadProblem(problem, totals, options);
+  if (loaded === null) return failed(problem);
+  const run = iterate(loaded.st, options);
+  return assemble(problem, loaded.st, loaded.state, totals, options, run);
+}
+
+/**
+ * Checks the input of a solve and puts totals and constants into the scratch of its structure; null when a number is not finite.
+ *
+ * @throws AppError "solver-input" as `solveEquilibrium`.
+ */
+export function loadProblem(
+  problem: MassBalanceProblem,
+  totals: ArrayLike<number>,
+  options: SolveOptions,
+): { readonly st: SolveStructure; readonly state: Uint8Array } | null {
   const compiled = compileProblem(problem);
   const n = problem.nComponents;
   if (totals.length !== n)
@@ -92,10 +108,9 @@ export function solveEquilibrium(
     }
   }
   const st = compiled.structure(state);
-  if (!finite || !loadBase(problem, st, options.fixedLnFree)) return failed(problem);
+  if (!finite || !loadBase(problem, st, options.fixedLnFree)) return null;
   for (let j = 0; j < st.n; j++) st.scratch.total[j] = totals[st.unknown[j]!]!;
-  const run = iterate(problem, st, options);
-  return assemble(problem, st, state, totals, options, run);
+  return { st, state };
 }
 
 interface Run {
@@ -123,7 +138,7 @@ function loadBase(
   return Number.isFinite(check);
 }
 
-function iterate(problem: MassBalanceProblem, st: SolveStructure, options: SolveOptions): Run {
+function iterate(st: SolveStructure, options: SolveOptions): Run {
   const limit = options.maxIterations ?? DEFAULT_ITERATIONS;
   const allowed = new Uint8Array(st.solids.length);
   let anyAllowed = false;

@@ -1,18 +1,23 @@
 import { factorScaled, solveScaled } from "../numerics/cholesky.ts";
-import { compensatedDot } from "../numerics/compensated-dot.ts";
-import { greedyBasis } from "../numerics/integer-basis.ts";
+import {
+  assembleMatrix,
+  type Basis,
+  CAP,
+  balances,
+  chooseBasis,
+  fillConcentrations,
+  isOvertaken,
+} from "./solve-basis.ts";
 import type { SolveStructure } from "./solve-structure.ts";
 
 const TARGET = 2e-15; // of the sum of magnitudes in a balance: what correctly rounded sums can reach
 const ENOUGH = 1e-13; // accepted when rounding stops further progress
-const OVERTAKEN = 20; // a species this much above its basis species calls for another basis
 const SMALL_STEP = 0.05; // below it concentrations are updated by factors, so that no digit is lost in large exponents
 const MAX_STEP = 6; // ln units of any basis species in one step
 const MAX_GROWTH = 40; // doublings and halvings of one line search
 const FLATTENED = 0.1; // the search goes on while the slope still falls by more than this share of the first one
 const OVERSHOT = 0.9; // and turns back when it rises by more than this share
 const MAX_SHIFT = 8; // ln units by which a solid taken in is brought towards saturation per iteration
-const CAP = 600; // exponents are capped here in trials: larger ones only say "far too much"
 
 /** What the reduced method ended with. */
 export interface ReducedOutcome {
@@ -20,18 +25,6 @@ export interface ReducedOutcome {
   readonly iterations: number;
   /** Largest ratio of the magnitudes that cancel in a transformed total to what is left: 10^digits lost by nearly equal totals. */
   readonly cancellation: number;
-}
-
-/** The change of variables at one point: basis species (after the active solids) instead of components. */
-interface Basis {
-  readonly rows: Int32Array; // chosen local rows; the first w are solids (m + s)
-  readonly inverse: Float64Array;
-  readonly denominator: number;
-  readonly total: Float64Array; // transformed totals, per basis element
-  readonly magnitude: Float64Array; // sum of magnitudes in those
-  readonly start: Int32Array; // sparse rows of N: species, then solids, over basis elements
-  readonly column: Int32Array;
-  readonly value: Float64Array;
 }
 
 /**
@@ -64,7 +57,6 @@ export function solveReduced(st: SolveStructure, active: readonly number[], maxI
   const matrix = new Float64Array(n * n);
   const scale = new Float64Array(n);
   const change = new Float64Array(all);
-  const trial = new Float64Array(m);
   let best = Infinity;
   let stalled = 0;
   let iteration = 0;
@@ -72,13 +64,11 @@ export function solveReduced(st: SolveStructure, active: readonly number[], maxI
   fillConcentrations(exponent, concentration, m);
   for (; ; iteration++) {
     const unsaturated = approachSaturation(st, basis, w);
-    if (overtaken(basis, exponent, m, w)) {
+    if (isOvertaken(basis, exponent, m, w)) {
       basis = chooseBasis(st, active);
       if (basis === null) return { status: "nonFinite", iterations: iteration, cancellation: 1 };
     }
-    const error = balances(basis, concentration, m, n, gradient, bulk);
-    let worst = 0;
-    for (let k = w; k < n; k++) worst = Math.max(worst, error[k]!);
+    const worst = balances(basis, concentration, m, w, gradient, bulk);
     if (!Number.isFinite(worst)) {
       status = "nonFinite";
       break;
@@ -97,7 +87,7 @@ export function solveReduced(st: SolveStructure, active: readonly number[], maxI
       break;
     }
     if (iteration >= maxIterations) break;
-    assemble(basis, concentration, m, w, free, matrix);
+    assembleMatrix(basis, concentration, m, w, free, matrix);
     for (let k = 0; k < free; k++) direction[k] = -gradient[k + w]!;
     factorScaled(matrix, free, scale, 1e-30);
     solveScaled(matrix, free, scale, direction);
@@ -123,7 +113,9 @@ export function solveReduced(st: SolveStructure, active: readonly number[], maxI
       for (let i = 0; i < all; i++) exponent[i] = exponent[i]! + change[i]!;
       continue;
     }
-    const t = searchSlope(st, basis, w, direction, damping, change, trial);
+    let slope = 0;
+    for (let k = 0; k < free; k++) slope += gradient[k + w]! * direction[k]! * damping;
+    const t = searchSlope(concentration, change, slope);
     for (let i = 0; i < all; i++) exponent[i] = exponent[i]! + t * change[i]!;
     fillConcentrations(exponent, concentration, m);
   }
@@ -133,57 +125,9 @@ export function solveReduced(st: SolveStructure, active: readonly number[], maxI
   for (let j = 0; j < n; j++) {
     const i = st.unit[j]!;
     const c = concentration[i]!;
-    x[j] = c > 1e-290 ? Math.log(c) : exponent[i]!;
+    x[j] = (c > 1e-290 ? Math.log(c) : exponent[i]!) - base[i]!;
   }
   return { status, iterations: iteration, cancellation };
-}
-
-/** Species by falling concentration after the active solids, greedily independent; then N = A B^-1 and the totals in it. */
-function chooseBasis(st: SolveStructure, active: readonly number[]): Basis | null {
-  const { n, m, dense } = st;
-  const { exponent, total } = st.scratch;
-  const order = new Int32Array(m + active.length);
-  const byConcentration = new Int32Array(m);
-  for (let i = 0; i < m; i++) byConcentration[i] = i;
-  byConcentration.sort((a, b) => exponent[b]! - exponent[a]! || a - b);
-  active.forEach((s, k) => (order[k] = m + s));
-  order.set(byConcentration, active.length);
-  const chosen = greedyBasis(dense, n, order, order.length);
-  if (chosen === null) return null;
-  const { rows, inverse, denominator } = chosen;
-  const all = m + st.solids.length;
-  const start = new Int32Array(all + 1);
-  const column: number[] = [];
-  const value: number[] = [];
-  const { start: rowStart, column: rowColumn, value: rowValue } = st.rows;
-  for (let i = 0; i < all; i++) {
-    for (let k = 0; k < n; k++) {
-      let sum = 0;
-      for (let p = rowStart[i]!; p < rowStart[i + 1]!; p++) sum += rowValue[p]! * inverse[rowColumn[p]! * n + k]!;
-      if (Math.abs(sum) < 1e-9) continue;
-      column.push(k);
-      value.push(sum / denominator);
-    }
-    start[i + 1] = column.length;
-  }
-  const transformed = new Float64Array(n);
-  const magnitude = new Float64Array(n);
-  for (let k = 0; k < n; k++) {
-    transformed[k] = compensatedDot(inverse, k, n, total, n) / denominator;
-    let sum = 0;
-    for (let j = 0; j < n; j++) sum += Math.abs(inverse[j * n + k]! * total[j]!);
-    magnitude[k] = sum / denominator;
-  }
-  return {
-    rows,
-    inverse,
-    denominator,
-    total: transformed,
-    magnitude,
-    start,
-    column: Int32Array.from(column),
-    value: Float64Array.from(value),
-  };
 }
 
 /**
@@ -213,103 +157,23 @@ function approachSaturation(st: SolveStructure, basis: Basis, w: number): boolea
   return unsaturated;
 }
 
-function fillConcentrations(exponent: Float64Array, concentration: Float64Array, m: number): void {
-  for (let i = 0; i < m; i++) concentration[i] = Math.exp(Math.min(exponent[i]!, CAP));
-}
-
-function overtaken(basis: Basis, exponent: Float64Array, m: number, w: number): boolean {
-  const margin = Math.log(OVERTAKEN);
-  for (let i = 0; i < m; i++) {
-    const e = exponent[i]! - margin;
-    for (let p = basis.start[i]!; p < basis.start[i + 1]!; p++) {
-      const k = basis.column[p]!;
-      if (k >= w && e > exponent[basis.rows[k]!]!) return true;
-    }
-  }
-  return false;
-}
-
-/** Gradient N'c - total and its error relative to the magnitudes in each balance. */
-function balances(
-  basis: Basis,
-  concentration: Float64Array,
-  m: number,
-  n: number,
-  gradient: Float64Array,
-  bulk: Float64Array,
-): Float64Array {
-  const { start, column, value, total } = basis;
-  gradient.fill(0);
-  bulk.fill(0);
-  for (let i = 0; i < m; i++) {
-    const c = concentration[i]!;
-    for (let p = start[i]!; p < start[i + 1]!; p++) {
-      const k = column[p]!;
-      const term = value[p]! * c;
-      gradient[k] = gradient[k]! + term;
-      bulk[k] = bulk[k]! + Math.abs(term);
-    }
-  }
-  const error = new Float64Array(n);
-  for (let k = 0; k < n; k++) {
-    gradient[k] = gradient[k]! - total[k]!;
-    error[k] = Math.abs(gradient[k]!) / bulk[k]!;
-  }
-  return error;
-}
-
-function assemble(
-  basis: Basis,
-  concentration: Float64Array,
-  m: number,
-  w: number,
-  free: number,
-  matrix: Float64Array,
-): void {
-  const { start, column, value } = basis;
-  matrix.fill(0);
-  for (let i = 0; i < m; i++) {
-    const c = concentration[i]!;
-    const end = start[i + 1]!;
-    for (let p = start[i]!; p < end; p++) {
-      const k = column[p]! - w;
-      if (k < 0) continue;
-      const weighted = value[p]! * c;
-      for (let q = start[i]!; q <= p; q++) {
-        const l = column[q]! - w;
-        if (l >= 0) matrix[k * free + l] = matrix[k * free + l]! + weighted * value[q]!;
-      }
-    }
-  }
-}
-
-/** Step length along a descent direction: the slope of the convex function there is still falling, or has risen to little. */
-function searchSlope(
-  st: SolveStructure,
-  basis: Basis,
-  w: number,
-  direction: Float64Array,
-  damping: number,
-  change: Float64Array,
-  trial: Float64Array,
-): number {
-  const { m } = st;
-  const { exponent } = st.scratch;
-  let rate = 0; // d(total . y)/dt
-  for (let k = w; k < st.n; k++) rate += basis.total[k]! * direction[k - w]! * damping;
-  const slope = (t: number): number => {
-    for (let i = 0; i < m; i++) trial[i] = exponent[i]! + t * change[i]!;
-    fillConcentrations(trial, trial, m);
-    let sum = 0;
-    for (let i = 0; i < m; i++) sum += trial[i]! * change[i]!;
-    return sum - rate;
-  };
-  const first = slope(0);
+/**
+ * Step length along a descent direction: where the slope of the convex function has nearly vanished, or has risen to little.
+ *
+ * Slopes are the first one plus what the concentrations' changes add to it, so that species which the direction hardly
+ * moves do not drown it in their rounding. `first` < 0 is the slope at the start; `change` the exponents' change at t = 1.
+ */
+function searchSlope(concentration: Float64Array, change: Float64Array, first: number): number {
+  const m = concentration.length;
   let t = 1;
   let low = 0;
   let high = Infinity;
   for (let trialCount = 0; trialCount < MAX_GROWTH; trialCount++) {
-    const here = slope(t);
+    let here = first;
+    for (let i = 0; i < m; i++) {
+      const move = change[i]!;
+      if (move !== 0) here += move * concentration[i]! * Math.expm1(Math.min(t * move, CAP));
+    }
     if (here >= FLATTENED * first && here <= -OVERSHOT * first) return t;
     if (here < 0) low = t;
     else high = t;

@@ -19,19 +19,22 @@ export interface SolidsOutcome extends ReducedOutcome {
  *
  * One solid enters (the most supersaturated) or leaves (the most negative amount) at a time, each time with the convex
  * problem solved on the set; one that depends on those present takes the place of the first whose amount it would
- * bring to zero. A set that comes back ends the search with "maxIterations", so that the caller can take the barrier method.
+ * bring to zero. Should a set come back, the search goes on by the least index that offends instead, which cannot cycle (K. G. Murty,
+ * Linear Algebra Appl. 9 (1974) 65: the least-index rule for complementarity with a unique answer). `rule` "least-index" does so from the start.
  */
 export function solveActiveSet(
   st: SolveStructure,
   allowed: Uint8Array,
   guess: readonly number[],
   maxIterations: number,
+  rule: "worst-first" | "least-index" = "worst-first",
 ): SolidsOutcome {
   let active = independent(
     st,
     guess.filter((s) => allowed[s] === 1),
   );
   const seen = new Set<string>();
+  let leastIndex = rule === "least-index";
   let iterations = 0;
   let changes = 0;
   for (;;) {
@@ -39,10 +42,11 @@ export function solveActiveSet(
     iterations += outcome.iterations;
     const done = { ...outcome, iterations, active, changes };
     if (outcome.status !== "converged") return done;
-    const next = nextSet(st, allowed, active);
+    const next = nextSet(st, allowed, active, leastIndex);
     if (next === null) return done;
+    if (changes >= MAX_CHANGES) return { ...done, status: "maxIterations" };
     const key = next.join(",");
-    if (seen.has(key) || changes >= MAX_CHANGES) return { ...done, status: "maxIterations" };
+    if (seen.has(key)) leastIndex = true;
     seen.add(key);
     changes++;
     active = next;
@@ -50,25 +54,31 @@ export function solveActiveSet(
 }
 
 /** The set with one solid taken out or in, or null when complementarity holds. */
-function nextSet(st: SolveStructure, allowed: Uint8Array, active: readonly number[]): readonly number[] | null {
+function nextSet(
+  st: SolveStructure,
+  allowed: Uint8Array,
+  active: readonly number[],
+  leastIndex: boolean,
+): readonly number[] | null {
   const { amount, exponent } = st.scratch;
   let leaving = -1;
   let lowest = 0;
-  for (const s of active) {
-    const relative = amount[s]! / solidScale(st, s);
-    if (relative < -NOTHING && relative < lowest) {
-      lowest = relative;
-      leaving = s;
-    }
-  }
-  if (leaving >= 0) return active.filter((s) => s !== leaving);
   let entering = -1;
   let highest = SATURATED_LN;
   for (let s = 0; s < st.solids.length; s++) {
-    if (allowed[s] !== 1 || active.includes(s) || !(exponent[st.m + s]! > highest)) continue;
-    highest = exponent[st.m + s]!;
-    entering = s;
+    if (active.includes(s)) {
+      const relative = amount[s]! / solidScale(st, s);
+      if (!(relative < -NOTHING && relative < lowest)) continue;
+      lowest = relative;
+      leaving = s;
+    } else {
+      if (allowed[s] !== 1 || !(exponent[st.m + s]! > highest)) continue;
+      highest = exponent[st.m + s]!;
+      entering = s;
+    }
+    if (leastIndex) break;
   }
+  if (leaving >= 0) return active.filter((s) => s !== leaving);
   if (entering < 0) return null;
   const weights = dependence(st, active, entering);
   if (weights === null) return [...active, entering].sort((a, b) => a - b);

@@ -63,18 +63,21 @@ export interface CompiledProblem {
   structure(state: ArrayLike<number>): SolveStructure;
 }
 
-const cache = new WeakMap<Int8Array, CompiledProblem>();
+const NO_SOLIDS = new Int8Array(0);
+const cache = new WeakMap<Int8Array, WeakMap<Int8Array, CompiledProblem>>();
 
 /**
- * Prepares the index lists of a problem once. Keyed by its stoichiometry array, which must not be changed afterwards;
- * `lnBeta` is read afresh at each solve, so problems that share the array (other constants, same species) share the work.
+ * Prepares the index lists of a problem once. Keyed by its stoichiometry arrays (species and solids), which must not be changed afterwards;
+ * `lnBeta` is read afresh at each solve, so problems that share the arrays (other constants, same species) share the work.
  *
  * @throws AppError "solver-input" when lengths disagree or a component has no free species (a unit row).
  */
 export function compileProblem(problem: MassBalanceProblem): CompiledProblem {
-  const known = cache.get(problem.stoichiometry);
-  if (known !== undefined) return known;
   const { nComponents: n, nSpecies: m, stoichiometry, solids } = problem;
+  const solidsKey = solids.n === 0 ? NO_SOLIDS : solids.stoichiometry;
+  let bySolids = cache.get(stoichiometry);
+  const known = bySolids?.get(solidsKey);
+  if (known !== undefined) return known;
   if (
     stoichiometry.length !== n * m ||
     problem.lnBeta.length !== m ||
@@ -116,7 +119,9 @@ export function compileProblem(problem: MassBalanceProblem): CompiledProblem {
       return found;
     },
   };
-  cache.set(problem.stoichiometry, compiled);
+  bySolids ??= new WeakMap<Int8Array, CompiledProblem>();
+  bySolids.set(solidsKey, compiled);
+  cache.set(stoichiometry, bySolids);
   return compiled;
 }
 
