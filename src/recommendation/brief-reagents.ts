@@ -1,3 +1,4 @@
+import { editDistance } from "../constants/edit-distance.ts";
 import { readIon } from "../constants/ion-names.ts";
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { Fault } from "../errors.ts";
@@ -60,26 +61,15 @@ function metalTitrant(text: string, knowledge: Knowledge): string | undefined {
   return reading.component.ion;
 }
 
+/** Distances beyond this are all the same: nothing alike. */
+const FURTHEST = 20;
+
 /** The known words closest to `text` by the number of letters to change, best first (at most three). */
 export function nearest(text: string, known: readonly string[]): readonly string[] {
   const wanted = plain(text);
   return known
-    .map((word) => ({ word, distance: lettersToChange(wanted, plain(word)) }))
+    .map((word) => ({ word, distance: editDistance(wanted, plain(word), FURTHEST) }))
     .sort((a, b) => a.distance - b.distance || a.word.localeCompare(b.word))
     .slice(0, 3)
     .map(({ word }) => word);
-}
-
-/** Levenshtein's distance between two words. */
-function lettersToChange(a: string, b: string): number {
-  let row = Array.from({ length: b.length + 1 }, (_, j) => j);
-  for (let i = 1; i <= a.length; i += 1) {
-    const next = [i];
-    for (let j = 1; j <= b.length; j += 1)
-      next.push(
-        Math.min((row[j] ?? 0) + 1, (next[j - 1] ?? 0) + 1, (row[j - 1] ?? 0) + (a[i - 1] === b[j - 1] ? 0 : 1)),
-      );
-    row = next;
-  }
-  return row[b.length] ?? 0;
 }
