@@ -1,6 +1,6 @@
 import { DataError } from "../errors.ts";
 import { compositionKey } from "./choose-chains.ts";
-import type { Composition, Term } from "./equilibria-schema.ts";
+import type { Composition, Term } from "./equilibria-rows.ts";
 
 /** A reaction with its partners under their keys, made once so that thousands of chains can be checked quickly. */
 export interface KeyedReaction {
@@ -37,27 +37,26 @@ export function checkChain(
   file: string,
   path: string,
 ): void {
-  const left = new Map<string, { components: Composition; amount: number }>();
+  const left: { key: string; components: Composition; amount: number }[] = [];
   for (const [id, factor] of chain) {
     const reaction = reactions.get(id);
     if (reaction === undefined) throw new DataError(file, `${path}.chain`, `unknown reaction "${id}"`);
     if (!reaction.hasValue) throw new DataError(file, `${path}.chain`, `the reaction "${id}" has no value`);
-    for (const partner of reaction.partners) {
-      const present = left.get(partner.key);
-      const amount = factor * partner.coefficient;
-      if (present === undefined) left.set(partner.key, { components: partner.components, amount });
-      else present.amount += amount;
+    for (const { key, components: partner, coefficient } of reaction.partners) {
+      const present = left.find((other) => other.key === key);
+      if (present === undefined) left.push({ key, components: partner, amount: factor * coefficient });
+      else present.amount += factor * coefficient;
     }
   }
-  const remaining = [...left].filter(([, { amount }]) => Math.abs(amount) > ROUNDING);
+  const remaining = left.filter(({ amount }) => Math.abs(amount) > ROUNDING);
   const [only] = remaining;
   if (
     remaining.length !== 1 ||
     only === undefined ||
-    !only[0].startsWith(`${phase}|`) ||
-    !isMultiple(only[1], components)
+    !only.key.startsWith(`${phase}|`) ||
+    !isMultiple(only.components, only.amount, components)
   ) {
-    const found = remaining.map(([key, { amount }]) => `${amount} of ${key}`).join(", ");
+    const found = remaining.map(({ key, amount }) => `${amount} of ${key}`).join(", ");
     throw new DataError(
       file,
       `${path}.chain`,
@@ -66,10 +65,8 @@ export function checkChain(
   }
 }
 
-function isMultiple(left: { components: Composition; amount: number }, components: Composition): boolean {
-  const ids = new Set([...Object.keys(left.components), ...Object.keys(components)]);
-  for (const id of ids) {
-    if (Math.abs((left.components[id] ?? 0) * left.amount - (components[id] ?? 0)) > ROUNDING) return false;
-  }
+function isMultiple(left: Composition, amount: number, components: Composition): boolean {
+  for (const id in left) if (Math.abs(left[id]! * amount - (components[id] ?? 0)) > ROUNDING) return false;
+  for (const id in components) if (!(id in left)) return false;
   return true;
 }

@@ -1,4 +1,4 @@
-import type { Composition, Term } from "./equilibria-schema.ts";
+import type { Composition, Term } from "./equilibria-rows.ts";
 
 /** A reaction as the choice of chains sees it. */
 export interface ChainReaction {
@@ -22,18 +22,21 @@ export interface ReactionQuality {
   readonly read: boolean; // a record that was read, not recalled
 }
 
-/** Cost of a reaction as a link of a chain: 1, and more for doubtful (10), recalled (2) and far from usual conditions (0.5). */
+/** Cost of a reaction as a link of a chain: 1, and more for doubtful (10), recalled (8) and far from usual conditions (0.5). */
 export function reactionWeight(quality: ReactionQuality): number {
-  return 1 + (quality.allDoubtful ? 10 : 0) + (quality.read ? 0 : 2) + (quality.nearUsualConditions ? 0 : 0.5);
+  return 1 + (quality.allDoubtful ? 10 : 0) + (quality.read ? 0 : 8) + (quality.nearUsualConditions ? 0 : 0.5);
 }
 
 /** A key for a composition: entries in order of component, zeros dropped. */
 export function compositionKey(components: Composition): string {
-  return Object.entries(components)
-    .filter(([, n]) => n !== 0)
-    .sort(([a], [b]) => (a < b ? -1 : 1))
-    .map(([id, n]) => `${id}:${n}`)
-    .join(" ");
+  const ids = Object.keys(components);
+  if (ids.length > 1) ids.sort();
+  let key = "";
+  for (const id of ids) {
+    const count = components[id]!;
+    if (count !== 0) key += `${key === "" ? "" : " "}${id}:${count}`;
+  }
+  return key;
 }
 
 /** The partners of a reaction, equal ones merged. */

@@ -1,27 +1,42 @@
 import { z } from "zod";
+import {
+  type Composition,
+  hasKeys,
+  isChain,
+  isComposition,
+  isListOf,
+  isPrinted,
+  isTerm,
+  isText,
+  type StoredChain,
+} from "./equilibria-rows.ts";
 
-/** A composition over components, zero entries left out: { "Zn2+": 1, "ammonia": 2 }; hydroxo species carry a negative "H+". */
-export const compositionSchema = z.record(z.string(), z.number());
+const listOf = <T>(is: (value: unknown) => value is T, what: string) =>
+  z.custom<readonly T[]>((value) => isListOf(value, is), `expected a list of ${what}`);
 
-/** One partner of a reaction: coefficient (products positive), composition, and "s" or "g" where it is not dissolved. */
-const termSchema = z.union([
-  z.tuple([z.number(), compositionSchema]),
-  z.tuple([z.number(), compositionSchema, z.enum(["s", "g"])]),
-]);
+/** A list of rows: those that `isRow` passes are taken as they are, the others are put to `schema`, whose faults name their place. */
+function rowsOf<S extends z.ZodType>(schema: S, isRow: (row: unknown) => boolean) {
+  return z.custom<readonly z.infer<S>[]>().superRefine((rows: unknown, context) => {
+    if (!Array.isArray(rows)) {
+      context.addIssue({ code: "custom", message: "expected a list" });
+      return;
+    }
+    for (const [i, row] of (rows as readonly unknown[]).entries()) {
+      if (isRow(row)) continue;
+      for (const issue of schema.safeParse(row).error?.issues ?? []) {
+        context.addIssue({ code: "custom", message: issue.message, path: [i, ...issue.path] });
+      }
+    }
+  });
+}
 
-/**
- * One value of a compilation as printed: record id, value, temperature (C), ionic strength (mol/L), error column, footnote,
- * 1 where printed in parentheses. Value and error stay text, for the error counts in units of the last digit printed.
- */
-const printedSchema = z.tuple([
-  z.string().min(1),
-  z.string().regex(/^-?\d+(\.\d+)?$/),
-  z.number(),
-  z.number().nonnegative(),
-  z.string().regex(/^(0|\+\/-\d+|[+-]\d+)$/),
-  z.string(),
-  z.union([z.literal(0), z.literal(1)]),
-]);
+const compositionSchema = z.custom<Composition>(
+  isComposition,
+  'expected counts by component, as { "Zn2+": 1 }, none of them 0',
+);
+const termsSchema = listOf(isTerm, 'partners [coefficient, composition] or [coefficient, composition, "s" or "g"]');
+const printedSchema = listOf(isPrinted, "values [record, value as text, C, mol/L, error column, footnote, 0 or 1]");
+const chainSchema = z.custom<StoredChain>(isChain, "expected a chain [[reaction, factor], ...]");
 
 const confidenceSchema = z.enum(["high", "medium", "low"]);
 
@@ -42,26 +57,48 @@ const singleSchema = z.strictObject({
 const reactionSchema = z.strictObject({
   id: z.string().min(1),
   text: z.string().min(1),
-  terms: z.array(termSchema).min(1),
-  logK: z.array(printedSchema).optional(),
-  enthalpy: z.array(printedSchema).optional(),
+  terms: termsSchema,
+  logK: printedSchema.optional(),
+  enthalpy: printedSchema.optional(),
   single: z.array(singleSchema).optional(),
   notUsed: z.string().min(1).optional(), // why no species may be derived through this reaction
 });
+
+function isReactionRow(row: unknown): boolean {
+  return (
+    hasKeys(row, ["id", "text", "terms"], ["logK", "enthalpy", "single", "notUsed"]) &&
+    isText(row["id"]) &&
+    isText(row["text"]) &&
+    isListOf(row["terms"], isTerm) &&
+    (row["logK"] === undefined || isListOf(row["logK"], isPrinted)) &&
+    (row["enthalpy"] === undefined || isListOf(row["enthalpy"], isPrinted)) &&
+    (row["notUsed"] === undefined || isText(row["notUsed"])) &&
+    row["single"] === undefined // these few are put to the schema
+  );
+}
 
 /** A file of reactions; `source` belongs to the printed values. */
 export const reactionFileSchema = z.strictObject({
   about: z.string(),
   source: z.string().min(1),
-  reactions: z.array(reactionSchema),
+  reactions: rowsOf(reactionSchema, isReactionRow),
 });
 
-const chainSchema = z.array(z.tuple([z.string(), z.number()]));
+const speciesSchema = z.strictObject({ id: z.string().min(1), components: compositionSchema, chain: chainSchema });
+
+function isSpeciesRow(row: unknown): boolean {
+  return (
+    hasKeys(row, ["id", "components", "chain"], []) &&
+    isText(row["id"]) &&
+    isComposition(row["components"]) &&
+    isChain(row["chain"])
+  );
+}
 
 /** A file of species: composition and the reactions that make it. */
 export const speciesFileSchema = z.strictObject({
   about: z.string(),
-  species: z.array(z.strictObject({ id: z.string().min(1), components: compositionSchema, chain: chainSchema })),
+  species: rowsOf(speciesSchema, isSpeciesRow),
 });
 
 const provenanceSchema = z.strictObject({
@@ -136,10 +173,6 @@ export const remarkFileSchema = z.strictObject({
   ),
 });
 
-export type Composition = Readonly<Record<string, number>>;
-export type Term =
-  | readonly [number, Readonly<Record<string, number>>]
-  | readonly [number, Readonly<Record<string, number>>, "s" | "g"];
-export type FileReaction = z.infer<typeof reactionSchema>;
-export type PrintedValue = z.infer<typeof printedSchema>;
 export type SingleValue = z.infer<typeof singleSchema>;
+
+export type FileReaction = z.infer<typeof reactionSchema>;

@@ -1,6 +1,6 @@
 import { DataError } from "../errors.ts";
 import { checkChain, keyReaction, type KeyedReaction } from "./check-chains.ts";
-import type { Composition, Term } from "./equilibria-schema.ts";
+import type { Composition, Term } from "./equilibria-rows.ts";
 import {
   componentFileSchema,
   reactionFileSchema,
@@ -17,6 +17,7 @@ import type {
   SourceRecord,
   SpeciesDefinition,
 } from "./knowledge.ts";
+import { checkNeighbours } from "./neighbours.ts";
 import { printedEnthalpy, printedRecord, singleRecord } from "./printed-records.ts";
 import { type ReadFile, readRecords } from "./read-records.ts";
 
@@ -78,7 +79,7 @@ export function loadEquilibria(readFile: ReadFile): Equilibria {
     solids.push({ ...entry, chain: asChain(entry.chain) } as SolidDefinition);
   }
   const written = readRecords(readFile, "equilibria-remarks.json", remarkFileSchema).remarks;
-  const remarks = [...written];
+  const remarks = [...written, ...checkNeighbours(reactions)];
   return { components: components, reactions, species, solids, sources, remarks };
 }
 

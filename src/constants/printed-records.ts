@@ -1,5 +1,6 @@
 import { DataError } from "../errors.ts";
-import type { PrintedValue, SingleValue } from "./equilibria-schema.ts";
+import type { PrintedValue } from "./equilibria-rows.ts";
+import type { SingleValue } from "./equilibria-schema.ts";
 import type { ConstantRecord, EnthalpyRecord, Provenance } from "./knowledge.ts";
 import { mediumOfFootnote } from "./media.ts";
 import { assumedUncertainty, printedUncertainty } from "./uncertainty.ts";
