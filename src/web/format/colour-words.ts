@@ -1,4 +1,4 @@
-import { Markup, escapeHtml } from "../render/markup.ts";
+import { Markup } from "../render/markup.ts";
 
 /** Our own approximations of the colours chemists name; a swatch never stands without the words. */
 const HUES: readonly (readonly [word: string, hex: string])[] = [
@@ -60,9 +60,9 @@ export function colourHex(words: string): string | null {
 }
 
 /** A small square of the colour (presentation attributes only, so no inline style) followed by the words themselves. */
-export function colourMarkup(words: string): Markup {
+export function colourMarkup(words: string, set: (text: string) => Markup): Markup {
   const hex = colourHex(words);
-  const label = escapeHtml(words);
+  const label = set(words).html;
   if (hex === null) return new Markup(label);
   return new Markup(
     `<span class="colour"><svg class="swatch" viewBox="0 0 12 12" width="12" height="12" aria-hidden="true" focusable="false"><rect x="0.5" y="0.5" width="11" height="11" fill="${hex}" stroke="#1d2a44"/></svg>${label}</span>`,

@@ -58,6 +58,7 @@ export function amount(molPerL: number | null | undefined, figures = 3): string 
 /** A percentage with as many decimals as its size asks for. */
 export function percent(value: number | null | undefined): string {
   if (value === null || value === undefined || !Number.isFinite(value)) return NONE;
+  if (value > 0 && value < SMALLEST_PERCENT) return `<${SMALLEST_PERCENT} %`;
   return `${fixed(value, percentDecimals(value))} %`;
 }
 
@@ -67,8 +68,11 @@ export function signedPercent(value: number | null | undefined): string {
   return `${signed(value, percentDecimals(value))} %`;
 }
 
+/** Below this a share is said to be smaller. */
+const SMALLEST_PERCENT = 0.001;
+
 function percentDecimals(value: number): number {
-  const size = Math.abs(value);
+  const size = Math.abs(value) < SMALLEST_PERCENT / 2 ? 0 : Math.abs(value);
   if (size >= 100) return 0;
   if (size >= 10) return 1;
   if (size >= 0.1 || size === 0) return 2;

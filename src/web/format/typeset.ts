@@ -1,6 +1,7 @@
 import type { Knowledge } from "../../constants/knowledge.ts";
 import { Markup, escapeHtml } from "../render/markup.ts";
 
+const MINUS = "\u2212";
 const CHARGE = /^(.*?)(?:\^(\d+[+-])|([+-]))$/;
 const SPACED_CHARGE = /^(.*\S) (\d*[+-])$/;
 
@@ -33,11 +34,16 @@ function bodyHtml(body: string): string {
 }
 
 function chargeHtml(charge: string): string {
-  return `<sup>${escapeHtml(charge).replace("-", "\u2212")}</sup>`;
+  return `<sup>${escapeHtml(charge).replace("-", MINUS)}</sup>`;
 }
 
 /** Sets running text: every known ion spelling in it as a formula, log K' with its prime, powers of ten raised. */
 export type Typesetter = (text: string) => Markup;
+
+/** Longest spelling that is looked for in running text, in characters. */
+const LONGEST = 40;
+/** How many set texts are kept. */
+const KEPT = 5000;
 
 /** A typesetter that knows the spellings of this knowledge base and nothing else, so ordinary words stay as they are. */
 export function createTypesetter(knowledge: Knowledge): Typesetter {
@@ -45,44 +51,84 @@ export function createTypesetter(knowledge: Knowledge): Typesetter {
   for (const component of knowledge.components.values())
     for (const form of [component.ion, ...component.forms.map((f) => f.spelling)])
       if (/[\d+^-]/.test(form) && /^[A-Z]/.test(form)) spellings.set(form, formulaHtml(form, true));
-  for (const species of [...knowledge.species, ...knowledge.solids])
-    if (/^[A-Z(]/.test(species.id) && /\d|[+-]$/.test(species.id) && !species.id.includes(" ("))
-      if (!spellings.has(species.id)) spellings.set(species.id, formulaHtml(species.id, false));
+  const addSpecies = (id: string): void => {
+    if (id.length > 2 && /^[A-Z(]/.test(id) && /\d|[+-]$/.test(id) && !spellings.has(id))
+      spellings.set(id, formulaHtml(id, false));
+  };
+  for (const species of knowledge.species) addSpecies(species.id);
+  for (const solid of knowledge.solids) addSpecies(solid.id.replace(/ \(.*$/, ""));
+  // Ids of reagents that slip into a sentence are read as their names.
+  for (const { id, name } of [...knowledge.indicators.values(), ...knowledge.agents.values()])
+    if (id.includes("-") && /^[a-z]/.test(id)) spellings.set(id, escapeHtml(name));
   const cache = new Map<string, Markup>();
   return (text) => {
     let markup = cache.get(text);
     if (!markup) {
       markup = new Markup(setText(text, spellings));
-      if (cache.size > 5000) cache.clear();
+      if (cache.size > KEPT) cache.clear();
       cache.set(text, markup);
     }
     return markup;
   };
 }
 
-const TOKEN =
-  /log K'|log10 ?([A-Za-z])|10\^(-?\d+)|(-?\d+(?:\.\d+)?)e([+-]?\d+)|[A-Z([][A-Za-z0-9()[\]^·]*(?: \d?[+-](?![\w]))?[+-]*/g;
+/** Signs that do not depend on the knowledge base: each at the start of what is left, with how it is set. */
+const SIGNS: readonly (readonly [RegExp, (match: RegExpExecArray) => string])[] = [
+  [/^log K'/, () => "log&nbsp;<i>K</i>′"],
+  [/^log10 (?=[A-Za-z])/, () => "log<sub>10</sub>&nbsp;"],
+  [/^10\^(-?\d+)/, (m) => `10<sup>${(m[1] ?? "").replace("-", MINUS)}</sup>`],
+  [
+    /^(-?\d+(?:\.\d+)?)e([+-]?\d+)(?![\w.])/,
+    (m) => `${(m[1] ?? "").replace("-", MINUS)}&nbsp;×&nbsp;10<sup>${String(Number(m[2])).replace("-", MINUS)}</sup>`,
+  ],
+  [/^-(?=\d)/, () => MINUS],
+  [
+    /^(H?)(\d?)In(\d?[+-])(?![\w+-])/,
+    (m) => `${m[1] ?? ""}${m[2] ? `<sub>${m[2]}</sub>` : ""}In${chargeHtml(m[3] ?? "")}`,
+  ],
+];
 
 function setText(text: string, spellings: ReadonlyMap<string, string>): string {
   let out = "";
+  let plainFrom = 0;
   let at = 0;
-  for (const match of text.matchAll(TOKEN)) {
-    const token = match[0];
-    let set: string | undefined;
-    let used = token.length;
-    if (token === "log K'") set = "log&nbsp;<i>K</i>′";
-    else if (match[1] !== undefined) set = `log<sub>10</sub>&nbsp;${escapeHtml(match[1])}`;
-    else if (match[2] !== undefined) set = `10<sup>${match[2].replace("-", "\u2212")}</sup>`;
-    else if (match[3] !== undefined && match[4] !== undefined)
-      set = `${match[3].replace("-", "\u2212")}&nbsp;×&nbsp;10<sup>${String(Number(match[4])).replace("-", "\u2212")}</sup>`;
-    else
-      for (used = token.length; used > 1; used--) {
-        set = spellings.get(token.slice(0, used));
-        if (set !== undefined) break;
-      }
-    if (set === undefined) continue;
-    out += escapeHtml(text.slice(at, match.index)) + set;
-    at = match.index + used;
+  while (at < text.length) {
+    const found = /[\w^+-]/.test(text[at - 1] ?? " ") ? null : setAt(text, at, spellings);
+    if (found === null) {
+      at++;
+      continue;
+    }
+    out += escapeHtml(text.slice(plainFrom, at)) + found.html;
+    at += found.length;
+    plainFrom = at;
   }
-  return out + escapeHtml(text.slice(at));
+  return out + escapeHtml(text.slice(plainFrom));
+}
+
+function setAt(
+  text: string,
+  at: number,
+  spellings: ReadonlyMap<string, string>,
+): { readonly html: string; readonly length: number } | null {
+  const rest = text.slice(at, at + LONGEST);
+  for (const [pattern, set] of SIGNS) {
+    const match = pattern.exec(rest);
+    if (match) return { html: set(match), length: match[0].length };
+  }
+  if (!/^[A-Za-z(]/.test(rest)) return null;
+  for (let length = rest.length; length > 1; length--) {
+    const html = spellings.get(rest.slice(0, length));
+    if (html !== undefined && !/[\w^]/.test(rest[length] ?? " ")) return { html, length };
+  }
+  return null;
+}
+
+/** Sets the text of a reaction: "[M2L]/([ML][M])", "CDTA Be2+ [ML]/([M][L]^2)"; words before the first bracket as running text. */
+export function reactionMarkup(text: string, set: Typesetter): Markup {
+  const bracket = text.indexOf("[");
+  if (bracket < 0) return set(text);
+  const quotient = escapeHtml(text.slice(bracket))
+    .replace(/\^(\d+)/g, "<sup>$1</sup>")
+    .replace(/([A-Za-z)])(\d+)/g, "$1<sub>$2</sub>");
+  return new Markup(set(text.slice(0, bracket)).html + quotient);
 }

@@ -11,7 +11,7 @@ import { selectRecord } from "../../constants/select-constant.ts";
 import { anchor, constantsHref, linkMarkup, reactionHref, type Names } from "../format/names.ts";
 import { amount, fixed, signed } from "../format/numbers.ts";
 import { BASIS_WORDS, wordsOf } from "../format/words.ts";
-import { formulaMarkup } from "../format/typeset.ts";
+import { formulaMarkup, reactionMarkup } from "../format/typeset.ts";
 import { Markup, joinMarkup } from "../render/markup.ts";
 import { renderView } from "../render/render-view.ts";
 import type { WebServices } from "../services.ts";
@@ -134,7 +134,7 @@ function chainMarkup(chain: SpeciesDefinition["chain"], knowledge: Knowledge, na
     chain.map(({ reaction, factor }) =>
       joinMarkup([
         factor === 1 ? "" : `${signed(factor, 0)} × `,
-        linkMarkup(reactionHref(reaction), names.set(knowledge.reactions.get(reaction)?.text ?? reaction)),
+        linkMarkup(reactionHref(reaction), reactionMarkup(reaction, names.set)),
       ]),
     ),
     "; ",
@@ -209,8 +209,8 @@ function reactionView(knowledge: Knowledge, index: KnowledgeIndex, names: Names,
     ...reaction.records.flatMap((r) => (r.provenance.record === undefined ? [] : [r.provenance.record])),
   ]);
   return {
-    shell: shell(knowledge, reaction.text, "constants"),
-    text: names.set(reaction.text),
+    shell: shell(knowledge, reaction.id, "constants"),
+    text: reactionMarkup(reaction.id, names.set),
     id: reaction.id,
     deltaZ2: signed(reaction.deltaZ2, 0),
     reason: selection === null ? "there is no record" : selection.reason,

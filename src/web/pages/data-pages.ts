@@ -45,8 +45,8 @@ function indicatorsView(knowledge: Knowledge, names: Names): object {
     synonyms: dye.synonyms.join(", "),
     colours: dye.colours.map((c) => ({
       pH: range(c.pH),
-      free: colourMarkup(c.free),
-      bound: colourMarkup(c.bound),
+      free: colourMarkup(c.free, names.set),
+      bound: colourMarkup(c.bound, names.set),
       contrast: c.contrast,
       source: sourceText(knowledge, c.provenance),
     })),

@@ -64,7 +64,7 @@ function benchRows(
     ),
   ]);
   const constants = stage.conditional.map((c) =>
-    joinMarkup([names.set("log K'"), " of ", names.name(c.metal), ` ${fixed(c.log10ConditionalK, 2)} `]),
+    joinMarkup([names.set("log K'"), " of ", names.name(c.metal), ` ${fixed(c.log10ConditionalK, 2)}`]),
   );
   add(
     "Titrant",
@@ -74,7 +74,7 @@ function benchRows(
       : [
           joinMarkup([
             ...constants.slice(0, 4).flatMap((c, i) => (i === 0 ? [c] : ["; ", c])),
-            new Markup('<a href="#constants-used">constants</a>'),
+            new Markup(' <a href="#constants-used">constants</a>'),
           ]),
         ],
   );
@@ -104,7 +104,7 @@ function benchRows(
     );
     add(
       "Colour change",
-      [joinMarkup(["from ", colourMarkup(before), " to ", colourMarkup(after)])],
+      [joinMarkup(["from ", colourMarkup(before, names.set), " to ", colourMarkup(after, names.set)])],
       stage.endPoint.indicatorMetal === null
         ? []
         : [joinMarkup([names.name(stage.endPoint.indicatorMetal), " holds the dye until then"])],
@@ -156,11 +156,13 @@ export interface PartView {
   readonly bar: Markup;
 }
 
-const bar = (share: number, negative: boolean): Markup => {
-  const width = Math.round(Math.min(1, Math.max(0, share)) * 60 * 10) / 10;
-  const x = negative ? 60 - width : 60;
+/** A bar of up to 60 units; with negative parts about, it grows from the middle to either side, so the side says the sign. */
+const bar = (share: number, negative: boolean, twoSided: boolean): Markup => {
+  const length = Math.round(Math.min(1, Math.max(0, share)) * 600) / 10;
+  const zero = twoSided ? 60 : 0;
+  const total = twoSided ? 120 : 60;
   return new Markup(
-    `<svg class="bar" viewBox="0 0 120 10" width="120" height="10" aria-hidden="true" focusable="false"><path class="tick" d="M60 0V10"/><rect class="${negative ? "bar-minus" : "bar-plus"}" x="${x}" y="2" width="${width}" height="6"/></svg>`,
+    `<svg class="bar" viewBox="0 0 ${total} 10" width="${total}" height="10" aria-hidden="true" focusable="false"><path class="tick" d="M${zero + 0.5} 0V10"/><rect class="${negative ? "bar-minus" : "bar-plus"}" x="${negative ? zero - length : zero}" y="2" width="${length}" height="6"/></svg>`,
   );
 };
 
@@ -170,11 +172,12 @@ export function errorParts(
   names: Names,
 ): { readonly bias: readonly PartView[]; readonly budget: readonly PartView[] } {
   const view = (parts: readonly { source: string; percent: number }[], isSigned: boolean): readonly PartView[] => {
+    const twoSided = parts.some((p) => p.percent < 0);
     const largest = Math.max(...parts.map((p) => Math.abs(p.percent)), 1e-12);
     return parts.map((p) => ({
       source: sourceName(p.source, names),
       value: isSigned ? signedPercent(p.percent) : percent(p.percent),
-      bar: bar(Math.abs(p.percent) / largest, p.percent < 0),
+      bar: bar(Math.abs(p.percent) / largest, p.percent < 0, twoSided),
     }));
   };
   return { bias: view(method.predicted.biasBySource, true), budget: view(method.uncertaintyBudget, false) };

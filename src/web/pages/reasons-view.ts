@@ -1,5 +1,5 @@
 import type { Because } from "../../recommendation/contract.ts";
-import { significant } from "../format/numbers.ts";
+import { amount, fixed, percent, significant } from "../format/numbers.ts";
 import { ruleHref, type Names } from "../format/names.ts";
 import { BASIS_WORDS, EFFECT_WORDS, wordsOf } from "../format/words.ts";
 import type { Markup } from "../render/markup.ts";
@@ -50,6 +50,23 @@ export function factValue(value: unknown, unit: string | null): string {
   if (typeof value === "boolean") return value ? "yes" : "no";
   if (Array.isArray(value)) return value.length === 0 ? "none" : value.join(", ");
   return typeof value === "string" && value !== "" ? value : "none";
+}
+
+/** Facts for the margin: the shortest name that still says what it is, the value in the unit of its name. */
+export function marginFacts(facts: Because["facts"], names: Names): readonly Omit<FactView, "name">[] {
+  return Object.entries(facts).map(([name, value]) => {
+    const short = spacedName(name.replace(/(?:MolPerL|Percent|Fraction)$/, ""));
+    const label = short === "p h" ? "pH" : short;
+    return { meaning: names.set(label), value: names.set(marginValue(name, value)) };
+  });
+}
+
+function marginValue(name: string, value: Because["facts"][string]): string {
+  if (typeof value !== "number") return factValue(value, null);
+  if (name.endsWith("MolPerL")) return amount(value);
+  if (name.endsWith("Fraction")) return percent(value * 100);
+  if (name.endsWith("Percent")) return percent(value);
+  return name === "pH" ? fixed(value, 1) : significant(value, 3);
 }
 
 const spacedName = (name: string): string => name.replace(/([a-z])([A-Z])/g, "$1 $2").toLowerCase();

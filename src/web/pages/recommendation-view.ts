@@ -3,14 +3,24 @@ import { curveFigure, curveDescription } from "../figures/curve-figure.ts";
 import { NARROW, WIDE } from "../figures/frame.ts";
 import { logKDescription, logKFigure } from "../figures/log-k-figure.ts";
 import { encodeBrief } from "../form/brief-link.ts";
-import { linkMarkup, reactionHref, type Names } from "../format/names.ts";
+import { linkMarkup, type Names } from "../format/names.ts";
 import { amount, fixed, percent, signed, signedPercent } from "../format/numbers.ts";
-import { BASIS_WORDS, FINDING_WORDS, MODE_WORDS, VERDICT_WORDS, wordsOf } from "../format/words.ts";
-import { Markup, joinMarkup } from "../render/markup.ts";
+import { FINDING_WORDS, MODE_WORDS, VERDICT_WORDS, wordsOf } from "../format/words.ts";
+import { joinMarkup } from "../render/markup.ts";
 import type { FactListing, FigureSeries, WebServices } from "../services.ts";
 import { errorParts, roomViews, stageViews } from "./method-view.ts";
-import { factViews, reasonViews } from "./reasons-view.ts";
+import { marginFacts, reasonViews } from "./reasons-view.ts";
+import { constantViews } from "./constants-used-view.ts";
+import { questionRows } from "./question-view.ts";
+import { rivalsTable } from "./rivals-view.ts";
 import { shell } from "./shell.ts";
+
+/** How full the answer is, as a mark beside its words. */
+const VERDICT_MARKS: Readonly<Record<Recommendation["verdict"], string>> = {
+  fit: "●",
+  "fit-with-reservations": "◐",
+  "not-fit": "○",
+};
 
 /** What the page of an answer is made from. */
 export interface AnswerOnPage {
@@ -39,7 +49,7 @@ export function recommendationView(
     jsonHref: `/api/recommendations?${link}`,
     question: questionRows(brief, names),
     verdict: wordsOf(VERDICT_WORDS, recommendation.verdict),
-    verdictClass: `verdict-${recommendation.verdict}`,
+    verdictMark: VERDICT_MARKS[recommendation.verdict],
     asked: percent(brief.requirement.relativeExpandedUncertaintyPercent),
     howWell: method ? percent(method.predicted.relativeExpandedUncertaintyPercent) : "",
     method: method === null ? null : methodView(method, recommendation, names, catalogue, figures, link),
@@ -49,7 +59,7 @@ export function recommendationView(
       component: names.link(f.component),
       as: wordsOf(FINDING_WORDS, f.as),
       statement: names.set(f.statement),
-      facts: factViews(f.facts, catalogue, names),
+      facts: marginFacts(f.facts, names),
     })),
     decidedBy:
       recommendation.decidedBy === null
@@ -76,7 +86,7 @@ export function recommendationView(
     })),
     constants: constantViews(recommendation, names),
     notes: recommendation.notes.map((n) => names.set(n)),
-    knowledge: `${recommendation.knowledge.version}, ${recommendation.knowledge.hash}`,
+    knowledge: `${recommendation.knowledge.version}, ${recommendation.knowledge.hash.slice(0, 16)}`,
   };
 }
 
@@ -162,122 +172,4 @@ function conditionsText(method: RecommendedMethod, brief: Brief): string {
     stage ? `, pH ${fixed(stage.pH.target, 1)}` : "",
     `, ${fixed(brief.portion.titrationVolumeML, 0)} mL titrated.`,
   ].join("");
-}
-
-function questionRows(brief: Brief, names: Names): readonly { label: string; value: Markup }[] {
-  const level = (id: string, c: Brief["analytes"][number]["concentration"]): Markup =>
-    joinMarkup([names.name(id), ` ${amount(c.value)}`]);
-  const lab = brief.laboratory;
-  const rows: [string, Markup][] = [
-    [
-      "To determine",
-      joinMarkup(
-        brief.analytes.map((a) => level(a.ion, a.concentration)),
-        brief.analytes.some((a) => a.report === "sum") ? " + " : ", ",
-      ),
-    ],
-    [
-      "Also in it",
-      brief.matrix.length === 0
-        ? joinMarkup(["nothing stated"])
-        : joinMarkup(
-            brief.matrix.map((m) => level(m.component, m.concentration)),
-            ", ",
-          ),
-    ],
-    ["Portion", joinMarkup([`${brief.portion.volumeML} mL, made up to ${brief.portion.titrationVolumeML} mL`])],
-    ["Asked for", joinMarkup([`${percent(brief.requirement.relativeExpandedUncertaintyPercent)} expanded (k = 2)`])],
-    [
-      "Laboratory",
-      joinMarkup([
-        `${brief.laboratory.buretteML} mL burette, ${brief.temperatureC} °C, ${lab.heating ? "heating possible" : "no heating"}, end point ${lab.detection.join(" or ")}`,
-      ]),
-    ],
-  ];
-  if (lab.avoid.length > 0)
-    rows.push([
-      "Never proposed",
-      joinMarkup(
-        lab.avoid.map((id) => names.name(id)),
-        ", ",
-      ),
-    ]);
-  if (lab.available)
-    rows.push([
-      "Shelf",
-      joinMarkup(
-        lab.available.map((id) => names.name(id)),
-        ", ",
-      ),
-    ]);
-  return rows.map(([label, value]) => ({ label, value }));
-}
-
-function rivalsTable(
-  recommendation: Recommendation,
-  names: Names,
-  shown: RecommendedMethod | null,
-  hrefOf: (id: string) => string,
-): object {
-  const methods = recommendation.methods.slice(0, 6);
-  const stageList = (m: RecommendedMethod, part: (s: RecommendedMethod["stages"][number]) => Markup): Markup =>
-    joinMarkup(m.stages.map(part), "; then ");
-  const row = (label: string, part: (m: RecommendedMethod) => Markup | string): object => ({
-    label,
-    cells: methods.map((m) => joinMarkup([part(m)])),
-  });
-  return {
-    heads: methods.map((m) => ({ text: `${m.rank}`, href: hrefOf(m.id), current: m === shown })),
-    rows: [
-      row("Mode", (m) => wordsOf(MODE_WORDS, m.mode)),
-      row("Titrant", (m) =>
-        joinMarkup([
-          names.name(m.titrant.id),
-          ...(m.backTitrant ? [", back with ", names.name(m.backTitrant.id)] : []),
-        ]),
-      ),
-      row("pH", (m) =>
-        stageList(m, (s) => joinMarkup([`${fixed(s.pH.target, 1)} (${fixed(s.pH.low, 1)} to ${fixed(s.pH.high, 1)})`])),
-      ),
-      row("Buffer", (m) => stageList(m, (s) => names.name(s.buffer.id))),
-      row("End point", (m) =>
-        stageList(m, (s) => (s.indicator ? names.name(s.indicator.id) : joinMarkup([s.detection]))),
-      ),
-      row("Masking", (m) => {
-        const agents = [...new Set(m.stages.flatMap((s) => s.masking.map((x) => x.agent)))];
-        return agents.length === 0
-          ? "none"
-          : joinMarkup(
-              agents.map((a) => names.name(a)),
-              ", ",
-            );
-      }),
-      row("Titre", (m) => `${fixed(m.predicted.titreML, 2)} mL`),
-      row("Bias", (m) => signedPercent(m.predicted.biasPercent)),
-      row("Expanded uncertainty", (m) => percent(m.predicted.relativeExpandedUncertaintyPercent)),
-      row("Requirement", (m) => (m.meetsRequirement ? "kept" : "not kept")),
-      row("Points from rules", (m) =>
-        signed(
-          m.scores.reduce((sum, s) => sum + s.weight, 0),
-          1,
-        ),
-      ),
-      row("Reservations", (m) => (m.reservations.length === 0 ? "none" : String(m.reservations.length))),
-    ],
-    more: recommendation.methods.slice(6).map((m) => ({ text: names.set(m.summary), href: hrefOf(m.id) })),
-  };
-}
-
-function constantViews(recommendation: Recommendation, names: Names): readonly object[] {
-  return recommendation.constants.map((c) => ({
-    species: names.set(c.species),
-    value: fixed(c.log10Beta, 2),
-    uncertainty: fixed(c.uncertainty, 2),
-    evidence: c.evidence.map((e) => ({
-      reaction: linkMarkup(reactionHref(e.reaction), names.set(e.text)),
-      used: fixed(e.log10KUsed, 2),
-      found: `${fixed(e.log10KFound, 2)} at ${amount(e.ionicStrengthMolPerL, 2)}, ${fixed(e.temperatureC, 0)} °C`,
-      source: `${e.source}${e.record === null ? "" : ` ${e.record}`}, ${wordsOf(BASIS_WORDS, e.basis)}${e.passedOver === 0 ? "" : `; ${e.passedOver} passed over`}`,
-    })),
-  }));
 }
