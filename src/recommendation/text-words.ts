@@ -62,7 +62,7 @@ export const reagentWords = (id: string): string => (/^[a-z0-9-]+$/.test(id) ? i
 export function figures(value: number, digits = 3): string {
   if (value === 0) return "0";
   const size = Math.abs(value);
-  if (size < 1e-3 || size >= 1e5) return value.toExponential(digits - 1);
+  if (size < 1e-3 || size >= 1e5) return value.toExponential(digits - 1).replace(/\.?0+e/, "e");
   return String(Number(value.toPrecision(digits)));
 }
 

@@ -1,0 +1,162 @@
+import { describe, expect, it } from "vitest";
+import type { Recommendation, RecommendedMethod, StageDocument } from "../../src/recommendation/contract.ts";
+import { PREPARATION_STEPS } from "../../src/recommendation/contract.ts";
+import { recommendationText } from "../../src/recommendation/text.ts";
+import { stepsOf } from "../../src/recommendation/text-steps.ts";
+import { figures, listed, percent, reagentWords, signedPercent } from "../../src/recommendation/text-words.ts";
+import { DOCUMENT, METHOD, STAGE } from "./example-document.ts";
+
+const withStages = (...stages: readonly StageDocument[]): RecommendedMethod => ({ ...METHOD, stages });
+const steps = (method: RecommendedMethod): readonly string[] => stepsOf(method, DOCUMENT.brief);
+const textWith = (change: Partial<Recommendation>): string => recommendationText({ ...DOCUMENT, ...change });
+const position = (list: readonly string[], words: string): number => list.findIndex((step) => step.includes(words));
+
+describe("recommendationText", () => {
+  const text = recommendationText(DOCUMENT);
+  it("says the verdict with both figures before anything else", () => {
+    expect(text.split("\n").slice(0, 4)).toEqual([
+      DOCUMENT.brief.title,
+      "=".repeat(DOCUMENT.brief.title.length),
+      "",
+      "FIT: 0.31 % is predicted, 0.5 % is required (relative expanded uncertainty, k = 2).",
+    ]);
+  });
+  it("tells the parts in the order in which a chemist needs them", () => {
+    const order = [
+      "FIT",
+      "Method",
+      "Cautions",
+      "At the bench",
+      "Steps",
+      "Error of one",
+      "Masking",
+      "Why",
+      "What the components",
+      "Rivals",
+      "Rejected",
+      "Notes",
+      "Knowledge",
+    ];
+    const places = order.map((title) => text.indexOf(title));
+    expect(places).toEqual([...places].sort((a, b) => a - b));
+    expect(places).not.toContain(-1);
+  });
+  it("says every statement, caution and source of the document", () => {
+    const flat = text.replace(/\s+/g, " ");
+    const { because, cautions, summary } = METHOD;
+    const said = [
+      summary,
+      ...cautions,
+      ...because.map((b) => b.statement),
+      ...DOCUMENT.findings.map((f) => f.statement),
+    ];
+    for (const words of [...said, ...DOCUMENT.notes, DOCUMENT.decidedBy?.statement ?? "", DOCUMENT.knowledge.hash])
+      expect(flat).toContain(words);
+  });
+  it("keeps its lines within 100 characters and ends with one line break", () => {
+    expect(Math.max(...text.split("\n").map((line) => line.length))).toBeLessThanOrEqual(100);
+    expect(text).toMatch(/[^\n]\n$/);
+  });
+  it("says plainly that nothing was found, and what the nearest lacks", () => {
+    expect(textWith({ verdict: "not-fit", methods: [], decidedBy: null })).toContain("NOT FIT: no method");
+    expect(textWith({ verdict: "not-fit" })).toContain(
+      "NOT FIT: nothing found meets the requirement of 0.5 % (k = 2). The nearest is shown: 0.31 %.",
+    );
+  });
+  it("names the reservations beside the verdict", () => {
+    const methods = [{ ...METHOD, reservations: ["The end point rests on an empirical record."] }];
+    expect(textWith({ verdict: "fit-with-reservations", methods })).toMatch(
+      /FIT, WITH RESERVATIONS: .*\n {2}- The end point rests/s,
+    );
+  });
+  it("says where ionic strength leaves the model", () => {
+    const stage = { ...STAGE, ionicStrength: { molPerL: 0.8, outOfModelRange: true } };
+    expect(textWith({ methods: [withStages(stage)] })).toContain("0.8 mol/L, beyond the range of the model");
+  });
+});
+
+describe("stepsOf", () => {
+  it("adds fluoride, cyanide and sulfide only when the buffer has set the pH, other agents before", () => {
+    for (const agent of ["fluoride", "cyanide", "sulfide"]) {
+      const masking = [
+        { ...STAGE.masking[0]!, agent },
+        { ...STAGE.masking[0]!, agent: "triethanolamine" },
+      ];
+      const list = steps(withStages({ ...STAGE, masking }));
+      const buffer = position(list, "Bring to pH");
+      expect(position(list, `add ${agent}`)).toBeGreaterThan(buffer);
+      expect(position(list, "Add triethanolamine")).toBeLessThan(buffer);
+    }
+  });
+  it("adds an excess of titrant before the buffer where that is asked for, and after it otherwise", () => {
+    const added = [{ id: "EDTA", molPerL: 0.003, purpose: "titrant, in excess" }];
+    const early = steps(withStages({ ...STAGE, added, preparation: ["excess-titrant-first", "boil"] }));
+    expect(position(early, "Add EDTA")).toBeLessThan(position(early, "Bring to pH"));
+    expect(position(early, "Boil")).toBeGreaterThan(position(early, "Bring to pH"));
+    const late = steps(withStages({ ...STAGE, added }));
+    expect(position(late, "Add EDTA")).toBeGreaterThan(position(late, "Bring to pH"));
+  });
+  it("titrates back with the back titrant, to the colours the other way about as the document gives them", () => {
+    const back = { ...withStages({ ...STAGE, mode: "back" }), backTitrant: { id: "Zn2+", molPerL: 0.01 } };
+    expect(steps(back).at(-1)).toMatch(
+      /^Titrate back with 0\.01 mol\/L Zn2\+ until the colour has gone from red-violet to yellow/,
+    );
+  });
+  it("discards a reading that determines nothing, goes on with one solution, and takes a second portion", () => {
+    const twice = [{ ...STAGE, determines: [] }, STAGE];
+    const successive = steps({ ...withStages(...twice), mode: "successive" });
+    expect(position(successive, "Discard this reading")).toBeGreaterThan(0);
+    expect(position(successive, "Go on with the same solution")).toBeGreaterThan(0);
+    expect(position(steps({ ...withStages(...twice), mode: "difference" }), "Take another portion")).toBeGreaterThan(0);
+  });
+  it("has words for every preparation step, and says each once", () => {
+    for (const step of PREPARATION_STEPS) {
+      if (step === "excess-titrant-first") continue; // said by adding the titrant early
+      const list = steps(withStages({ ...STAGE, preparation: [step] }));
+      expect(list, step).toHaveLength(steps(withStages(STAGE)).length + 1);
+    }
+  });
+  it("reads an electrode instead of a colour where there is no indicator", () => {
+    const list = steps(withStages({ ...STAGE, detection: "electrode", indicator: null }));
+    expect(list.at(-1)).toContain("to the end point of the electrode reading");
+  });
+});
+
+describe("words and figures", () => {
+  it.each([
+    [0, "0"],
+    [0.0123456, "0.0123"],
+    [2e-5, "2e-5"],
+    [1.236e-7, "1.24e-7"],
+    [20.1, "20.1"],
+    [123456, "1.23e+5"],
+    [-0.0456, "-0.0456"],
+  ])("writes %d as %s", (value, text) => {
+    expect(figures(value)).toBe(text);
+  });
+  it("signs a bias and never an uncertainty", () => {
+    expect([signedPercent(0.04), signedPercent(-0.04), signedPercent(0), percent(0.306), percent(12.34)]).toEqual([
+      "+0.04 %",
+      "-0.04 %",
+      "0 %",
+      "0.31 %",
+      "12.3 %",
+    ]);
+  });
+  it("joins words as a sentence does", () => {
+    expect([listed([]), listed(["a"]), listed(["a", "b"]), listed(["a", "b", "c"])]).toEqual([
+      "",
+      "a",
+      "a and b",
+      "a, b and c",
+    ]);
+  });
+  it("leaves ions and chelates as they are written", () => {
+    expect(["xylenol-orange", "Mg-EDTA", "Zn2+", "PAN"].map(reagentWords)).toEqual([
+      "xylenol orange",
+      "Mg-EDTA",
+      "Zn2+",
+      "PAN",
+    ]);
+  });
+});
