@@ -86,6 +86,16 @@ describe("calculateEquilibrium", () => {
     expect(JSON.stringify(answer)).not.toMatch(/null/);
   });
 
+  test("components are written as the question wrote them", () => {
+    const answer = calculateEquilibrium(
+      { pH: 10, totals: { "Zn2+": 0.001, EDTA: 0.001, ammonia: 0.1 }, names: { ammonia: "NH3" } },
+      knowledge,
+    );
+    expect(answer.components.map((c) => c.id)).toEqual(["Zn2+", "EDTA", "NH3"]);
+    expect(answer.species.filter((s) => "NH3" in s.components).length).toBeGreaterThan(3);
+    expect(answer.species.some((s) => "ammonia" in s.components)).toBe(false);
+  });
+
   test("each constant names its record", () => {
     const answer = calculateEquilibrium({ pH: 5, totals: { "Zn2+": 0.001 } }, knowledge);
     expect(answer.species.find((s) => s.components["Zn2+"] === 1 && s.components["H+"] === -1)!.source).toBe(
@@ -157,5 +167,37 @@ describe("calculateCurve", () => {
     );
     expect(answer.status).toBe("converged");
     expect(answer.points[0]!.pM).toBeGreaterThan(5);
+  });
+
+  test("a curve says what precipitates on the way and where it is gone", () => {
+    const ask = (fluoride: number) =>
+      calculateCurve(
+        {
+          sample: { volumeML: 50, totals: { "Ca2+": 0.005, fluoride } },
+          titrant: { id: "EDTA", molPerL: 0.01 },
+          pH: 10,
+          follow: "Ca2+",
+          volumesML: [0, 10, 30],
+        },
+        knowledge,
+      );
+    expect(ask(0.02).notes.join()).toMatch(/CaF2 precipitates.* 10 mL/);
+    expect(ask(0.0001).notes).toEqual([]);
+  });
+
+  test("what is followed must be in the sample", () => {
+    const ask = (follow: string) => () =>
+      calculateCurve(
+        {
+          sample: { volumeML: 50, totals: { "Zn2+": 0.005 } },
+          titrant: { id: "EDTA", molPerL: 0.01 },
+          pH: 10,
+          follow,
+          volumesML: [10],
+        },
+        knowledge,
+      );
+    expect(ask("Ca2+")).toThrow(/Ca2\+/);
+    expect(ask("Zn2+")).not.toThrow();
   });
 });

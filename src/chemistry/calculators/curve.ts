@@ -1,4 +1,5 @@
 import type { ComponentId, Knowledge } from "../../constants/knowledge.ts";
+import { AppError } from "../../errors.ts";
 import { explicitCurve, whyNotExplicit } from "../curve-explicit.ts";
 import { generalCurve } from "../curve-general.ts";
 import { equilibrate } from "../equilibrate.ts";
@@ -11,9 +12,14 @@ import type { CurveAnswer, CurveRequest } from "./types.ts";
 /**
  * Answers a validated question to the curve calculator: pM of the followed component against volume of titrant (mL), everything diluted by the
  * titrant, pH and the components in `free` held. With constants in the question these are used as they are; otherwise each point has the
- * constants of its own ionic strength. Throws AppError "unknown-component" for names that the knowledge does not hold.
+ * constants of its own ionic strength. Throws AppError "unknown-component" for names that the knowledge does not hold, "not-in-sample"
+ * where what is followed is neither in the sample nor the titrant.
  */
 export function calculateCurve(request: CurveRequest, knowledge: Knowledge): CurveAnswer {
+  if (!((request.sample.totals[request.follow] ?? 0) > 0) && request.follow !== request.titrant.id)
+    throw new AppError("not-in-sample", `${request.follow} is followed but is not in the sample`, {
+      component: request.follow,
+    });
   const run = request.constants === undefined ? knownCurve(request, knowledge) : givenCurve(request, knowledge);
   const equivalenceML = equivalenceOf(request, run.stoichiometricRatio);
   const points = request.volumesML.map(run.at);
@@ -25,7 +31,7 @@ export function calculateCurve(request: CurveRequest, knowledge: Knowledge): Cur
     equivalenceML,
     points: points.map(({ volumeML, pM, pMTotal, fractionTitrated }) => ({ volumeML, pM, pMTotal, fractionTitrated })),
     atEquivalence: { pM: atEquivalence.pM },
-    notes: run.notes,
+    notes: run.notes(),
   };
 }
 
@@ -34,7 +40,7 @@ interface Run {
   readonly ionicStrengthMolPerL: () => number;
   /** Titrant per followed component in their complex. */
   readonly stoichiometricRatio: number;
-  readonly notes: readonly string[];
+  readonly notes: () => readonly string[];
 }
 
 function givenCurve(request: CurveRequest, knowledge: Knowledge): Run {
@@ -59,7 +65,7 @@ function givenCurve(request: CurveRequest, knowledge: Knowledge): Run {
     at: (volumeML) => curve.at(volumeML),
     ionicStrengthMolPerL: () => (ionicStrength === "auto" ? 0 : ionicStrength),
     stoichiometricRatio: ratioIn(system.species, request.follow, request.titrant.id),
-    notes: ["The constants given were used as they are."],
+    notes: () => ["The constants given were used as they are."],
   };
 }
 
@@ -67,6 +73,7 @@ function knownCurve(request: CurveRequest, knowledge: Knowledge): Run {
   const free = request.free ?? {};
   let start: ReadonlyMap<ComponentId, number> | undefined;
   let first: number | null = null;
+  const formed = new Map<string, number>(); // solid to the last volume at which it is there
   const at = (volumeML: number): CurvePoint => {
     const dilution = request.sample.volumeML / (request.sample.volumeML + volumeML);
     const totals: Record<ComponentId, number> = {};
@@ -94,6 +101,9 @@ function knownCurve(request: CurveRequest, knowledge: Knowledge): Run {
       if (species.components[titrant] === undefined || request.follow === titrant) notBound += atoms;
       else bound += atoms;
     });
+    system.solids.forEach((row, i) => {
+      if (result.solidsMolPerL[i]! > 0) formed.set(row.id, Math.max(formed.get(row.id) ?? 0, volumeML));
+    });
     const solid = system.solids.reduce(
       (s, row, i) => s + (row.components[request.follow] ?? 0) * result.solidsMolPerL[i]!,
       0,
@@ -111,7 +121,10 @@ function knownCurve(request: CurveRequest, knowledge: Knowledge): Run {
     at,
     ionicStrengthMolPerL: () => first ?? 0,
     stoichiometricRatio: ratioIn(knowledge.species, request.follow, request.titrant.id),
-    notes: [],
+    notes: () =>
+      [...formed].map(
+        ([id, volumeML]) => `${id} precipitates; of the points asked for it is last there at ${volumeML} mL.`,
+      ),
   };
 }
 

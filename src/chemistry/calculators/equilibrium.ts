@@ -49,6 +49,7 @@ export function calculateEquilibrium(request: EquilibriumRequest, knowledge: Kno
       ? solveKnown(request, free, knowledge)
       : solveGiven(request, free, asked, knowledge);
   const { system, result } = solved;
+  const shown = (id: ComponentId): string => request.names?.[id] ?? id;
   const amountsIn = (
     rows: readonly { readonly components: Readonly<Record<ComponentId, number>> }[],
     c: Float64Array,
@@ -58,7 +59,7 @@ export function calculateEquilibrium(request: EquilibriumRequest, knowledge: Kno
   const components = asked.map((id): EquilibriumComponent => {
     if (absent.includes(id))
       return {
-        id,
+        id: shown(id),
         totalMolPerL: 0,
         freeMolPerL: 0,
         dissolvedMolPerL: 0,
@@ -69,7 +70,7 @@ export function calculateEquilibrium(request: EquilibriumRequest, knowledge: Kno
     const total = isHeld(id) ? dissolved : request.totals[id]!;
     const lnFree = result.lnFree[system.index.get(id)!]!;
     return {
-      id,
+      id: shown(id),
       totalMolPerL: total,
       freeMolPerL,
       dissolvedMolPerL: dissolved,
@@ -83,13 +84,20 @@ export function calculateEquilibrium(request: EquilibriumRequest, knowledge: Kno
     ionicStrengthMolPerL: solved.ionicStrengthMolPerL,
     log10H: solved.log10H,
     species: system.species.map((s, i) => ({
-      components: s.components,
+      components: Object.fromEntries(Object.entries(s.components).map(([id, n]) => [shown(id), n])),
       molPerL: Object.keys(s.components).some((id) => absent.includes(id)) ? 0 : result.speciesMolPerL[i]!,
       log10Beta: s.log10Beta,
       source: sourceOf(s, request.constants !== undefined),
     })),
     components,
-    conditional: titrant === null ? [] : conditionalOf(system, result, titrant, asked, knowledge),
+    conditional:
+      titrant === null
+        ? []
+        : conditionalOf(system, result, titrant, asked, knowledge).map((c) => ({
+            ...c,
+            metal: shown(c.metal),
+            ligand: shown(c.ligand),
+          })),
     solids: solidsOf(request, solved, knowledge),
     notes: solved.notes,
   };

@@ -22,6 +22,8 @@ export interface EquilibriumRequest extends AcidityRequest {
   readonly free?: Readonly<Record<ComponentId, number>> | undefined; // held at this free concentration
   readonly solids?: boolean | undefined; // default true: let them form
   readonly constants?: readonly GivenConstant[] | undefined;
+  /** How the answer shall write a component: its id to the spelling the question used. Default: the id. */
+  readonly names?: Readonly<Record<ComponentId, string>> | undefined;
 }
 
 export interface EquilibriumSpecies {
