@@ -5,6 +5,7 @@ import { generalCurve } from "../../src/chemistry/curve-general.ts";
 import { prepareSystem } from "../../src/chemistry/prepare-system.ts";
 import { titrationSeries } from "../../src/chemistry/series.ts";
 import type { Titration } from "../../src/chemistry/titration.ts";
+import { loadKnowledge } from "../../src/constants/index.ts";
 import { expectRelative } from "../expect-relative.ts";
 import { smallKnowledge, zincKnowledge } from "./small-knowledge.ts";
 
@@ -82,6 +83,33 @@ describe("titration curves", () => {
       { seed: 2, numRuns: 400 },
     );
     expect(compared).toBeGreaterThan(2000);
+  });
+
+  test("both forms agree on the constants of the knowledge, without its polynuclear species", () => {
+    const real = loadKnowledge();
+    const single = (s: { readonly components: Readonly<Record<string, number>> }) =>
+      ["Zn2+", "Mg2+", "Ca2+"].reduce((sum, id) => sum + (s.components[id] ?? 0), 0) > 1;
+    const titration: Titration = {
+      ...zincAndCalcium,
+      system: prepareSystem(real, ["Zn2+", "Mg2+", "Ca2+", "EDTA", "ammonia"], conditions, {
+        ...noSolids,
+        exclude: single,
+      }),
+      sampleMolPerL: { "Zn2+": 0.002, "Mg2+": 0.001, "Ca2+": 0.002 },
+    };
+    expect(
+      whyNotExplicit({
+        ...titration,
+        system: prepareSystem(real, ["Zn2+", "Mg2+", "Ca2+", "EDTA", "ammonia"], conditions, noSolids),
+      }),
+    ).toMatch(/holds more than one/);
+    for (const follow of ["Zn2+", "Mg2+", "Ca2+"])
+      for (const volume of [0, 5, 9.99, 10, 15, 20, 24.99, 25, 25.01, 40]) {
+        const a = explicitCurve({ ...titration, follow }).at(volume);
+        const b = generalCurve({ ...titration, follow }).at(volume);
+        expect(Math.abs(a.pM - b.pM), `${follow} at ${volume} mL`).toBeLessThan(AGREE_PM);
+        expect(Math.abs(a.pMTotal - b.pMTotal)).toBeLessThan(AGREE_PM);
+      }
   });
 
   test("the swept volume rises with the free titrant and its points lie on the curve by volume", () => {
