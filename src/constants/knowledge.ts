@@ -134,6 +134,7 @@ export interface IndicatorBlocker {
   /** Total in the titrated solution at which the end point is spoilt, mol/L; 0 = at every level; null = level not stated. */
   readonly fromMolPerL: number | null;
   readonly kind: "blocks" | "slow";
+  readonly pH?: readonly [number, number]; // where the record confines itself to acid, alkali or a pH range
   readonly detail: string;
   readonly provenance: Provenance;
 }
@@ -159,6 +160,8 @@ export interface IndicatorRecord {
   readonly transitions: readonly {
     readonly ion: ComponentId;
     readonly counts: "free-ion" | "not-bound-to-titrant";
+    /** 2 where the slope of the table against pH shows two metal ions a dye (xylenol orange with Zn, Pb, Cd, La); else 1. */
+    readonly metalsPerDye?: 2;
     readonly points: readonly (readonly [pH: number, pM: number])[];
     readonly provenance: Provenance;
   }[];

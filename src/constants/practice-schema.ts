@@ -69,6 +69,7 @@ export const indicatorSchema = z.strictObject({
     z.strictObject({
       ion: text,
       counts: z.enum(["free-ion", "not-bound-to-titrant"]),
+      metalsPerDye: z.literal(2).exactOptional(),
       points: z
         .array(z.tuple([z.number(), z.number()]))
         .min(1)
@@ -82,6 +83,7 @@ export const indicatorSchema = z.strictObject({
       ion: text,
       fromMolPerL: z.number().nonnegative().nullable(),
       kind: z.enum(["blocks", "slow"]),
+      pH: range.exactOptional(),
       detail: text,
       provenance: provenanceSchema,
     }),

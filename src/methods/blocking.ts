@@ -7,8 +7,10 @@ const UNSTATED_LEVEL_OF_DYE = 0.1;
 const EVERY_LEVEL_OF_DYE = 0.01;
 
 /** The record that speaks for a metal and a dye: a read one before memory, then the lower level. */
-export function blockerOf(indicator: IndicatorRecord, ion: ComponentId): IndicatorBlocker | null {
-  const rows = indicator.blockers.filter((b) => b.ion === ion && b.kind === "blocks");
+export function blockerOf(indicator: IndicatorRecord, ion: ComponentId, pH: number): IndicatorBlocker | null {
+  const rows = indicator.blockers.filter(
+    (b) => b.ion === ion && b.kind === "blocks" && (b.pH === undefined || (pH >= b.pH[0] && pH <= b.pH[1])),
+  );
   if (rows.length === 0) return null;
   const read = rows.filter((b) => b.provenance.basis === "read");
   const pool = read.length > 0 ? read : rows;
@@ -16,8 +18,8 @@ export function blockerOf(indicator: IndicatorRecord, ion: ComponentId): Indicat
 }
 
 /** Level of a metal, mol/L in the vessel and free of masks, from which the dye is spoilt; null when the dye minds nothing. */
-export function blockingLevel(indicator: IndicatorRecord, ion: ComponentId, dyeMolPerL: number): number | null {
-  const row = blockerOf(indicator, ion);
+export function blockingLevel(indicator: IndicatorRecord, ion: ComponentId, pH: number, dyeMolPerL: number): number | null {
+  const row = blockerOf(indicator, ion, pH);
   if (!row) return null;
   if (row.fromMolPerL === null) return UNSTATED_LEVEL_OF_DYE * dyeMolPerL;
   return Math.max(row.fromMolPerL, EVERY_LEVEL_OF_DYE * dyeMolPerL);
@@ -41,7 +43,7 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
       .flatMap((u) => u.ions),
   );
   return model.metals.filter((metal) => {
-    const level = blockingLevel(indicator, metal, plan.indicator!.molPerL);
+    const level = blockingLevel(indicator, metal, plan.pH, plan.indicator!.molPerL);
     if (level === null) return false;
     // A dye that is in use for the very metal at this pH is not blocked by it (hot, or with a catalyst: its use says so).
     if (plan.determines.includes(metal) && published.has(metal)) return false;

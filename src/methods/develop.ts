@@ -5,42 +5,97 @@ import { maskSets, type MaskSet } from "./masks.ts";
 import type { Shelf } from "./shelf.ts";
 import { excessFor, withAuxiliary, type Skeleton } from "./skeletons.ts";
 import { vesselSample } from "./solution.ts";
-import { stageModel } from "./stage-model.ts";
+import { stageModel, type StageModel } from "./stage-model.ts";
 import { threatsOf, type Threat } from "./threats.ts";
 import type { MaskingStep, StagePlan, Task } from "./types.ts";
+import { stageBudget } from "./uncertainty.ts";
 
 /** A titration worked out against the matrix: plan, evaluation, and what it faced. */
-export interface DevelopedStage {
-  readonly skeleton: Skeleton;
-  readonly plan: StagePlan;
+export interface DevelopedStage extends BareStage {
   readonly evaluation: StageEvaluation;
-  /** The same titration with nothing done about the matrix. */
-  readonly bare: StageEvaluation;
-  readonly threats: readonly Threat[];
   /** Threats that remain although something was done, or because nothing serves. */
   readonly remaining: readonly Threat[];
+}
+
+/** A titration evaluated as it stands, before anything is done about the matrix. */
+export interface BareStage {
+  readonly skeleton: Skeleton;
+  readonly plan: StagePlan;
+  readonly bare: StageEvaluation;
+  readonly threats: readonly Threat[];
   readonly analytePrecipitates: boolean;
 }
 
-/** Works one skeleton out into the variants worth judging: masked in a few ways, or with the unmaskable separated. */
-export function develop(task: Task, skeleton: Skeleton, knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
-  const start = soluble(task, withExcess(task, skeleton.plan, knowledge), knowledge, shelf);
-  const bare = evaluate(task, start.plan, knowledge);
-  const threats = threatsOf(task, bare, knowledge);
-  const common = { skeleton, bare, threats, analytePrecipitates: start.precipitates };
-  if (threats.length === 0) return [{ ...common, plan: start.plan, evaluation: bare, remaining: [] }];
+/** First look at a skeleton: analyte kept dissolved, excess measured, threats named, pH moved where that disarms a threat. */
+export function bareStage(task: Task, skeleton: Skeleton, knowledge: Knowledge, shelf: Shelf): BareStage {
+  const at = (pH: number): BareStage => {
+    const { plan, bare, precipitates } = soluble(task, withExcess(task, { ...skeleton.plan, pH }, knowledge), knowledge, shelf);
+    return { skeleton, plan, bare, threats: threatsOf(task, bare, knowledge), analytePrecipitates: precipitates };
+  };
+  const middle = at(skeleton.plan.pH);
+  if (bareCost(task, middle, knowledge) <= CONTENT) return middle;
+  return otherPHs(skeleton, knowledge)
+    .map(at)
+    .reduce((best, next) => (bareCost(task, next, knowledge) < bareCost(task, best, knowledge) ? next : best), middle);
+}
+
+/** Below this cost (no threat, half the requirement used) no other pH is tried. */
+const CONTENT = 0.6;
+/** A threat that may need a mask weighs as much as an uncertainty several times the requirement. */
+const THREAT_COST = 4;
+
+function bareCost(task: Task, stage: BareStage, knowledge: Knowledge): number {
+  if (stage.bare.status === "failed") return 50 + stage.threats.length;
+  const used = (100 * stageBudget(task, stage.bare, knowledge).expanded) / task.requirementPercent;
+  return Math.min(used, 10) + THREAT_COST * stage.threats.length + 10 * stage.bare.blockedBy.length;
+}
+
+/** Two other targets inside the window of the dye's use that the same buffer holds: towards its acid and its alkaline end. */
+function otherPHs(skeleton: Skeleton, knowledge: Knowledge): number[] {
+  const buffer = knowledge.buffers.get(skeleton.plan.buffer.id);
+  const low = Math.max(skeleton.window[0], buffer?.workingPH[0] ?? 0);
+  const high = Math.min(skeleton.window[1], buffer?.workingPH[1] ?? 14);
+  if (high - low < 0.4) return [];
+  const inset = (high - low) * 0.15;
+  return [low + inset, high - inset].map((pH) => Math.round(pH * 10) / 10).filter((pH) => Math.abs(pH - skeleton.plan.pH) >= 0.2);
+}
+
+/** Works a titration out into the variants worth judging: masked in a few ways, or with the unmaskable separated. */
+export function develop(task: Task, start: BareStage, knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
+  const { plan, threats } = start;
+  if (threats.length === 0) return [{ ...start, evaluation: start.bare, remaining: [] }];
   const out: DevelopedStage[] = [];
   const failed: Threat[] = [];
-  for (const set of maskSets(threats, start.plan, knowledge, shelf)) {
-    const settled = settle(task, start.plan, set, knowledge);
-    out.push({ ...common, ...settled });
+  const clean = (v: DevelopedStage): boolean =>
+    v.remaining.length === 0 &&
+    v.evaluation.status !== "failed" &&
+    v.evaluation.blockedBy.length === 0 &&
+    100 * stageBudget(task, v.evaluation, knowledge).expanded <= task.requirementPercent;
+  // The sets come least burden first. An agent that was seen not to hold a component is not tried on it again.
+  const useless = new Set<string>();
+  let tried = 0;
+  for (const set of maskSets(threats, plan, knowledge, shelf)) {
+    if (set.steps.some((s) => s.masks.some((ion) => useless.has(`${s.agent} ${ion}`)))) continue;
+    const settled = settle(task, plan, set, knowledge);
+    const variant = { ...start, ...settled };
+    out.push(variant);
     failed.push(...settled.remaining);
+    for (const step of set.steps)
+      for (const ion of step.masks) if (settled.remaining.some((t) => t.component === ion)) useless.add(`${step.agent} ${ion}`);
+    if (out.filter(clean).length >= CLEAN_SETS_KEPT || ++tried >= SETS_TRIED) break;
   }
-  const anyClean = out.some((v) => v.remaining.length === 0 && v.evaluation.status !== "failed");
-  if (!anyClean)
-    out.push(...separations(task, start.plan, threats, failed, knowledge, shelf).map((v) => ({ ...common, ...v })));
+  const anyClean = out.some(clean);
+  // Of the sets that did not work the best is kept, to show what was tried.
+  if (anyClean) out.splice(0, out.length, ...out.filter(clean));
+  else out.splice(1);
+  if (!anyClean) out.push(...separations(task, plan, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
   return out;
 }
+
+/** How many working sets of masks of one titration go on to judgement. */
+const CLEAN_SETS_KEPT = 2;
+/** How many sets are evaluated before the matrix is called unmaskable. */
+const SETS_TRIED = 8;
 
 type Settled = Pick<DevelopedStage, "plan" | "evaluation" | "remaining">;
 
@@ -166,17 +221,16 @@ function soluble(
   plan: StagePlan,
   knowledge: Knowledge,
   shelf: Shelf,
-): { plan: StagePlan; precipitates: boolean } {
-  const lost = (p: StagePlan): boolean => {
-    const model = stageModel(task, p, knowledge);
+): { plan: StagePlan; bare: StageEvaluation; precipitates: boolean } {
+  const lost = (model: StageModel): boolean => {
     const ids = new Set([...model.solids, ...model.held.filter((h) => h.why === "precipitated").map((h) => h.by)]);
-    return knowledge.solids.some((s) => ids.has(s.id) && p.determines.some((ion) => (s.components[ion] ?? 0) > 0));
+    return knowledge.solids.some((s) => ids.has(s.id) && plan.determines.some((ion) => (s.components[ion] ?? 0) > 0));
   };
-  if (plan.backTitrant !== null) {
-    // The titrant goes in first; what would precipitate without it does not.
-    return { plan, precipitates: lost({ ...plan, excessTitrantMolPerL: 0 }) };
-  }
-  if (!lost(plan)) return { plan, precipitates: false };
+  const bare = evaluate(task, plan, knowledge);
+  // In a back titration the titrant goes in first; what would precipitate without it does not.
+  if (plan.backTitrant !== null)
+    return { plan, bare, precipitates: lost(stageModel(task, { ...plan, excessTitrantMolPerL: 0 }, knowledge)) };
+  if (!lost(bare.model)) return { plan, bare, precipitates: false };
   for (const agent of knowledge.agents.values()) {
     if (!shelf(agent.id)) continue;
     const keeps = knowledge.masking.some(
@@ -190,7 +244,8 @@ function soluble(
     );
     if (!keeps) continue;
     const kept = withAuxiliary(plan, knowledge, agent.id, `keeps ${plan.determines.join(", ")} dissolved`);
-    if (!lost(kept)) return { plan: kept, precipitates: true };
+    const evaluation = evaluate(task, kept, knowledge);
+    if (!lost(evaluation.model)) return { plan: kept, bare: evaluation, precipitates: true };
   }
-  return { plan, precipitates: true };
+  return { plan, bare, precipitates: true };
 }

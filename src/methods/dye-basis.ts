@@ -2,16 +2,20 @@ import { transitionPM } from "../chemistry/end-point.ts";
 import type { ComponentId, IndicatorRecord, Knowledge } from "../constants/knowledge.ts";
 import { dyeComponentOf } from "./solution.ts";
 
+/** A published transition at one pH. */
+interface TableEntry {
+  readonly pM: number;
+  readonly counts: "free-ion" | "not-bound-to-titrant";
+  readonly metalsPerDye: 1 | 2;
+}
+
 /** On what the colour of a dye beside each metal is calculated. */
 export interface DyeBasis {
   /** The dye as a ligand of the equilibrium; null when no metal present has constants with it. */
   readonly dye: ComponentId | null;
   readonly byConstants: ReadonlySet<ComponentId>;
   /** Published pM at half change at this pH. */
-  readonly byTable: ReadonlyMap<
-    ComponentId,
-    { readonly pM: number; readonly counts: "free-ion" | "not-bound-to-titrant" }
-  >;
+  readonly byTable: ReadonlyMap<ComponentId, TableEntry>;
 }
 
 /** Metals with which a dye has constants, by dye component. */
@@ -48,7 +52,7 @@ export function pickDyeBasis(
 ): DyeBasis {
   const dye = dyeComponentOf(indicator.id);
   const withConstants = indicator.hasConstants ? metalsWithConstants(knowledge, dye) : new Set<ComponentId>();
-  const byTable = new Map<ComponentId, { pM: number; counts: "free-ion" | "not-bound-to-titrant" }>();
+  const byTable = new Map<ComponentId, TableEntry>();
   const byConstants = new Set<ComponentId>();
   for (const metal of metals) {
     const table = indicator.transitions.find((t) => t.ion === metal);
@@ -56,7 +60,7 @@ export function pickDyeBasis(
     // Azo dyes of the mordant type are reproduced by their constants within 0.1 (worked example IN-01), and the
     // constants let the dye's amount and 1:2 complexes count; there the constants go first.
     if (table && pM !== null && !(indicator.class === "azo" && withConstants.has(metal)))
-      byTable.set(metal, { pM, counts: table.counts });
+      byTable.set(metal, { pM, counts: table.counts, metalsPerDye: table.metalsPerDye ?? 1 });
     else if (withConstants.has(metal)) byConstants.add(metal);
   }
   return { dye: byConstants.size > 0 ? dye : null, byConstants, byTable };

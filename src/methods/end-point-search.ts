@@ -6,12 +6,12 @@ export interface EndPointSearch {
   readonly evaluations: number;
 }
 
-/** Relative precision of an end-point volume: a thousandth of what any burette reads. */
-const VOLUME_TOLERANCE = 2e-7;
+/** Relative precision of an end-point volume: a hundredth of what any burette reads. */
+const VOLUME_TOLERANCE = 2e-6;
 const MAX_STEPS = 60;
 
 /** Burette volumes, in parts of the expected one, at which the criterion is first looked at. */
-const SCAN = [0, 0.2, 0.5, 0.8, 0.95, 0.99, 1, 1.005, 1.02, 1.06, 1.15, 1.35, 1.8, 2.6, 4];
+const SCAN = [0.3, 0.9, 0.99, 1.003, 1.03, 1.12, 1.35, 1.8, 2.6, 4];
 
 /**
  * The first volume at which `criterion` turns from negative to not negative.
@@ -31,7 +31,7 @@ export function firstCrossing(criterion: (volumeL: number) => number, expectedL:
     const value = f(v);
     if (!Number.isFinite(value)) continue;
     if (value >= 0) {
-      if (Number.isNaN(fLow)) return { found: false, volumeL: 0, evaluations }; // over before it began
+      if (Number.isNaN(fLow)) return { found: false, volumeL: 0, evaluations }; // over before a third of it went in
       return { ...refine(f, low, fLow, v, value, expectedL), evaluations };
     }
     low = v;
@@ -86,28 +86,24 @@ export function nearCrossing(
   scaleL: number,
 ): number | null {
   let near = fromL;
-  for (let step = 2e-4 * scaleL; step < 4 * scaleL; step *= 3) {
+  let fNear = criterion(fromL);
+  for (let step = 3e-4 * scaleL; step < 4 * scaleL; step *= 4) {
     const far = Math.max(0, fromL + direction * step);
-    const value = criterion(far);
-    if (!Number.isFinite(value)) return null;
-    if (direction === -1 ? value < 0 : value >= 0) {
-      const [low, high] = direction === -1 ? [far, near] : [near, far];
-      return bisect(criterion, low, high);
-    }
-    near = far;
+    const fFar = criterion(far);
+    if (!Number.isFinite(fFar) || !Number.isFinite(fNear)) return null;
+    if (direction === -1 ? fFar < 0 : fFar >= 0) return edge(criterion, near, fNear, far, fFar);
     if (far === 0) return 0;
+    near = far;
+    fNear = fFar;
   }
   return null;
 }
 
-/** A few halvings are enough for the edge of an observer's band. */
-function bisect(criterion: (volumeL: number) => number, lowStart: number, highStart: number): number {
-  let low = lowStart;
-  let high = highStart;
-  for (let i = 0; i < 5; i++) {
-    const mid = (low + high) / 2;
-    if (criterion(mid) >= 0) high = mid;
-    else low = mid;
-  }
-  return (low + high) / 2;
+/** The edge of an observer's band needs two figures: two chords of the bracket, the second on the side that still holds it. */
+function edge(criterion: (volumeL: number) => number, near: number, fNear: number, far: number, fFar: number): number {
+  const chord = (a: number, fa: number, b: number, fb: number): number => (fa === fb ? (a + b) / 2 : (a * fb - b * fa) / (fb - fa));
+  const first = chord(near, fNear, far, fFar);
+  const fFirst = criterion(first);
+  if (!Number.isFinite(fFirst) || fFirst === 0) return first;
+  return fFirst < 0 === fNear < 0 ? chord(first, fFirst, far, fFar) : chord(near, fNear, first, fFirst);
 }

@@ -156,10 +156,12 @@ function criterionOf(model: StageModel, determined: ReadonlySet<ComponentId>, ba
   if (indicator && known.length > 0) {
     const target = practisedLog10Ratio(indicator.endPointModel, back ? "back" : "direct", plan.indicator!.molPerL);
     const log10Ratio = (s: VesselState): number => Math.log10(Math.max(s.dyeRatio, FLOOR));
+    // A band in pM is that many times as wide in the logarithm of the colour ratio as metal ions sit on one dye.
+    const perDye = Math.max(...known.map((m) => dyeBasis.byTable.get(m)?.metalsPerDye ?? 1));
     return {
       basis: known.some((m) => dyeBasis.byTable.has(m)) ? "table" : "constants",
       bandPM: indicator.observerBandPM,
-      bandLog10: indicator.observerBandPM,
+      bandLog10: perDye * indicator.observerBandPM,
       of: back ? (s) => log10Ratio(s) - target : (s) => target - log10Ratio(s),
     };
   }

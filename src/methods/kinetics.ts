@@ -15,8 +15,20 @@ export interface MetalKinetics {
 const INERT_BELOW_PER_S = 1e-2;
 const SLOW_BELOW_PER_S = 50;
 
+/** Depends on the knowledge alone; asked for thousands of times in a search. */
+const remembered = new WeakMap<Knowledge, Map<string, MetalKinetics>>();
+
 /** Kinetic class of a metal with a titrant, from the kinetic records. */
 export function metalKinetics(knowledge: Knowledge, ion: ComponentId, titrant: string): MetalKinetics {
+  const known = remembered.get(knowledge) ?? new Map<string, MetalKinetics>();
+  remembered.set(knowledge, known);
+  const key = `${ion} ${titrant}`;
+  const answer = known.get(key) ?? fromRecords(knowledge, ion, titrant);
+  known.set(key, answer);
+  return answer;
+}
+
+function fromRecords(knowledge: Knowledge, ion: ComponentId, titrant: string): MetalKinetics {
   const all = knowledge.kinetics.filter((k) => k.ion === ion && k.indicator === null);
   const own = all.filter((k) => k.titrant === titrant);
   const rate = all.find((k) => k.waterExchangePerS !== undefined);

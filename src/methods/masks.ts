@@ -10,7 +10,8 @@ interface MaskOption {
 }
 
 const PH_SLACK = 0.3; // printed ranges are round figures
-const SETS_KEPT = 4;
+/** Sets handed on; `develop` skips what has been seen to fail and stops as soon as enough of them work. */
+const SETS_KEPT = 120;
 const COMBINATIONS_LIMIT = 400;
 
 /**
@@ -36,27 +37,55 @@ function burdenOf(agent: AgentRecord, knowledge: Knowledge): number {
 const inside = (pH: number, range: readonly [number, number]): boolean =>
   pH >= range[0] - PH_SLACK && pH <= range[1] + PH_SLACK;
 
+/** Lookups that depend on the knowledge alone, made once: rows by agent and ion, pairs of components that share a species or a solid. */
+interface MaskIndex {
+  readonly rows: ReadonlyMap<string, readonly MaskingRecord[]>;
+  readonly complexes: ReadonlySet<string>;
+  readonly solids: ReadonlySet<string>;
+  readonly hydroxides: ReadonlySet<ComponentId>;
+}
+
+const indexes = new WeakMap<Knowledge, MaskIndex>();
+
+function indexOf(knowledge: Knowledge): MaskIndex {
+  const known = indexes.get(knowledge);
+  if (known) return known;
+  const rows = new Map<string, MaskingRecord[]>();
+  for (const row of knowledge.masking) {
+    const key = `${row.agent} ${row.ion}`;
+    const list = rows.get(key);
+    if (list) list.push(row);
+    else rows.set(key, [row]);
+  }
+  const pairs = (list: readonly { readonly components: Readonly<Record<ComponentId, number>> }[]): Set<string> => {
+    const out = new Set<string>();
+    for (const { components } of list) {
+      const present = Object.keys(components).filter((c) => c !== "H+" && components[c]! > 0);
+      for (const a of present) for (const b of present) if (a !== b) out.add(`${a} ${b}`);
+    }
+    return out;
+  };
+  const made: MaskIndex = {
+    rows,
+    complexes: pairs(knowledge.species),
+    solids: pairs(knowledge.solids),
+    hydroxides: new Set(knowledge.solids.filter((s) => (s.components["H+"] ?? 0) < 0).flatMap((s) => Object.keys(s.components))),
+  };
+  indexes.set(knowledge, made);
+  return made;
+}
+
 /** Rows of practice for an agent and an ion at this pH. */
 function rowsFor(knowledge: Knowledge, agent: string, ion: ComponentId, pH: number): MaskingRecord[] {
-  return knowledge.masking.filter((r) => r.agent === agent && r.ion === ion && inside(pH, r.pH));
+  return (indexOf(knowledge).rows.get(`${agent} ${ion}`) ?? []).filter((r) => inside(pH, r.pH));
 }
 
 /** Whether the model has constants for this pair: a soluble complex, or a solid where the mask precipitates. */
-export function pairHasConstants(
-  knowledge: Knowledge,
-  agent: AgentRecord,
-  ion: ComponentId,
-  via: MaskingRecord["via"],
-): boolean {
-  if (agent.id === "hydroxide")
-    return knowledge.solids.some((s) => (s.components[ion] ?? 0) > 0 && (s.components["H+"] ?? 0) < 0);
-  const ligand = agent.component;
-  if (ligand === null) return false;
-  const both = (components: Readonly<Record<ComponentId, number>>): boolean =>
-    (components[ion] ?? 0) > 0 && (components[ligand] ?? 0) > 0;
-  return via === "precipitation"
-    ? knowledge.solids.some((s) => both(s.components))
-    : knowledge.species.some((s) => both(s.components));
+export function pairHasConstants(knowledge: Knowledge, agent: AgentRecord, ion: ComponentId, via: MaskingRecord["via"]): boolean {
+  const index = indexOf(knowledge);
+  if (agent.id === "hydroxide") return index.hydroxides.has(ion);
+  if (agent.component === null) return false;
+  return (via === "precipitation" ? index.solids : index.complexes).has(`${ion} ${agent.component}`);
 }
 
 /** Agents that practice uses for this component at the pH of the plan and that leave analyte, chelate and back titrant alone. */
@@ -124,12 +153,11 @@ export function maskSets(threats: readonly Threat[], plan: StagePlan, knowledge:
     const key = [...new Set(combination.map((o) => o.agent.id))].sort().join("+");
     if (seen.has(key)) continue;
     seen.add(key);
+    if (!enoughAgent(combination, answered.map((i) => threats[i]!))) continue;
     sets.push({
       steps: stepsOf(
         combination,
-        answered.map((i) => threats[i]!),
-        knowledge,
-      ),
+        answered.map((i) => threats[i]!), plan.pH, knowledge),
       unanswered,
       burden: setBurden(combination, knowledge),
     });
@@ -146,11 +174,24 @@ function setBurden(combination: readonly MaskOption[], knowledge: Knowledge): nu
   return burden;
 }
 
+/** An agent that would be used up by what it masks is not a mask: two ligands a metal ion must fit in its usual maximum. */
+function enoughAgent(combination: readonly MaskOption[], threats: readonly Threat[]): boolean {
+  const need = new Map<string, { molPerL: number; most: number }>();
+  combination.forEach(({ agent, record }, i) => {
+    if (agent.id === "hydroxide") return;
+    const perMetal = record.via === "reduction" || threats[i]!.holdsAnalyte ? 1 : 2;
+    const entry = need.get(agent.id) ?? { molPerL: 0, most: agent.usualMaxMolPerL };
+    entry.molPerL += perMetal * threats[i]!.molPerL;
+    need.set(agent.id, entry);
+  });
+  return [...need.values()].every((n) => n.molPerL <= n.most);
+}
+
 /** Ligands needed per metal ion when an agent binds it fully: enough for the highest usual coordination. */
 const LIGANDS_PER_METAL = 6;
 const EXCESS = 1.2;
 
-function stepsOf(combination: readonly MaskOption[], threats: readonly Threat[], knowledge: Knowledge): MaskingStep[] {
+function stepsOf(combination: readonly MaskOption[], threats: readonly Threat[], pH: number, knowledge: Knowledge): MaskingStep[] {
   const byKey = new Map<
     string,
     { option: MaskOption; basis: MaskingStep["basis"]; masks: ComponentId[]; need: number }
@@ -159,7 +200,10 @@ function stepsOf(combination: readonly MaskOption[], threats: readonly Threat[],
     const threat = threats[i]!;
     const via = option.record.via ?? "complexation";
     const basis: MaskingStep["basis"] =
-      via === "reduction" || via === "oxidation" || threat.holdsAnalyte
+      via === "reduction" ||
+      via === "oxidation" ||
+      threat.holdsAnalyte ||
+      option.agent.converts.some((c) => c.from === threat.component && inside(pH, c.pH))
         ? "conversion"
         : pairHasConstants(knowledge, option.agent, threat.component, option.record.via)
           ? "equilibrium"

@@ -1,7 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { develop, type DevelopedStage } from "./develop.ts";
-import { shelfOf, type Shelf } from "./shelf.ts";
-import { backSkeletons, directSkeletons, type Skeleton } from "./skeletons.ts";
+import { bareStage, develop, type BareStage, type DevelopedStage } from "./develop.ts";
+import type { Shelf } from "./shelf.ts";
+import { backSkeletons, directSkeletons, LAST_TITRANTS, OTHER_TITRANTS, USUAL_FIELD, type Field, type Skeleton } from "./skeletons.ts";
 import type { MethodMode, Task } from "./types.ts";
 import { stageBudget, type Budget } from "./uncertainty.ts";
 
@@ -38,24 +38,89 @@ export function stageKey(stage: DevelopedStage): string {
   ].join("|");
 }
 
-/** All titrations of one group of ions that are worth judging, and the skeletons that gave none. */
-export function stagesFor(
-  task: Task,
-  determines: readonly ComponentId[],
-  knowledge: Knowledge,
-  shelf: Shelf,
-): DevelopedStage[] {
-  const make = { task, knowledge, shelf, determines };
-  const skeletons: Skeleton[] = [...directSkeletons(make), ...backSkeletons(make)];
+/** How many clean titrations that meet the requirement are enough to stop widening the search. */
+const ENOUGH = 3;
+/** How many dyes the other titrants are tried with when the usual one serves. */
+const DYES_FOR_OTHERS = 2;
+
+/** … and when it leaves too little. */
+const DYES_WHEN_SHORT = 6;
+
+/**
+ * All titrations of one group of ions that are worth judging: first EDTA with every dye in use, then, where that leaves too
+ * little, the other titrants and back titrations by analogy.
+ */
+export function stagesFor(task: Task, determines: readonly ComponentId[], knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
   const seen = new Set<string>();
-  return skeletons.flatMap((skeleton) =>
-    develop(task, skeleton, knowledge, shelf).filter((stage) => {
-      const key = stageKey(stage);
-      if (seen.has(key)) return false;
-      seen.add(key);
-      return true;
-    }),
-  );
+  const search = (field: Field): DevelopedStage[] => {
+    const make = { task, knowledge, shelf, determines, field };
+    const skeletons: Skeleton[] = [...directSkeletons(make), ...backSkeletons(make)];
+    const bare = skeletons.map((skeleton) => bareStage(task, skeleton, knowledge, shelf));
+    return promising(task, bare, knowledge).flatMap((start) =>
+      develop(task, start, knowledge, shelf).filter((stage) => {
+        const key = stageKey(stage);
+        if (seen.has(key)) return false;
+        seen.add(key);
+        return true;
+      }),
+    );
+  };
+  const usual = search(USUAL_FIELD);
+  const clean = usual.filter((s) => meetsCleanly(task, s, knowledge));
+  const others = (shelf("EDTA") ? OTHER_TITRANTS : [...OTHER_TITRANTS, ...LAST_TITRANTS]).filter((t) => shelf(t));
+  if (clean.length < ENOUGH) {
+    const likely = new Set(
+      [...usual]
+        .sort((a, b) => roughCost(task, a, knowledge) - roughCost(task, b, knowledge))
+        .flatMap((s) => (s.plan.indicator ? [s.plan.indicator.id] : [])),
+    );
+    const dyes = usual.length > 0 ? new Set([...likely].slice(0, DYES_WHEN_SHORT)) : null;
+    return [...usual, ...search({ titrants: others, dyes, analogous: false }), ...search({ titrants: ["EDTA"], dyes: null, analogous: true })];
+  }
+  const ranked = [...clean].sort((a, b) => roughCost(task, a, knowledge) - roughCost(task, b, knowledge));
+  const dyes = new Set(ranked.flatMap((s) => (s.plan.indicator ? [s.plan.indicator.id] : [])).slice(0, DYES_FOR_OTHERS));
+  return [...usual, ...search({ titrants: others, dyes, analogous: false })];
+}
+
+/** How many titrations that need masks or separations are worked out; those that need nothing all are. */
+const WORKED_OUT = 14;
+
+/** What is worth working out against the matrix: all that needs nothing, and the best of the rest, dye by dye. */
+export function promising(task: Task, stages: readonly BareStage[], knowledge: Knowledge): BareStage[] {
+  const quiet = stages.filter((s) => s.threats.length === 0);
+  const cost = (s: BareStage): number =>
+    10 * s.threats.length +
+    (s.bare.status === "failed" && s.threats.length === 0 ? 100 : 0) +
+    (s.bare.why === "no-colour" ? 60 : 0) +
+    (s.plan.backTitrant ? 8 : 0) +
+    (s.skeleton.use === "published" ? 0 : 12) +
+    // What the sharpest interferent leaves of the analyte's own constant tells how hard masking will be.
+    Math.max(0, 8 - analyteConstant(s)) * 5 +
+    (knowledge.indicators.get(s.plan.indicator?.id ?? "")?.hasConstants ? 0 : 3);
+  const perDye = new Map<string, number>();
+  const loud = stages
+    .filter((s) => s.threats.length > 0)
+    .sort((a, b) => cost(a) - cost(b))
+    .filter((s) => {
+      const dye = `${s.plan.mode} ${s.plan.indicator?.id ?? ""}`;
+      const n = perDye.get(dye) ?? 0;
+      perDye.set(dye, n + 1);
+      return n < 2;
+    });
+  return [...quiet, ...loud.slice(0, WORKED_OUT)];
+}
+
+function analyteConstant(stage: BareStage): number {
+  const own = stage.plan.determines.map((ion) => stage.bare.log10ConditionalK.get(ion)).filter((k) => k !== undefined);
+  return own.length > 0 ? Math.min(...own) : 8;
+}
+
+/** Whether nothing is left undone and the requirement is met without a separation. */
+export function meetsCleanly(task: Task, stage: DevelopedStage, knowledge: Knowledge): boolean {
+  const { evaluation } = stage;
+  if (evaluation.status === "failed" || stage.remaining.length > 0 || evaluation.blockedBy.length > 0 || stage.plan.removed.length > 0) return false;
+  if (stage.analytePrecipitates && stage.plan.backTitrant === null && stage.plan.auxiliary.length === 0) return false;
+  return 100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
 }
 
 /** A stage's promise, smaller is better: bias and band against the requirement, what is left undone, steps. */
@@ -88,33 +153,6 @@ export function singleMethod(task: Task, stage: DevelopedStage, knowledge: Knowl
     results: [{ determines: stage.plan.determines, biasFraction: stage.evaluation.biasFraction, budget }],
     portions: 1,
   };
-}
-
-/** Everything that was worked out for a task, before judgement. */
-export interface MethodSearch {
-  readonly methods: readonly EvaluatedMethod[];
-  readonly shelf: Shelf;
-  readonly specialOpened: boolean;
-}
-
-/** Searches the usual shelf, and the special reagents only when nothing usual works. */
-export function searchMethods(task: Task, knowledge: Knowledge): MethodSearch {
-  for (const withSpecial of [false, true]) {
-    const shelf = shelfOf(task, knowledge, withSpecial);
-    const methods = methodsOn(task, knowledge, shelf);
-    const works = methods.some((m) =>
-      m.stages.every((s) => s.evaluation.status !== "failed" && s.remaining.length === 0),
-    );
-    if (works || withSpecial) return { methods, shelf, specialOpened: withSpecial };
-  }
-  throw new Error("unreachable: the second round always returns");
-}
-
-function methodsOn(task: Task, knowledge: Knowledge, shelf: Shelf): EvaluatedMethod[] {
-  const groups = groupsOf(task);
-  if (groups.length === 1)
-    return stagesFor(task, groups[0]!, knowledge, shelf).map((stage) => singleMethod(task, stage, knowledge));
-  return [];
 }
 
 /** What is to be reported together: every individual analyte by itself, all with "sum" as one. */

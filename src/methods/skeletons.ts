@@ -78,7 +78,7 @@ function usesFor(indicator: IndicatorRecord, ions: readonly ComponentId[], modes
   return kept;
 }
 
-const BUFFERS_KEPT = 2;
+const BUFFERS_KEPT = 1;
 
 /** Buffers that hold this pH, the best suited first: nearest pKa, on the shelf, not precipitating or disturbing by record. */
 export function buffersFor(pH: number, knowledge: Knowledge, shelf: Shelf, blind: ReadonlySet<string>): BufferRecord[] {
@@ -135,11 +135,26 @@ export function strengthFor(amountMol: number, strengths: readonly number[], bur
 
 const EXCESS_OVER_BOUND = 1.4; // 30 to 50 % above what binds
 
+/** Which part of the field is searched: the usual titrant first, then the others, then back titrations by analogy. */
+export interface Field {
+  readonly titrants: readonly string[];
+  /** Only these dyes; null = all. */
+  readonly dyes: ReadonlySet<string> | null;
+  /** Also back titrations whose dye is on record for the back titrant, not for the analyte. */
+  readonly analogous: boolean;
+}
+
+export const USUAL_FIELD: Field = { titrants: ["EDTA"], dyes: null, analogous: false };
+/** Titrants that can win over EDTA by selectivity or strength; the rest serve only where EDTA is not to be had. */
+export const OTHER_TITRANTS = ["CDTA", "DTPA", "EGTA"] as const;
+export const LAST_TITRANTS = ["HEDTA", "NTA", "TTHA", "trien"] as const;
+
 interface Make {
   readonly task: Task;
   readonly knowledge: Knowledge;
   readonly shelf: Shelf;
   readonly determines: readonly ComponentId[];
+  readonly field: Field;
 }
 
 function basePlan(
@@ -200,13 +215,15 @@ const tooHot = (task: Task, preparation: readonly string[]): boolean =>
 
 /** Direct titrations, also with a chelate that lends the dye its metal. */
 export function directSkeletons(make: Make): Skeleton[] {
-  const { task, knowledge, shelf, determines } = make;
+  const { task, knowledge, shelf, determines, field } = make;
   const out: Skeleton[] = [];
   for (const indicator of knowledge.indicators.values()) {
+    if (field.dyes && !field.dyes.has(indicator.id)) continue;
     if (!shelf(indicator.id) && !(indicator.id === "Cu-PAN" && shelf("PAN") && task.laboratory.available === null))
       continue;
     for (const { window, use, basis } of usesFor(indicator, determines, ["direct", "displacement"])) {
-      const titrants = use.titrant ? [use.titrant] : ["EDTA", "CDTA", "DTPA", "EGTA", "HEDTA"];
+      // A use that names its titrant belongs to the first round: EGTA with zincon is not a variant of EDTA.
+      const titrants = use.titrant ? (field.titrants.includes("EDTA") ? [use.titrant] : []) : field.titrants;
       for (const titrant of titrants) {
         if (!shelf(titrant)) continue;
         const pH = benchPH(window);
@@ -244,12 +261,14 @@ export function withAuxiliary(plan: StagePlan, knowledge: Knowledge, agent: stri
 
 /** Back titrations: titrant in excess first, then a metal that the dye shows. */
 export function backSkeletons(make: Make): Skeleton[] {
-  const { task, knowledge, shelf, determines } = make;
+  const { task, knowledge, shelf, determines, field } = make;
   const out: Skeleton[] = [];
   for (const indicator of knowledge.indicators.values()) {
-    if (!shelf(indicator.id)) continue;
+    if (!shelf(indicator.id) || (field.dyes && !field.dyes.has(indicator.id))) continue;
     const published = usesFor(indicator, determines, ["back"]);
+    let byAnalogy = 0;
     for (const backTitrant of knowledge.metalTitrants.values()) {
+      if (byAnalogy >= ANALOGIES_PER_DYE) break;
       if (!shelf(backTitrant.ion) || (determines.includes(backTitrant.ion) && determines.length > 1)) continue;
       const shown = indicator.uses.filter(
         (u) => u.mode === "direct" && u.ions.length === 1 && u.ions[0] === backTitrant.ion && !u.titrant,
@@ -264,19 +283,20 @@ export function backSkeletons(make: Make): Skeleton[] {
           const window = overlap(p.window, s.pH);
           if (window) windows.push({ window, standing: "published", basis: p.basis, use: p.use });
         }
-        if (published.length === 0) windows.push({ window: s.pH, standing: "analogous", basis: basisOf(s), use: s });
+        if (published.length === 0 && field.analogous && calculable(indicator, backTitrant.ion)) windows.push({ window: s.pH, standing: "analogous", basis: basisOf(s), use: s });
       }
       const seen: number[] = [];
       for (const { window, standing, basis, use } of windows) {
         const pH = benchPH(window);
         if (seen.some((p) => Math.abs(p - pH) < 0.6)) continue;
         seen.push(pH);
-        for (const titrant of ["EDTA", "CDTA", "DTPA"]) {
+        for (const titrant of field.titrants) {
           if (!shelf(titrant)) continue;
           const buffer = buffersFor(pH, knowledge, shelf, new Set())[0];
           if (!buffer) continue;
           const plan = backPlan(make, titrant, indicator, pH, buffer, backTitrant.ion, use);
           if (!plan || tooHot(task, plan.preparation)) continue;
+          if (standing === "analogous") byAnalogy++;
           out.push({ plan, use: standing, useBasis: basis, window });
         }
       }
@@ -284,6 +304,13 @@ export function backSkeletons(make: Make): Skeleton[] {
   }
   return out;
 }
+
+/** Back titrants tried with one dye on no more than analogy. */
+const ANALOGIES_PER_DYE = 2;
+
+/** A back titration by analogy has to be calculable at least: the dye has constants, or a transition with the back titrant. */
+const calculable = (indicator: IndicatorRecord, metal: ComponentId): boolean =>
+  indicator.hasConstants || indicator.transitions.some((t) => t.ion === metal);
 
 function backPlan(
   make: Make,

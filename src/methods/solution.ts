@@ -57,9 +57,13 @@ export function stageSolution(task: Task, plan: StagePlan, knowledge: Knowledge)
   const totals = new Map(fromSample);
   const buffer = knowledge.buffers.get(plan.buffer.id);
   if (buffer?.component) add(totals, buffer.component, plan.buffer.molPerL);
-  for (const reagent of [...plan.masking.map((m) => ({ id: m.agent, molPerL: m.molPerL })), ...plan.auxiliary]) {
-    const component = knowledge.agents.get(reagent.id)?.component;
-    if (component) add(totals, component, reagent.molPerL);
+  // One bottle of an agent serves all it masks: several steps with it are one amount.
+  const amounts = new Map<string, number>();
+  for (const { agent, molPerL } of plan.masking) amounts.set(agent, Math.max(amounts.get(agent) ?? 0, molPerL));
+  for (const { id, molPerL } of plan.auxiliary) amounts.set(id, Math.max(amounts.get(id) ?? 0, molPerL));
+  for (const [id, molPerL] of amounts) {
+    const component = knowledge.agents.get(id)?.component;
+    if (component) add(totals, component, molPerL);
   }
   for (const reagent of plan.added) if (knowledge.components.has(reagent.id)) add(totals, reagent.id, reagent.molPerL);
   if (plan.chelate) {

@@ -2,7 +2,7 @@ import { ionicStrengthOf } from "../chemistry/ionic-strength.ts";
 import { prepareSystem } from "../chemistry/prepare-system.ts";
 import { solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
 import type { PreparedSystem, SolveResult } from "../chemistry/types.ts";
-import type { ComponentId, IndicatorRecord, Knowledge, SolidDefinition } from "../constants/knowledge.ts";
+import type { ComponentId, IndicatorRecord, Knowledge, SolidDefinition, SpeciesDefinition } from "../constants/knowledge.ts";
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
 import type { StagePlan, Task } from "./types.ts";
@@ -133,11 +133,13 @@ export function stageModel(
     return kind !== undefined && kind !== "inert" && kind !== "proton";
   });
   const titrant = plan.titrant.id;
-  const exclude = (species: { readonly components: Readonly<Record<ComponentId, number>> }): boolean => {
+  // A doubtful constant may serve for the metal the dye is used for, but does not prove that a bystander holds the dye.
+  const watched = new Set([...plan.determines, ...(plan.backTitrant ? [plan.backTitrant.id] : []), ...(plan.chelate ? [plan.chelate.metal] : [])]);
+  const exclude = (species: SpeciesDefinition): boolean => {
     const names = Object.keys(species.components);
     if ((species.components[titrant] ?? 0) > 0 && names.some((c) => inert.has(c))) return true;
     if (dye !== null && (species.components[dye] ?? 0) > 0)
-      return names.some((c) => metals.has(c) && !dyeBasis.byConstants.has(c));
+      return names.some((c) => metals.has(c) && (!dyeBasis.byConstants.has(c) || (!watched.has(c) && isDoubtful(knowledge, species))));
     return false;
   };
   const maskedSolids = new Set(plan.masking.filter((m) => m.via === "precipitation").flatMap((m) => m.masks));
@@ -234,7 +236,7 @@ export function stageModel(
       const half = dyeBasis.byTable.get(metal);
       if (half !== undefined) {
         const concentration = half.counts === "free-ion" ? free(metal) : unbound(metal);
-        return concentration * 10 ** half.pM;
+        return (concentration * 10 ** half.pM) ** half.metalsPerDye;
       }
       return dyeFree > 0 ? sum(rows.dyeByMetal.get(metal)) / dyeFree : 0;
     };
@@ -285,4 +287,9 @@ function inertIonsOf(totals: ReadonlyMap<ComponentId, number>, knowledge: Knowle
     cz += molPerL * component.charge;
   }
   return { cz2, cz };
+}
+
+/** Whether every record of some step of the species' chain is doubtful. */
+function isDoubtful(knowledge: Knowledge, species: SpeciesDefinition): boolean {
+  return species.chain.some(({ reaction }) => knowledge.reactions.get(reaction)?.records.every((r) => r.doubtful) ?? false);
 }

@@ -1,8 +1,8 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { blockingLevel } from "./blocking.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import { vesselSample } from "./solution.ts";
 import type { Task } from "./types.ts";
+import { stageBudget } from "./uncertainty.ts";
 
 /** A component of the sample that the titration cannot leave alone. */
 export interface Threat {
@@ -15,8 +15,10 @@ export interface Threat {
   readonly molPerL: number; // in the vessel
 }
 
-/** A bias smaller than this part of the requirement is left alone. */
+/** A bias smaller than this part of the requirement is left alone, */
 const IGNORED_PART_OF_REQUIREMENT = 0.12;
+/** and up to this part where the requirement is met with it: no mask without need. */
+const BORNE_PART_OF_REQUIREMENT = 0.4;
 /** log alpha of the analyte from one ligand of the sample beyond which a titration suffers noticeably. */
 const HELD_LOG10_ALPHA = 3;
 
@@ -24,7 +26,9 @@ const HELD_LOG10_ALPHA = 3;
 export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): Threat[] {
   const { model } = evaluation;
   const { plan } = model;
-  const allowed = (IGNORED_PART_OF_REQUIREMENT * task.requirementPercent) / 100;
+  const meets =
+    evaluation.status !== "failed" && 100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
+  const allowed = ((meets ? BORNE_PART_OF_REQUIREMENT : IGNORED_PART_OF_REQUIREMENT) * task.requirementPercent) / 100;
   const equivalence = evaluation.status === "failed" ? model.at(Math.max(evaluation.equivalenceML, 1e-6) / 1000) : null;
   const threats: Threat[] = [];
   const determined = new Set(plan.determines);
@@ -77,9 +81,3 @@ function holds(evaluation: StageEvaluation, ligand: ComponentId, knowledge: Know
   }, 0);
   return Math.log10(1 + held / start.free(metal)) > HELD_LOG10_ALPHA;
 }
-
-/** The level of a metal at which the dye of this plan is spoilt, mol/L in the vessel; null when it never is. */
-export const spoilingLevel = (evaluation: StageEvaluation, metal: ComponentId): number | null =>
-  evaluation.model.indicator && evaluation.model.plan.indicator
-    ? blockingLevel(evaluation.model.indicator, metal, evaluation.model.plan.indicator.molPerL)
-    : null;

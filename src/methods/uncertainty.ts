@@ -72,3 +72,32 @@ export function stageBudget(task: Task, evaluation: StageEvaluation, knowledge: 
   const combined = Math.sqrt(terms.reduce((s, t) => s + t.relative ** 2, 0));
   return { terms, combined, expanded: 2 * combined + Math.abs(evaluation.biasFraction) };
 }
+
+/**
+ * A result by difference of two portions: bias and budget relative to the difference. Independent terms add in quadrature of
+ * amounts; the titrant strength and the temperature are common to both and count once.
+ */
+export function combineDifference(
+  task: Task,
+  whole: StageEvaluation,
+  part: StageEvaluation,
+  knowledge: Knowledge,
+): { biasFraction: number; budget: Budget } {
+  const difference = whole.presentMol - part.presentMol;
+  const a = stageBudget(task, whole, knowledge);
+  const b = stageBudget(task, part, knowledge);
+  const common = new Set(["titrant strength", "temperature"]);
+  const biasFraction = (whole.biasFraction * whole.presentMol - part.biasFraction * part.presentMol) / difference;
+  const term = (budget: Budget, source: string, amount: number): number =>
+    ((budget.terms.find((t) => t.source === source)?.relative ?? 0) * amount) / difference;
+  const sources = [...new Set([...a.terms, ...b.terms].map((t) => t.source))];
+  const terms = sources.map((source) => ({
+    source,
+    relative: common.has(source)
+      ? (a.terms.find((t) => t.source === source)?.relative ?? 0)
+      : Math.hypot(term(a, source, whole.presentMol), term(b, source, part.presentMol)),
+  }));
+  terms.sort((x, y) => y.relative - x.relative);
+  const combined = Math.sqrt(terms.reduce((s, t) => s + t.relative ** 2, 0));
+  return { biasFraction, budget: { terms, combined, expanded: 2 * combined + Math.abs(biasFraction) } };
+}

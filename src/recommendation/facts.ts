@@ -6,7 +6,6 @@ import type { DevelopedStage } from "../methods/develop.ts";
 import type { EvaluatedMethod } from "../methods/methods.ts";
 import { supersaturations, type Supersaturation } from "../methods/saturation.ts";
 import type { Task } from "../methods/types.ts";
-import { blockerOf } from "../methods/blocking.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import { hazardTagsOf, reagentsOf } from "./reagents.ts";
 
@@ -250,7 +249,7 @@ export function componentFacts(
         blocksIndicator:
           evaluation.blockedBy.includes(component) ||
           stage.remaining.some((t) => t.component === component && t.blocks),
-        wouldBlock: wouldBlock && (indicator === null || blockerOf(indicator, component) !== null || wouldBlock),
+        wouldBlock,
         maskedBy: step ? step.agent : removed ? "separate" : "none",
         maskedVia: step?.via ?? "none",
         maskingBasis: step?.basis ?? "none",

@@ -1,5 +1,6 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
+import { blockerOf } from "../methods/blocking.ts";
 import type { EvaluatedMethod } from "../methods/methods.ts";
 import { metalKinetics } from "../methods/kinetics.ts";
 import { supersaturations } from "../methods/saturation.ts";
@@ -80,7 +81,8 @@ function titration(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowl
     const blocks =
       bare.blockedBy.includes(component) || stage.threats.some((t) => t.component === component && t.blocks);
     if (blocks && dye && !isAnalyte) {
-      const row = knowledge.indicators.get(plan.indicator!.id)?.blockers.find((b) => b.ion === component);
+      const indicator = knowledge.indicators.get(plan.indicator!.id);
+      const row = indicator ? blockerOf(indicator, component, plan.pH) : null;
       put(
         component,
         "blocks-indicator",

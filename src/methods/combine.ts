@@ -1,0 +1,150 @@
+import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
+import { bareStage, develop, type DevelopedStage } from "./develop.ts";
+import { promising, roughCost, stageKey, stagesFor, type EvaluatedMethod, type MethodResult } from "./methods.ts";
+import type { Shelf } from "./shelf.ts";
+import { backSkeletons, directSkeletons, USUAL_FIELD } from "./skeletons.ts";
+import type { MaskingStep, Task } from "./types.ts";
+import { combineDifference, stageBudget } from "./uncertainty.ts";
+
+/** How many titrations of a group are carried on into combinations. */
+const CARRIED_ON = 4;
+const FOLLOWED = 2;
+
+/** Methods that give several results: separate portions, one portion in turn, or a difference of two titrations. */
+export function combinedMethods(task: Task, groups: readonly (readonly ComponentId[])[], knowledge: Knowledge, shelf: Shelf): EvaluatedMethod[] {
+  const byGroup = groups.map((group) => best(task, stagesFor(task, group, knowledge, shelf), knowledge));
+  return [
+    ...portions(task, byGroup, knowledge),
+    ...successive(task, groups, byGroup, knowledge, shelf),
+    ...(groups.length === 2 ? differences(task, groups, byGroup, knowledge, shelf) : []),
+  ];
+}
+
+/** The most promising titrations of one group, different dyes and preparations before shades of the same. */
+function best(task: Task, stages: readonly DevelopedStage[], knowledge: Knowledge): DevelopedStage[] {
+  const cost = new Map(stages.map((s) => [s, roughCost(task, s, knowledge)]));
+  const seen = new Map<string, number>();
+  return [...stages]
+    .filter((s) => s.evaluation.status !== "failed")
+    .sort((a, b) => cost.get(a)! - cost.get(b)! || stageKey(a).localeCompare(stageKey(b)))
+    .filter((s) => {
+      const kind = `${s.plan.mode} ${s.plan.indicator?.id ?? ""} ${s.plan.removed.join()}`;
+      const n = seen.get(kind) ?? 0;
+      seen.set(kind, n + 1);
+      return n < 1;
+    })
+    .slice(0, 12);
+}
+
+const result = (task: Task, stage: DevelopedStage, knowledge: Knowledge): MethodResult => ({
+  determines: stage.plan.determines,
+  biasFraction: stage.evaluation.biasFraction,
+  budget: stageBudget(task, stage.evaluation, knowledge),
+});
+
+function portions(task: Task, byGroup: readonly (readonly DevelopedStage[])[], knowledge: Knowledge): EvaluatedMethod[] {
+  if (byGroup.some((stages) => stages.length === 0)) return [];
+  const width = Math.min(CARRIED_ON, Math.max(...byGroup.map((s) => s.length)));
+  return Array.from({ length: width }, (_, i) => {
+    const stages = byGroup.map((list) => list[Math.min(i, list.length - 1)]!);
+    return {
+      id: `portions: ${stages.map(stageKey).join(" ; ")}`,
+      mode: "portions" as const,
+      stages,
+      results: stages.map((s) => result(task, s, knowledge)),
+      portions: stages.length,
+    };
+  });
+}
+
+/** Order in which groups may be titrated in one portion: every order of up to three groups. */
+function orders(n: number): number[][] {
+  if (n === 1) return [[0]];
+  if (n > 3) return [Array.from({ length: n }, (_, i) => i)];
+  return orders(n - 1).flatMap((rest) => Array.from({ length: n }, (_, at) => [...rest.slice(0, at), n - 1, ...rest.slice(at)]));
+}
+
+function successive(
+  task: Task,
+  groups: readonly (readonly ComponentId[])[],
+  byGroup: readonly (readonly DevelopedStage[])[],
+  knowledge: Knowledge,
+  shelf: Shelf,
+): EvaluatedMethod[] {
+  return orders(groups.length).flatMap((order) => {
+    const starts = (byGroup[order[0]!] ?? []).filter((s) => s.plan.backTitrant === null && s.plan.removed.length === 0 && s.remaining.length === 0 && !holdsLater(s, order.slice(1).flatMap((i) => groups[i]!)));
+    return starts.slice(0, FOLLOWED).flatMap((start) => follow(task, [start], order.slice(1).map((i) => groups[i]!), knowledge, shelf));
+  });
+}
+
+/** A mask on something that is to be titrated later would have to be undone first. */
+const holdsLater = (stage: DevelopedStage, later: readonly ComponentId[]): boolean =>
+  stage.plan.masking.some((m) => m.masks.some((c) => later.includes(c)));
+
+function follow(
+  task: Task,
+  done: readonly DevelopedStage[],
+  todo: readonly (readonly ComponentId[])[],
+  knowledge: Knowledge,
+  shelf: Shelf,
+): EvaluatedMethod[] {
+  const next = todo[0];
+  if (next === undefined)
+    return [
+      {
+        id: `successive: ${done.map(stageKey).join(" ; ")}`,
+        mode: "successive",
+        stages: done,
+        results: done.map((s) => result(task, s, knowledge)),
+        portions: 1,
+      },
+    ];
+  const last = done.at(-1)!;
+  // The vessel as the last titration left it: fuller by its titre, its titrant bound to what it determined.
+  const grown = done.reduce((ml, s) => ml + s.evaluation.endPointML, task.portion.titrationVolumeML);
+  const later: Task = { ...task, portion: { ...task.portion, titrationVolumeML: grown } };
+  const metals = done.flatMap((s) => [...s.plan.determines]);
+  const titrantMolPerL = done.reduce((s, d) => s + (d.plan.titrant.molPerL * d.evaluation.endPointML) / grown, 0);
+  const kept: MaskingStep[] = done.flatMap((s) => s.plan.masking.map((m) => ({ ...m, molPerL: m.molPerL * (task.portion.titrationVolumeML / grown) })));
+  const make = { task: later, knowledge, shelf, determines: next, field: USUAL_FIELD };
+  const options = [...directSkeletons(make), ...backSkeletons(make)]
+    .filter((s) => s.plan.titrant.id === last.plan.titrant.id && s.plan.pH >= last.plan.pH - 0.05)
+    .map((skeleton) => ({
+      ...skeleton,
+      plan: { ...skeleton.plan, carried: { metals, titrantMolPerL }, masking: [...kept, ...skeleton.plan.masking] },
+    }));
+  const starts = promising(later, options.map((s) => bareStage(later, s, knowledge, shelf)), knowledge);
+  const developed = best(later, starts.flatMap((s) => develop(later, s, knowledge, shelf)), knowledge).filter((s) => s.plan.removed.length === 0);
+  return developed.slice(0, FOLLOWED).flatMap((s) => follow(task, [...done, s], todo.slice(1), knowledge, shelf));
+}
+
+function differences(
+  task: Task,
+  groups: readonly (readonly ComponentId[])[],
+  byGroup: readonly (readonly DevelopedStage[])[],
+  knowledge: Knowledge,
+  shelf: Shelf,
+): EvaluatedMethod[] {
+  const together = best(task, stagesFor(task, groups.flat(), knowledge, shelf), knowledge).filter((s) => s.remaining.length === 0);
+  const sum = together.slice(0, CARRIED_ON);
+  return [0, 1].flatMap((alone) => {
+    const other = groups[1 - alone]!;
+    const partner = (byGroup[alone] ?? []).filter((s) => s.remaining.length === 0 && s.plan.removed.length === 0).slice(0, CARRIED_ON);
+    return sum.flatMap((whole, i) => {
+      const single = partner[Math.min(i, partner.length - 1)];
+      if (!single) return [];
+      return [
+        {
+          id: `difference: ${stageKey(whole)} ; ${stageKey(single)}`,
+          mode: "difference" as const,
+          stages: [whole, single],
+          results: [
+            result(task, single, knowledge),
+            { determines: other, ...combineDifference(task, whole.evaluation, single.evaluation, knowledge) },
+          ],
+          portions: 2,
+        },
+      ];
+    });
+  });
+}

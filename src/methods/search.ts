@@ -1,0 +1,33 @@
+import type { Knowledge } from "../constants/knowledge.ts";
+import { combinedMethods } from "./combine.ts";
+import { groupsOf, singleMethod, stagesFor, type EvaluatedMethod } from "./methods.ts";
+import { shelfOf, type Shelf } from "./shelf.ts";
+import type { Task } from "./types.ts";
+
+/** Everything that was worked out for a task, before judgement. */
+export interface MethodSearch {
+  readonly methods: readonly EvaluatedMethod[];
+  readonly shelf: Shelf;
+  readonly specialOpened: boolean;
+}
+
+/** Searches the usual shelf, and the special reagents only when nothing usual works. */
+export function searchMethods(task: Task, knowledge: Knowledge): MethodSearch {
+  for (const withSpecial of [false, true]) {
+    const shelf = shelfOf(task, knowledge, withSpecial);
+    const methods = methodsOn(task, knowledge, shelf);
+    const works = methods.some((m) =>
+      m.stages.every((s) => s.evaluation.status !== "failed" && s.remaining.length === 0),
+    );
+    if (works || withSpecial) return { methods, shelf, specialOpened: withSpecial };
+  }
+  throw new Error("unreachable: the second round always returns");
+}
+
+function methodsOn(task: Task, knowledge: Knowledge, shelf: Shelf): EvaluatedMethod[] {
+  const groups = groupsOf(task);
+  if (groups.length === 1)
+    return stagesFor(task, groups[0]!, knowledge, shelf).map((stage) => singleMethod(task, stage, knowledge));
+  return combinedMethods(task, groups, knowledge, shelf);
+}
+
