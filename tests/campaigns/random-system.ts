@@ -1,11 +1,12 @@
 import type { MassBalanceProblem } from "../../src/chemistry/types.ts";
-import { type SeededRandom, seededRandom } from "../../src/numerics/seeded-random.ts";
+import { seededRandom } from "../../src/numerics/seeded-random.ts";
 
 /** One made-up system: component 0 is H+, then metals, then ligands. */
 export interface RandomSystem {
   readonly problem: MassBalanceProblem;
   readonly totals: Float64Array;
   readonly fixedLnFree: Float64Array; // H+ held, the rest unknown
+  readonly metals: readonly number[]; // components
 }
 
 /** Ranges of the made-up systems. */
@@ -90,6 +91,7 @@ export function randomSystem(seed: number, index: number, options: RandomSystemO
     },
     totals,
     fixedLnFree,
+    metals: Array.from({ length: metals }, (_, m) => 1 + m),
   };
 }
 

@@ -1,0 +1,110 @@
+import { describe, expect, it } from "vitest";
+import { eliminatedSolver } from "../../src/chemistry/solve-eliminated.ts";
+import { ABSENT_LN_FREE, solveEquilibrium } from "../../src/chemistry/solve-equilibrium.ts";
+import { randomSystem } from "../campaigns/random-system.ts";
+import { runEliminated } from "../campaigns/eliminated.ts";
+import { expectRelative } from "../expect-relative.ts";
+import { massBalanceProblem } from "./solve-problem.ts";
+
+describe("eliminatedSolver", () => {
+  // M, N, L, A, H, ML, NL, MA, MA2, NA, HL, HA
+  const problem = massBalanceProblem([
+    [0, 1, 0, 0, 0, 0],
+    [0, 0, 1, 0, 0, 0],
+    [0, 0, 0, 1, 0, 0],
+    [0, 0, 0, 0, 1, 0],
+    [0, 0, 0, 0, 0, 1],
+    [16.5, 1, 0, 1, 0, 0],
+    [10.7, 0, 1, 1, 0, 0],
+    [2.3, 1, 0, 0, 1, 0],
+    [4.6, 1, 0, 0, 2, 0],
+    [1.1, 0, 1, 0, 1, 0],
+    [10.2, 0, 0, 1, 0, 1],
+    [9.3, 0, 0, 0, 1, 1],
+  ]);
+  const fixedLnFree = [NaN, NaN, NaN, NaN, -9 * Math.LN10];
+
+  it("follows a titration to the same answers as the general solver, without help from it", () => {
+    const solver = eliminatedSolver(problem, fixedLnFree, [0, 1])!;
+    const lnFree = Float64Array.of(-12, -12, -30, -4, 0);
+    for (let point = 1; point <= 60; point++) {
+      const totals = [1e-3, 1e-3, point * 5e-5, 0.1, 0];
+      const evidence = solver.solve(totals, lnFree);
+      const general = solveEquilibrium(problem, totals, { fixedLnFree });
+      expect([evidence.status, evidence.method]).toEqual(["converged", "eliminated"]);
+      expect(evidence.residual).toBeLessThanOrEqual(1e-12);
+      general.lnFree.forEach((value, j) => expectRelative(1 + lnFree[j]! - value, 1, 1e-10));
+    }
+  });
+
+  it("leaves out components that are absent, kept or eliminated", () => {
+    const solver = eliminatedSolver(problem, fixedLnFree, [0, 1])!;
+    const lnFree = Float64Array.of(-12, -12, -30, -4, 0);
+    for (const totals of [
+      [0, 1e-3, 1e-4, 0.1, 0],
+      [1e-3, 1e-3, 0, 0.1, 0],
+      [1e-3, 1e-3, 1e-4, 0, 0],
+      [1e-3, 1e-3, 5e-4, 0.1, 0],
+    ]) {
+      const evidence = solver.solve(totals, lnFree);
+      expect(evidence.status).toBe("converged");
+      const general = solveEquilibrium(problem, totals, { fixedLnFree });
+      general.lnFree.forEach((value, j) => expectRelative(1 + lnFree[j]! - value, 1, 1e-10));
+      totals.slice(0, 4).forEach((total, j) => {
+        if (total === 0) expect(lnFree[j]).toBe(ABSENT_LN_FREE);
+      });
+    }
+  });
+
+  it("hands over to the general solver where nearly equal totals would cost digits", () => {
+    const strong = massBalanceProblem([
+      [0, 1, 0],
+      [0, 0, 1],
+      [30, 1, 1],
+    ]);
+    const free = [NaN, NaN];
+    const solver = eliminatedSolver(strong, free, [0])!;
+    const lnFree = Float64Array.of(-30, -30);
+    expect(solver.solve([1e-3, 1e-3], lnFree)).toMatchObject({ status: "converged", method: "general" });
+    expectRelative(lnFree[0]!, 0.5 * Math.log(1e-33), 1e-12);
+    expect(solver.solve([1e-3, 2e-3], lnFree)).toMatchObject({ status: "converged", method: "eliminated" });
+  });
+
+  it("includes polynuclear species as a correction while they are few, and hands over when they are not", () => {
+    const build = (log10Beta: number): ReturnType<typeof massBalanceProblem> =>
+      massBalanceProblem([
+        [0, 1, 0],
+        [0, 0, 1],
+        [6, 1, 1],
+        [log10Beta, 2, 1],
+      ]);
+    for (const [log10Beta, method] of [
+      [2, "eliminated"],
+      [4, "eliminated"],
+      [9, "general"],
+    ] as const) {
+      const dinuclear = build(log10Beta);
+      const lnFree = Float64Array.of(-14, -8);
+      const evidence = eliminatedSolver(dinuclear, [NaN, NaN], [0])!.solve([1e-4, 1e-3], lnFree);
+      const general = solveEquilibrium(dinuclear, [1e-4, 1e-3]);
+      expect(evidence.method).toBe(method);
+      general.lnFree.forEach((value, j) => expectRelative(1 + lnFree[j]! - value, 1, 1e-12));
+      expectRelative(evidence.polynuclearShare, (2 * general.speciesMolPerL[3]!) / 1e-4, 1e-3);
+    }
+  });
+
+  it("does not apply to an unknown of mixed sign, and applies once that is held", () => {
+    const { problem: mixed, fixedLnFree: held } = randomSystem(61, 0);
+    const none = new Float64Array(mixed.nComponents).fill(NaN);
+    expect(eliminatedSolver(mixed, none, [1, 2])).toBe(null);
+    expect(eliminatedSolver(mixed, held, [1, 2])).not.toBe(null);
+  });
+
+  it("agrees with the general solver on 200 random systems from a disturbed start", () => {
+    const figures = runEliminated(20261204, 200);
+    expect(figures.notConverged).toBe(0);
+    expect(figures.byElimination).toBeGreaterThan(40);
+    expect(figures.worstDifferenceLn).toBeLessThanOrEqual(1e-10);
+    expect(figures.worstResidual).toBeLessThanOrEqual(1e-12);
+  });
+});
