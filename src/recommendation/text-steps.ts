@@ -1,4 +1,5 @@
 import type { Brief, RecommendedMethod, StageDocument } from "./contract.ts";
+import { backTitrantOf } from "./text-method.ts";
 import { figures, listed, PREPARATION_WORDS, reagentWords } from "./text-words.ts";
 
 /**
@@ -22,7 +23,7 @@ export function stepsOf(method: RecommendedMethod, brief: Brief): readonly strin
 
 function stageSteps(stage: StageDocument, index: number, method: RecommendedMethod, brief: Brief): readonly string[] {
   const titrant = stage.titrant ?? method.titrant;
-  const backTitrant = stage.backTitrant ?? method.backTitrant;
+  const backTitrant = backTitrantOf(stage, method);
   const agents = [
     ...stage.masking.map((step) => ({
       id: step.agent,
@@ -49,7 +50,7 @@ function stageSteps(stage: StageDocument, index: number, method: RecommendedMeth
     ...after
       .filter((step) => step !== "excess-titrant-first" && !isAddition(step, stage))
       .map((step) => PREPARATION_WORDS[step]),
-    ...endPoint(stage, backTitrant ?? titrant, backTitrant !== null && stage.mode !== "direct"),
+    ...endPoint(stage, backTitrant ?? titrant),
   ];
 }
 
@@ -69,13 +70,9 @@ function addTitrant(stage: StageDocument): readonly string[] {
 const isAddition = (step: string, stage: StageDocument): boolean =>
   stage.added.some((added) => step === `add-${added.id}`);
 
-function endPoint(
-  stage: StageDocument,
-  last: { readonly id: string; readonly molPerL: number },
-  isBack: boolean,
-): readonly string[] {
+function endPoint(stage: StageDocument, last: { readonly id: string; readonly molPerL: number }): readonly string[] {
   const titre = stage.titreML === null ? "" : `; about ${figures(stage.titreML)} mL`;
-  const withWhat = `Titrate${isBack ? " back" : ""} with ${figures(last.molPerL)} mol/L ${last.id}`;
+  const withWhat = `Titrate${stage.mode === "back" ? " back" : ""} with ${figures(last.molPerL)} mol/L ${last.id}`;
   const gives =
     stage.determines.length > 0
       ? `${titre}. This gives ${listed(stage.determines)}.`
@@ -87,7 +84,7 @@ function endPoint(
   const [from, to] = stage.indicator.colourChange;
   return [
     `Add ${reagentWords(stage.indicator.id)} (about ${figures(stage.indicator.molPerL)} mol/L).`,
-    `${withWhat} until the colour has gone from ${from} to ${to}${gives}`,
+    `${withWhat} until the colour has changed, ${from} → ${to}${gives}`,
   ];
 }
 

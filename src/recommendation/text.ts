@@ -1,9 +1,10 @@
-import type { Because, Recommendation, RecommendedMethod } from "./contract.ts";
+import type { Recommendation, RecommendedMethod } from "./contract.ts";
+import { bullet, LINE_CHARACTERS, section, wrap } from "./text-layout.ts";
+import { conditions, error, masking, reasons } from "./text-method.ts";
 import { stepsOf } from "./text-steps.ts";
 import {
   FINDING_WORDS,
   figures,
-  listed,
   MODE_WORDS,
   percent,
   reagentWords,
@@ -11,7 +12,6 @@ import {
   VERDICT_WORDS,
 } from "./text-words.ts";
 
-const LINE_CHARACTERS = 100;
 const RIVALS_SHOWN = 4;
 const REJECTED_SHOWN = 8;
 
@@ -31,7 +31,7 @@ export function recommendationText(document: Recommendation): string {
     ),
     [
       ...wrap(
-        `Knowledge ${document.knowledge.version}, ${document.knowledge.hash}. ${document.constants.length} constants were used; --json lists each with its source, the conditions it was found under and the value it was moved to.`,
+        `Knowledge ${document.knowledge.version}, ${document.knowledge.hash}. Constants used: ${document.constants.length}; --json lists each with its source, the conditions it was found under and the value it was moved to.`,
         "",
       ),
     ],
@@ -67,98 +67,7 @@ function firstMethod(document: Recommendation, method: RecommendedMethod): reado
     ),
     section("Error of one determination", error(method)),
     section("Masking and limits", masking(method)),
-    section(
-      "Why",
-      method.because.filter(speaks).map((because) => bullet(reason(because))),
-    ),
-  ];
-}
-
-function conditions(method: RecommendedMethod): readonly (readonly string[])[] {
-  const row = (name: string, value: string): readonly string[] => wrap(value, `  ${name.padEnd(20)}`);
-  return method.stages.flatMap((stage, index) => {
-    const titrant = stage.titrant ?? method.titrant;
-    const back = stage.backTitrant ?? method.backTitrant;
-    const { endPoint, indicator } = stage;
-    const { molPerL, outOfModelRange } = stage.ionicStrength;
-    return [
-      ...(method.stages.length > 1
-        ? [
-            [
-              `  Titration ${index + 1}: ${stage.determines.length > 0 ? listed(stage.determines) : "reading discarded"}`,
-            ],
-          ]
-        : []),
-      row("Titrant", `${titrant.id} ${figures(titrant.molPerL)} mol/L`),
-      ...(back === null ? [] : [row("Back titrant", `${back.id} ${figures(back.molPerL)} mol/L`)]),
-      row(
-        "pH",
-        `${figures(stage.pH.target)} (works from ${figures(stage.pH.low)} to ${figures(stage.pH.high)}), ${reagentWords(stage.buffer.id)} ${figures(stage.buffer.molPerL)} mol/L`,
-      ),
-      row(
-        "End point",
-        indicator === null
-          ? stage.detection
-          : `${reagentWords(indicator.id)}, ${indicator.colourChange.join(" to ")} (${endPoint.basis === "empirical" ? "an empirical record: no constants are known" : `from ${endPoint.basis}`})`,
-      ),
-      ...(endPoint.pM === null || endPoint.pMEquivalence === null
-        ? []
-        : [row("pM", `${figures(endPoint.pM)} at the end point, ${figures(endPoint.pMEquivalence)} at equivalence`)]),
-      ...(stage.titreML === null ? [] : [row("Titre", `${figures(stage.titreML)} mL`)]),
-      ...(stage.conditional.length === 0
-        ? []
-        : [
-            row(
-              "log K'",
-              stage.conditional.map((entry) => `${entry.metal} ${entry.log10ConditionalK.toFixed(1)}`).join(", "),
-            ),
-          ]),
-      ...(molPerL === null
-        ? []
-        : [
-            row(
-              "Ionic strength",
-              `${figures(molPerL)} mol/L${outOfModelRange ? ", beyond the range of the model" : ""}`,
-            ),
-          ]),
-    ];
-  });
-}
-
-function error(method: RecommendedMethod): readonly (readonly string[])[] {
-  const { predicted, uncertaintyBudget } = method;
-  const causes = predicted.biasBySource.map((part) => `${part.source} ${signedPercent(part.percent)}`);
-  const parts = uncertaintyBudget.map((part) => `${part.source} ${percent(part.percent)}`);
-  return [
-    wrap(`Bias ${signedPercent(predicted.biasPercent)}${causes.length > 0 ? `: ${causes.join(", ")}` : ""}.`, "  "),
-    wrap(
-      `Expanded uncertainty, bias included: ${percent(predicted.relativeExpandedUncertaintyPercent)}${parts.length > 0 ? ` (standard uncertainties: ${parts.join(", ")})` : ""}.`,
-      "  ",
-    ),
-    ...(predicted.perAnalyte.length < 2
-      ? []
-      : predicted.perAnalyte.map((result) =>
-          bullet(
-            `${listed(result.determines)}: bias ${signedPercent(result.biasPercent)}, expanded uncertainty ${percent(result.relativeExpandedUncertaintyPercent)}`,
-          ),
-        )),
-  ];
-}
-
-function masking(method: RecommendedMethod): readonly (readonly string[])[] {
-  const masked = new Set<string>();
-  for (const stage of method.stages)
-    for (const step of stage.masking)
-      masked.add(
-        `${listed(step.masks)} by ${reagentWords(step.agent)} (${step.via}; rests on ${step.basis === "equilibrium" ? "constants" : step.basis === "conversion" ? "a complete conversion" : "an empirical record"})`,
-      );
-  return [
-    ...[...masked].map((line) => bullet(line)),
-    ...method.tolerance.map((limit) =>
-      bullet(
-        `${limit.component}: holds up to ${figures(limit.limitMolPerL)} mol/L in the sample${limit.withMasking ? " with the masking" : ""}, ${figures(limit.presentMolPerL)} mol/L is there`,
-      ),
-    ),
+    section("Why", reasons(method)),
   ];
 }
 
@@ -194,26 +103,4 @@ function rejected(document: Recommendation): readonly (readonly string[])[] {
     ),
     ...(more > 0 ? [wrap(`and ${more} more in --json.`, "    ")] : []),
   ];
-}
-
-const speaks = (because: Because): boolean => because.effect !== "excludes";
-const reason = (because: Because): string =>
-  `${because.effect}: ${because.statement} [${because.rule}; ${because.source}]`;
-
-const section = (title: string, paragraphs: readonly (readonly string[])[]): readonly string[] =>
-  paragraphs.length === 0 ? [] : [title, ...paragraphs.flat()];
-
-const bullet = (text: string): readonly string[] => wrap(text, "  - ");
-
-/** Breaks a text into lines; the first starts with `lead`, the others with as many blanks. */
-function wrap(text: string, lead: string): readonly string[] {
-  const lines: string[] = [];
-  let line = "";
-  for (const word of text.split(/\s+/).filter((part) => part !== "")) {
-    if (line !== "" && lead.length + line.length + 1 + word.length > LINE_CHARACTERS) {
-      lines.push(line);
-      line = word;
-    } else line = line === "" ? word : `${line} ${word}`;
-  }
-  return [...lines, line].map((part, index) => (index === 0 ? lead : " ".repeat(lead.length)) + part);
 }

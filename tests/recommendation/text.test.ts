@@ -96,11 +96,29 @@ describe("stepsOf", () => {
     const late = steps(withStages({ ...STAGE, added }));
     expect(position(late, "Add EDTA")).toBeGreaterThan(position(late, "Bring to pH"));
   });
-  it("titrates back with the back titrant, to the colours the other way about as the document gives them", () => {
+  it("titrates back with the back titrant", () => {
     const back = { ...withStages({ ...STAGE, mode: "back" }), backTitrant: { id: "Zn2+", molPerL: 0.01 } };
     expect(steps(back).at(-1)).toMatch(
-      /^Titrate back with 0\.01 mol\/L Zn2\+ until the colour has gone from red-violet to yellow/,
+      /^Titrate back with 0\.01 mol\/L Zn2\+ until the colour has changed, red-violet → yellow/,
     );
+  });
+  it("titrates a direct stage with the titrant, whatever another stage is titrated back with", () => {
+    const mixed: RecommendedMethod = {
+      ...withStages(STAGE, { ...STAGE, mode: "back" }),
+      mode: "successive",
+      backTitrant: { id: "Cu2+", molPerL: 0.01 },
+    };
+    const endings = steps(mixed).filter((step) => step.startsWith("Titrate"));
+    expect(endings).toEqual([
+      expect.stringMatching(/^Titrate with 0\.01 mol\/L EDTA/),
+      expect.stringMatching(/^Titrate back with 0\.01 mol\/L Cu2\+/),
+    ]);
+    const text = textWith({ methods: [mixed] });
+    expect(text.match(/Back titrant/g)).toHaveLength(1);
+  });
+  it("titrates what a release sets free, which is no back titration", () => {
+    const release = { ...withStages({ ...STAGE, mode: "displacement" }), backTitrant: { id: "Zn2+", molPerL: 0.01 } };
+    expect(steps(release).at(-1)).toMatch(/^Titrate with 0\.01 mol\/L Zn2\+/);
   });
   it("discards a reading that determines nothing, goes on with one solution, and takes a second portion", () => {
     const twice = [{ ...STAGE, determines: [] }, STAGE];
