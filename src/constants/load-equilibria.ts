@@ -120,23 +120,24 @@ function balancedDeltaZ2(
   file: string,
   path: string,
 ): number {
-  const sum = new Map<string, number>();
+  const sum: Record<string, number> = {};
   let deltaZ2 = 0;
   for (const term of terms) {
     const [coefficient, composition] = term;
-    for (const id of Object.keys(composition)) sum.set(id, (sum.get(id) ?? 0) + coefficient * composition[id]!);
+    for (const id in composition) sum[id] = (sum[id] ?? 0) + coefficient * composition[id]!;
     const charge = chargeOf(composition, charges, file, path);
     if (term.length === 2) deltaZ2 += coefficient * charge * charge;
   }
-  for (const [id, value] of sum) {
-    if (Math.abs(value) > 1e-9) throw new DataError(file, `${path}.terms`, `does not balance: ${value} of ${id} left`);
+  for (const id in sum) {
+    if (Math.abs(sum[id]!) > 1e-9)
+      throw new DataError(file, `${path}.terms`, `does not balance: ${sum[id]} of ${id} left`);
   }
   return deltaZ2;
 }
 
 function chargeOf(composition: Composition, charges: ReadonlyMap<string, number>, file: string, path: string): number {
   let sum = 0;
-  for (const id of Object.keys(composition)) {
+  for (const id in composition) {
     const charge = charges.get(id);
     if (charge === undefined) throw new DataError(file, path, `unknown component "${id}"`);
     sum += composition[id]! * charge;

@@ -1,4 +1,4 @@
-import type { DataRemark, Reaction } from "./knowledge.ts";
+import type { ConstantRecord, DataRemark, Reaction } from "./knowledge.ts";
 import { type ComparedReaction, comparedReaction, daviesShift, groupBy } from "./neighbour-values.ts";
 import { checkDivalentOrder, checkRareEarths } from "./neighbour-metals.ts";
 import { checkProtonation, checkSteps } from "./neighbour-steps.ts";
@@ -36,22 +36,26 @@ function checkRecords({ reaction }: ComparedReaction): DataRemark[] {
     for (const b of records.slice(i + 1)) {
       if (Math.abs(a.temperatureC - b.temperatureC) > 5) continue;
       const [low, high] = a.ionicStrengthMolPerL <= b.ionicStrengthMolPerL ? [a, b] : [b, a];
-      const names = `${nameOf(low)} (I ${low.ionicStrengthMolPerL}: ${low.log10K}) and ${nameOf(high)} (I ${high.ionicStrengthMolPerL}: ${high.log10K})`;
       if (low.ionicStrengthMolPerL === high.ionicStrengthMolPerL) {
         if (low.medium === high.medium && Math.abs(low.log10K - high.log10K) > DUPLICATE_LIMIT) {
-          remarks.push({ kind: "disagreement", about: reaction.id, text: `Same conditions, ${names}.` });
+          remarks.push({ kind: "disagreement", about: reaction.id, text: `Same conditions, ${pair(low, high)}.` });
         }
       } else if (low.ionicStrengthMolPerL === 0 && high.ionicStrengthMolPerL <= 0.15) {
         const expected = daviesShift(reaction.deltaZ2, 0, high.ionicStrengthMolPerL);
         const found = high.log10K - low.log10K;
         if (Math.abs(found - expected) > IONIC_STRENGTH_LIMIT) {
-          const text = `Runs against ionic strength: ${names} differ by ${found.toFixed(2)}, the Davies equation says ${expected.toFixed(2)}.`;
+          const text = `Runs against ionic strength: ${pair(low, high)} differ by ${found.toFixed(2)}, the Davies equation says ${expected.toFixed(2)}.`;
           remarks.push({ kind: "suspect", about: reaction.id, text });
         }
       }
     }
   }
   return remarks;
+}
+
+function pair(low: ConstantRecord, high: ConstantRecord): string {
+  const [a, b] = [low, high].map((r) => `${nameOf(r)} (I ${r.ionicStrengthMolPerL}: ${r.log10K})`) as [string, string];
+  return `${a} and ${b}`;
 }
 
 function checkEnthalpies(reaction: Reaction): DataRemark[] {

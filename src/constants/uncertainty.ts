@@ -26,13 +26,16 @@ export interface StandardUncertainty {
  */
 export function printedUncertainty(value: string, error: string, doubtful: boolean): StandardUncertainty {
   const extra = doubtful ? DOUBTFUL_LOG10K : 0;
-  if (error === "0") return { value: Math.hypot(UNSTATED_LOG10K, extra), stated: false };
+  if (error === "0") return doubtful ? UNSTATED_DOUBTFUL : UNSTATED; // three values in four
   const match = /^(\+\/-|\+|-)(\d+)$/.exec(error);
   if (match === null) throw new RangeError(`error column: expected "0", "+/-n", "+n" or "-n", found "${error}"`);
   const spread = Number(match[2]) * lastDigit(value);
   const halfWidth = match[1] === "+/-" ? spread : spread / 2;
   return { value: Math.hypot(Math.max(halfWidth / Math.sqrt(3), FLOOR_LOG10K), extra), stated: true };
 }
+
+const UNSTATED: StandardUncertainty = { value: UNSTATED_LOG10K, stated: false };
+const UNSTATED_DOUBTFUL: StandardUncertainty = { value: Math.hypot(UNSTATED_LOG10K, DOUBTFUL_LOG10K), stated: false };
 
 /** Unit of the last digit printed: "9.57" is 0.01, "34" is 1. */
 function lastDigit(value: string): number {
