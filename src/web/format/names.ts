@@ -10,6 +10,8 @@ export interface Names {
   readonly plain: (id: string) => string;
   /** Name of an id, typeset where it is a formula. */
   readonly name: (id: string) => Markup;
+  /** Name of a component of the model, never of a reagent with the same id: "ammonia", "Zn2+". */
+  readonly component: (id: string) => Markup;
   /** The same as a link to where the knowledge about it stands; without a link where there is none. */
   readonly link: (id: string) => Markup;
 }
@@ -18,6 +20,10 @@ export interface Names {
 export const constantsHref = (id: string): string => `/constants/${encodeURIComponent(id)}`;
 /** Address of the page of one reaction. */
 export const reactionHref = (id: string): string => `/reactions/${encodeURIComponent(id)}`;
+/** Address of the page of one indicator. */
+export const indicatorHref = (id: string): string => `/indicators/${encodeURIComponent(id)}`;
+/** Address of the page of one masking or auxiliary agent. */
+export const agentHref = (id: string): string => `/masking/${encodeURIComponent(id)}`;
 /** Address of the page of one rule. */
 export const ruleHref = (id: string): string => `/rules/${id.split("/").map(encodeURIComponent).join("/")}`;
 /** An id as an HTML anchor: letters, figures and hyphens only, different for different ids. */
@@ -49,17 +55,21 @@ export function createNames(knowledge: Knowledge): Names {
   };
   const name = (id: string): Markup =>
     /[+-]$/.test(id) && /^[A-Z]/.test(id) ? formulaMarkup(id, true) : set(plain(id));
+  const component = (id: string): Markup => {
+    const known = knowledge.components.get(id);
+    return known ? set(known.ion) : name(id);
+  };
   const hrefOf = (id: string): string | null => {
-    if (knowledge.indicators.has(id)) return `/indicators#${anchor(id)}`;
+    if (knowledge.indicators.has(id)) return indicatorHref(id);
     const component = byForm.get(id);
     if (component && component.kind !== "inert") return constantsHref(component.id);
     if (knowledge.buffers.has(id)) return `/buffers#${anchor(id)}`;
-    if (knowledge.agents.has(id)) return `/masking#${anchor(id)}`;
+    if (knowledge.agents.has(id)) return agentHref(id);
     return null;
   };
   const link = (id: string): Markup => {
     const href = hrefOf(id);
     return href === null ? name(id) : linkMarkup(href, name(id));
   };
-  return { set, plain, name, link };
+  return { set, plain, name, component, link };
 }

@@ -91,6 +91,15 @@ export function wordsOf(table: Readonly<Record<string, string>>, id: string): st
   return table[id] ?? id.replaceAll("-", " ");
 }
 
+/** The words of a camelCase name of a fact: "titratedFraction" gives "titrated fraction"; pH stays pH. */
+export function spacedName(name: string): string {
+  return name
+    .replace(/([a-z])([A-Z])/g, "$1 $2")
+    .replace(/([A-Z])([A-Z][a-z])/g, "$1 $2")
+    .toLowerCase()
+    .replace(/\bp h\b/g, "pH");
+}
+
 /** Joins names as a sentence does: "a", "a and b", "a, b and c". */
 export function listing(items: readonly string[]): string {
   if (items.length < 2) return items[0] ?? "";

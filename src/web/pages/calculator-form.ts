@@ -18,7 +18,7 @@ export interface CalculatorForm {
 type Query = Readonly<Record<string, unknown>>;
 const BLANK = { component: "", amount: "", how: "total" } as const;
 /** How many points a curve is drawn from. */
-const CURVE_POINTS = 161;
+const CURVE_POINTS = 121;
 
 /** Reads a calculator's fields from its address; `defaults` fill what is absent. Two blank rows are always left at the end. */
 export function calculatorForm(query: Query, defaults: Omit<CalculatorForm, "rows">): CalculatorForm {

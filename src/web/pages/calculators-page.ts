@@ -6,10 +6,11 @@ import { curveDescription, curveFigure } from "../figures/curve-figure.ts";
 import { NARROW, WIDE } from "../figures/frame.ts";
 import { curveCsv } from "../figures/figure-csv.ts";
 import type { FieldFault } from "../form/form-to-brief.ts";
-import { anchor, type Names } from "../format/names.ts";
+import { anchor, constantsHref, linkMarkup, type Names } from "../format/names.ts";
+import { compositionMarkup } from "../format/composition.ts";
 import { amount, fixed, percent, significant } from "../format/numbers.ts";
 import { formulaMarkup } from "../format/typeset.ts";
-import { joinMarkup } from "../render/markup.ts";
+import type { Markup } from "../render/markup.ts";
 import { renderView } from "../render/render-view.ts";
 import type { FigureSeries, WebServices } from "../services.ts";
 import { calculatorForm, questionOf, type CalculatorForm } from "./calculator-form.ts";
@@ -71,9 +72,7 @@ export function calculatorsPage({ knowledge }: WebServices, names: Names): Route
       .type("text/csv; charset=utf-8")
       .attachment("curve.csv")
       .send(
-        curveCsv(
-          curveSeries(answerCurve(question.question, knowledge), calculatorForm(request.query, DEFAULTS).follow),
-        ),
+        curveCsv(curveSeries(denseCurve(question.question, knowledge), calculatorForm(request.query, DEFAULTS).follow)),
       );
   });
   return router;
@@ -145,6 +144,11 @@ function equilibriumAnswer(request: Request, knowledge: Knowledge, names: Names)
   if (!question.ok) return answered(question.faults, null);
   try {
     const a = answerEquilibrium(question.question, knowledge);
+    const formulas = formulasByComposition(knowledge);
+    const formulaOf = (components: Readonly<Record<string, number>>): Markup => {
+      const id = formulas.get(compositionKey(components));
+      return id === undefined ? compositionMarkup(components, names) : formulaMarkup(id);
+    };
     const totals = new Map(a.components.map((c) => [c.id, c.totalMolPerL]));
     return answered([], {
       status: a.status === "converged" ? "converged" : a.status,
@@ -152,14 +156,14 @@ function equilibriumAnswer(request: Request, knowledge: Knowledge, names: Names)
       iterations: String(a.iterations),
       ionicStrength: amount(a.ionicStrengthMolPerL, 3),
       components: a.components.map((c) => ({
-        name: names.link(c.id),
+        name: linkMarkup(constantsHref(c.id), names.component(c.id)),
         total: amount(c.totalMolPerL),
         free: amount(c.freeMolPerL),
         alpha: fixed(c.sideReaction.log10Alpha, 2),
       })),
       conditional: a.conditional.map((c) => ({
-        metal: names.link(c.metal),
-        ligand: names.link(c.ligand),
+        metal: names.component(c.metal),
+        ligand: names.component(c.ligand),
         alphaMetal: fixed(c.log10AlphaMetal, 2),
         alphaLigand: fixed(c.log10AlphaLigand, 2),
         value: fixed(c.log10ConditionalK, 2),
@@ -168,7 +172,8 @@ function equilibriumAnswer(request: Request, knowledge: Knowledge, names: Names)
         .sort((x, y) => y.molPerL - x.molPerL)
         .slice(0, 60)
         .map((s) => ({
-          what: compositionOf(s.components, names),
+          what: formulaOf(s.components),
+          composition: compositionMarkup(s.components, names),
           amount: amount(s.molPerL),
           share: shareOf(s, totals),
           beta: fixed(s.log10Beta, 2),
@@ -186,13 +191,16 @@ function equilibriumAnswer(request: Request, knowledge: Knowledge, names: Names)
   }
 }
 
-function compositionOf(components: Readonly<Record<string, number>>, names: Names): ReturnType<typeof joinMarkup> {
-  const parts = Object.entries(components).map(([id, n]) => {
-    const count = n === 1 ? "" : `${String(n).replace("-", "\u2212")} `;
-    return joinMarkup([count, names.name(id)]);
-  });
-  return joinMarkup(parts, " + ");
+/** Formulas of the species of the knowledge base, by what they are made of. */
+function formulasByComposition(knowledge: Knowledge): ReadonlyMap<string, string> {
+  return new Map(knowledge.species.map((s) => [compositionKey(s.components), s.id]));
 }
+
+const compositionKey = (components: Readonly<Record<string, number>>): string =>
+  Object.entries(components)
+    .map(([id, n]) => `${id}*${n}`)
+    .sort()
+    .join(" ");
 
 /** The share of a species in its least abundant component other than the proton. */
 function shareOf(
@@ -208,6 +216,19 @@ function shareOf(
     best = `${percent((100 * n * s.molPerL) / total)} of ${id}`;
   }
   return best;
+}
+
+/** Distances from equivalence, relative to it, at which a curve gets points of its own. */
+const NEAR_EQUIVALENCE = [1e-4, 3e-4, 1e-3, 3e-3, 1e-2, 2e-2];
+
+/** Answers a question to the curve calculator with further points about the equivalence, where the curve is steep. */
+function denseCurve(question: Readonly<Record<string, unknown>>, knowledge: Knowledge): ReturnType<typeof answerCurve> {
+  const even = question["volumesML"] as readonly number[];
+  const { equivalenceML } = answerCurve({ ...question, volumesML: even.slice(0, 1) }, knowledge);
+  const near = [0, ...NEAR_EQUIVALENCE.flatMap((d) => [-d, d])].map((d) => equivalenceML * (1 + d));
+  const last = even.at(-1) ?? 0;
+  const volumesML = [...new Set([...even, ...near.filter((v) => v > 0 && v < last)])].sort((a, b) => a - b);
+  return answerCurve({ ...question, volumesML }, knowledge);
 }
 
 function curveSeries(answer: ReturnType<typeof answerCurve>, follow: string): FigureSeries["curve"] {
@@ -231,7 +252,7 @@ function curveAnswer(request: Request, knowledge: Knowledge, names: Names): Answ
   const question = questionOf(form, "curve");
   if (!question.ok) return answered(question.faults, null);
   try {
-    const a = answerCurve(question.question, knowledge);
+    const a = denseCurve(question.question, knowledge);
     const series = curveSeries(a, form.follow);
     return answered([], {
       status: a.status,
@@ -244,7 +265,7 @@ function curveAnswer(request: Request, knowledge: Knowledge, names: Names): Answ
       description: names.set(curveDescription(series)),
       csvHref: `/calculators/curve.csv?${new URLSearchParams(request.originalUrl.split("?")[1] ?? "").toString()}`,
       points: a.points
-        .filter((_, i) => i % 8 === 0)
+        .filter((_, i) => i % 6 === 0)
         .map((p) => ({
           volume: fixed(p.volumeML, 2),
           pM: fixed(p.pM, 2),

@@ -8,7 +8,16 @@ import type {
   SpeciesDefinition,
 } from "../../constants/knowledge.ts";
 import { selectRecord } from "../../constants/select-constant.ts";
-import { anchor, constantsHref, linkMarkup, reactionHref, type Names } from "../format/names.ts";
+import {
+  agentHref,
+  anchor,
+  constantsHref,
+  indicatorHref,
+  linkMarkup,
+  reactionHref,
+  type Names,
+} from "../format/names.ts";
+import { compositionMarkup } from "../format/composition.ts";
 import { amount, fixed, signed } from "../format/numbers.ts";
 import { BASIS_WORDS, wordsOf } from "../format/words.ts";
 import { formulaMarkup, reactionMarkup } from "../format/typeset.ts";
@@ -121,14 +130,6 @@ function log10BetaAsFound(knowledge: Knowledge, chain: SpeciesDefinition["chain"
   return sum;
 }
 
-const compositionMarkup = (components: Readonly<Record<string, number>>, names: Names): Markup =>
-  joinMarkup(
-    Object.entries(components).map(([id, n]) =>
-      joinMarkup([n === 1 ? "" : `${String(n).replace("-", "\u2212")} `, names.name(id)]),
-    ),
-    " + ",
-  );
-
 function chainMarkup(chain: SpeciesDefinition["chain"], knowledge: Knowledge, names: Names): Markup {
   return joinMarkup(
     chain.map(({ reaction, factor }) =>
@@ -155,7 +156,7 @@ function componentView(knowledge: Knowledge, index: KnowledgeIndex, names: Names
     chain: chainMarkup(s.chain, knowledge, names),
   });
   const about = (list: readonly { provenance: Provenance }[], text: (i: number) => string): readonly object[] =>
-    list.map((entry, i) => ({ text: names.set(text(i)), source: sourceText(knowledge, entry.provenance) }));
+    list.map((entry, i) => ({ text: names.set(text(i)), source: sourceMarkup(entry.provenance) }));
   const facts = knowledge.ionFacts.filter((f) => f.ion === id);
   const kinetics = knowledge.kinetics.filter((k) => k.ion === id);
   const masking = knowledge.masking.filter((m) => m.ion === id);
@@ -164,6 +165,8 @@ function componentView(knowledge: Knowledge, index: KnowledgeIndex, names: Names
     formula: names.name(component.ion),
     name: component.name,
     kind: component.kind,
+    agentHref: knowledge.agents.has(id) ? agentHref(id) : "",
+    indicatorHref: knowledge.indicators.has(id) ? indicatorHref(id) : "",
     spellings: joinMarkup([...component.forms.map((f) => names.name(f.spelling)), ...component.synonyms], ", "),
     species: (index.speciesOf.get(id) ?? []).filter((s) => s.chain.length > 0).map(row),
     solids: knowledge.solids.filter((s) => id in s.components).map((s) => ({ ...row(s), pace: s.pace })),
@@ -175,10 +178,10 @@ function componentView(knowledge: Knowledge, index: KnowledgeIndex, names: Names
         : "";
     }),
     masking: masking.map((m) => ({
-      agent: linkMarkup(`/masking#${anchor(m.agent)}`, names.name(m.agent)),
+      agent: linkMarkup(agentHref(m.agent), names.name(m.agent)),
       effect: m.effect,
       pH: `${fixed(m.pH[0], 1)} to ${fixed(m.pH[1], 1)}`,
-      source: sourceText(knowledge, m.provenance),
+      source: sourceMarkup(m.provenance),
     })),
     remarks: remarksAbout(knowledge, names, (about) => about === id || about.split(/[\s,;/]+/).includes(id)),
   };
@@ -233,6 +236,15 @@ function reactionView(knowledge: Knowledge, index: KnowledgeIndex, names: Names,
       (about) => ids.has(about) || about.split(/[\s,;]+/).some((part) => ids.has(part)),
     ),
   };
+}
+
+/** Where a value comes from, short: the source as a link to its citation, its record or place, and whether it was read or remembered. */
+export function sourceMarkup(p: Provenance): Markup {
+  const detail = [p.record === undefined ? "" : ` ${p.record}`, p.where === undefined ? "" : `, ${p.where}`].join("");
+  return joinMarkup([
+    linkMarkup(`/knowledge#source-${anchor(p.source)}`, p.source),
+    `${detail} (${wordsOf(BASIS_WORDS, p.basis)}, confidence ${p.confidence})`,
+  ]);
 }
 
 /** Where a value comes from, in words: citation, record or place, and whether it was read or remembered. */

@@ -1,13 +1,13 @@
 import { Router } from "express";
-import type { BufferRecord, IndicatorRecord, Knowledge } from "../../constants/knowledge.ts";
+import type { AgentRecord, BufferRecord, IndicatorRecord, Knowledge } from "../../constants/knowledge.ts";
 import { colourMarkup } from "../format/colour-words.ts";
-import { anchor, constantsHref, type Names } from "../format/names.ts";
+import { agentHref, anchor, constantsHref, indicatorHref, type Names } from "../format/names.ts";
 import { amount, fixed } from "../format/numbers.ts";
 import { VIA_WORDS, listing, wordsOf } from "../format/words.ts";
 import { joinMarkup } from "../render/markup.ts";
 import { renderView } from "../render/render-view.ts";
 import type { WebServices } from "../services.ts";
-import { sourceText } from "./constants-page.ts";
+import { sourceMarkup } from "./constants-page.ts";
 import { shell } from "./shell.ts";
 
 const range = ([low, high]: readonly [number, number]): string => `${fixed(low, 1)} to ${fixed(high, 1)}`;
@@ -18,6 +18,32 @@ export function dataPages({ knowledge }: WebServices, names: Names): Router {
   router.get("/indicators", (_request, response) => {
     response.send(renderView("indicators", indicatorsView(knowledge, names)));
   });
+  router.get("/indicators/:id", (request, response, next) => {
+    const dye = knowledge.indicators.get(request.params.id);
+    if (!dye) {
+      next();
+      return;
+    }
+    response.send(
+      renderView("indicator", {
+        shell: shell(knowledge, dye.name, "indicators"),
+        dye: indicatorView(knowledge, dye, names),
+      }),
+    );
+  });
+  router.get("/masking/:id", (request, response, next) => {
+    const agent = knowledge.agents.get(request.params.id);
+    if (!agent) {
+      next();
+      return;
+    }
+    response.send(
+      renderView("agent", {
+        shell: shell(knowledge, agent.name, "masking"),
+        agent: agentView(knowledge, agent, names),
+      }),
+    );
+  });
   router.get("/masking", (_request, response) => {
     response.send(renderView("masking", maskingView(knowledge, names)));
   });
@@ -27,12 +53,13 @@ export function dataPages({ knowledge }: WebServices, names: Names): Router {
   return router;
 }
 
-function indicatorsView(knowledge: Knowledge, names: Names): object {
-  const view = (dye: IndicatorRecord): object => ({
+function indicatorView(knowledge: Knowledge, dye: IndicatorRecord, names: Names): object {
+  return {
     id: anchor(dye.id),
+    href: indicatorHref(dye.id),
     name: dye.name,
     key: dye.id,
-    class: dye.class,
+    class: `${dye.class.charAt(0).toUpperCase()}${dye.class.slice(1)}`,
     special: dye.special,
     basis: dye.hasConstants
       ? "end point from constants"
@@ -46,9 +73,9 @@ function indicatorsView(knowledge: Knowledge, names: Names): object {
     colours: dye.colours.map((c) => ({
       pH: range(c.pH),
       free: colourMarkup(c.free, names.set),
-      bound: colourMarkup(c.bound, names.set),
+      bound: c.bound === "-" ? joinMarkup(["not stated"]) : colourMarkup(c.bound, names.set),
       contrast: c.contrast,
-      source: sourceText(knowledge, c.provenance),
+      source: sourceMarkup(c.provenance),
     })),
     uses: dye.uses.map((u) => ({
       ions: joinMarkup(
@@ -58,7 +85,7 @@ function indicatorsView(knowledge: Knowledge, names: Names): object {
       mode: u.backTitrant === undefined ? u.mode : joinMarkup([`${u.mode}, with `, names.name(u.backTitrant)]),
       pH: range(u.pH),
       detail: names.set(u.detail),
-      source: sourceText(knowledge, u.provenance),
+      source: sourceMarkup(u.provenance),
     })),
     blockers: dye.blockers.map((b) => ({
       ion: names.name(b.ion),
@@ -70,21 +97,66 @@ function indicatorsView(knowledge: Knowledge, names: Names): object {
             ? "at every level"
             : `from ${amount(b.fromMolPerL, 2)}`,
       detail: names.set(b.detail),
-      source: sourceText(knowledge, b.provenance),
+      source: sourceMarkup(b.provenance),
     })),
     facts: [...dye.instability, ...dye.needs].map((f) => ({
       text: names.set(f.fact),
-      source: sourceText(knowledge, f.provenance),
+      source: sourceMarkup(f.provenance),
     })),
     transitions: dye.transitions.map((t) => ({
       ion: names.name(t.ion),
       points: t.points.map(([pH, pM]) => `pH ${fixed(pH, 1)}: ${fixed(pM, 1)}`).join("; "),
-      source: sourceText(knowledge, t.provenance),
+      source: sourceMarkup(t.provenance),
     })),
-  });
+  };
+}
+
+function indicatorsView(knowledge: Knowledge, names: Names): object {
   return {
     shell: shell(knowledge, "Indicators", "indicators"),
-    indicators: [...knowledge.indicators.values()].sort((a, b) => a.name.localeCompare(b.name, "en")).map(view),
+    indicators: [...knowledge.indicators.values()]
+      .sort((a, b) => a.name.localeCompare(b.name, "en"))
+      .map((dye) => indicatorView(knowledge, dye, names)),
+  };
+}
+
+function agentView(knowledge: Knowledge, agent: AgentRecord, names: Names): object {
+  const reagent = knowledge.reagents.get(agent.id);
+  const tags = reagent?.hazardTags ?? [];
+  return {
+    id: anchor(agent.id),
+    href: agentHref(agent.id),
+    name: agent.name,
+    key: agent.id,
+    special: agent.special,
+    usual: `${amount(agent.usualMolPerL, 2)}, at most ${amount(agent.usualMaxMolPerL, 2)}`,
+    pH: range(agent.pH),
+    constantsHref: agent.component === null ? "" : constantsHref(agent.component),
+    source: sourceMarkup(agent.provenance),
+    cautions: [
+      ...(reagent?.hazards ?? []),
+      ...knowledge.cautions.filter((c) => tags.includes(c.tag)).map((c) => c.text),
+    ].map((t) => names.set(t)),
+    converts: agent.converts.map((c) => ({
+      what: joinMarkup([names.name(c.from), " to ", names.name(c.to), ` ${wordsOf(VIA_WORDS, c.via)}`]),
+      pH: range(c.pH),
+      conditions: names.set(c.conditions),
+      source: sourceMarkup(c.provenance),
+    })),
+    records: knowledge.masking
+      .filter((m) => m.agent === agent.id)
+      .map((m) => ({
+        ion: names.link(m.ion),
+        effect: effectWords(m.effect, m.via),
+        pH: range(m.pH),
+        upTo: names.set(m.upToText ?? (m.upToMolPerL === null ? "level not stated" : amount(m.upToMolPerL, 2))),
+        remarks: names.set(
+          [m.failsWhen === null ? "" : `fails: ${m.failsWhen}`, m.order ?? "", m.sideEffects ?? ""]
+            .filter((t) => t !== "")
+            .join(". "),
+        ),
+        source: sourceMarkup(m.provenance),
+      })),
   };
 }
 
@@ -92,44 +164,7 @@ function maskingView(knowledge: Knowledge, names: Names): object {
   const agents = [...knowledge.agents.values()].sort((a, b) => a.name.localeCompare(b.name, "en"));
   return {
     shell: shell(knowledge, "Masking and auxiliary agents", "masking"),
-    agents: agents.map((agent) => {
-      const reagent = knowledge.reagents.get(agent.id);
-      const tags = reagent?.hazardTags ?? [];
-      return {
-        id: anchor(agent.id),
-        name: agent.name,
-        key: agent.id,
-        special: agent.special,
-        usual: `${amount(agent.usualMolPerL, 2)}, at most ${amount(agent.usualMaxMolPerL, 2)}`,
-        pH: range(agent.pH),
-        constantsHref: agent.component === null ? "" : constantsHref(agent.component),
-        source: sourceText(knowledge, agent.provenance),
-        cautions: [
-          ...(reagent?.hazards ?? []),
-          ...knowledge.cautions.filter((c) => tags.includes(c.tag)).map((c) => c.text),
-        ].map((t) => names.set(t)),
-        converts: agent.converts.map((c) => ({
-          what: joinMarkup([names.name(c.from), " to ", names.name(c.to), ` ${wordsOf(VIA_WORDS, c.via)}`]),
-          pH: range(c.pH),
-          conditions: names.set(c.conditions),
-          source: sourceText(knowledge, c.provenance),
-        })),
-        records: knowledge.masking
-          .filter((m) => m.agent === agent.id)
-          .map((m) => ({
-            ion: names.link(m.ion),
-            effect: effectWords(m.effect, m.via),
-            pH: range(m.pH),
-            upTo: names.set(m.upToText ?? (m.upToMolPerL === null ? "level not stated" : amount(m.upToMolPerL, 2))),
-            remarks: names.set(
-              [m.failsWhen === null ? "" : `fails: ${m.failsWhen}`, m.order ?? "", m.sideEffects ?? ""]
-                .filter((t) => t !== "")
-                .join(". "),
-            ),
-            source: sourceText(knowledge, m.provenance),
-          })),
-      };
-    }),
+    agents: agents.map((agent) => agentView(knowledge, agent, names)),
   };
 }
 
@@ -154,16 +189,16 @@ function buffersView(knowledge: Knowledge, names: Names): object {
     usual: `${amount(buffer.usualMolPerL[0], 2)} to ${amount(buffer.usualMolPerL[1], 2)}`,
     pKa: buffer.pKa.map((p) => ({
       value: `${fixed(p.value, 2)} ± ${fixed(p.uncertainty, 2)}`,
-      source: sourceText(knowledge, p.provenance),
+      source: sourceMarkup(p.provenance),
     })),
     constantsHref: buffer.component === null ? "" : constantsHref(buffer.component),
     precipitates:
       buffer.precipitates.length === 0 ? joinMarkup(["none listed"]) : names.set(listing(buffer.precipitates)),
     incompatible: buffer.incompatible.map((i) => ({
       text: names.set(`${i.with}: ${i.why}`),
-      source: sourceText(knowledge, i.provenance),
+      source: sourceMarkup(i.provenance),
     })),
-    source: sourceText(knowledge, buffer.provenance),
+    source: sourceMarkup(buffer.provenance),
   });
   const sorted = [...knowledge.buffers.values()].sort((a, b) => a.workingPH[0] - b.workingPH[0]);
   return { shell: shell(knowledge, "Buffers, acids and alkalis", "buffers"), buffers: sorted.map(view) };

@@ -1,7 +1,7 @@
 import type { Because } from "../../recommendation/contract.ts";
 import { amount, fixed, percent, significant } from "../format/numbers.ts";
 import { ruleHref, type Names } from "../format/names.ts";
-import { BASIS_WORDS, EFFECT_WORDS, wordsOf } from "../format/words.ts";
+import { BASIS_WORDS, EFFECT_WORDS, spacedName, wordsOf } from "../format/words.ts";
 import type { Markup } from "../render/markup.ts";
 import type { FactListing } from "../services.ts";
 
@@ -56,8 +56,7 @@ export function factValue(value: unknown, unit: string | null): string {
 export function marginFacts(facts: Because["facts"], names: Names): readonly Omit<FactView, "name">[] {
   return Object.entries(facts).map(([name, value]) => {
     const short = spacedName(name.replace(/(?:MolPerL|Percent|Fraction)$/, ""));
-    const label = short === "p h" ? "pH" : short;
-    return { meaning: names.set(label), value: names.set(marginValue(name, value)) };
+    return { meaning: names.set(short), value: names.set(marginValue(name, value)) };
   });
 }
 
@@ -68,8 +67,6 @@ function marginValue(name: string, value: Because["facts"][string]): string {
   if (name.endsWith("Percent")) return percent(value);
   return name === "pH" ? fixed(value, 1) : significant(value, 3);
 }
-
-const spacedName = (name: string): string => name.replace(/([a-z])([A-Z])/g, "$1 $2").toLowerCase();
 
 /** Every rule that spoke for or against a method, in reading order, with what it saw. */
 export function reasonViews(

@@ -2,7 +2,7 @@ import { Router } from "express";
 import type { Knowledge } from "../../constants/knowledge.ts";
 import { ruleHref, type Names } from "../format/names.ts";
 import { significant, signed } from "../format/numbers.ts";
-import { BASIS_WORDS, EFFECT_WORDS, listing, wordsOf } from "../format/words.ts";
+import { BASIS_WORDS, EFFECT_WORDS, listing, spacedName, wordsOf } from "../format/words.ts";
 import type { Markup } from "../render/markup.ts";
 import { renderView } from "../render/render-view.ts";
 import type { FactListing, RuleCondition, RuleListing, WebServices } from "../services.ts";
@@ -49,10 +49,7 @@ function listView(knowledge: Knowledge, rules: readonly RuleListing[], names: Na
 
 /** A statement template for reading: its places for values shown as the words of the fact. */
 const readable = (template: string): string =>
-  template.replace(
-    /\{([A-Za-z]+)(?:[|:][^}]*)?\}/g,
-    (_, name: string) => `‹${name.replace(/([a-z])([A-Z])/g, "$1 $2").toLowerCase()}›`,
-  );
+  template.replace(/\{([A-Za-z]+)(?:[|:][^}]*)?\}/g, (_, name: string) => `‹${spacedName(name)}›`);
 
 /** One line of a condition: how deep it stands, and what it asks. */
 export interface ConditionLine {
