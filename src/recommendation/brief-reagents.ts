@@ -1,14 +1,22 @@
 import { editDistance } from "../constants/edit-distance.ts";
+import { loadContractIds } from "../constants/index.ts";
 import { readIon } from "../constants/ion-names.ts";
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { Fault } from "../errors.ts";
 import { describeFound, jsonPath } from "./contract-faults.ts";
-import { CONTRACT_REAGENTS } from "./contract-vocabulary.ts";
+
+/** Chelates that a method may add; their preparation steps name them (add-Mg-EDTA). */
+const CHELATES = ["Mg-EDTA", "Zn-EDTA", "Zn-EGTA", "Cu-EDTA", "tetracyanonickelate"] as const;
+
+let cachedIds: ReturnType<typeof loadContractIds> | undefined;
+const contractIds = () => (cachedIds ??= loadContractIds());
 
 /** Every reagent id that a brief may name: those of the contract and those of the knowledge base. */
 export function reagentIds(knowledge: Knowledge): ReadonlySet<string> {
+  const ids = contractIds();
   return new Set([
-    ...Object.values(CONTRACT_REAGENTS).flat(),
+    ...[ids.titrants, ids.metalTitrants, ids.indicators, ids.buffers, ids.agents].flat(),
+    ...CHELATES,
     ...[knowledge.titrants, knowledge.metalTitrants, knowledge.indicators].flatMap((map) => [...map.keys()]),
     ...[knowledge.buffers, knowledge.agents, knowledge.reagents].flatMap((map) => [...map.keys()]),
     "water", // free, but nobody is wrong to list it

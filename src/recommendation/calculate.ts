@@ -13,7 +13,9 @@ import { readComponent } from "./brief.ts";
 import { describeFound, jsonPath, shapeFaults } from "./contract-faults.ts";
 
 const amount = z.number().min(0).max(60);
-const amounts = z.record(z.string().min(1).max(100), amount);
+const amounts = z
+  .record(z.string().min(1).max(100), amount)
+  .refine((of) => !("H+" in of), "no H+ here: how acid the solution is, pH or log10H says");
 const constants = z
   .array(
     z.strictObject({
@@ -128,6 +130,12 @@ class Names {
       const found = readComponent(text, [...path, text], this.#knowledge, this.faults);
       if (found === null) continue;
       const { id } = found.component;
+      if (id === "H+")
+        this.faults.push({
+          path: jsonPath([...path, text]),
+          expected: "no H+ or OH- here: how acid the solution is, pH or log10H says",
+          found: describeFound(text),
+        });
       if (read[id] !== undefined)
         this.faults.push({ path: jsonPath([...path, text]), expected: "each component once", found: `${id} again` });
       read[id] = molPerL * found.form.componentsPerFormula;

@@ -1,4 +1,4 @@
-/** The words of the contract: enumerations and reagent ids that briefs and answers may use. */
+/** The closed vocabularies of briefs and answers. Reagent ids are data (contract-ids.json in constants). */
 
 export const DETECTIONS = ["visual", "photometric", "electrode"] as const;
 export const METHOD_MODES = [
@@ -58,23 +58,3 @@ export const PREPARATION_STEPS = [
   "reduce",
   "depolymerise",
 ] as const;
-
-const words = (text: string): readonly string[] => text.trim().split(/[\s,]+/);
-
-/** Reagent ids that the contract names, by what they are. A brief may name any of them, whether or not the knowledge base holds data for it. */
-export const CONTRACT_REAGENTS = {
-  titrants: words("EDTA CDTA EGTA DTPA HEDTA NTA TTHA trien"),
-  metalTitrants: words("Zn2+ Mg2+ Ca2+ Cu2+ Pb2+ Bi3+ Th4+ Fe3+ Ni2+ Mn2+ Ba2+ La3+"),
-  indicators: words(`mordant-black-11 calmagite calcon calconcarboxylic-acid hydroxynaphthol-blue acid-chrome-blue-k
-    murexide zincon xylenol-orange semi-xylenol-orange methylthymol-blue thymolphthalexone phthalein-purple calcein PAN
-    Cu-PAN PAR TAN pyrocatechol-violet bromopyrogallol-red pyrogallol-red sulfosalicylic-acid tiron variamine-blue
-    dithizone fast-sulphon-black-f arsenazo-i arsenazo-iii thoron eriochrome-cyanine-r chromazurol-s calcichrome gha`),
-  buffers: words(`nitric-acid perchloric-acid hydrochloric-acid chloroacetate glycine formate acetate hexamine
-    imidazole tris borate triethanolamine-buffer ammonia ethanolamine diethylamine piperidine carbonate
-    sodium-hydroxide potassium-hydroxide`),
-  agents: words(`cyanide sulfide triethanolamine tartrate citrate fluoride iodide bromide chloride thiosulfate thiourea
-    thiocyanate thioglycolate dimercaprol dimercaptopropanesulfonate cysteine sulfosalicylate tiron acetylacetone
-    phenanthroline phosphate pyrophosphate ascorbic-acid hydroxylamine hydrogen-peroxide ferrocyanide sulfate carbonate
-    hydroxide EGTA Mg-CDTA tetraethylenepentamine triethylenetetramine ammonia formaldehyde chloral-hydrate`),
-  chelates: words("Mg-EDTA Zn-EDTA Zn-EGTA Cu-EDTA tetracyanonickelate"),
-} as const;

@@ -83,6 +83,8 @@ describe("chelwright equilibrium", () => {
       /^\$\.totals\["Cd2\+"\]: expected a number of at least 0/,
     ],
     ["an unknown component", { pH: 10, totals: { "Qx2+": 1 } }, /^\$\.totals\["Qx2\+"\]: expected a known ion/],
+    ["a total of H+ beside the pH", { ...question, totals: { "H+": 1 } }, /^\$\.totals: expected no H\+ here/],
+    ["hydroxide beside the pH", { pH: 10, totals: { "OH-": 1 } }, /^\$\.totals\["OH-"\]: expected no H\+ or OH- here/],
     [
       "a component in two spellings",
       { pH: 10, totals: { "Zn2+": 1, zinc: 1 } },
