@@ -120,22 +120,49 @@ interface Run {
   readonly cancellation: number;
 }
 
-/** ln beta of the variable rows with the fixed components folded in; false when one is not finite. */
+/**
+ * Folds fixed components into ln beta and sums the constants of each group of species (those with the same coefficients over the
+ * unknowns); skipped where nothing changed since the last solve. False when a constant is not finite.
+ */
 function loadBase(
   problem: MassBalanceProblem,
   st: SolveStructure,
   fixedLnFree: ArrayLike<number> | undefined,
 ): boolean {
-  const { base } = st.scratch;
+  const { species, solids, groupStart, m } = st;
+  const { folded, share, base } = st.scratch;
   const { start, column, value } = st.fixedRows;
+  const nSpecies = species.length;
   let check = 0;
-  for (let i = 0; i < base.length; i++) {
-    let sum = i < st.m ? problem.lnBeta[st.species[i]!]! : problem.solids.lnBeta[st.solids[i - st.m]!]!;
+  let changed = false;
+  for (let i = 0; i < folded.length; i++) {
+    let sum = i < nSpecies ? problem.lnBeta[species[i]!]! : problem.solids.lnBeta[solids[i - nSpecies]!]!;
     for (let p = start[i]!; p < start[i + 1]!; p++) sum += value[p]! * fixedLnFree![column[p]!]!;
-    base[i] = sum;
     check += sum;
+    if (folded[i] === sum) continue;
+    folded[i] = sum;
+    changed = true;
   }
-  return Number.isFinite(check);
+  if (!Number.isFinite(check)) {
+    folded.fill(NaN);
+    return false;
+  }
+  if (!changed) return true;
+  for (let g = 0; g < m; g++) {
+    const first = groupStart[g]!;
+    const end = groupStart[g + 1]!;
+    let largest = folded[first]!;
+    for (let i = first + 1; i < end; i++) largest = Math.max(largest, folded[i]!);
+    let sum = 0;
+    for (let i = first; i < end; i++) {
+      share[i] = Math.exp(folded[i]! - largest);
+      sum += share[i]!;
+    }
+    for (let i = first; i < end; i++) share[i] = share[i]! / sum;
+    base[g] = sum === 1 ? largest : largest + Math.log(sum);
+  }
+  for (let s = 0; s < solids.length; s++) base[m + s] = folded[nSpecies + s]!;
+  return true;
 }
 
 function iterate(st: SolveStructure, options: SolveOptions): Run {
@@ -207,7 +234,11 @@ function assemble(
   for (let j = 0; j < n; j++)
     if (state[j] !== UNKNOWN) lnFree[j] = state[j] === FIXED ? options.fixedLnFree![j]! : ABSENT_LN_FREE;
   for (let j = 0; j < st.n; j++) lnFree[st.unknown[j]!] = st.scratch.x[j]!;
-  for (let i = 0; i < st.m; i++) speciesMolPerL[st.species[i]!] = st.scratch.concentration[i]!;
+  for (let g = 0; g < st.m; g++) {
+    const c = st.scratch.concentration[g]!;
+    for (let i = st.groupStart[g]!; i < st.groupStart[g + 1]!; i++)
+      speciesMolPerL[st.species[i]!] = c * st.scratch.share[i]!;
+  }
   for (const i of st.constantSpecies) {
     let e = problem.lnBeta[i]!;
     for (let j = 0; j < n; j++) {

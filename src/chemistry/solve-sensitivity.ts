@@ -108,7 +108,9 @@ export function equilibriumSensitivity(
     }
     solveScaled(matrix, free, scale, right);
     const shift = (k: number): number => (k === position ? 1 : 0);
-    if (i < m) write(bySpecies, problem.nSpecies, st.species[i]!, shift, 1);
+    if (i < m)
+      for (let q = st.groupStart[i]!; q < st.groupStart[i + 1]!; q++)
+        write(bySpecies, problem.nSpecies, st.species[q]!, shift, st.scratch.share[q]!);
     else write(bySolid, problem.solids.n, st.solids[i - m]!, shift, 1);
   }
   return { byTotal, bySpecies, bySolid, condition };

@@ -15,21 +15,22 @@ interface Rows {
 
 /**
  * The index lists and scratch arrays of one pattern of unknown, fixed and absent components; local numbering throughout.
- * `species` and `solids` map local rows to the problem's rows; a dense copy serves the change of basis.
+ * `species` and `solids` map to the problem's rows; a dense copy serves the change of basis.
  */
 export interface SolveStructure {
   readonly n: number; // unknown components
-  readonly m: number; // species that hold at least one of them and nothing absent
+  readonly m: number; // groups of species with the same coefficients over the unknowns (they keep a fixed ratio)
   readonly unknown: Int32Array; // local component -> component of the problem
-  readonly species: Int32Array;
+  readonly species: Int32Array; // species that hold an unknown and nothing absent, group by group
+  readonly groupStart: Int32Array; // per group: its first place in `species`
   readonly constantSpecies: Int32Array; // species made of fixed components only
   readonly solids: Int32Array; // solids that hold an unknown and nothing absent
-  readonly rows: Rows; // species, then solids, over local unknowns
-  readonly fixedRows: Rows; // the same rows over fixed components (numbers of the problem)
+  readonly rows: Rows; // groups, then solids, over local unknowns
+  readonly fixedRows: Rows; // species, then solids, over fixed components (numbers of the problem)
   readonly dense: Float64Array; // (m + solids.length) x n
-  readonly unit: Int32Array; // local component -> local row of its free species
+  readonly unit: Int32Array; // local component -> group of its free species
   readonly balanceStart: Int32Array; // per unknown: entries of the balance ...
-  readonly balanceRow: Int32Array; // ... local species
+  readonly balanceRow: Int32Array; // ... groups
   readonly balanceValue: Float64Array;
   readonly hessianIndex: Int32Array; // entries of the lower triangle that are not zero: position j * n + k
   readonly hessianStart: Int32Array;
@@ -42,12 +43,14 @@ export interface SolveStructure {
 
 /** Arrays reused from solve to solve; nothing in them outlives one call. */
 export interface Scratch {
-  readonly base: Float64Array; // ln beta with fixed components folded in; species, then solids
+  readonly folded: Float64Array; // ln beta with fixed components folded in; species, then solids
+  readonly share: Float64Array; // of each species in its group
+  readonly base: Float64Array; // the same summed over each group; groups, then solids
   readonly total: Float64Array;
   readonly x: Float64Array;
   readonly trial: Float64Array;
-  readonly exponent: Float64Array; // species, then solids
-  readonly concentration: Float64Array; // species
+  readonly exponent: Float64Array; // groups, then solids
+  readonly concentration: Float64Array; // groups
   readonly gradient: Float64Array;
   readonly step: Float64Array;
   readonly hessian: Float64Array;
@@ -105,10 +108,15 @@ export function compileProblem(problem: MassBalanceProblem): CompiledProblem {
       missing,
     });
   const structures = new Map<string, SolveStructure>();
+  const lastState = new Uint8Array(n);
+  let last: SolveStructure | null = null;
   const compiled: CompiledProblem = {
     nComponents: n,
     nonNegativeColumn,
     structure(state) {
+      let same = last !== null;
+      for (let j = 0; j < n && same; j++) same = lastState[j] === state[j];
+      if (same) return last!;
       let key = "";
       for (let j = 0; j < n; j++) key += String(state[j]!);
       let found = structures.get(key);
@@ -116,6 +124,8 @@ export function compileProblem(problem: MassBalanceProblem): CompiledProblem {
         found = buildStructure(problem, state, unitRow, nonNegativeColumn);
         structures.set(key, found);
       }
+      lastState.set(state);
+      last = found;
       return found;
     },
   };
@@ -140,7 +150,6 @@ function buildStructure(
     unknown.push(j);
   }
   const n = unknown.length;
-  const rows: { readonly matrix: Int8Array; readonly row: number }[] = [];
   const classify = (matrix: Int8Array, row: number): "variable" | "constant" | "absent" => {
     let variable = false;
     for (let j = 0; j < nComponents; j++) {
@@ -150,31 +159,37 @@ function buildStructure(
     }
     return variable ? "variable" : "constant";
   };
-  const species: number[] = [];
+  const groups = new Map<string, number[]>();
   const constantSpecies: number[] = [];
   for (let i = 0; i < problem.nSpecies; i++) {
     const kind = classify(problem.stoichiometry, i);
     if (kind === "constant") constantSpecies.push(i);
     if (kind !== "variable") continue;
-    species.push(i);
-    rows.push({ matrix: problem.stoichiometry, row: i });
+    const key = unknown.map((j) => problem.stoichiometry[i * nComponents + j]!).join(",");
+    const group = groups.get(key);
+    if (group === undefined) groups.set(key, [i]);
+    else group.push(i);
   }
+  const members = [...groups.values()];
+  const groupStart = new Int32Array(members.length + 1);
+  members.forEach((group, g) => (groupStart[g + 1] = groupStart[g]! + group.length));
   const solids: number[] = [];
-  for (let s = 0; s < problem.solids.n; s++) {
-    if (classify(problem.solids.stoichiometry, s) !== "variable") continue;
-    solids.push(s);
-    rows.push({ matrix: problem.solids.stoichiometry, row: s });
-  }
-  const m = species.length;
+  for (let s = 0; s < problem.solids.n; s++)
+    if (classify(problem.solids.stoichiometry, s) === "variable") solids.push(s);
+  const m = members.length;
+  const species = members.flat();
+  const solidRows = solids.map((row) => ({ matrix: problem.solids.stoichiometry, row }));
+  const rows = [...members.map((group) => ({ matrix: problem.stoichiometry, row: group[0]! })), ...solidRows];
+  const everyRow = [...species.map((row) => ({ matrix: problem.stoichiometry, row })), ...solidRows];
   const dense = new Float64Array(rows.length * n);
   rows.forEach(({ matrix, row }, i) => {
     for (let j = 0; j < n; j++) dense[i * n + j] = matrix[row * nComponents + unknown[j]!]!;
   });
-  const sparse = (select: number): Rows => {
+  const sparse = (select: number, from: typeof rows): Rows => {
     const start = [0];
     const column: number[] = [];
     const value: number[] = [];
-    for (const { matrix, row } of rows) {
+    for (const { matrix, row } of from) {
       for (let j = 0; j < nComponents; j++) {
         const coefficient = matrix[row * nComponents + j]!;
         if (coefficient === 0 || state[j] !== select) continue;
@@ -203,12 +218,13 @@ function buildStructure(
     m,
     unknown: Int32Array.from(unknown),
     species: Int32Array.from(species),
+    groupStart,
     constantSpecies: Int32Array.from(constantSpecies),
     solids: Int32Array.from(solids),
-    rows: sparse(UNKNOWN),
-    fixedRows: sparse(FIXED),
+    rows: sparse(UNKNOWN, rows),
+    fixedRows: sparse(FIXED, everyRow),
     dense,
-    unit: Int32Array.from(unknown, (j) => species.indexOf(unitRow[j]!)),
+    unit: Int32Array.from(unknown, (j) => members.findIndex((group) => group.includes(unitRow[j]!))),
     balanceStart: balance.start,
     balanceRow: balance.column,
     balanceValue: balance.value,
@@ -219,6 +235,8 @@ function buildStructure(
     mixedSign: Uint8Array.from(unknown, (j) => 1 - nonNegativeColumn[j]!),
     nonNegative: unknown.every((j) => nonNegativeColumn[j] === 1),
     scratch: {
+      folded: new Float64Array(everyRow.length).fill(NaN),
+      share: new Float64Array(species.length),
       base: new Float64Array(rows.length),
       total: new Float64Array(n),
       x: new Float64Array(n),
