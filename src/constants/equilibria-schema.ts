@@ -38,6 +38,9 @@ const termsSchema = listOf(isTerm, 'partners [coefficient, composition] or [coef
 const printedSchema = listOf(isPrinted, "values [record, value as text, C, mol/L, error column, footnote, 0 or 1]");
 const chainSchema = z.custom<StoredChain>(isChain, "expected a chain [[reaction, factor], ...]");
 
+/** The acknowledgement that travels with data of the compilation: source, as is, modified work, what was changed and when. */
+const noticeSchema = z.string().min(1);
+
 const confidenceSchema = z.enum(["high", "medium", "low"]);
 
 /** One value from elsewhere: a handbook, a paper, or computed by us. */
@@ -80,6 +83,7 @@ function isReactionRow(row: unknown): boolean {
 /** A file of reactions; `source` belongs to the printed values. */
 export const reactionFileSchema = z.strictObject({
   about: z.string(),
+  notice: noticeSchema,
   source: z.string().min(1),
   reactions: rowsOf(reactionSchema, isReactionRow),
 });
@@ -98,6 +102,7 @@ function isSpeciesRow(row: unknown): boolean {
 /** A file of species: composition and the reactions that make it. */
 export const speciesFileSchema = z.strictObject({
   about: z.string(),
+  notice: noticeSchema,
   species: rowsOf(speciesSchema, isSpeciesRow),
 });
 
@@ -112,6 +117,7 @@ const provenanceSchema = z.strictObject({
 /** A file of solids. */
 export const solidFileSchema = z.strictObject({
   about: z.string(),
+  notice: noticeSchema,
   solids: z.array(
     z.strictObject({
       id: z.string().min(1),

@@ -46,23 +46,49 @@ export function checkDivalentOrder(ligand: string, entries: readonly ComparedRea
   return remarks;
 }
 
+/** The same for enthalpies, kJ/mol. */
+const SMOOTH_LIMIT_KJ_PER_MOL = 12;
+
 /** Rare earths that depart from the line between their neighbours in the series, for each reaction of the ligand that has at least three. */
 export function checkRareEarths(ligand: string, entries: readonly ComparedReaction[]): DataRemark[] {
   const remarks: DataRemark[] = [];
   const earths = entries.filter((entry) => entry.metal in ATOMIC_NUMBERS);
   for (const [text, series] of groupBy(earths, (entry) => entry.reaction.text)) {
-    const sorted = [...series].sort((a, b) => ATOMIC_NUMBERS[a.metal]! - ATOMIC_NUMBERS[b.metal]!);
-    for (const [i, entry] of sorted.entries()) {
-      const before = sorted[i - 1];
-      const after = sorted[i + 1];
-      if (before === undefined || after === undefined) continue;
-      const [zb, z, za] = [before, entry, after].map((e) => ATOMIC_NUMBERS[e.metal]!) as [number, number, number];
-      const line = before.log10K + ((after.log10K - before.log10K) * (z - zb)) / (za - zb);
-      if (Math.abs(entry.log10K - line) <= SMOOTH_LIMIT) continue;
-      const neighbours = `${before.metal} ${before.log10K.toFixed(2)}, ${after.metal} ${after.log10K.toFixed(2)}`;
-      const remark = `${text}: ${entry.metal} ${entry.log10K.toFixed(2)} (${entry.records}) is off the line of its neighbours (${neighbours}; expected ${line.toFixed(2)}).`;
-      remarks.push({ kind: "suspect", about: `${ligand} ${entry.metal}`, text: remark });
+    const constants = series.map(({ metal, log10K, records }) => ({ metal, value: log10K, records }));
+    const enthalpies = series.flatMap(({ metal, reaction }) => {
+      const [first] = reaction.enthalpies;
+      if (first === undefined) return [];
+      return [{ metal, value: first.kJPerMol, records: `enthalpy, record ${first.provenance.record ?? "unknown"}` }];
+    });
+    for (const { metal, text: found } of [
+      ...offTheLine(constants, SMOOTH_LIMIT),
+      ...offTheLine(enthalpies, SMOOTH_LIMIT_KJ_PER_MOL),
+    ]) {
+      remarks.push({ kind: "suspect", about: `${ligand} ${metal}`, text: `${text}: ${found}` });
     }
   }
   return remarks;
+}
+
+interface SeriesValue {
+  readonly metal: string;
+  readonly value: number;
+  readonly records: string;
+}
+
+function offTheLine(series: readonly SeriesValue[], limit: number): { metal: string; text: string }[] {
+  const sorted = [...series].sort((a, b) => ATOMIC_NUMBERS[a.metal]! - ATOMIC_NUMBERS[b.metal]!);
+  const found: { metal: string; text: string }[] = [];
+  for (const [i, entry] of sorted.entries()) {
+    const before = sorted[i - 1];
+    const after = sorted[i + 1];
+    if (before === undefined || after === undefined) continue;
+    const [zb, z, za] = [before, entry, after].map((e) => ATOMIC_NUMBERS[e.metal]!) as [number, number, number];
+    const line = before.value + ((after.value - before.value) * (z - zb)) / (za - zb);
+    if (Math.abs(entry.value - line) <= limit) continue;
+    const neighbours = `${before.metal} ${before.value.toFixed(2)}, ${after.metal} ${after.value.toFixed(2)}`;
+    const text = `${entry.metal} ${entry.value.toFixed(2)} (${entry.records}) is off the line of its neighbours (${neighbours}; expected ${line.toFixed(2)}).`;
+    found.push({ metal: entry.metal, text });
+  }
+  return found;
 }

@@ -1,6 +1,6 @@
 import { describe, expect, test } from "vitest";
 import { DataError } from "../../src/errors.ts";
-import { loadEquilibria } from "../../src/constants/load-equilibria.ts";
+import { loadEquilibria, REACTION_FILES } from "../../src/constants/load-equilibria.ts";
 import { equilibria, readDataText, withEdited } from "./read-equilibria.ts";
 
 const metalsWithSpecies = equilibria.components.filter(
@@ -75,6 +75,9 @@ describe("loadEquilibria", () => {
       "values in parentheses flagged",
     ]) {
       expect(notice).toContain(part);
+    }
+    for (const name of [...REACTION_FILES, "equilibria-species.json", "solids.json"]) {
+      expect((JSON.parse(readDataText(name)) as { notice: string }).notice, name).toBe(notice);
     }
   });
 

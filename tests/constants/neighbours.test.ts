@@ -104,6 +104,23 @@ describe("checkNeighbours lists, and is silent just inside its limit", () => {
     expect(texts(series(17.3))).toEqual([]);
   });
 
+  test("a rare earth whose enthalpy is off the line", () => {
+    const series = (gadolinium: number) =>
+      (
+        [
+          ["La3+", -12],
+          ["Gd3+", gadolinium],
+          ["Lu3+", -10],
+        ] as const
+      ).map(([metal, kJPerMol], i) =>
+        react("a", metal, ML, [value(15 + i)], {
+          enthalpies: [{ ...value(0), kJPerMol, provenance: { ...value(0).provenance, record: "7" } }],
+        }),
+      );
+    expect(texts(series(8))).toEqual([expect.stringContaining("(enthalpy, record 7) is off the line")]);
+    expect(texts(series(0))).toEqual([]);
+  });
+
   test("reactions that have nothing but doubtful values", () => {
     expect(texts([react("a", "Zn2+", ML, [value(5, { doubtful: true })])])).toEqual([
       expect.stringContaining("printed in parentheses"),
