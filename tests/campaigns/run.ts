@@ -1,40 +1,9 @@
-/** Long campaigns: `npm run campaign -- NAME [SEED]`. Each prints its figures; a failed bound ends with exit code 1. */
-import { runBalances, runOracle, runSolids } from "./solver.ts";
-
-/** One campaign: prints nothing itself, returns figures and whether its bounds hold. */
-export interface Campaign {
-  readonly name: string;
-  readonly about: string;
-  readonly run: (seed: number) => { readonly figures: Readonly<Record<string, unknown>>; readonly holds: boolean };
-}
+/** Long campaigns: `npm run campaign -- [NAME] [SEED]`. Each prints its figures; a broken bound ends with exit code 1. */
+import type { Campaign } from "./campaign.ts";
+import { solverCampaign } from "./solver.ts";
 
 /** The campaigns there are; one file each, listed here. */
-export const campaigns: readonly Campaign[] = [
-  {
-    name: "solver",
-    about: "10,000 random systems; 50 against a 50-digit oracle; 500 with one to three solids, 500 with up to eight",
-    run: (seed) => {
-      const balances = runBalances(seed, 10_000);
-      const oracle = runOracle(seed + 1, 50);
-      const solids = runSolids(seed + 2, 500);
-      const manySolids = runSolids(seed + 3, 500, 8);
-      const solidsHold = [solids, manySolids].every(
-        (s) =>
-          s.notConverged === 0 &&
-          s.worstResidual <= 1e-12 &&
-          s.worstSupersaturationLog10 <= 1e-9 &&
-          s.worstIndexOfPresentLog10 <= 1e-9 &&
-          s.mostNegativeMolPerL === 0,
-      );
-      const holds =
-        balances.notConverged === 0 &&
-        balances.worstResidual <= 1e-12 &&
-        oracle.worstErrorPerCondition <= 1e-9 &&
-        solidsHold;
-      return { figures: { balances, oracle, solids, manySolids }, holds };
-    },
-  },
-];
+export const campaigns: readonly Campaign[] = [solverCampaign];
 
 const [name, seedText] = process.argv.slice(2);
 const chosen = campaigns.filter((campaign) => name === undefined || campaign.name === name);

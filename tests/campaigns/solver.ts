@@ -1,8 +1,40 @@
 import { solveEquilibrium } from "../../src/chemistry/solve-equilibrium.ts";
+import { solveWithProtonTotal } from "../../src/chemistry/solve-with-proton-total.ts";
 import { median } from "../../src/numerics/quantile.ts";
+import type { Campaign } from "./campaign.ts";
 import { solutionFaults } from "./check-solution.ts";
+import { runEliminated } from "./eliminated.ts";
 import { highPrecisionSolution } from "./high-precision-solution.ts";
 import { randomSystem } from "./random-system.ts";
+
+/** The solver's campaign: cold and near solves, the 50-digit oracle, solids, unknown protons, the eliminated form. */
+export const solverCampaign: Campaign = {
+  name: "solver",
+  about:
+    "10,000 random systems cold and near; 50 against a 50-digit oracle; 500 with up to three solids, 500 with up to eight; 1,000 with unknown protons; 2,000 by elimination",
+  run: (seed) => {
+    const balances = runBalances(seed, 10_000);
+    const oracle = runOracle(seed + 1, 50);
+    const solids = runSolids(seed + 2, 500);
+    const manySolids = runSolids(seed + 3, 500, 8);
+    const protons = runProtons(seed + 4, 1000);
+    const eliminated = runEliminated(seed + 5, 2000);
+    const solidsHold = [solids, manySolids].every(
+      (s) =>
+        s.notConverged === 0 &&
+        s.worstResidual <= 1e-12 &&
+        s.worstSupersaturationLog10 <= 1e-9 &&
+        s.worstIndexOfPresentLog10 <= 1e-9 &&
+        s.mostNegativeMolPerL === 0,
+    );
+    const holds =
+      solidsHold &&
+      [balances, protons, eliminated].every((f) => f.notConverged === 0 && f.worstResidual <= 1e-12) &&
+      oracle.worstErrorPerCondition <= 1e-9 &&
+      eliminated.worstDifferenceLn <= 1e-10;
+    return { figures: { balances, oracle, solids, manySolids, protons, eliminated }, holds };
+  },
+};
 
 /** Figures of a run over random systems without solids. */
 export interface BalanceFigures {
@@ -157,4 +189,34 @@ export function runSolids(seed: number, count: number, solids = 3): SolidsFigure
     meanIterations: iterations / count,
     mostIterations,
   };
+}
+
+/** Figures of a run with unknown protons. */
+export interface ProtonFigures {
+  readonly systems: number;
+  readonly notConverged: number;
+  readonly worstResidual: number;
+  readonly negativeTotals: number; // systems with a proton total below zero
+  readonly mostIterations: number;
+}
+
+/** Solves `count` random systems for the free protons too, with proton totals from -1 to 1 mol/L, one in ten exactly zero. */
+export function runProtons(seed: number, count: number): ProtonFigures {
+  let notConverged = 0;
+  let worstResidual = 0;
+  let negativeTotals = 0;
+  let mostIterations = 0;
+  for (let index = 0; index < count; index++) {
+    const { problem, totals } = randomSystem(seed, index, index % 2 === 0 ? {} : { solids: 3 });
+    const size = 10 ** (-8 * ((index * 0.618) % 1));
+    const protonTotal = index % 10 === 0 ? 0 : index % 3 === 0 ? -size : size;
+    if (protonTotal < 0) negativeTotals++;
+    const result = solveWithProtonTotal(problem, totals, protonTotal);
+    if (result.status !== "converged") notConverged++;
+    totals[0] = protonTotal;
+    const none = new Float64Array(problem.nComponents).fill(NaN);
+    worstResidual = Math.max(worstResidual, result.residual, solutionFaults(problem, totals, none, result).balance);
+    mostIterations = Math.max(mostIterations, result.iterations);
+  }
+  return { systems: count, notConverged, worstResidual, negativeTotals, mostIterations };
 }
