@@ -19,13 +19,15 @@ export interface Selection {
 const PER_KELVIN = 0.01;
 /** A background that binds otherwise than potassium counts as this much of root ionic strength; less than the step from 0.1 to 0. */
 const OTHER_BACKGROUND = 0.15;
+/** A value recalled from memory counts as this much further away: a value that was read within reach of the Davies equation comes first. */
+const RECALLED = 0.5;
 /** Beyond this ionic strength (mol/L) a record cannot be moved by the Davies equation and stands beside the doubtful ones. */
 const BEYOND_USE_MOL_PER_L = 1;
 
 /**
  * The record of `reaction` to start from at `conditions` (mol/L, C). Order: records that are neither doubtful nor beyond 1 mol/L, then those with
  * one of these faults, then both; within a class the nearest by |root I - root I'| + 0.01 |T - T'|, where a background other than the model's
- * counts 0.15 (the model's background is potassium: NaL and LiL are species, KL is part of the free ligand); then the smaller
+ * counts 0.15 and a recalled value 0.5 (the model's background is potassium: NaL and LiL are species, KL is part of the free ligand); then the smaller
  * standard uncertainty; then the smaller record id. Deterministic. Throws AppError "no-record" for a reaction without records.
  */
 export function selectRecord(reaction: Pick<Reaction, "id" | "records">, conditions: SelectionConditions): Selection {
@@ -49,7 +51,7 @@ export function selectRecord(reaction: Pick<Reaction, "id" | "records">, conditi
     best.faults !== next.faults
       ? "the others are doubtful or beyond 1 mol/L"
       : best.distance !== next.distance
-        ? "nearest in ionic strength, temperature and background"
+        ? "nearest in ionic strength, temperature, background and basis"
         : best.record.uncertainty !== next.record.uncertainty
           ? "smaller uncertainty among equals"
           : "first record among equals";
@@ -65,7 +67,8 @@ function distance(record: ConstantRecord, conditions: SelectionConditions): numb
     Math.sqrt(record.ionicStrengthMolPerL) - Math.sqrt(Math.max(0, conditions.ionicStrengthMolPerL)),
   );
   const kelvin = Math.abs(record.temperatureC - conditions.temperatureC) * PER_KELVIN;
-  return root + kelvin + (isOtherBackground(record.medium) ? OTHER_BACKGROUND : 0);
+  const background = isOtherBackground(record.medium) ? OTHER_BACKGROUND : 0;
+  return root + kelvin + background + (record.provenance.basis === "memory" ? RECALLED : 0);
 }
 
 function recordId(record: ConstantRecord): string {

@@ -64,6 +64,13 @@ describe("selectRecord", () => {
     expect(chosen([record({ ionicStrengthMolPerL: 0 }), sodium])).toBe(sodium);
   });
 
+  test("takes a value that was read before a recalled one nearer by, but not a doubtful one", () => {
+    const recalled = record({ provenance: { source: "s", basis: "memory", confidence: "high" } });
+    const zero = record({ ionicStrengthMolPerL: 0, temperatureC: 20 });
+    expect(chosen([recalled, zero])).toBe(zero);
+    expect(chosen([recalled, record({ doubtful: true })])).toBe(recalled);
+  });
+
   test("breaks ties by the smaller uncertainty, then by the smaller record id, whatever the order", () => {
     const wide = record({ uncertainty: 0.2 });
     const narrow = record({ uncertainty: 0.05 });
@@ -80,7 +87,7 @@ describe("selectRecord", () => {
     const doubtful = record({ doubtful: true });
     const selection = selectRecord({ id: "r", records: [doubtful, warm, best] }, at(0.1));
     expect(selection.passedOver).toEqual([warm, doubtful]);
-    expect(selection.reason).toBe("nearest in ionic strength, temperature and background");
+    expect(selection.reason).toBe("nearest in ionic strength, temperature, background and basis");
     expect(selectRecord({ id: "r", records: [best] }, at(0.1)).reason).toBe("the only record");
   });
 
@@ -98,6 +105,15 @@ describe("selectRecord", () => {
   ])("takes for the first protonation of EDTA at I = %d the record %s", (ionicStrength, id) => {
     const { record: found } = selectRecord(reaction("EDTA H+ [HL]/([L][H])"), at(ionicStrength));
     expect(found.provenance.record).toBe(id);
+  });
+
+  test.each([
+    ["hexamine H+ [HL]/([L][H])", 4.93], // read, before the remembered 5.13
+    ["PAR Zn2+ [ML]/([M][L])", 11.5], // read, before the remembered 12.4
+    ["calcon H+ [HL]/([L][H])", 13.5], // remembered, before the doubtful 13.80
+    ["pyrocatechol-violet H+ [HL]/([L][H])", 11.7], // remembered with its metal constants, before the doubtful 12.8
+  ])("takes for %s the value %d at 20 C", (id, expected) => {
+    expect(selectRecord(reaction(id), at(0.1, 20)).record.log10K).toBe(expected);
   });
 
   test("takes for water at 10 C and low ionic strength the record of 10 C", () => {
