@@ -97,7 +97,7 @@ export function spacedName(name: string): string {
     .replace(/([a-z])([A-Z])/g, "$1 $2")
     .replace(/([A-Z])([A-Z][a-z])/g, "$1 $2")
     .toLowerCase()
-    .replace(/\bp h\b/g, "pH");
+    .replace(/\bp ?h\b/g, "pH");
 }
 
 /** Joins names as a sentence does: "a", "a and b", "a, b and c". */

@@ -6,7 +6,7 @@ import { curveDescription, curveFigure } from "../figures/curve-figure.ts";
 import { NARROW, WIDE } from "../figures/frame.ts";
 import { curveCsv } from "../figures/figure-csv.ts";
 import type { FieldFault } from "../form/form-to-brief.ts";
-import { anchor, constantsHref, linkMarkup, type Names } from "../format/names.ts";
+import { constantsHref, linkMarkup, type Names } from "../format/names.ts";
 import { compositionMarkup } from "../format/composition.ts";
 import { amount, fixed, percent, significant } from "../format/numbers.ts";
 import { formulaMarkup } from "../format/typeset.ts";
@@ -89,10 +89,7 @@ function faultsOf(error: unknown): readonly FieldFault[] {
 }
 
 function formView(form: CalculatorForm, faults: readonly FieldFault[], knowledge: Knowledge): object {
-  const id = (key: string): string =>
-    `f-${anchor(key)
-      .replace(/_[0-9a-f]+/g, "-")
-      .replace(/-$/, "")}`;
+  const id = (key: string): string => `f-${key.replace(/[^A-Za-z0-9]+/g, "-").replace(/-$/, "")}`;
   const messageAt = (key: string): string =>
     faults
       .filter((f) => f.field === key)

@@ -178,7 +178,7 @@ function componentView(knowledge: Knowledge, index: KnowledgeIndex, names: Names
         : "";
     }),
     masking: masking.map((m) => ({
-      agent: linkMarkup(agentHref(m.agent), names.name(m.agent)),
+      agent: knowledge.agents.has(m.agent) ? linkMarkup(agentHref(m.agent), names.name(m.agent)) : names.name(m.agent),
       effect: m.effect,
       pH: `${fixed(m.pH[0], 1)} to ${fixed(m.pH[1], 1)}`,
       source: sourceMarkup(m.provenance),

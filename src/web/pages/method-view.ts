@@ -131,6 +131,15 @@ function benchRows(
     "Steps, in order",
     stage.preparation.map((p) => text(wordsOf(PREPARATION_WORDS, p))),
   );
+  const { removed, carried } = stage.vessel; // chelates and excess titrant stand among what is added
+  if (removed.length > 0) add("Removed before", [list(removed.map((c) => names.name(c)))]);
+  if (carried)
+    add("Left from before", [
+      joinMarkup([
+        list(carried.metals.map((c) => names.name(c))),
+        `, with ${amount(carried.titrantMolPerL)} of titrant`,
+      ]),
+    ]);
   if (stage.titreML !== null)
     add(
       "Expected titre",
