@@ -1,6 +1,6 @@
 import { factorScaled, solveScaled } from "../numerics/cholesky.ts";
 import { assembleMatrix, chooseBasis, fillConcentrations } from "./solve-basis.ts";
-import { loadProblem, type SolveOptions } from "./solve-equilibrium.ts";
+import { loadProblem, type SolveOptions } from "./solve-load.ts";
 import type { MassBalanceProblem, SolveResult } from "./types.ts";
 
 /** How a solved equilibrium moves when its inputs move a little; components that are fixed or absent have zeros. */
