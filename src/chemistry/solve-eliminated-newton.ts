@@ -1,5 +1,5 @@
 import { factorScaled, solveScaled } from "../numerics/cholesky.ts";
-import { type EliminatedTerms, FACTORS } from "./solve-eliminated-terms.ts";
+import type { EliminatedTerms } from "./solve-eliminated-terms.ts";
 import { ABSENT_LN_FREE } from "./solve-load.ts";
 
 const TOLERANCE = 5e-13; // as the plain iteration of the general solver
@@ -17,8 +17,9 @@ export class EliminatedNewton {
   private readonly free: Float64Array;
   private readonly power: Float64Array;
   private readonly sum: Float64Array; // per eliminated component: total / free
-  private readonly mean: Float64Array;
+  private readonly first: Float64Array; // per segment
   private readonly second: Float64Array;
+  private readonly mixedValue: Float64Array;
   private readonly gradient: Float64Array;
   private readonly hessian: Float64Array;
   private readonly scale: Float64Array;
@@ -28,11 +29,11 @@ export class EliminatedNewton {
     this.terms = terms;
     this.heldBefore = new Float64Array(terms.nComponents);
     this.free = new Float64Array(k);
-    this.power = new Float64Array(terms.powers);
-    this.power[0] = 1;
+    this.power = new Float64Array(terms.powerStart[k]!);
     this.sum = new Float64Array(terms.gone.length);
-    this.mean = new Float64Array(k);
-    this.second = new Float64Array(k * k);
+    this.first = new Float64Array(terms.ligand.length);
+    this.second = new Float64Array(terms.ligand.length);
+    this.mixedValue = new Float64Array(terms.mixed.beta.length);
     this.gradient = new Float64Array(k);
     this.hessian = new Float64Array(k * k);
     this.scale = new Float64Array(k);
@@ -103,8 +104,8 @@ export class EliminatedNewton {
 
   /** Balances of the kept components (gradient) and the matrix left when the others are eliminated exactly (hessian, lower triangle). */
   private evaluate(keptTotal: Float64Array, goneTotal: Float64Array): void {
-    const { terms, free, power, sum, gradient, hessian } = this;
-    const { k, beta, factor, own, ownCount, goneStart, ligandStart, ligand, table, powerStart } = terms;
+    const { terms, free, power, sum, first, second, gradient, hessian } = this;
+    const { k, constant, plan, ligand, polynomial, powerStart } = terms;
     for (let l = 0; l < k; l++) {
       const value = free[l]!;
       let product = 1;
@@ -116,112 +117,101 @@ export class EliminatedNewton {
       gradient[l] = -keptTotal[l]!;
     }
     for (let q = 0; q < k * k; q++) hessian[q] = 0;
-    for (let i = 0; i < ownCount; i++) {
-      const f = i * FACTORS;
-      const c = beta[i]! * power[factor[f]!]! * power[factor[f + 1]!]! * power[factor[f + 2]!]!;
-      const end = own.start[i + 1]!;
-      for (let p = own.start[i]!; p < end; p++) {
-        const l = own.column[p]!;
-        const ac = own.value[p]! * c;
-        gradient[l] = gradient[l]! + ac;
-        for (let q = own.start[i]!; q <= p; q++) {
-          const at = l * k + own.column[q]!;
-          hessian[at] = hessian[at]! + ac * own.value[q]!;
+    // The plan is one stream of integers and the polynomials one of numbers, read in step: few arrays to keep at hand in this loop.
+    const blocks = constant.length;
+    let at = 0;
+    let q = 0;
+    let s = 0;
+    for (let block = 0; block < blocks; block++) {
+      const from = s;
+      const to = from + plan[at]!;
+      const hasMixed = plan[at + 1] === 1;
+      at += 2;
+      let total = constant[block]!;
+      for (; s < to; s++, at += 3) {
+        // moments of the exponents over the terms of one kept component
+        const count = plan[at + 2]!;
+        let p = plan[at + 1]!;
+        let m1 = polynomial[q]! * power[p]!;
+        let m2 = m1;
+        total += m1;
+        q++;
+        for (let exponent = 2; exponent <= count; exponent++) {
+          p++;
+          const w = polynomial[q]! * power[p]!;
+          q++;
+          const we = w * exponent;
+          total += w;
+          m1 += we;
+          m2 += we * exponent;
+        }
+        first[s] = m1;
+        second[s] = m2;
+      }
+      if (block === 0) {
+        for (let r = from; r < to; r++) {
+          const l = ligand[r]!;
+          gradient[l] = gradient[l]! + first[r]!;
+          hessian[l * k + l] = hessian[l * k + l]! + second[r]!;
+        }
+        if (hasMixed) this.addMixed(block, 1);
+        continue;
+      }
+      if (hasMixed) total += this.mixedTotal(block);
+      sum[block - 1] = total;
+      const inverse = 1 / total;
+      const unit = goneTotal[block - 1]! * inverse;
+      if (hasMixed) this.addMixed(block, unit);
+      // Plain differences of moments lose digits only where the matrix is so nearly singular that the answer is refused (WELL_CONDITIONED).
+      for (let r = from; r < to; r++) {
+        const l = ligand[r]!;
+        const m1 = first[r]!;
+        const share = unit * m1;
+        const slope = share * inverse;
+        const row = l * k;
+        gradient[l] = gradient[l]! + share;
+        hessian[row + l] = hessian[row + l]! + unit * second[r]! - slope * m1;
+        for (let c = from; c < r; c++) {
+          const cell = row + ligand[c]!;
+          hessian[cell] = hessian[cell]! - slope * first[c]!;
         }
       }
-    }
-    for (let e = 0; e < sum.length; e++) {
-      const first = goneStart[e]!;
-      const last = goneStart[e + 1]!;
-      const from = ligandStart[e]!;
-      const width = ligandStart[e + 1]! - from;
-      const amount = goneTotal[e]!;
-      // Moments of the coefficients over the terms. Their plain differences below lose digits only where the matrix is so nearly
-      // singular that the answer is refused anyway (WELL_CONDITIONED).
-      if (width === 1) {
-        let total = 0;
-        let m1 = 0;
-        let m2 = 0;
-        for (let i = first; i < last; i++) {
-          const w = beta[i]! * power[factor[i * FACTORS]!]!;
-          const a = table[i * FACTORS]!;
-          total += w;
-          m1 += w * a;
-          m2 += w * a * a;
-        }
-        sum[e] = total;
-        const mean = m1 / total;
-        const l = ligand[from]!;
-        gradient[l] = gradient[l]! + amount * mean;
-        hessian[l * k + l] = hessian[l * k + l]! + amount * (m2 / total - mean * mean);
-      } else if (width === 2) {
-        let total = 0;
-        let ma = 0;
-        let mb = 0;
-        let maa = 0;
-        let mab = 0;
-        let mbb = 0;
-        for (let i = first, f = first * FACTORS; i < last; i++, f += FACTORS) {
-          const w = beta[i]! * power[factor[f]!]! * power[factor[f + 1]!]!;
-          const a = table[f]!;
-          const b = table[f + 1]!;
-          const wa = w * a;
-          const wb = w * b;
-          total += w;
-          ma += wa;
-          mb += wb;
-          maa += wa * a;
-          mab += wa * b;
-          mbb += wb * b;
-        }
-        sum[e] = total;
-        const unit = 1 / total;
-        const meanA = ma * unit;
-        const meanB = mb * unit;
-        const l = ligand[from]!;
-        const r = ligand[from + 1]!;
-        gradient[l] = gradient[l]! + amount * meanA;
-        gradient[r] = gradient[r]! + amount * meanB;
-        hessian[l * k + l] = hessian[l * k + l]! + amount * (maa * unit - meanA * meanA);
-        hessian[r * k + l] = hessian[r * k + l]! + amount * (mab * unit - meanA * meanB);
-        hessian[r * k + r] = hessian[r * k + r]! + amount * (mbb * unit - meanB * meanB);
-      } else this.moments(e, amount);
     }
     for (let l = 0; l < k; l++) if (keptTotal[l] === 0) hessian[l * k + l] = 1;
   }
 
-  /** The same sums for an eliminated component whose terms hold none, or three and more, of the kept ones. */
-  private moments(e: number, amount: number): void {
-    const { terms, power, sum, mean, second, gradient, hessian } = this;
-    const { k, beta, factor, goneStart, ligandStart, ligand, holds } = terms;
-    const from = ligandStart[e]!;
-    const width = ligandStart[e + 1]! - from;
+  /** Sum of the mixed terms of a block; leaves each term in `mixedValue`. */
+  private mixedTotal(block: number): number {
+    const { power, mixedValue } = this;
+    const { mixed, ligand, powerStart } = this.terms;
     let total = 0;
-    for (let a = 0; a < width; a++) mean[a] = 0;
-    for (let q = 0; q < width * width; q++) second[q] = 0;
-    for (let i = goneStart[e]!; i < goneStart[e + 1]!; i++) {
-      const f = i * FACTORS;
-      const w = beta[i]! * power[factor[f]!]! * power[factor[f + 1]!]! * power[factor[f + 2]!]!;
+    for (let i = mixed.blockStart[block]!; i < mixed.blockStart[block + 1]!; i++) {
+      let w = mixed.beta[i]!;
+      for (let p = mixed.start[i]!; p < mixed.start[i + 1]!; p++)
+        w *= power[powerStart[ligand[mixed.segment[p]!]!]! + mixed.exponent[p]! - 1]!;
+      mixedValue[i] = w;
       total += w;
-      for (let p = holds.start[i]!; p < holds.start[i + 1]!; p++) {
-        const a = holds.column[p]!;
-        const wa = w * holds.value[p]!;
-        mean[a] = mean[a]! + wa;
-        for (let q = holds.start[i]!; q <= p; q++) {
-          const at = a * width + holds.column[q]!;
-          second[at] = second[at]! + wa * holds.value[q]!;
-        }
-      }
     }
-    sum[e] = total;
-    for (let a = 0; a < width; a++) {
-      const meanA = mean[a]! / total;
-      mean[a] = meanA;
-      const l = ligand[from + a]!;
-      gradient[l] = gradient[l]! + amount * meanA;
-      for (let b = 0; b <= a; b++) {
-        const cell = l * k + ligand[from + b]!;
-        hessian[cell] = hessian[cell]! + amount * (second[a * width + b]! / total - meanA * mean[b]!);
+    return total;
+  }
+
+  /** Adds the mixed terms of a block to its first moments (to the gradient in block 0) and, times `unit`, to the matrix. */
+  private addMixed(block: number, unit: number): void {
+    const { mixedValue, first, gradient, hessian } = this;
+    const { k, mixed, ligand } = this.terms;
+    if (block === 0) this.mixedTotal(block);
+    for (let i = mixed.blockStart[block]!; i < mixed.blockStart[block + 1]!; i++) {
+      const w = mixedValue[i]!;
+      for (let p = mixed.start[i]!; p < mixed.start[i + 1]!; p++) {
+        const s = mixed.segment[p]!;
+        const l = ligand[s]!;
+        const we = w * mixed.exponent[p]!;
+        if (block === 0) gradient[l] = gradient[l]! + we;
+        else first[s] = first[s]! + we;
+        for (let q = mixed.start[i]!; q <= p; q++) {
+          const cell = l * k + ligand[mixed.segment[q]!]!;
+          hessian[cell] = hessian[cell]! + unit * we * mixed.exponent[q]!;
+        }
       }
     }
   }

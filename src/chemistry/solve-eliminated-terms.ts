@@ -1,8 +1,5 @@
 import type { MassBalanceProblem } from "./types.ts";
 
-/** Slots for powers of unknown components in one term; unused ones point at the constant 1. */
-export const FACTORS = 3;
-
 const LARGEST_LN = 600; // a constant beyond e^600 leaves no room for the powers beside it
 
 /** A species that the eliminated form cannot hold. */
@@ -12,30 +9,40 @@ interface PolynuclearSpecies {
   readonly coefficient: Float64Array;
 }
 
-/** The terms of one problem at fixed components, grouped by eliminated component; see `eliminatedSolver`. */
+/** Terms of one or several kept components at once: sparse rows of (place among the block's segments, exponent). */
+interface MixedTerms {
+  readonly blockStart: Int32Array; // per block: its first mixed term
+  readonly beta: Float64Array;
+  readonly start: Int32Array; // per mixed term
+  readonly segment: Int32Array; // number of the segment, over all blocks
+  readonly exponent: Float64Array;
+}
+
+/**
+ * The terms of one problem at fixed components, grouped in blocks; see `eliminatedSolver`. Block 0 holds the species without an eliminated component,
+ * block e + 1 those of eliminated component e. A block is a constant, one polynomial in each kept component it holds (a segment), and
+ * mixed terms.
+ */
 export interface EliminatedTerms {
   readonly nComponents: number;
   readonly k: number; // kept components
   readonly kept: Int32Array; // their numbers in the problem
   readonly gone: Int32Array; // eliminated components
   readonly fixed: readonly { readonly component: number; readonly lnFree: number }[];
-  readonly beta: Float64Array; // per term: those without an eliminated component first, then by component
-  readonly factor: Int32Array; // FACTORS positions in the table of powers per term
-  readonly ownCount: number; // terms without an eliminated component
-  readonly own: { readonly start: Int32Array; readonly column: Int32Array; readonly value: Float64Array };
-  readonly goneStart: Int32Array; // per eliminated component: its first term
-  readonly ligandStart: Int32Array; // per eliminated component: the kept components its terms hold
-  readonly ligand: Int32Array;
-  readonly table: Float64Array; // FACTORS per term: coefficients of the first FACTORS kept components of its eliminated one
-  readonly holds: { readonly start: Int32Array; readonly column: Int32Array; readonly value: Float64Array }; // per term: sparse, over those
-  readonly powerStart: Int32Array; // per kept component: its first power (of exponent 1) in the table
-  readonly powers: number; // length of the table, position 0 holds 1
+  readonly constant: Float64Array; // per block
+  /** Per block: number of segments, 1 if it has mixed terms; then per segment: kept component, first power in the table, number of powers (1 or more). */
+  readonly plan: Int32Array;
+  readonly ligand: Int32Array; // per segment: the kept component
+  readonly polynomial: Float64Array; // per segment: coefficients of powers 1, 2, ... ; gaps are 0
+  readonly mixed: MixedTerms;
+  readonly powerStart: Int32Array; // per kept component: its first power in a table of powers
   readonly polynuclear: readonly PolynuclearSpecies[];
 }
 
-interface Term {
-  readonly exponents: readonly number[]; // over kept components
-  beta: number;
+interface Block {
+  constant: number;
+  readonly segments: Map<number, number[]>; // kept component -> coefficients by power, from 1
+  readonly mixed: Map<string, { readonly exponents: readonly number[]; beta: number }>;
 }
 
 /** Groups the species of a problem by eliminated component and by powers of the kept ones, or null where the form does not apply. */
@@ -49,107 +56,113 @@ export function compileEliminated(
   const all = Array.from({ length: n }, (_, j) => j);
   const gone = eliminate.filter((j) => !isFixed(j));
   const kept = all.filter((j) => !isFixed(j) && !gone.includes(j));
-  const k = kept.length;
-  const own = new Map<string, Term>();
-  const byComponent = gone.map(() => new Map<string, Term>());
+  const blocks = Array.from(
+    { length: gone.length + 1 },
+    (): Block => ({ constant: 0, segments: new Map(), mixed: new Map() }),
+  );
   const polynuclear: PolynuclearSpecies[] = [];
-  const highest = new Int32Array(k);
   for (let i = 0; i < nSpecies; i++) {
+    const coefficient = (j: number): number => stoichiometry[i * n + j]!;
     let ln = lnBeta[i]!;
-    for (const j of all)
-      if (isFixed(j) && stoichiometry[i * n + j] !== 0) ln += stoichiometry[i * n + j]! * fixedLnFree[j]!;
+    for (const j of all) if (isFixed(j) && coefficient(j) !== 0) ln += coefficient(j) * fixedLnFree[j]!;
     if (!(ln < LARGEST_LN)) return null;
-    const exponents = kept.map((j) => stoichiometry[i * n + j]!);
-    const atoms = gone.map((j) => stoichiometry[i * n + j]!);
-    if ([...exponents, ...atoms].some((value) => value < 0)) return null;
-    const count = atoms.reduce((sum, value) => sum + value, 0);
-    const unknown = all.filter((j) => !isFixed(j) && stoichiometry[i * n + j] !== 0);
+    const unknown = all.filter((j) => !isFixed(j) && coefficient(j) !== 0);
+    if (unknown.some((j) => coefficient(j) < 0)) return null;
     if (unknown.length === 0) continue;
-    if (count > 1) {
+    const atoms = gone.reduce((sum, j) => sum + coefficient(j), 0);
+    if (atoms > 1) {
       polynuclear.push({
         lnBeta: ln,
         component: Int32Array.from(unknown),
-        coefficient: Float64Array.from(unknown, (j) => stoichiometry[i * n + j]!),
+        coefficient: Float64Array.from(unknown, coefficient),
       });
       continue;
     }
-    if (exponents.filter((value) => value > 0).length > FACTORS) return null;
-    exponents.forEach((value, l) => (highest[l] = Math.max(highest[l]!, value)));
-    const group = count === 0 ? own : byComponent[atoms.indexOf(1)]!;
-    const key = exponents.join(",");
-    const term = group.get(key);
-    if (term === undefined) group.set(key, { exponents, beta: Math.exp(ln) });
-    else term.beta += Math.exp(ln);
+    const block = blocks[atoms === 0 ? 0 : 1 + gone.findIndex((j) => coefficient(j) === 1)]!;
+    addTerm(block, kept.map(coefficient), Math.exp(ln));
   }
-  const powerStart = new Int32Array(k + 1);
-  powerStart[0] = 1;
-  for (let l = 0; l < k; l++) powerStart[l + 1] = powerStart[l]! + highest[l]!;
-  const groups = [own, ...byComponent].map((group) => [...group.values()]);
-  const terms = groups.flat();
-  const factor = new Int32Array(terms.length * FACTORS);
-  terms.forEach(({ exponents }, i) => {
-    let slot = 0;
-    exponents.forEach((value, l) => {
-      if (value > 0) factor[i * FACTORS + slot++] = powerStart[l]! + value - 1;
-    });
-  });
-  const ownStart = [0];
-  const ownColumn: number[] = [];
-  const ownValue: number[] = [];
-  for (const { exponents } of groups[0]!) {
-    exponents.forEach((value, l) => {
-      if (value === 0) return;
-      ownColumn.push(l);
-      ownValue.push(value);
-    });
-    ownStart.push(ownColumn.length);
-  }
-  const goneStart = [groups[0]!.length];
-  const ligandStart = [0];
-  const ligand: number[] = [];
-  const table = new Float64Array(terms.length * FACTORS);
-  const holdsStart = groups[0]!.map(() => 0);
-  const holdsColumn: number[] = [];
-  const holdsValue: number[] = [];
-  let row = groups[0]!.length;
-  for (const group of groups.slice(1)) {
-    goneStart.push(row + group.length);
-    const used = kept.map((_, l) => l).filter((l) => group.some(({ exponents }) => exponents[l]! > 0));
-    ligand.push(...used);
-    ligandStart.push(ligand.length);
-    for (const { exponents } of group) {
-      holdsStart.push(holdsColumn.length);
-      used.forEach((l, a) => {
-        if (a < FACTORS) table[row * FACTORS + a] = exponents[l]!;
-        if (exponents[l] === 0) return;
-        holdsColumn.push(a);
-        holdsValue.push(exponents[l]!);
-      });
-      row++;
-    }
-  }
-  holdsStart.push(holdsColumn.length);
   return {
+    ...flatten(blocks, kept.length),
     nComponents: n,
-    k,
+    k: kept.length,
     kept: Int32Array.from(kept),
     gone: Int32Array.from(gone),
     fixed: all.filter(isFixed).map((component) => ({ component, lnFree: fixedLnFree[component]! })),
-    beta: Float64Array.from(terms, ({ beta }) => beta),
-    factor,
-    ownCount: groups[0]!.length,
-    own: { start: Int32Array.from(ownStart), column: Int32Array.from(ownColumn), value: Float64Array.from(ownValue) },
-    goneStart: Int32Array.from(goneStart),
-    ligandStart: Int32Array.from(ligandStart),
+    polynuclear,
+  };
+}
+
+function addTerm(block: Block, exponents: readonly number[], beta: number): void {
+  const held = exponents.map((_, l) => l).filter((l) => exponents[l]! > 0);
+  for (const l of held) if (!block.segments.has(l)) block.segments.set(l, []);
+  if (held.length === 0) block.constant += beta;
+  else if (held.length === 1) {
+    const coefficients = block.segments.get(held[0]!)!;
+    const power = exponents[held[0]!]!;
+    while (coefficients.length < power) coefficients.push(0);
+    coefficients[power - 1] = coefficients[power - 1]! + beta;
+  } else {
+    const key = exponents.join(",");
+    const term = block.mixed.get(key);
+    if (term === undefined) block.mixed.set(key, { exponents, beta });
+    else term.beta += beta;
+  }
+}
+
+function flatten(
+  blocks: readonly Block[],
+  k: number,
+): Pick<EliminatedTerms, "constant" | "plan" | "ligand" | "polynomial" | "mixed" | "powerStart"> {
+  const highest = new Int32Array(k);
+  const ligand: number[] = [];
+  const polynomial: number[] = [];
+  const blockStart = [0];
+  const beta: number[] = [];
+  const start = [0];
+  const segment: number[] = [];
+  const exponent: number[] = [];
+  for (const block of blocks) {
+    const place = new Map<number, number>();
+    for (const [l, coefficients] of [...block.segments].sort(([a], [b]) => a - b)) {
+      place.set(l, ligand.length);
+      ligand.push(l);
+      if (coefficients.length === 0) coefficients.push(0); // held by mixed terms only
+      polynomial.push(...coefficients);
+      highest[l] = Math.max(highest[l]!, coefficients.length);
+    }
+    for (const term of block.mixed.values()) {
+      beta.push(term.beta);
+      term.exponents.forEach((value, l) => {
+        if (value === 0) return;
+        segment.push(place.get(l)!);
+        exponent.push(value);
+        highest[l] = Math.max(highest[l]!, value);
+      });
+      start.push(segment.length);
+    }
+    blockStart.push(beta.length);
+  }
+  const powerStart = new Int32Array(k + 1);
+  for (let l = 0; l < k; l++) powerStart[l + 1] = powerStart[l]! + highest[l]!;
+  const plan = blocks.flatMap((block) => [
+    block.segments.size,
+    block.mixed.size > 0 ? 1 : 0,
+    ...[...block.segments]
+      .sort(([a], [b]) => a - b)
+      .flatMap(([l, coefficients]) => [l, powerStart[l]!, coefficients.length]),
+  ]);
+  return {
+    constant: Float64Array.from(blocks, ({ constant }) => constant),
+    plan: Int32Array.from(plan),
     ligand: Int32Array.from(ligand),
-    table,
-    holds: {
-      start: Int32Array.from(holdsStart),
-      column: Int32Array.from(holdsColumn),
-      value: Float64Array.from(holdsValue),
+    polynomial: Float64Array.from(polynomial),
+    mixed: {
+      blockStart: Int32Array.from(blockStart),
+      beta: Float64Array.from(beta),
+      start: Int32Array.from(start),
+      segment: Int32Array.from(segment),
+      exponent: Float64Array.from(exponent),
     },
     powerStart,
-    powers: powerStart[k]!,
-    polynuclear,
   };
 }

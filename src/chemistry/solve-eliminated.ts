@@ -38,7 +38,7 @@ export interface EliminatedSolver {
  * would lose digits, the general solver answers. No solids.
  *
  * `fixedLnFree`: as in `solveEquilibrium`. `eliminate`: components, e.g. all metals. Returns null when the form does not apply at all (an
- * unknown of mixed sign, more than three unknown ligands in one species, constants beyond e^600).
+ * unknown of mixed sign, constants beyond e^600).
  */
 export function eliminatedSolver(
   problem: MassBalanceProblem,
