@@ -33,7 +33,8 @@ function stageConditions(stage: StageDocument, method: RecommendedMethod): reado
   const range = `works from ${figures(pH.low)} to ${figures(pH.high)}`;
   const seen =
     indicator === null ? stage.detection : `${reagentWords(indicator.id)}, ${indicator.colourChange.join(" → ")}`;
-  const constants = stage.conditional.map((entry) => `${entry.metal} ${entry.log10ConditionalK.toFixed(1)}`).join(", ");
+  const bound = stage.conditional.filter((entry) => entry.log10ConditionalK >= 0); // the rest is not bound at all
+  const constants = bound.map((entry) => `${entry.metal} ${entry.log10ConditionalK.toFixed(1)}`).join(", ");
   const rows: readonly (readonly [string, string | null])[] = [
     ["Titrant", `${titrant.id} ${figures(titrant.molPerL)} mol/L`],
     ["Back titrant", back && `${back.id} ${figures(back.molPerL)} mol/L`],

@@ -41,7 +41,7 @@ function stageSteps(stage: StageDocument, index: number, method: RecommendedMeth
   const titrantFirst = after.includes("excess-titrant-first");
   return [
     opening(index, method, brief),
-    ...before.map((step) => PREPARATION_WORDS[step]),
+    ...before.map((step) => preparationStep(step, stage)),
     ...early.map((agent) => `Add ${agent.words}.`),
     ...(titrantFirst ? addTitrant(stage) : []),
     `Bring to pH ${figures(stage.pH.target)} with ${amount(stage.buffer.id, stage.buffer.molPerL)} as buffer; it must stay between pH ${figures(stage.pH.low)} and ${figures(stage.pH.high)}.`,
@@ -61,6 +61,16 @@ function opening(index: number, method: RecommendedMethod, brief: Brief): string
   return method.mode === "difference" || method.mode === "portions"
     ? `Take another portion: ${take}.`
     : "Go on with the same solution.";
+}
+
+/** A separation says what it has to take away. */
+function preparationStep(step: StageDocument["preparation"][number], stage: StageDocument): string {
+  const { removed } = stage.vessel;
+  if (removed.length === 0 || (step !== "separate" && step !== "precipitate-and-filter"))
+    return PREPARATION_WORDS[step];
+  return step === "separate"
+    ? `Separate ${listed(removed)} first (extraction, ion exchange or precipitation), and go on with the fraction that holds the analyte.`
+    : `Let ${listed(removed)} precipitate, and filter it off.`;
 }
 
 function addTitrant(stage: StageDocument): readonly string[] {

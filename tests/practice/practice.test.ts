@@ -13,18 +13,18 @@ const CASES = practiceCases();
 /** Agreement with published practice below which something has gone backwards. */
 const LEAST = { plainFirst: 11, allFirst: 26, forbiddenFirst: 2 };
 
-describe("the recommendations for the acceptance cases", () => {
-  const documents = new Map<string, Recommendation>();
-  const outcomes: Outcome[] = [];
-  beforeAll(async () => {
-    const engine = await openEngine();
-    for (const testCase of CASES) {
-      const document = await engine.recommend(testCase.brief);
-      documents.set(testCase.id, document);
-      outcomes.push({ testCase, judgement: judge(document, testCase) });
-    }
-  }, 600_000);
+const documents = new Map<string, Recommendation>();
+const outcomes: Outcome[] = [];
+beforeAll(async () => {
+  const engine = await openEngine();
+  for (const testCase of CASES) {
+    const document = await engine.recommend(testCase.brief);
+    documents.set(testCase.id, document);
+    outcomes.push({ testCase, judgement: judge(document, testCase) });
+  }
+}, 600_000);
 
+describe("the recommendations for the acceptance cases", () => {
   const tally = (group: string) => {
     const found = tallies(outcomes).get(group);
     if (found === undefined) throw new Error(`no case is ${group}`);

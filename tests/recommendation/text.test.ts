@@ -134,6 +134,13 @@ describe("stepsOf", () => {
       expect(list, step).toHaveLength(steps(withStages(STAGE)).length + 1);
     }
   });
+  it("says what a separation has to take away, under both its names", () => {
+    const vessel = { ...STAGE.vessel, removed: ["Fe3+", "Cu2+"] };
+    const list = (step: "separate" | "precipitate-and-filter") =>
+      steps(withStages({ ...STAGE, vessel, preparation: [step] }));
+    expect(list("separate")[1]).toMatch(/^Separate Fe3\+ and Cu2\+ first/);
+    expect(list("precipitate-and-filter")[1]).toBe("Let Fe3+ and Cu2+ precipitate, and filter it off.");
+  });
   it("reads an electrode instead of a colour where there is no indicator", () => {
     const list = steps(withStages({ ...STAGE, detection: "electrode", indicator: null }));
     expect(list.at(-1)).toContain("to the end point of the electrode reading");
