@@ -49,6 +49,7 @@ const METHOD_FACTS = facts("method", "evaluationStatus", [
   ["hazards", "strings", null, "always", "tags of the cautions that apply"],
   ["reagentCount", "number", null, "always", "masking, auxiliary and added reagents and buffers"],
   ["specialReagentCount", "number", null, "always", "reagents that are not on the usual shelf"],
+  ["dyeCount", "number", null, "always", "different indicators that the method uses"],
   ["heats", "boolean", null, "always", "some step needs a temperature above ambient"],
   ["boils", "boolean", null, "always", "some step is done at the boil"],
   ["separates", "boolean", null, "always", "something is removed before the titration"],
@@ -134,6 +135,8 @@ const STAGE_FACTS = facts("stage", "solutionStatus", [
     'metal that holds the dye before the end point, "none" where there is none',
   ],
   ["analyteKinetics", "string", null, "always", "slowest of what is determined: fast, slow or inert"],
+  ["dyeShowsOthers", "strings", null, "always", "metals of the matrix that the dye is also in use for at this pH"],
+  ["dyeShowsOtherCount", "number", null, "always", "how many those are"],
   ["heats", "boolean", null, "always", "the stage is done warm or hot"],
   [
     "analytePrecipitates",
@@ -196,6 +199,7 @@ const COMPONENT_FACTS = facts("component", "solutionStatus", [
   ["maskedBy", "string", null, "always", 'masking agent, "none" where there is none'],
   ["maskedVia", "string", null, "always", "complexation, precipitation, reduction, oxidation, kinetic or none"],
   ["maskingBasis", "string", null, "always", "equilibrium, empirical, conversion or none"],
+  ["maskStanding", "string", null, "always", "masks, partial (practice knows it as a partial mask) or none"],
   ["empiricalLimitMolPerL", "number", "mol/L", "may be absent", "level up to which the empirical record holds"],
   ["ratioToEmpiricalLimit", "number", null, "may be absent", "level present over that limit"],
   ["maskMolPerL", "number", "mol/L", "always", "masking agent in the titrated solution, 0 where there is none"],
@@ -248,6 +252,7 @@ const VOCABULARY: Readonly<Record<string, readonly string[]>> = {
   kind: ["metal", "ligand"],
   maskedVia: ["complexation", "precipitation", "reduction", "oxidation", "kinetic", "none"],
   maskingBasis: ["equilibrium", "empirical", "conversion", "none"],
+  maskStanding: ["masks", "partial", "none"],
 };
 
 /** The words a fact can take, where they are a closed list; undefined where any word may stand. */

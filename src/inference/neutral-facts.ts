@@ -33,6 +33,7 @@ const NEUTRAL: Readonly<Record<string, FactValue>> = {
   bufferMolPerL: 0.05,
   reagents: ["EDTA", "hexamine", "xylenol-orange"],
   reagentCount: 1,
+  dyeCount: 1,
   titrantIsUsual: true,
   titrantStrengthMolPerL: 0.01,
   buretteML: 25,

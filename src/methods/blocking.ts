@@ -18,7 +18,12 @@ export function blockerOf(indicator: IndicatorRecord, ion: ComponentId, pH: numb
 }
 
 /** Level of a metal, mol/L in the vessel and free of masks, from which the dye is spoilt; null when the dye minds nothing. */
-export function blockingLevel(indicator: IndicatorRecord, ion: ComponentId, pH: number, dyeMolPerL: number): number | null {
+export function blockingLevel(
+  indicator: IndicatorRecord,
+  ion: ComponentId,
+  pH: number,
+  dyeMolPerL: number,
+): number | null {
   const row = blockerOf(indicator, ion, pH);
   if (!row) return null;
   if (row.fromMolPerL === null) return UNSTATED_LEVEL_OF_DYE * dyeMolPerL;

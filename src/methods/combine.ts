@@ -11,8 +11,13 @@ const CARRIED_ON = 4;
 const FOLLOWED = 2;
 
 /** Methods that give several results: separate portions, one portion in turn, or a difference of two titrations. */
-export function combinedMethods(task: Task, groups: readonly (readonly ComponentId[])[], knowledge: Knowledge, shelf: Shelf): EvaluatedMethod[] {
-  const byGroup = groups.map((group) => best(task, stagesFor(task, group, knowledge, shelf), knowledge));
+export function combinedMethods(
+  task: Task,
+  groups: readonly (readonly ComponentId[])[],
+  knowledge: Knowledge,
+  shelf: Shelf,
+): EvaluatedMethod[] {
+  const byGroup = groups.map((group) => best(task, stagesFor(task, group, knowledge, shelf, false), knowledge));
   return [
     ...portions(task, byGroup, knowledge),
     ...successive(task, groups, byGroup, knowledge, shelf),
@@ -42,7 +47,11 @@ const result = (task: Task, stage: DevelopedStage, knowledge: Knowledge): Method
   budget: stageBudget(task, stage.evaluation, knowledge),
 });
 
-function portions(task: Task, byGroup: readonly (readonly DevelopedStage[])[], knowledge: Knowledge): EvaluatedMethod[] {
+function portions(
+  task: Task,
+  byGroup: readonly (readonly DevelopedStage[])[],
+  knowledge: Knowledge,
+): EvaluatedMethod[] {
   if (byGroup.some((stages) => stages.length === 0)) return [];
   const width = Math.min(CARRIED_ON, Math.max(...byGroup.map((s) => s.length)));
   return Array.from({ length: width }, (_, i) => {
@@ -61,7 +70,9 @@ function portions(task: Task, byGroup: readonly (readonly DevelopedStage[])[], k
 function orders(n: number): number[][] {
   if (n === 1) return [[0]];
   if (n > 3) return [Array.from({ length: n }, (_, i) => i)];
-  return orders(n - 1).flatMap((rest) => Array.from({ length: n }, (_, at) => [...rest.slice(0, at), n - 1, ...rest.slice(at)]));
+  return orders(n - 1).flatMap((rest) =>
+    Array.from({ length: n }, (_, at) => [...rest.slice(0, at), n - 1, ...rest.slice(at)]),
+  );
 }
 
 function successive(
@@ -72,8 +83,25 @@ function successive(
   shelf: Shelf,
 ): EvaluatedMethod[] {
   return orders(groups.length).flatMap((order) => {
-    const starts = (byGroup[order[0]!] ?? []).filter((s) => s.plan.backTitrant === null && s.plan.removed.length === 0 && s.remaining.length === 0 && !holdsLater(s, order.slice(1).flatMap((i) => groups[i]!)));
-    return starts.slice(0, FOLLOWED).flatMap((start) => follow(task, [start], order.slice(1).map((i) => groups[i]!), knowledge, shelf));
+    const starts = (byGroup[order[0]!] ?? []).filter(
+      (s) =>
+        s.plan.backTitrant === null &&
+        s.plan.removed.length === 0 &&
+        s.remaining.length === 0 &&
+        !holdsLater(
+          s,
+          order.slice(1).flatMap((i) => groups[i]!),
+        ),
+    );
+    return starts.slice(0, FOLLOWED).flatMap((start) =>
+      follow(
+        task,
+        [start],
+        order.slice(1).map((i) => groups[i]!),
+        knowledge,
+        shelf,
+      ),
+    );
   });
 }
 
@@ -105,7 +133,9 @@ function follow(
   const later: Task = { ...task, portion: { ...task.portion, titrationVolumeML: grown } };
   const metals = done.flatMap((s) => [...s.plan.determines]);
   const titrantMolPerL = done.reduce((s, d) => s + (d.plan.titrant.molPerL * d.evaluation.endPointML) / grown, 0);
-  const kept: MaskingStep[] = done.flatMap((s) => s.plan.masking.map((m) => ({ ...m, molPerL: m.molPerL * (task.portion.titrationVolumeML / grown) })));
+  const kept: MaskingStep[] = done.flatMap((s) =>
+    s.plan.masking.map((m) => ({ ...m, molPerL: m.molPerL * (task.portion.titrationVolumeML / grown) })),
+  );
   const make = { task: later, knowledge, shelf, determines: next, field: USUAL_FIELD };
   const options = [...directSkeletons(make), ...backSkeletons(make)]
     .filter((s) => s.plan.titrant.id === last.plan.titrant.id && s.plan.pH >= last.plan.pH - 0.05)
@@ -113,8 +143,16 @@ function follow(
       ...skeleton,
       plan: { ...skeleton.plan, carried: { metals, titrantMolPerL }, masking: [...kept, ...skeleton.plan.masking] },
     }));
-  const starts = promising(later, options.map((s) => bareStage(later, s, knowledge, shelf)), knowledge);
-  const developed = best(later, starts.flatMap((s) => develop(later, s, knowledge, shelf)), knowledge).filter((s) => s.plan.removed.length === 0);
+  const starts = promising(
+    later,
+    options.map((s) => bareStage(later, s, knowledge, shelf)),
+    knowledge,
+  );
+  const developed = best(
+    later,
+    starts.flatMap((s) => develop(later, s, knowledge, shelf)),
+    knowledge,
+  ).filter((s) => s.plan.removed.length === 0);
   return developed.slice(0, FOLLOWED).flatMap((s) => follow(task, [...done, s], todo.slice(1), knowledge, shelf));
 }
 
@@ -125,11 +163,15 @@ function differences(
   knowledge: Knowledge,
   shelf: Shelf,
 ): EvaluatedMethod[] {
-  const together = best(task, stagesFor(task, groups.flat(), knowledge, shelf), knowledge).filter((s) => s.remaining.length === 0);
+  const together = best(task, stagesFor(task, groups.flat(), knowledge, shelf, false), knowledge).filter(
+    (s) => s.remaining.length === 0,
+  );
   const sum = together.slice(0, CARRIED_ON);
   return [0, 1].flatMap((alone) => {
     const other = groups[1 - alone]!;
-    const partner = (byGroup[alone] ?? []).filter((s) => s.remaining.length === 0 && s.plan.removed.length === 0).slice(0, CARRIED_ON);
+    const partner = (byGroup[alone] ?? [])
+      .filter((s) => s.remaining.length === 0 && s.plan.removed.length === 0)
+      .slice(0, CARRIED_ON);
     return sum.flatMap((whole, i) => {
       const single = partner[Math.min(i, partner.length - 1)];
       if (!single) return [];

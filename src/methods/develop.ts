@@ -3,8 +3,9 @@ import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { metalKinetics } from "./kinetics.ts";
 import { maskSets, type MaskSet } from "./masks.ts";
 import type { Shelf } from "./shelf.ts";
-import { excessFor, withAuxiliary, type Skeleton } from "./skeletons.ts";
+import { bufferAmount, excessFor, withAuxiliary, type Skeleton } from "./skeletons.ts";
 import { vesselSample } from "./solution.ts";
+import { standardisedAlike } from "./standardise.ts";
 import { stageModel, type StageModel } from "./stage-model.ts";
 import { threatsOf, type Threat } from "./threats.ts";
 import type { MaskingStep, StagePlan, Task } from "./types.ts";
@@ -28,13 +29,13 @@ export interface BareStage {
 
 /** First look at a skeleton: analyte kept dissolved, excess measured, threats named, pH moved where that disarms a threat. */
 export function bareStage(task: Task, skeleton: Skeleton, knowledge: Knowledge, shelf: Shelf): BareStage {
-  const at = (pH: number): BareStage => {
-    const { plan, bare, precipitates } = soluble(task, withExcess(task, { ...skeleton.plan, pH }, knowledge), knowledge, shelf);
-    return { skeleton, plan, bare, threats: threatsOf(task, bare, knowledge), analytePrecipitates: precipitates };
+  const at = (plan: StagePlan): BareStage => {
+    const { plan: made, bare, precipitates } = soluble(task, withExcess(task, plan, knowledge), knowledge, shelf);
+    return { skeleton, plan: made, bare, threats: threatsOf(task, bare, knowledge), analytePrecipitates: precipitates };
   };
-  const middle = at(skeleton.plan.pH);
+  const middle = at(skeleton.plan);
   if (bareCost(task, middle, knowledge) <= CONTENT) return middle;
-  return otherPHs(skeleton, knowledge)
+  return otherConditions(skeleton, knowledge)
     .map(at)
     .reduce((best, next) => (bareCost(task, next, knowledge) < bareCost(task, best, knowledge) ? next : best), middle);
 }
@@ -47,23 +48,38 @@ const THREAT_COST = 4;
 function bareCost(task: Task, stage: BareStage, knowledge: Knowledge): number {
   if (stage.bare.status === "failed") return 50 + stage.threats.length;
   const used = (100 * stageBudget(task, stage.bare, knowledge).expanded) / task.requirementPercent;
-  return Math.min(used, 10) + THREAT_COST * stage.threats.length + 10 * stage.bare.blockedBy.length;
+  const falls = stage.analytePrecipitates && stage.plan.backTitrant === null && stage.plan.auxiliary.length === 0;
+  return (falls ? 20 : 0) + Math.min(used, 10) + THREAT_COST * stage.threats.length + 10 * stage.bare.blockedBy.length;
 }
 
-/** Two other targets inside the window of the dye's use that the same buffer holds: towards its acid and its alkaline end. */
-function otherPHs(skeleton: Skeleton, knowledge: Knowledge): number[] {
-  const buffer = knowledge.buffers.get(skeleton.plan.buffer.id);
-  const low = Math.max(skeleton.window[0], buffer?.workingPH[0] ?? 0);
-  const high = Math.min(skeleton.window[1], buffer?.workingPH[1] ?? 14);
-  if (high - low < 0.4) return [];
+/** Other conditions of the same titration: towards the acid and the alkaline end of the dye's window, and with the least buffer. */
+function otherConditions(skeleton: Skeleton, knowledge: Knowledge): StagePlan[] {
+  const { plan } = skeleton;
+  const buffer = knowledge.buffers.get(plan.buffer.id);
+  // A pair still buffers a whole unit from its pKa, whatever range is usual for it.
+  const reach = (buffer?.pKa ?? []).flatMap((p) => [p.value - 1, p.value + 1]);
+  const low = Math.max(skeleton.window[0], Math.min(buffer?.workingPH[0] ?? 0, ...reach));
+  const high = Math.min(skeleton.window[1], Math.max(buffer?.workingPH[1] ?? 14, ...reach));
   const inset = (high - low) * 0.15;
-  return [low + inset, high - inset].map((pH) => Math.round(pH * 10) / 10).filter((pH) => Math.abs(pH - skeleton.plan.pH) >= 0.2);
+  const pHs =
+    high - low < 0.4
+      ? []
+      : [low + inset, high - inset].map((pH) => Math.round(pH * 10) / 10).filter((pH) => Math.abs(pH - plan.pH) >= 0.2);
+  const plans = pHs.map((pH) => ({
+    ...plan,
+    pH,
+    buffer: buffer ? { id: buffer.id, molPerL: bufferAmount(buffer, pH) } : plan.buffer,
+  }));
+  // A buffer that binds the analyte (ammonia) is best taken sparingly.
+  const least = buffer?.kind === "pair" ? buffer.usualMolPerL[0] : null;
+  if (least === null || least >= plan.buffer.molPerL) return plans;
+  return [...plans, ...[plan, ...plans].map((p) => ({ ...p, buffer: { ...p.buffer, molPerL: least } }))];
 }
 
 /** Works a titration out into the variants worth judging: masked in a few ways, or with the unmaskable separated. */
 export function develop(task: Task, start: BareStage, knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
   const { plan, threats } = start;
-  if (threats.length === 0) return [{ ...start, evaluation: start.bare, remaining: [] }];
+  if (threats.length === 0) return [declared({ ...start, evaluation: start.bare, remaining: [] }, knowledge)];
   const out: DevelopedStage[] = [];
   const failed: Threat[] = [];
   const clean = (v: DevelopedStage): boolean =>
@@ -81,19 +97,48 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
     out.push(variant);
     failed.push(...settled.remaining);
     for (const step of set.steps)
-      for (const ion of step.masks) if (settled.remaining.some((t) => t.component === ion)) useless.add(`${step.agent} ${ion}`);
+      for (const ion of step.masks)
+        if (settled.remaining.some((t) => t.component === ion)) useless.add(`${step.agent} ${ion}`);
     if (out.filter(clean).length >= CLEAN_SETS_KEPT || ++tried >= SETS_TRIED) break;
   }
   const anyClean = out.some(clean);
   // Of the sets that did not work the best is kept, to show what was tried.
   if (anyClean) out.splice(0, out.length, ...out.filter(clean));
   else out.splice(1);
-  if (!anyClean) out.push(...separations(task, plan, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
-  return out;
+  const present = start.bare.presentMol / start.bare.model.volumeL;
+  const bulk = threats.some((t) => t.molPerL > BULK_RATIO * present);
+  if (!anyClean || bulk)
+    out.push(...separations(task, plan, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
+  return out.map((v) => declared(v, knowledge));
+}
+
+/** Share of a metal that must lie as hydroxide for the alkali to count as its mask. */
+const PRECIPITATED_FRACTION = 0.5;
+
+/** Says by name what the alkali keeps out: metals of the matrix that lie as hydroxide while the analyte is titrated. */
+function declared(stage: DevelopedStage, knowledge: Knowledge): DevelopedStage {
+  const { model } = stage.evaluation;
+  const hydroxides = knowledge.solids.filter(
+    (s) => (s.components["H+"] ?? 0) < 0 && (model.solids.includes(s.id) || model.held.some((h) => h.by === s.id)),
+  );
+  const named = new Set(stage.plan.masking.flatMap((m) => m.masks));
+  const masks = [...model.solution.fromSample.keys()].filter(
+    (ion) =>
+      !named.has(ion) &&
+      !stage.plan.determines.includes(ion) &&
+      hydroxides.some((s) => (s.components[ion] ?? 0) > 0) &&
+      knowledge.masking.some((r) => r.agent === "hydroxide" && r.ion === ion && stage.plan.pH >= r.pH[0] - 0.3) &&
+      (stage.evaluation.titrated.get(ion) ?? 1) < 1 - PRECIPITATED_FRACTION,
+  );
+  if (masks.length === 0) return stage;
+  const step: MaskingStep = { agent: "hydroxide", masks, via: "precipitation", molPerL: 0, basis: "equilibrium" };
+  return { ...stage, plan: { ...stage.plan, masking: [...stage.plan.masking, step] } };
 }
 
 /** How many working sets of masks of one titration go on to judgement. */
 const CLEAN_SETS_KEPT = 2;
+/** A component above this ratio to the analyte may be better taken out than masked, even where a mask holds. */
+const BULK_RATIO = 0.5;
 /** How many sets are evaluated before the matrix is called unmaskable. */
 const SETS_TRIED = 8;
 
@@ -132,6 +177,8 @@ function reportedToHold(threat: Threat, plan: StagePlan, knowledge: Knowledge): 
   return plan.masking.some(
     (step) =>
       step.basis === "equilibrium" &&
+      // What precipitates or not is the equilibrium's business; only soluble masks may rest on a report against it.
+      step.via === "complexation" &&
       step.masks.includes(threat.component) &&
       knowledge.masking.some(
         (r) =>
@@ -201,9 +248,21 @@ function withExcess(task: Task, plan: StagePlan, knowledge: Knowledge): StagePla
   return { ...plan, excessTitrantMolPerL: excessFor(Math.max(bound, everything * 1e-6)) };
 }
 
-/** Evaluates with complexes frozen that, once formed hot, do not exchange in the cold acid solution. */
+/** Evaluates a titration, standardised alike, with complexes frozen that, once formed hot, do not exchange in the cold acid solution. */
 export function evaluate(task: Task, plan: StagePlan, knowledge: Knowledge): StageEvaluation {
-  if (plan.backTitrant === null || !plan.preparation.includes("cool")) return evaluateStage(task, plan, knowledge);
+  return standardisedAlike(
+    task,
+    evaluateStage(task, plan, knowledge, frozenComplexes(task, plan, knowledge)),
+    knowledge,
+  );
+}
+
+function frozenComplexes(
+  task: Task,
+  plan: StagePlan,
+  knowledge: Knowledge,
+): ReadonlyMap<ComponentId, number> | undefined {
+  if (plan.backTitrant === null || !plan.preparation.includes("cool")) return undefined;
   const model = stageModel(task, plan, knowledge);
   const formed = model.at(0);
   const frozen = new Map<ComponentId, number>();
@@ -212,8 +271,11 @@ export function evaluate(task: Task, plan: StagePlan, knowledge: Knowledge): Sta
     if (kinetics.class === "inert" || (kinetics.class === "slow" && plan.pH < 7))
       frozen.set(metal, formed.boundToTitrant(metal));
   }
-  return evaluateStage(task, plan, knowledge, frozen);
+  return frozen;
 }
+
+/** Share of the analyte that may lie as a redissolving deposit when the titration starts. */
+const DEPOSIT_BORNE_FRACTION = 0.3;
 
 /** Adds what keeps the analyte dissolved where it would precipitate before the titrant reaches it. */
 function soluble(
@@ -222,9 +284,18 @@ function soluble(
   knowledge: Knowledge,
   shelf: Shelf,
 ): { plan: StagePlan; bare: StageEvaluation; precipitates: boolean } {
+  // A deposit that redissolves as the titrant takes the rest is no loss while it is the smaller part.
   const lost = (model: StageModel): boolean => {
-    const ids = new Set([...model.solids, ...model.held.filter((h) => h.why === "precipitated").map((h) => h.by)]);
-    return knowledge.solids.some((s) => ids.has(s.id) && plan.determines.some((ion) => (s.components[ion] ?? 0) > 0));
+    const start = model.at(0);
+    const deposited = model.system.solids.reduce((sum, solid, i) => {
+      const ions = plan.determines.reduce((n, ion) => n + (solid.components[ion] ?? 0), 0);
+      return sum + ions * (start.result.solidsMolPerL[i] ?? 0);
+    }, 0);
+    const gone = model.held
+      .filter((h) => h.why === "precipitated" && plan.determines.includes(h.component))
+      .reduce((s, h) => s + h.molPerL, 0);
+    const present = plan.determines.reduce((s, ion) => s + (model.solution.fromSample.get(ion) ?? 0), 0);
+    return gone > 1e-3 * present || deposited > DEPOSIT_BORNE_FRACTION * present;
   };
   const bare = evaluate(task, plan, knowledge);
   // In a back titration the titrant goes in first; what would precipitate without it does not.

@@ -101,7 +101,8 @@ export function nearCrossing(
 
 /** The edge of an observer's band needs two figures: two chords of the bracket, the second on the side that still holds it. */
 function edge(criterion: (volumeL: number) => number, near: number, fNear: number, far: number, fFar: number): number {
-  const chord = (a: number, fa: number, b: number, fb: number): number => (fa === fb ? (a + b) / 2 : (a * fb - b * fa) / (fb - fa));
+  const chord = (a: number, fa: number, b: number, fb: number): number =>
+    fa === fb ? (a + b) / 2 : (a * fb - b * fa) / (fb - fa);
   const first = chord(near, fNear, far, fFar);
   const fFirst = criterion(first);
   if (!Number.isFinite(fFirst) || fFirst === 0) return first;

@@ -1,4 +1,9 @@
-import { BLOCKED_BOUND_FRACTION, EMPIRICAL_EXTRA_BAND_PM, practisedLog10Ratio } from "../chemistry/end-point.ts";
+import {
+  BLOCKED_BOUND_FRACTION,
+  EMPIRICAL_EXTRA_BAND_PM,
+  practisedLog10Ratio,
+  VISIBLE_COMPLEX_MOL_PER_L,
+} from "../chemistry/end-point.ts";
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { blockersOf } from "./blocking.ts";
 import { firstCrossing, nearCrossing } from "./end-point-search.ts";
@@ -26,7 +31,8 @@ export interface StageEvaluation {
   readonly equivalenceML: number;
   readonly presentMol: number;
   readonly foundMol: number;
-  readonly biasFraction: number;
+  readonly biasFraction: number; // after what cancels by standardising alike
+  readonly uncancelledBiasFraction: number;
   readonly ledger: readonly LedgerLine[];
   /** Share of each metal of the sample that is counted in the result. */
   readonly titrated: ReadonlyMap<ComponentId, number>;
@@ -55,13 +61,14 @@ export function evaluateStage(
   knowledge: Knowledge,
   frozen?: ReadonlyMap<ComponentId, number>,
 ): StageEvaluation {
-  const boiled = plan.preparation.includes("boil");
+  const hot = plan.preparation.includes("boil") || plan.preparation.includes("heat");
   const sample = vesselSample(task);
   const inert = inertMetals(
     knowledge,
     sample.map((c) => c.component),
     plan.titrant.id,
-    boiled,
+    plan.pH,
+    hot,
   );
   const model = stageModel(task, plan, knowledge, frozen ? { inert, frozen } : { inert });
   const determined = new Set(plan.determines);
@@ -88,6 +95,7 @@ export function evaluateStage(
     bandML: [0, 0],
     foundMol: 0,
     biasFraction: 0,
+    uncancelledBiasFraction: 0,
     ledger: [],
     titrated: new Map(),
     biasOf: new Map(),
@@ -102,7 +110,7 @@ export function evaluateStage(
   if (!titrantBefore.ok) return failed("not-converged");
   if (criterion.basis !== "empirical") {
     const early = model.at(back ? 0 : 0.5 * equivalenceL);
-    if (!back && early.dyeRatio < 1) return failed("no-colour");
+    if (!back && !showsColour(model, early.dyeRatio)) return failed("no-colour");
     if (back && early.dyeRatio / (1 + early.dyeRatio) > BLOCKED_BOUND_FRACTION) return failed("dye-held");
   }
   const search = firstCrossing((v) => criterion.of(model.at(v)), equivalenceL);
@@ -185,6 +193,16 @@ function criterionOf(model: StageModel, determined: ReadonlySet<ComponentId>, ba
   return { basis: "empirical", bandPM, bandLog10: 2 * bandPM, of: back ? (s) => -log10Excess(s) : log10Excess };
 }
 
+/** How many times the last visible trace of a one-colour complex must be there half way, for its going to be seen. */
+const COLOUR_OVER_THRESHOLD = 4;
+
+/** Whether the colour of the metal is there to disappear: half the dye bound, or a one-colour complex well above the visible. */
+function showsColour(model: StageModel, dyeRatio: number): boolean {
+  if (model.indicator?.endPointModel !== "one-colour") return dyeRatio >= 1;
+  const bound = ((model.plan.indicator?.molPerL ?? 0) * dyeRatio) / (1 + dyeRatio);
+  return bound >= COLOUR_OVER_THRESHOLD * VISIBLE_COMPLEX_MOL_PER_L;
+}
+
 /** The metal that holds most of the dye in this state. */
 function holderOf(model: StageModel, state: VesselState): ComponentId | null {
   let best: ComponentId | null = null;
@@ -225,7 +243,16 @@ function accountOf(
   volumeL: number,
   presentMol: number,
   determined: ReadonlySet<ComponentId>,
-): Pick<StageEvaluation, "foundMol" | "biasFraction" | "ledger" | "titrated" | "biasOf" | "backTitrantStealsFraction"> {
+): Pick<
+  StageEvaluation,
+  | "foundMol"
+  | "biasFraction"
+  | "uncancelledBiasFraction"
+  | "ledger"
+  | "titrated"
+  | "biasOf"
+  | "backTitrantStealsFraction"
+> {
   const { plan } = model;
   const vessel = model.volumeL + volumeL;
   const frozen = new Map(
@@ -285,6 +312,7 @@ function accountOf(
   return {
     foundMol,
     biasFraction: (foundMol - presentMol) / presentMol,
+    uncancelledBiasFraction: (foundMol - presentMol) / presentMol,
     ledger: ledger.filter((line) => Math.abs(line.fraction) > 1e-7),
     titrated,
     biasOf,

@@ -50,15 +50,39 @@ function fromRecords(knowledge: Knowledge, ion: ComponentId, titrant: string): M
   };
 }
 
-/** Metals of the vessel that stay out of the titration because they do not react unless boiled with the titrant. */
+/** Records are given for a narrow pH range; a little beyond it the rate is still of the same order. */
+const PH_SLACK = 0.3;
+
+/**
+ * Metals of the vessel that stay out of the titration: those that do not react unless boiled with the titrant, and slow ones
+ * that a record says to stand aside at this pH (Al beside Fe(III) in acid).
+ * @param hot whether the solution is boiled or heated with the titrant in it
+ */
 export function inertMetals(
   knowledge: Knowledge,
   metals: Iterable<ComponentId>,
   titrant: string,
-  boiled: boolean,
+  pH: number,
+  hot: boolean,
 ): Set<ComponentId> {
   const out = new Set<ComponentId>();
-  if (boiled) return out;
-  for (const metal of metals) if (metalKinetics(knowledge, metal, titrant).class === "inert") out.add(metal);
+  if (hot) return out;
+  for (const metal of metals) {
+    const kinetics = metalKinetics(knowledge, metal, titrant);
+    if (kinetics.class === "inert" || (kinetics.class === "slow" && standsAside(knowledge, metal, titrant, pH)))
+      out.add(metal);
+  }
   return out;
+}
+
+function standsAside(knowledge: Knowledge, metal: ComponentId, titrant: string, pH: number): boolean {
+  return knowledge.kinetics.some(
+    (k) =>
+      k.ion === metal &&
+      k.indicator === null &&
+      (k.titrant === null || k.titrant === titrant) &&
+      k.consequences.includes("kinetic-masking") &&
+      k.pH !== null &&
+      pH <= k.pH[1] + PH_SLACK,
+  );
 }

@@ -69,7 +69,9 @@ function indexOf(knowledge: Knowledge): MaskIndex {
     rows,
     complexes: pairs(knowledge.species),
     solids: pairs(knowledge.solids),
-    hydroxides: new Set(knowledge.solids.filter((s) => (s.components["H+"] ?? 0) < 0).flatMap((s) => Object.keys(s.components))),
+    hydroxides: new Set(
+      knowledge.solids.filter((s) => (s.components["H+"] ?? 0) < 0).flatMap((s) => Object.keys(s.components)),
+    ),
   };
   indexes.set(knowledge, made);
   return made;
@@ -81,7 +83,12 @@ function rowsFor(knowledge: Knowledge, agent: string, ion: ComponentId, pH: numb
 }
 
 /** Whether the model has constants for this pair: a soluble complex, or a solid where the mask precipitates. */
-export function pairHasConstants(knowledge: Knowledge, agent: AgentRecord, ion: ComponentId, via: MaskingRecord["via"]): boolean {
+export function pairHasConstants(
+  knowledge: Knowledge,
+  agent: AgentRecord,
+  ion: ComponentId,
+  via: MaskingRecord["via"],
+): boolean {
   const index = indexOf(knowledge);
   if (agent.id === "hydroxide") return index.hydroxides.has(ion);
   if (agent.component === null) return false;
@@ -153,11 +160,20 @@ export function maskSets(threats: readonly Threat[], plan: StagePlan, knowledge:
     const key = [...new Set(combination.map((o) => o.agent.id))].sort().join("+");
     if (seen.has(key)) continue;
     seen.add(key);
-    if (!enoughAgent(combination, answered.map((i) => threats[i]!))) continue;
+    if (
+      !enoughAgent(
+        combination,
+        answered.map((i) => threats[i]!),
+      )
+    )
+      continue;
     sets.push({
       steps: stepsOf(
         combination,
-        answered.map((i) => threats[i]!), plan.pH, knowledge),
+        answered.map((i) => threats[i]!),
+        plan.pH,
+        knowledge,
+      ),
       unanswered,
       burden: setBurden(combination, knowledge),
     });
@@ -191,7 +207,12 @@ function enoughAgent(combination: readonly MaskOption[], threats: readonly Threa
 const LIGANDS_PER_METAL = 6;
 const EXCESS = 1.2;
 
-function stepsOf(combination: readonly MaskOption[], threats: readonly Threat[], pH: number, knowledge: Knowledge): MaskingStep[] {
+function stepsOf(
+  combination: readonly MaskOption[],
+  threats: readonly Threat[],
+  pH: number,
+  knowledge: Knowledge,
+): MaskingStep[] {
   const byKey = new Map<
     string,
     { option: MaskOption; basis: MaskingStep["basis"]; masks: ComponentId[]; need: number }

@@ -1,7 +1,16 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop, type BareStage, type DevelopedStage } from "./develop.ts";
+import { supersaturations } from "./saturation.ts";
 import type { Shelf } from "./shelf.ts";
-import { backSkeletons, directSkeletons, LAST_TITRANTS, OTHER_TITRANTS, USUAL_FIELD, type Field, type Skeleton } from "./skeletons.ts";
+import {
+  backSkeletons,
+  directSkeletons,
+  LAST_TITRANTS,
+  OTHER_TITRANTS,
+  USUAL_FIELD,
+  type Field,
+  type Skeleton,
+} from "./skeletons.ts";
 import type { MethodMode, Task } from "./types.ts";
 import { stageBudget, type Budget } from "./uncertainty.ts";
 
@@ -49,8 +58,17 @@ const DYES_WHEN_SHORT = 6;
 /**
  * All titrations of one group of ions that are worth judging: first EDTA with every dye in use, then, where that leaves too
  * little, the other titrants and back titrations by analogy.
+ * @param widen false: stop as soon as EDTA serves (stages of combined methods)
  */
-export function stagesFor(task: Task, determines: readonly ComponentId[], knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
+export function stagesFor(
+  task: Task,
+  determines: readonly ComponentId[],
+  knowledge: Knowledge,
+  shelf: Shelf,
+  widen = true,
+): DevelopedStage[] {
+  // Only metal ions are bound by the titrant itself; anions need a way round.
+  if (determines.some((id) => knowledge.components.get(id)?.kind !== "metal")) return [];
   const seen = new Set<string>();
   const search = (field: Field): DevelopedStage[] => {
     const make = { task, knowledge, shelf, determines, field };
@@ -66,6 +84,7 @@ export function stagesFor(task: Task, determines: readonly ComponentId[], knowle
     );
   };
   const usual = search(USUAL_FIELD);
+  if (!widen && usual.some((s) => meetsCleanly(task, s, knowledge))) return usual;
   const clean = usual.filter((s) => meetsCleanly(task, s, knowledge));
   const others = (shelf("EDTA") ? OTHER_TITRANTS : [...OTHER_TITRANTS, ...LAST_TITRANTS]).filter((t) => shelf(t));
   if (clean.length < ENOUGH) {
@@ -75,11 +94,20 @@ export function stagesFor(task: Task, determines: readonly ComponentId[], knowle
         .flatMap((s) => (s.plan.indicator ? [s.plan.indicator.id] : [])),
     );
     const dyes = usual.length > 0 ? new Set([...likely].slice(0, DYES_WHEN_SHORT)) : null;
-    return [...usual, ...search({ titrants: others, dyes, analogous: false }), ...search({ titrants: ["EDTA"], dyes: null, analogous: true })];
+    return [
+      ...usual,
+      ...search({ titrants: others, dyes, analogous: false }),
+      ...search({ titrants: ["EDTA"], dyes: null, analogous: true }),
+    ];
   }
   const ranked = [...clean].sort((a, b) => roughCost(task, a, knowledge) - roughCost(task, b, knowledge));
-  const dyes = new Set(ranked.flatMap((s) => (s.plan.indicator ? [s.plan.indicator.id] : [])).slice(0, DYES_FOR_OTHERS));
-  return [...usual, ...search({ titrants: others, dyes, analogous: false })];
+  const dyes = new Set(
+    ranked.flatMap((s) => (s.plan.indicator ? [s.plan.indicator.id] : [])).slice(0, DYES_FOR_OTHERS),
+  );
+  const analogous = needsTitrantFirst(task, ranked[0]!, knowledge)
+    ? search({ titrants: ["EDTA"], dyes: null, analogous: true })
+    : [];
+  return [...usual, ...search({ titrants: others, dyes, analogous: false }), ...analogous];
 }
 
 /** How many titrations that need masks or separations are worked out; those that need nothing all are. */
@@ -115,10 +143,23 @@ function analyteConstant(stage: BareStage): number {
   return own.length > 0 ? Math.min(...own) : 8;
 }
 
+/** Whether the analyte stands supersaturated before the titrant comes (phosphate, carbonate): then titrant first and a back titration is a rival. */
+function needsTitrantFirst(task: Task, stage: DevelopedStage, knowledge: Knowledge): boolean {
+  return supersaturations(task, stage.plan, knowledge, stage.evaluation.model.ionicStrengthMolPerL).some(
+    (s) => (s.pace === "fast" || s.pace === "minutes") && s.components.some((c) => stage.plan.determines.includes(c)),
+  );
+}
+
 /** Whether nothing is left undone and the requirement is met without a separation. */
 export function meetsCleanly(task: Task, stage: DevelopedStage, knowledge: Knowledge): boolean {
   const { evaluation } = stage;
-  if (evaluation.status === "failed" || stage.remaining.length > 0 || evaluation.blockedBy.length > 0 || stage.plan.removed.length > 0) return false;
+  if (
+    evaluation.status === "failed" ||
+    stage.remaining.length > 0 ||
+    evaluation.blockedBy.length > 0 ||
+    stage.plan.removed.length > 0
+  )
+    return false;
   if (stage.analytePrecipitates && stage.plan.backTitrant === null && stage.plan.auxiliary.length === 0) return false;
   return 100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
 }

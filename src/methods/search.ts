@@ -30,4 +30,3 @@ function methodsOn(task: Task, knowledge: Knowledge, shelf: Shelf): EvaluatedMet
     return stagesFor(task, groups[0]!, knowledge, shelf).map((stage) => singleMethod(task, stage, knowledge));
   return combinedMethods(task, groups, knowledge, shelf);
 }
-

@@ -32,6 +32,10 @@ export function benchPH(window: Window): number {
   return Math.round(middle * 10) / 10;
 }
 
+/** A use that only one recollection knows stands no firmer than an analogy. */
+const standingOf = (use: IndicatorUse): UseStanding =>
+  use.detail.includes("second recollection only") ? "analogous" : "published";
+
 interface DyeUse {
   readonly window: Window;
   readonly use: IndicatorUse;
@@ -245,7 +249,7 @@ export function directSkeletons(make: Make): Skeleton[] {
             const agent = use.auxiliaryAnyOf.find((a) => shelf(a) && knowledge.agents.has(a));
             if (agent) plan = withAuxiliary(plan, knowledge, agent, `asked for by the use of ${indicator.name}`);
           }
-          out.push({ plan, use: "published", useBasis: basis, window });
+          out.push({ plan, use: standingOf(use), useBasis: basis, window });
         }
       }
     }
@@ -276,14 +280,15 @@ export function backSkeletons(make: Make): Skeleton[] {
       const windows: { window: Window; standing: UseStanding; basis: "read" | "memory"; use: IndicatorUse }[] = [];
       for (const p of published)
         if (p.use.backTitrant === backTitrant.ion)
-          windows.push({ window: p.window, standing: "published", basis: p.basis, use: p.use });
+          windows.push({ window: p.window, standing: standingOf(p.use), basis: p.basis, use: p.use });
       for (const s of shown) {
         const named = published.filter((p) => p.use.backTitrant === undefined);
         for (const p of named) {
           const window = overlap(p.window, s.pH);
-          if (window) windows.push({ window, standing: "published", basis: p.basis, use: p.use });
+          if (window) windows.push({ window, standing: standingOf(p.use), basis: p.basis, use: p.use });
         }
-        if (published.length === 0 && field.analogous && calculable(indicator, backTitrant.ion)) windows.push({ window: s.pH, standing: "analogous", basis: basisOf(s), use: s });
+        if (published.length === 0 && field.analogous && calculable(indicator, backTitrant.ion))
+          windows.push({ window: s.pH, standing: "analogous", basis: basisOf(s), use: s });
       }
       const seen: number[] = [];
       for (const { window, standing, basis, use } of windows) {

@@ -1,8 +1,16 @@
+import { formsInTitration } from "../chemistry/forming-solids.ts";
 import { ionicStrengthOf } from "../chemistry/ionic-strength.ts";
 import { prepareSystem } from "../chemistry/prepare-system.ts";
 import { solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
 import type { PreparedSystem, SolveResult } from "../chemistry/types.ts";
-import type { ComponentId, IndicatorRecord, Knowledge, SolidDefinition, SpeciesDefinition } from "../constants/knowledge.ts";
+import type {
+  ComponentId,
+  IndicatorRecord,
+  Knowledge,
+  SolidDefinition,
+  SpeciesDefinition,
+} from "../constants/knowledge.ts";
+import { protonFixed, vesselSolver, type VesselSolution } from "./vessel-solver.ts";
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
 import type { StagePlan, Task } from "./types.ts";
@@ -32,7 +40,7 @@ export interface VesselState {
   readonly dilution: number; // V0 / (V0 + V)
   readonly ok: boolean;
   readonly residual: number;
-  readonly result: SolveResult;
+  readonly result: VesselSolution;
   readonly boundToTitrant: (metal: ComponentId) => number;
   readonly unbound: (metal: ComponentId) => number; // summed over species without titrant, so exact also when tiny
   readonly titrantUnbound: number; // not bound to any metal of the sample, the burette or the chelate
@@ -134,19 +142,24 @@ export function stageModel(
   });
   const titrant = plan.titrant.id;
   // A doubtful constant may serve for the metal the dye is used for, but does not prove that a bystander holds the dye.
-  const watched = new Set([...plan.determines, ...(plan.backTitrant ? [plan.backTitrant.id] : []), ...(plan.chelate ? [plan.chelate.metal] : [])]);
+  const watched = new Set([
+    ...plan.determines,
+    ...(plan.backTitrant ? [plan.backTitrant.id] : []),
+    ...(plan.chelate ? [plan.chelate.metal] : []),
+  ]);
   const exclude = (species: SpeciesDefinition): boolean => {
     const names = Object.keys(species.components);
     if ((species.components[titrant] ?? 0) > 0 && names.some((c) => inert.has(c))) return true;
     if (dye !== null && (species.components[dye] ?? 0) > 0)
-      return names.some((c) => metals.has(c) && (!dyeBasis.byConstants.has(c) || (!watched.has(c) && isDoubtful(knowledge, species))));
+      return names.some(
+        (c) => metals.has(c) && (!dyeBasis.byConstants.has(c) || (!watched.has(c) && isDoubtful(knowledge, species))),
+      );
     return false;
   };
   const maskedSolids = new Set(plan.masking.filter((m) => m.via === "precipitation").flatMap((m) => m.masks));
   const wantsSolid = (solid: SolidDefinition): boolean =>
-    solid.pace === "fast" || Object.keys(solid.components).some((c) => maskedSolids.has(c));
+    formsInTitration(solid, "at-once") || Object.keys(solid.components).some((c) => maskedSolids.has(c));
 
-  let chosenSolids: ReadonlySet<string> = new Set();
   const prepare = (ionicStrengthMolPerL: number, withSolids: (s: SolidDefinition) => boolean): PreparedSystem =>
     prepareSystem(
       knowledge,
@@ -160,25 +173,13 @@ export function stageModel(
     system.components.forEach((c, i) => (t[i] = c === "H+" ? 0 : (totals.get(c) ?? 0)));
     return t;
   };
-  const solve = (
-    system: PreparedSystem,
-    base: Float64Array,
-    fromBuretteL: number,
-    start: Float64Array | null,
-  ): SolveResult => {
-    const dilution = volumeL / (volumeL + fromBuretteL);
-    const t = base.map((v) => v * dilution);
-    const column = system.index.get(burette.component)!;
-    t[column] = t[column]! + (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL);
-    const fixedLnFree = new Float64Array(t.length).fill(Number.NaN);
-    fixedLnFree[0] = Math.LN10 * (-plan.pH - system.log10GammaH);
-    return solveEquilibrium(system.problem, t, start ? { fixedLnFree, start } : { fixedLnFree });
-  };
+  const atStart = (system: PreparedSystem): SolveResult =>
+    solveEquilibrium(system.problem, columns(system), { fixedLnFree: protonFixed(system, plan.pH) });
 
   // Ionic strength of the vessel itself, half way: start from 0.1 mol/L and correct until it agrees.
   let ionicStrengthMolPerL = 0.1;
   let system = prepare(ionicStrengthMolPerL, wantsSolid);
-  let first = solve(system, columns(system), 0, null);
+  let first = atStart(system);
   for (let round = 0; round < 4; round++) {
     const inert = inertIonsOf(totals, knowledge);
     const found = Math.max(MIN_IONIC_STRENGTH_MOL_PER_L, ionicStrengthOf(system, first, inert.cz2, inert.cz).molPerL);
@@ -186,15 +187,14 @@ export function stageModel(
     if (agrees) break;
     ionicStrengthMolPerL = found;
     system = prepare(ionicStrengthMolPerL, wantsSolid);
-    first = solve(system, columns(system), 0, null);
+    first = atStart(system);
   }
   // Solids that formed and do not redissolve in time are out of the game; those that do stay in equilibrium.
-  const definitions = new Map(knowledge.solids.map((s) => [s.id, s]));
   const stays = new Set<string>();
   system.solids.forEach((solid, i) => {
     const amount = first.solidsMolPerL[i] ?? 0;
     if (amount <= 0) return;
-    if (definitions.get(solid.id)?.redissolvesWhileTitrated) {
+    if (knowledge.solids.find((s) => s.id === solid.id)?.redissolvesWhileTitrated) {
       stays.add(solid.id);
       return;
     }
@@ -205,18 +205,22 @@ export function stageModel(
       if (metals.has(component)) held.push({ component, molPerL: lost, why: "precipitated", by: solid.id });
     }
   });
-  chosenSolids = stays;
-  system = prepare(ionicStrengthMolPerL, (s) => chosenSolids.has(s.id));
+  system = prepare(ionicStrengthMolPerL, (s) => stays.has(s.id));
   const base = columns(system);
   const rows = classifyRows(system, titrant, dye, metals);
 
-  let warm: Float64Array | null = null;
+  const solve = vesselSolver(system, plan.pH, metals);
+  const buretteColumn = system.index.get(burette.component)!;
   const at = (fromBuretteL: number): VesselState => {
-    const result = solve(system, base, fromBuretteL, warm);
-    if (result.status === "converged") warm = result.lnFree;
     const dilution = volumeL / (volumeL + fromBuretteL);
-    const sum = (list: readonly (readonly [number, number])[] | undefined): number =>
-      (list ?? []).reduce((s, [row, n]) => s + n * result.speciesMolPerL[row]!, 0);
+    const t = base.map((v) => v * dilution);
+    t[buretteColumn] = t[buretteColumn]! + (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL);
+    const result = solve(t);
+    const sum = (list: readonly (readonly [number, number])[] | undefined): number => {
+      let total = 0;
+      if (list) for (const [row, n] of list) total += n * result.species(row);
+      return total;
+    };
     const boundToTitrant = (metal: ComponentId): number => sum(rows.titrantByMetal.get(metal));
     const totalOf = (component: ComponentId): number => {
       const column = system.index.get(component);
@@ -231,24 +235,26 @@ export function stageModel(
     };
     const titrantTotal = totalOf(titrant);
     const unbound = (metal: ComponentId): number => sum(rows.unboundByMetal.get(metal));
-    const dyeFree = sum(rows.dyeFree);
     const dyeRatioOf = (metal: ComponentId): number => {
       const half = dyeBasis.byTable.get(metal);
       if (half !== undefined) {
         const concentration = half.counts === "free-ion" ? free(metal) : unbound(metal);
         return (concentration * 10 ** half.pM) ** half.metalsPerDye;
       }
-      return dyeFree > 0 ? sum(rows.dyeByMetal.get(metal)) / dyeFree : 0;
+      const bound = rows.dyeByMetal.get(metal);
+      return bound ? sum(bound) / sum(rows.dyeFree) : 0;
     };
     return {
       volumeFromBuretteL: fromBuretteL,
       dilution,
-      ok: result.status === "converged",
+      ok: result.ok,
       residual: result.residual,
       result,
       boundToTitrant,
       unbound,
-      titrantUnbound: sum(rows.titrantFree),
+      get titrantUnbound(): number {
+        return sum(rows.titrantFree);
+      },
       titrantTotal,
       free,
       total: totalOf,
@@ -291,5 +297,7 @@ function inertIonsOf(totals: ReadonlyMap<ComponentId, number>, knowledge: Knowle
 
 /** Whether every record of some step of the species' chain is doubtful. */
 function isDoubtful(knowledge: Knowledge, species: SpeciesDefinition): boolean {
-  return species.chain.some(({ reaction }) => knowledge.reactions.get(reaction)?.records.every((r) => r.doubtful) ?? false);
+  return species.chain.some(
+    ({ reaction }) => knowledge.reactions.get(reaction)?.records.every((r) => r.doubtful) ?? false,
+  );
 }

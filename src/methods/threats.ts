@@ -27,7 +27,8 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
   const { model } = evaluation;
   const { plan } = model;
   const meets =
-    evaluation.status !== "failed" && 100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
+    evaluation.status !== "failed" &&
+    100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
   const allowed = ((meets ? BORNE_PART_OF_REQUIREMENT : IGNORED_PART_OF_REQUIREMENT) * task.requirementPercent) / 100;
   const equivalence = evaluation.status === "failed" ? model.at(Math.max(evaluation.equivalenceML, 1e-6) / 1000) : null;
   const threats: Threat[] = [];

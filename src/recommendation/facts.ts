@@ -80,6 +80,7 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
         s.plan.buffer.id,
       ]),
     ]).size,
+    dyeCount: new Set(stages.flatMap((s) => (s.plan.indicator ? [s.plan.indicator.id] : []))).size,
     specialReagentCount: reagents.filter((id) => isSpecialReagent(knowledge, id)).length,
     heats: stages.some(heats),
     boils: stages.some((s) => has(s, "boil")),
@@ -144,6 +145,7 @@ export function stageFacts(
   const strongest = others.length > 0 ? Math.max(...others.map(([, k]) => k)) : null;
   const solidWith = (pick: (ids: readonly ComponentId[]) => boolean): boolean =>
     context.solids.some((s) => s.pace !== "no" && pick(s.components));
+  const shownOthers = alsoShown(task, stage);
   const precipitates = stage.analytePrecipitates;
   const magnesium = vesselSample(task).find((c) => c.component === "Mg2+")?.inVesselMolPerL ?? 0;
   const analyteMolPerL = evaluation.presentMol / model.volumeL;
@@ -170,6 +172,8 @@ export function stageFacts(
     indicatorUse: skeleton.use,
     indicatorUseBasis: skeleton.useBasis,
     contrast: contrastAt(stage),
+    dyeShowsOthers: shownOthers,
+    dyeShowsOtherCount: shownOthers.length,
     log10ConditionalK: ok ? weakest : null,
     log10ConditionalKGap: ok && weakest !== null && strongest !== null ? weakest - strongest : null,
     sharpnessPercent: ok ? 100 * evaluation.sharpnessFraction : null,
@@ -200,6 +204,22 @@ export function stageFacts(
   });
 }
 
+/** Share of the analyte from which a metal that the dye also answers is worth a word. */
+const NOTICEABLE_RATIO = 0.05;
+
+/** Metals of the matrix, left in the vessel, that the dye is also in use for at this pH. */
+function alsoShown(task: Task, stage: DevelopedStage): ComponentId[] {
+  const { plan, evaluation } = stage;
+  const analyteMolPerL = evaluation.presentMol / evaluation.model.volumeL;
+  const used = (evaluation.model.indicator?.uses ?? [])
+    .filter((u) => u.mode === "direct" && plan.pH >= u.pH[0] - 0.5 && plan.pH <= u.pH[1] + 0.5)
+    .flatMap((u) => u.ions);
+  return vesselSample(task)
+    .filter((c) => !plan.determines.includes(c.component) && !plan.removed.includes(c.component))
+    .filter((c) => used.includes(c.component) && c.inVesselMolPerL > NOTICEABLE_RATIO * analyteMolPerL)
+    .map((c) => c.component);
+}
+
 /** The contrast of the dye at the pH of the titration; a dye without colour records at this pH counts as good only in its published window. */
 export function contrastAt(stage: DevelopedStage): "good" | "poor" | "none" {
   const indicator = stage.evaluation.model.indicator;
@@ -208,6 +228,15 @@ export function contrastAt(stage: DevelopedStage): "good" | "poor" | "none" {
   if (here.length === 0) return stage.skeleton.use === "published" ? "good" : "poor";
   const order = ["none", "poor", "good"] as const;
   return order[Math.max(...here.map((c) => order.indexOf(c.contrast)))] ?? "poor";
+}
+
+/** What practice says of an agent with an ion at this pH: it masks, it masks in part, or nothing is on record. */
+function standingOf(agent: string, ion: ComponentId, pH: number, knowledge: Knowledge): "masks" | "partial" | "none" {
+  const rows = knowledge.masking.filter(
+    (r) => r.agent === agent && r.ion === ion && pH >= r.pH[0] - 0.3 && pH <= r.pH[1] + 0.3,
+  );
+  if (rows.some((r) => r.effect === "masks")) return "masks";
+  return rows.some((r) => r.effect === "partial") ? "partial" : "none";
 }
 
 /** Facts of every component of the sample as this titration treats it. */
@@ -253,6 +282,7 @@ export function componentFacts(
         maskedBy: step ? step.agent : removed ? "separate" : "none",
         maskedVia: step?.via ?? "none",
         maskingBasis: step?.basis ?? "none",
+        maskStanding: step ? standingOf(step.agent, component, plan.pH, knowledge) : "none",
         empiricalLimitMolPerL: step?.basis === "empirical" ? (record?.upToMolPerL ?? null) : null,
         ratioToEmpiricalLimit:
           step?.basis === "empirical" && record?.upToMolPerL ? inVesselMolPerL / record.upToMolPerL : null,

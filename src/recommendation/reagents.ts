@@ -17,9 +17,8 @@ export function reagentsOf(plan: StagePlan): string[] {
   ];
 }
 
-/** Whether any step of the titration is hot. */
-export const isHot = (plan: StagePlan): boolean =>
-  plan.preparation.some((p) => p === "warm" || p === "heat" || p === "boil");
+/** Whether any step of the titration is hot: 60 C and above; warming to 40 to 60 C is not. */
+export const isHot = (plan: StagePlan): boolean => plan.preparation.some((p) => p === "heat" || p === "boil");
 
 /** Reagents that come with the sample itself count for cautions too: a cyanide bath is a cyanide hazard whatever is added. */
 function hazardousIds(plan: StagePlan, sampleIds: readonly string[]): string[] {
