@@ -1,17 +1,29 @@
 import type { Recommendation } from "../../recommendation/contract.ts";
-import type { WebServices } from "../services.ts";
+import type { FigureSeries, WebServices } from "../services.ts";
 
 const KEPT = 32;
 
 /** Answers lately given, by the text of their brief, so that a page and its figures are worked out once. */
 export interface Answers {
   readonly answer: (brief: unknown) => Promise<Recommendation>;
+  /** The figures of one method of an answer, computed once while the answer is kept; null where they cannot be. */
+  readonly figures: (recommendation: Recommendation, methodId: string) => FigureSeries | null;
 }
 
 /** Keeps the last answers in memory; a failed one is forgotten at once. */
-export function createAnswers(services: Pick<WebServices, "recommend">): Answers {
+export function createAnswers(services: Pick<WebServices, "recommend" | "figureSeries">): Answers {
   const kept = new Map<string, Promise<Recommendation>>();
+  const drawn = new WeakMap<Recommendation, Map<string, FigureSeries | null>>();
   return {
+    figures: (recommendation, methodId) => {
+      const ofAnswer = drawn.get(recommendation) ?? new Map<string, FigureSeries | null>();
+      drawn.set(recommendation, ofAnswer);
+      const known = ofAnswer.get(methodId);
+      if (known !== undefined) return known;
+      const series = services.figureSeries(recommendation, methodId);
+      ofAnswer.set(methodId, series);
+      return series;
+    },
     answer: async (brief) => {
       const key = JSON.stringify(brief);
       const known = kept.get(key);

@@ -23,7 +23,7 @@ export function recommendationPage(services: WebServices, names: Names, answers:
       sent = briefOf(request);
       const recommendation = await answers.answer(sent);
       const method = chosenMethod(request, recommendation);
-      const figures = method === null ? null : services.figureSeries(recommendation, method.id);
+      const figures = method === null ? null : answers.figures(recommendation, method.id);
       response.send(
         renderView(
           "recommendation",
@@ -44,7 +44,7 @@ export function recommendationPage(services: WebServices, names: Names, answers:
   router.get("/figures/:figure.csv", async (request, response, next) => {
     const recommendation = await answers.answer(briefOf(request));
     const method = chosenMethod(request, recommendation);
-    const figures = method === null ? null : services.figureSeries(recommendation, method.id);
+    const figures = method === null ? null : answers.figures(recommendation, method.id);
     const { figure } = request.params;
     if (figures === null || (figure !== "log-k" && figure !== "curve")) {
       next();
