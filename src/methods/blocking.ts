@@ -6,6 +6,9 @@ const UNSTATED_LEVEL_OF_DYE = 0.1;
 /** "At every level" still means a level that an analyst could notice: a hundredth of the dye. */
 const EVERY_LEVEL_OF_DYE = 0.01;
 
+/** From here on the alkali itself is the mask, and what it throws down is meant to be out of the way. */
+const ALKALI_MASKS_FROM_PH = 11.5;
+
 /** The record that speaks for a metal and a dye: a read one before memory, then the lower level. */
 export function blockerOf(indicator: IndicatorRecord, ion: ComponentId, pH: number): IndicatorBlocker | null {
   const rows = indicator.blockers.filter(
@@ -59,6 +62,14 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
         ? sum
         : sum + n * start.result.speciesMolPerL[row]!;
     }, 0);
-    return unmasked > level;
+    // A hydroxide that nobody asked for blocks like the ion it came from: hydrolysed iron(III) still takes the dye.
+    const hydrolysed = model.held
+      .filter((h) => h.component === metal && h.why === "precipitated")
+      .reduce((sum, h) => sum + h.molPerL, 0);
+    const deposited = model.system.solids.reduce(
+      (sum, solid, i) => sum + ((solid.components["H+"] ?? 0) < 0 ? (solid.components[metal] ?? 0) * (start.result.solidsMolPerL[i] ?? 0) : 0),
+      0,
+    );
+    return unmasked + (plan.pH < ALKALI_MASKS_FROM_PH ? hydrolysed + deposited : 0) > level;
   });
 }

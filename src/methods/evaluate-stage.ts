@@ -125,7 +125,7 @@ export function evaluateStage(
   const account = accountOf(task, model, end, search.volumeL, presentMol, determined);
   const half = model.at(back ? search.volumeL : 0.5 * search.volumeL);
   const indicatorMetal = holderOf(model, half);
-  const followed = back ? plan.backTitrant!.id : (plan.determines[0] ?? indicatorMetal);
+  const followed = back ? plan.backTitrant.id : (plan.determines[0] ?? indicatorMetal);
   const equivalence = model.at(equivalenceL);
   const determinedL = back ? presentMol / plan.titrant.molPerL : search.volumeL;
   return {

@@ -37,6 +37,9 @@ function burdenOf(agent: AgentRecord, knowledge: Knowledge): number {
 const inside = (pH: number, range: readonly [number, number]): boolean =>
   pH >= range[0] - PH_SLACK && pH <= range[1] + PH_SLACK;
 
+/** A precipitate does not know the round figure at which a printed range ends; whether it forms the equilibrium says. */
+const near = (pH: number, range: readonly [number, number]): boolean => pH >= range[0] - 1 && pH <= range[1] + 1;
+
 /** Lookups that depend on the knowledge alone, made once: rows by agent and ion, pairs of components that share a species or a solid. */
 interface MaskIndex {
   readonly rows: ReadonlyMap<string, readonly MaskingRecord[]>;
@@ -79,7 +82,7 @@ function indexOf(knowledge: Knowledge): MaskIndex {
 
 /** Rows of practice for an agent and an ion at this pH. */
 function rowsFor(knowledge: Knowledge, agent: string, ion: ComponentId, pH: number): MaskingRecord[] {
-  return (indexOf(knowledge).rows.get(`${agent} ${ion}`) ?? []).filter((r) => inside(pH, r.pH));
+  return (indexOf(knowledge).rows.get(`${agent} ${ion}`) ?? []).filter((r) => inside(pH, r.pH) || (r.via === "precipitation" && near(pH, r.pH)));
 }
 
 /** Whether the model has constants for this pair: a soluble complex, or a solid where the mask precipitates. */
@@ -106,7 +109,8 @@ function optionsFor(threat: Threat, plan: StagePlan, knowledge: Knowledge, shelf
   for (const agent of knowledge.agents.values()) {
     // Hydroxide is what the pH itself does; its precipitates are in the equilibrium of the plan already.
     if (agent.id !== "hydroxide" && !shelf(agent.id)) continue;
-    if (!inside(plan.pH, agent.pH)) continue;
+    // The lower end of an agent's range is safety (cyanide, sulfide); the upper end is only the round figure of its records.
+    if (plan.pH < agent.pH[0] || plan.pH > agent.pH[1] + 1) continue;
     const record = rowsFor(knowledge, agent.id, threat.component, plan.pH).find(
       (r) => r.effect === "masks" || r.effect === "partial",
     );

@@ -146,7 +146,7 @@ function analyteConstant(stage: BareStage): number {
 /** Whether the analyte stands supersaturated before the titrant comes (phosphate, carbonate): then titrant first and a back titration is a rival. */
 function needsTitrantFirst(task: Task, stage: DevelopedStage, knowledge: Knowledge): boolean {
   return supersaturations(task, stage.plan, knowledge, stage.evaluation.model.ionicStrengthMolPerL).some(
-    (s) => (s.pace === "fast" || s.pace === "minutes") && s.components.some((c) => stage.plan.determines.includes(c)),
+    (s) => s.pace !== "no" && s.components.some((c) => stage.plan.determines.includes(c)),
   );
 }
 

@@ -30,7 +30,7 @@ function holdsAt(task: Task, stage: DevelopedStage, pH: number, knowledge: Knowl
 
 function outsideAgent(knowledge: Knowledge, id: string, pH: number): boolean {
   const range = knowledge.agents.get(id)?.pH;
-  return range !== undefined && (pH < range[0] || pH > range[1]);
+  return range !== undefined && (pH < range[0] || pH > range[1] + 1);
 }
 
 /** Searches outwards from the planned pH; a method that misses the requirement has no width. */

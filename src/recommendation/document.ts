@@ -20,9 +20,7 @@ export function becauseOf({ finding, stage }: Verdict): Because {
     rule: finding.rule,
     effect: finding.effect,
     statement: finding.statement,
-    facts: Object.fromEntries(
-      Object.entries(finding.facts).map(([k, v]) => [k, Array.isArray(v) ? [...v] : v]),
-    ) as Because["facts"],
+    facts: { ...finding.facts },
     source: finding.source,
     basis: finding.basis,
     rationale: finding.rationale,

@@ -21,6 +21,8 @@ const RANGED = 10;
 /** How many methods an answer shows. */
 const SHOWN = 8;
 const REJECTED_SHOWN = 16;
+/** How many usual dyes the findings are judged with. */
+const SIMPLEST_SHOWN = 3;
 
 /**
  * Answers a task: searches methods, judges them by the rules, ranks them, and writes the recommendation document.
@@ -131,12 +133,14 @@ function simplestOf(task: Task, methods: readonly EvaluatedMethod[], knowledge: 
         s.skeleton.use === "published" &&
         s.plan.removed.length === 0,
     );
+  // The usual dyes are those in use for many metals; the best stage of each stands for it.
+  const usual = (dye: string): number => new Set(knowledge.indicators.get(dye)?.uses.flatMap((u) => u.ions)).size;
   const byDye = new Map<string, DevelopedStage>();
   for (const stage of [...direct].sort((a, b) => roughCost(task, a, knowledge) - roughCost(task, b, knowledge))) {
     const dye = stage.plan.indicator?.id ?? "";
     if (!byDye.has(dye)) byDye.set(dye, stage);
   }
-  return [...byDye.values()].slice(0, 3);
+  return [...byDye].sort(([a], [b]) => usual(b) - usual(a) || a.localeCompare(b)).slice(0, SIMPLEST_SHOWN).map(([, stage]) => stage);
 }
 
 function rejectedOf(task: Task, judged: readonly JudgedMethod[], knowledge: Knowledge): RejectedMethod[] {

@@ -26,7 +26,7 @@ function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): st
   const nameOf = (id: string): string => knowledge.agents.get(id)?.name ?? knowledge.buffers.get(id)?.name ?? id;
   const what = list(plan.determines.map(ion));
   const dye = plan.indicator
-    ? `${knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id}`
+    ? (knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id)
     : "an electrode";
   const heat = plan.preparation.includes("boil")
     ? ", boil"
