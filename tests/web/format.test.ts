@@ -20,6 +20,7 @@ describe("formulaMarkup", () => {
     ["Zn(NH3)2 2+", false, "Zn(NH<sub>3</sub>)<sub>2</sub><sup>2+</sup>"],
     ["CaCO3 (calcite)", false, "CaCO<sub>3</sub> (calcite)"],
     ["citrate", true, "citrate"],
+    ["Zn2(methylthymol-blue) 2-", false, "Zn<sub>2</sub>(methylthymol-blue)<sup>2−</sup>"],
   ])("sets %s", (text, isIon, html) => {
     expect(formulaMarkup(text, isIon).html).toBe(html);
   });

@@ -29,7 +29,7 @@ function formulaHtml(text: string, isIon: boolean): string {
 
 /** Figures that follow a letter or a bracket are counts of atoms; a leading figure or one after a dot is a coefficient. */
 function bodyHtml(body: string): string {
-  if (!/^[A-Za-z0-9()[\].·*]+$/.test(body)) return escapeHtml(body);
+  if (!/^[A-Za-z0-9()[\].·*-]+$/.test(body)) return escapeHtml(body);
   return escapeHtml(body).replace(/([A-Za-z)\]])(\d+)/g, "$1<sub>$2</sub>");
 }
 

@@ -79,11 +79,7 @@ function benchRows(
         ],
   );
   if (back) add("Back titrant", [reagent(back)]);
-  add(
-    "pH",
-    [text(fixed(stage.pH.target, 1))],
-    [text(`works from ${fixed(stage.pH.low, 1)} to ${fixed(stage.pH.high, 1)}`)],
-  );
+  add("pH", [text(fixed(stage.pH.target, 1))], [text(rangeWords(method.meetsRequirement, stage.pH))]);
   add(
     "Buffer",
     [reagent(stage.buffer)],
@@ -148,6 +144,13 @@ function benchRows(
     );
   add("End point lies at", endPointLines(stage), [text(wordsOf(END_POINT_BASIS_WORDS, stage.endPoint.basis))]);
   return rows;
+}
+
+/** Where the requirement holds, in words. */
+function rangeWords(meets: boolean, { low, high }: StageDocument["pH"]): string {
+  if (!meets) return "the requirement is kept at no pH";
+  if (fixed(low, 1) === fixed(high, 1)) return "works at this pH only";
+  return `works from ${fixed(low, 1)} to ${fixed(high, 1)}`;
 }
 
 function endPointLines(stage: StageDocument): readonly Markup[] {
@@ -220,8 +223,8 @@ export function roomViews(method: RecommendedMethod, names: Names): readonly Roo
     return {
       component: names.link(component),
       present: amount(present),
-      without: plain === null ? "not computed" : amount(plain, 2),
-      withMasking: masked === null ? "no masking" : amount(masked, 2),
+      without: plain === null ? "–" : amount(plain, 2),
+      withMasking: masked === null ? "–" : amount(masked, 2),
       room:
         factor === null
           ? "none present"

@@ -44,7 +44,7 @@ export function factViews(
 /** A fact's value as text with its unit. */
 export function factValue(value: unknown, unit: string | null): string {
   if (typeof value === "number") {
-    const text = significant(value, 4);
+    const text = Number.isInteger(value) && Math.abs(value) < 1e4 ? fixed(value, 0) : significant(value, 4);
     return unit === null || unit === "pH" ? text : `${text} ${unit}`;
   }
   if (typeof value === "boolean") return value ? "yes" : "no";

@@ -104,6 +104,7 @@ function methodView(
   return {
     rank: String(method.rank),
     summary: names.set(method.summary),
+    heading: method.meetsRequirement ? "The method" : "The nearest method",
     meets: method.meetsRequirement ? "keeps the requirement" : "does not keep the requirement",
     uncertainty: percent(method.predicted.relativeExpandedUncertaintyPercent),
     bias: signedPercent(method.predicted.biasPercent),
