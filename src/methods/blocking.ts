@@ -50,7 +50,10 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
       .filter((u) => u.mode === "direct" && plan.pH >= u.pH[0] - 0.05 && plan.pH <= u.pH[1] + 0.05)
       .flatMap((u) => u.ions),
   );
+  // What an earlier titration has bound is the titrant's again with the first drop: its remainder does not block.
+  const carried = new Set(plan.carried?.metals ?? []);
   return model.metals.filter((metal) => {
+    if (carried.has(metal)) return false;
     const level = blockingLevel(indicator, metal, plan.pH, plan.indicator!.molPerL);
     if (level === null) return false;
     // A dye that is in use for the very metal at this pH is not blocked by it (hot, or with a catalyst: its use says so).
@@ -67,7 +70,9 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
       .filter((h) => h.component === metal && h.why === "precipitated")
       .reduce((sum, h) => sum + h.molPerL, 0);
     const deposited = model.system.solids.reduce(
-      (sum, solid, i) => sum + ((solid.components["H+"] ?? 0) < 0 ? (solid.components[metal] ?? 0) * (start.result.solidsMolPerL[i] ?? 0) : 0),
+      (sum, solid, i) =>
+        sum +
+        ((solid.components["H+"] ?? 0) < 0 ? (solid.components[metal] ?? 0) * (start.result.solidsMolPerL[i] ?? 0) : 0),
       0,
     );
     return unmasked + (plan.pH < ALKALI_MASKS_FROM_PH ? hydrolysed + deposited : 0) > level;

@@ -1,14 +1,24 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop, type DevelopedStage } from "./develop.ts";
-import { promising, roughCost, stageKey, stagesFor, type EvaluatedMethod, type MethodResult } from "./methods.ts";
+import {
+  dyeBreadth,
+  promising,
+  roughCost,
+  stageKey,
+  stagesFor,
+  type EvaluatedMethod,
+  type MethodResult,
+} from "./methods.ts";
 import type { Shelf } from "./shelf.ts";
-import { backSkeletons, directSkeletons, USUAL_FIELD } from "./skeletons.ts";
+import { backSkeletons, directSkeletons, USUAL_FIELD, type Skeleton } from "./skeletons.ts";
 import type { MaskingStep, Task } from "./types.ts";
 import { combineDifference, stageBudget } from "./uncertainty.ts";
 
 /** How many titrations of a group are carried on into combinations. */
 const CARRIED_ON = 4;
-const FOLLOWED = 2;
+const FOLLOWED = 3;
+/** How many continuations of a titration in the same vessel are looked at. */
+const NEXT_TRIED = 12;
 
 /** Methods that give several results: separate portions, one portion in turn, or a difference of two titrations. */
 export function combinedMethods(
@@ -93,17 +103,23 @@ function successive(
           order.slice(1).flatMap((i) => groups[i]!),
         ),
     );
-    return starts.slice(0, FOLLOWED).flatMap((start) =>
-      follow(
-        task,
-        [start],
-        order.slice(1).map((i) => groups[i]!),
-        knowledge,
-        shelf,
-      ),
-    );
+    const later = order.slice(1).map((i) => groups[i]!);
+    // A dye that serves the next titration too is worth more than a shade of uncertainty.
+    const serves = (s: DevelopedStage): number => Number(!later.every((group) => dyeServes(s, group, knowledge)));
+    const ranked = [...starts].sort((a, b) => serves(a) - serves(b));
+    return ranked.slice(0, FOLLOWED).flatMap((start) => follow(task, [start], later, knowledge, shelf));
   });
 }
+
+const dyeServes = (stage: DevelopedStage, group: readonly ComponentId[], knowledge: Knowledge): boolean =>
+  knowledge.indicators
+    .get(stage.plan.indicator?.id ?? "")
+    ?.uses.some(
+      (u) =>
+        (u.mode === "direct" || u.mode === "back") &&
+        group.every((ion) => u.ions.includes(ion)) &&
+        u.pH[1] >= stage.plan.pH,
+    ) ?? false;
 
 /** A mask on something that is to be titrated later would have to be undone first. */
 const holdsLater = (stage: DevelopedStage, later: readonly ComponentId[]): boolean =>
@@ -129,30 +145,43 @@ function follow(
     ];
   const last = done.at(-1)!;
   // The vessel as the last titration left it: fuller by its titre, its titrant bound to what it determined.
-  const grown = done.reduce((ml, s) => ml + s.evaluation.endPointML, task.portion.titrationVolumeML);
-  const later: Task = { ...task, portion: { ...task.portion, titrationVolumeML: grown } };
+  const addedML = done.reduce((ml, s) => ml + s.evaluation.endPointML, 0);
+  const grown = task.portion.titrationVolumeML + addedML;
   const metals = done.flatMap((s) => [...s.plan.determines]);
   const titrantMolPerL = done.reduce((s, d) => s + (d.plan.titrant.molPerL * d.evaluation.endPointML) / grown, 0);
   const kept: MaskingStep[] = done.flatMap((s) =>
     s.plan.masking.map((m) => ({ ...m, molPerL: m.molPerL * (task.portion.titrationVolumeML / grown) })),
   );
-  const make = { task: later, knowledge, shelf, determines: next, field: USUAL_FIELD };
+  const make = { task, knowledge, shelf, determines: next, field: USUAL_FIELD };
+  // The dye that is in the vessel already comes first, then those in wide use.
+  const preference = (s: Skeleton): number =>
+    (s.plan.indicator?.id === last.plan.indicator?.id ? 0 : 100) +
+    50 -
+    Math.min(50, dyeBreadth(s.plan.indicator?.id, knowledge));
   const options = [...directSkeletons(make), ...backSkeletons(make)]
     .filter((s) => s.plan.titrant.id === last.plan.titrant.id && s.plan.pH >= last.plan.pH - 0.05)
+    .sort((a, b) => preference(a) - preference(b))
+    .slice(0, NEXT_TRIED)
     .map((skeleton) => ({
       ...skeleton,
-      plan: { ...skeleton.plan, carried: { metals, titrantMolPerL }, masking: [...kept, ...skeleton.plan.masking] },
+      plan: {
+        ...skeleton.plan,
+        carried: { metals, titrantMolPerL, addedML },
+        masking: [...kept, ...skeleton.plan.masking],
+      },
     }));
   const starts = promising(
-    later,
-    options.map((s) => bareStage(later, s, knowledge, shelf)),
+    task,
+    options.map((s) => bareStage(task, s, knowledge, shelf)),
     knowledge,
   );
   const developed = best(
-    later,
-    starts.flatMap((s) => develop(later, s, knowledge, shelf)),
+    task,
+    starts.flatMap((s) => develop(task, s, knowledge, shelf)),
     knowledge,
   ).filter((s) => s.plan.removed.length === 0);
+  const sameDye = (s: DevelopedStage): number => Number(s.plan.indicator?.id !== last.plan.indicator?.id);
+  developed.sort((a, b) => sameDye(a) - sameDye(b));
   return developed.slice(0, FOLLOWED).flatMap((s) => follow(task, [...done, s], todo.slice(1), knowledge, shelf));
 }
 

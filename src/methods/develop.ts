@@ -1,7 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { metalKinetics } from "./kinetics.ts";
-import { maskSets, type MaskSet } from "./masks.ts";
+import { maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
 import type { Shelf } from "./shelf.ts";
 import { bufferAmount, excessFor, withAuxiliary, type Skeleton } from "./skeletons.ts";
 import { vesselSample } from "./solution.ts";
@@ -27,7 +27,9 @@ export interface BareStage {
   readonly analytePrecipitates: boolean;
 }
 
-/** First look at a skeleton: analyte kept dissolved, excess measured, threats named, pH moved where that disarms a threat. */
+/**
+ * First look at a skeleton: analyte kept dissolved, excess measured, threats named, pH moved where that disarms a threat.
+ */
 export function bareStage(task: Task, skeleton: Skeleton, knowledge: Knowledge, shelf: Shelf): BareStage {
   const at = (plan: StagePlan): BareStage => {
     const { plan: made, bare, precipitates } = soluble(task, withExcess(task, plan, knowledge), knowledge, shelf);
@@ -71,7 +73,9 @@ function otherConditions(skeleton: Skeleton, knowledge: Knowledge): StagePlan[] 
     buffer: buffer ? { id: buffer.id, molPerL: bufferAmount(buffer, pH) } : plan.buffer,
   }));
   // A buffer that binds the analyte (ammonia) is best taken sparingly.
-  const least = buffer?.kind === "pair" ? buffer.usualMolPerL[0] : null;
+  const binds =
+    buffer?.component != null && plan.determines.some((ion) => pairHasComplex(knowledge, buffer.component!, ion));
+  const least = binds ? buffer.usualMolPerL[0] : null;
   if (least === null || least >= plan.buffer.molPerL) return plans;
   return [...plans, ...[plan, ...plans].map((p) => ({ ...p, buffer: { ...p.buffer, molPerL: least } }))];
 }
@@ -239,7 +243,7 @@ function separations(
 /** Titrant in excess for a back titration: a good third above everything in the vessel that binds. */
 function withExcess(task: Task, plan: StagePlan, knowledge: Knowledge): StagePlan {
   if (plan.backTitrant === null) return plan;
-  const everything = vesselSample(task)
+  const everything = vesselSample(task, plan)
     .filter((c) => knowledge.components.get(c.component)?.kind === "metal" && !plan.removed.includes(c.component))
     .reduce((s, c) => s + c.inVesselMolPerL, 0);
   const model = stageModel(task, { ...plan, excessTitrantMolPerL: 2 * everything }, knowledge);

@@ -62,7 +62,7 @@ export function evaluateStage(
   frozen?: ReadonlyMap<ComponentId, number>,
 ): StageEvaluation {
   const hot = plan.preparation.includes("boil") || plan.preparation.includes("heat");
-  const sample = vesselSample(task);
+  const sample = vesselSample(task, plan);
   const inert = inertMetals(
     knowledge,
     sample.map((c) => c.component),
@@ -110,8 +110,9 @@ export function evaluateStage(
   if (!titrantBefore.ok) return failed("not-converged");
   if (criterion.basis !== "empirical") {
     const early = model.at(back ? 0 : 0.5 * equivalenceL);
-    if (!back && !showsColour(model, early.dyeRatio)) return failed("no-colour");
-    if (back && early.dyeRatio / (1 + early.dyeRatio) > BLOCKED_BOUND_FRACTION) return failed("dye-held");
+    if (!back && !showsColour(model, criterion.ratio(early))) return failed("no-colour");
+    if (back && criterion.ratio(early) / (1 + criterion.ratio(early)) > BLOCKED_BOUND_FRACTION)
+      return failed("dye-held");
   }
   const search = firstCrossing((v) => criterion.of(model.at(v)), equivalenceL);
   if (!search.found) return failed("no-end-point");
@@ -149,6 +150,8 @@ interface Criterion {
   readonly bandPM: number;
   /** The band on the scale of the criterion, log10 units. */
   readonly bandLog10: number;
+  /** Bound over free dye, as far as it shows colour. */
+  readonly ratio: (state: VesselState) => number;
   /** Negative before the end point, positive after. */
   readonly of: (state: VesselState) => number;
 }
@@ -163,13 +166,17 @@ function criterionOf(model: StageModel, determined: ReadonlySet<ComponentId>, ba
   const known = watched.filter(shows);
   if (indicator && known.length > 0) {
     const target = practisedLog10Ratio(indicator.endPointModel, back ? "back" : "direct", plan.indicator!.molPerL);
-    const log10Ratio = (s: VesselState): number => Math.log10(Math.max(s.dyeRatio, FLOOR));
+    // A self-coloured reagent shows the colour of its iron complex; what aluminium does with it has no colour.
+    const ratio = (s: VesselState): number =>
+      indicator.class === "self-coloured" ? known.reduce((sum, m) => sum + s.dyeRatioOf(m), 0) : s.dyeRatio;
+    const log10Ratio = (s: VesselState): number => Math.log10(Math.max(ratio(s), FLOOR));
     // A band in pM is that many times as wide in the logarithm of the colour ratio as metal ions sit on one dye.
     const perDye = Math.max(...known.map((m) => dyeBasis.byTable.get(m)?.metalsPerDye ?? 1));
     return {
       basis: known.some((m) => dyeBasis.byTable.has(m)) ? "table" : "constants",
       bandPM: indicator.observerBandPM,
       bandLog10: perDye * indicator.observerBandPM,
+      ratio,
       of: back ? (s) => log10Ratio(s) - target : (s) => target - log10Ratio(s),
     };
   }
@@ -190,7 +197,13 @@ function criterionOf(model: StageModel, determined: ReadonlySet<ComponentId>, ba
     return Math.log10(Math.max(titrant, FLOOR)) - Math.log10(Math.max(metal, FLOOR));
   };
   // pM up by b means metal down and free titrant up by b each: twice b on this scale.
-  return { basis: "empirical", bandPM, bandLog10: 2 * bandPM, of: back ? (s) => -log10Excess(s) : log10Excess };
+  return {
+    basis: "empirical",
+    bandPM,
+    bandLog10: 2 * bandPM,
+    ratio: (s) => s.dyeRatio,
+    of: back ? (s) => -log10Excess(s) : log10Excess,
+  };
 }
 
 /** How many times the last visible trace of a one-colour complex must be there half way, for its going to be seen. */
@@ -272,7 +285,7 @@ function accountOf(
   let endPoint = end.titrantUnbound * vessel;
   if (carriedFor.length === 0) endPoint -= carriedMol;
   let analyteMissing = 0;
-  const inSample = new Map(vesselSample(task).map((c) => [c.component, c.inVesselMolPerL * model.volumeL]));
+  const inSample = new Map(vesselSample(task, plan).map((c) => [c.component, c.inVesselMolPerL * model.volumeL]));
   for (const { from, to } of model.solution.converted)
     if (to !== null) inSample.set(to, (inSample.get(to) ?? 0) + (inSample.get(from) ?? 0));
   const carriedBound = carriedFor.reduce((s, m) => s + boundMol(m), 0);

@@ -27,12 +27,19 @@ const HAZARD_BURDEN: Readonly<Record<string, number>> = {
   toxic: 3,
   fluoride: 2,
   formaldehyde: 3,
+  "thorium-uranium": 20,
+  lead: 3,
+  cadmium: 5,
 };
 
-function burdenOf(agent: AgentRecord, knowledge: Knowledge): number {
-  const tags = knowledge.reagents.get(agent.id)?.hazardTags ?? [];
-  return 3 + (agent.special ? 15 : 0) + Math.max(0, ...tags.map((t) => HAZARD_BURDEN[t] ?? 0));
+/** Hazard burden of a reagent by its tags, in the points of the rules. */
+export function hazardBurden(id: string, knowledge: Knowledge): number {
+  const tags = knowledge.reagents.get(id)?.hazardTags ?? [];
+  return Math.max(0, ...tags.map((t) => HAZARD_BURDEN[t] ?? 0));
 }
+
+const burdenOf = (agent: AgentRecord, knowledge: Knowledge): number =>
+  3 + (agent.special ? 15 : 0) + hazardBurden(agent.id, knowledge);
 
 const inside = (pH: number, range: readonly [number, number]): boolean =>
   pH >= range[0] - PH_SLACK && pH <= range[1] + PH_SLACK;
@@ -82,8 +89,14 @@ function indexOf(knowledge: Knowledge): MaskIndex {
 
 /** Rows of practice for an agent and an ion at this pH. */
 function rowsFor(knowledge: Knowledge, agent: string, ion: ComponentId, pH: number): MaskingRecord[] {
-  return (indexOf(knowledge).rows.get(`${agent} ${ion}`) ?? []).filter((r) => inside(pH, r.pH) || (r.via === "precipitation" && near(pH, r.pH)));
+  return (indexOf(knowledge).rows.get(`${agent} ${ion}`) ?? []).filter(
+    (r) => inside(pH, r.pH) || (r.via === "precipitation" && near(pH, r.pH)),
+  );
 }
+
+/** Whether some soluble species holds both components. */
+export const pairHasComplex = (knowledge: Knowledge, a: ComponentId, b: ComponentId): boolean =>
+  indexOf(knowledge).complexes.has(`${a} ${b}`);
 
 /** Whether the model has constants for this pair: a soluble complex, or a solid where the mask precipitates. */
 export function pairHasConstants(

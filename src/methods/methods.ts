@@ -1,5 +1,6 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop, type BareStage, type DevelopedStage } from "./develop.ts";
+import { hazardBurden } from "./masks.ts";
 import { supersaturations } from "./saturation.ts";
 import type { Shelf } from "./shelf.ts";
 import {
@@ -84,7 +85,7 @@ export function stagesFor(
     );
   };
   const usual = search(USUAL_FIELD);
-  if (!widen && usual.some((s) => meetsCleanly(task, s, knowledge))) return usual;
+  if (!widen && usual.some((s) => s.evaluation.status !== "failed" && s.remaining.length === 0)) return usual;
   const clean = usual.filter((s) => meetsCleanly(task, s, knowledge));
   const others = (shelf("EDTA") ? OTHER_TITRANTS : [...OTHER_TITRANTS, ...LAST_TITRANTS]).filter((t) => shelf(t));
   if (clean.length < ENOUGH) {
@@ -164,6 +165,12 @@ export function meetsCleanly(task: Task, stage: DevelopedStage, knowledge: Knowl
   return 100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
 }
 
+/** A dye in use for this many ions stands on most shelves. */
+const COMMON_DYE_IONS = 8;
+/** For how many ions a dye is in use on record. */
+export const dyeBreadth = (dye: string | undefined, knowledge: Knowledge): number =>
+  new Set(knowledge.indicators.get(dye ?? "")?.uses.flatMap((u) => u.ions)).size;
+
 /** A stage's promise, smaller is better: bias and band against the requirement, what is left undone, steps. */
 export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledge): number {
   const { evaluation, plan } = stage;
@@ -174,12 +181,15 @@ export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledg
     Math.min(ratio, 20) * 4 +
     stage.remaining.length * 40 +
     evaluation.blockedBy.length * 60 +
-    plan.masking.length * 3 +
+    plan.masking.reduce((sum, m) => sum + 3 + hazardBurden(m.agent, knowledge), 0) +
+    (plan.backTitrant ? hazardBurden(plan.backTitrant.id, knowledge) : 0) +
     plan.auxiliary.length * 2 +
     (plan.backTitrant ? 8 : 0) +
     (plan.removed.length > 0 ? 25 : 0) +
     (plan.titrant.id === "EDTA" ? 0 : 5) +
-    (stage.skeleton.use === "published" ? 0 : 12) +
+    (stage.skeleton.use === "published" ? 0 : plan.backTitrant ? 4 : 12) +
+    (evaluation.basis === "empirical" ? 5 : 0) +
+    (dyeBreadth(plan.indicator?.id, knowledge) < COMMON_DYE_IONS ? 4 : 0) +
     (plan.preparation.includes("boil") || plan.preparation.includes("heat") ? 3 : 0)
   );
 }

@@ -23,9 +23,16 @@ export interface StageSolution {
 /** Dye component behind an indicator id: Cu-PAN is the dye PAN beside a little Cu-EDTA. */
 export const dyeComponentOf = (indicator: string): ComponentId => (indicator === "Cu-PAN" ? "PAN" : indicator);
 
+/** Volume in the vessel before this titration, mL: the titration volume and what earlier titrations of it brought. */
+const vesselML = (task: Task, plan: Pick<StagePlan, "carried"> | null): number =>
+  task.portion.titrationVolumeML + (plan?.carried?.addedML ?? 0);
+
 /** How much of each sample component stands in the vessel, mol/L at the titration volume. */
-export function vesselSample(task: Task): (TaskComponent & { readonly inVesselMolPerL: number })[] {
-  const dilution = task.portion.volumeML / task.portion.titrationVolumeML;
+export function vesselSample(
+  task: Task,
+  plan: Pick<StagePlan, "carried"> | null = null,
+): (TaskComponent & { readonly inVesselMolPerL: number })[] {
+  const dilution = task.portion.volumeML / vesselML(task, plan);
   return [...task.analytes, ...task.matrix].map((c) => ({ ...c, inVesselMolPerL: c.molPerL * dilution }));
 }
 
@@ -40,7 +47,7 @@ export function stageSolution(task: Task, plan: StagePlan, knowledge: Knowledge)
   const add = (map: Map<ComponentId, number>, id: ComponentId, molPerL: number): void => {
     if (molPerL > 0) map.set(id, (map.get(id) ?? 0) + molPerL);
   };
-  for (const { component, inVesselMolPerL } of vesselSample(task)) {
+  for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
     if (plan.removed.includes(component)) {
       held.push({ component, molPerL: inVesselMolPerL, why: "separated", by: "separate" });
       continue;
@@ -70,7 +77,7 @@ export function stageSolution(task: Task, plan: StagePlan, knowledge: Knowledge)
     add(totals, plan.chelate.metal, plan.chelate.molPerL);
     add(totals, plan.chelate.ligand, plan.chelate.molPerL);
   }
-  return { volumeL: task.portion.titrationVolumeML / 1000, totals, fromSample, held, converted };
+  return { volumeL: vesselML(task, plan) / 1000, totals, fromSample, held, converted };
 }
 
 /** The ion that an agent makes of another by complete reduction or oxidation; null when the product takes no part. */

@@ -34,7 +34,7 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
   const threats: Threat[] = [];
   const determined = new Set(plan.determines);
   const present = evaluation.presentMol / model.volumeL;
-  for (const { component, inVesselMolPerL } of vesselSample(task)) {
+  for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
     if (determined.has(component) || inVesselMolPerL <= 0) continue;
     if (!model.metals.includes(component)) {
       const held = knowledge.components.get(component)?.kind === "ligand" && holds(evaluation, component, knowledge);

@@ -76,7 +76,12 @@ export interface StagePlan {
   /** Titrant put in at once, in excess, before the back titration; mol/L in the titrated solution; 0 in a direct titration. */
   readonly excessTitrantMolPerL: number;
   /** Titrant that an earlier titration of the same solution left in it, mol/L of the vessel, and the metals it went to. */
-  readonly carried: { readonly metals: readonly ComponentId[]; readonly titrantMolPerL: number } | null;
+  readonly carried: {
+    readonly metals: readonly ComponentId[];
+    readonly titrantMolPerL: number;
+    /** By how much the earlier titres have filled the vessel, mL. */
+    readonly addedML: number;
+  } | null;
 }
 
 export interface MethodPlan {

@@ -75,7 +75,7 @@ export const stageSchema = z.strictObject({
     removed: z.array(text), // ions taken out by a separation step
     chelate: z.strictObject({ metal: text, ligand: text, molPerL: level }).nullable(),
     excessTitrantMolPerL: level,
-    carried: z.strictObject({ metals: z.array(text), titrantMolPerL: level }).nullable(), // left by an earlier titration of the same solution
+    carried: z.strictObject({ metals: z.array(text), titrantMolPerL: level, addedML: level }).nullable(), // left by an earlier titration of the same solution
   }),
   ionicStrength: z.strictObject({ molPerL: level.nullable(), outOfModelRange: z.boolean() }),
   endPoint: endPointSchema,

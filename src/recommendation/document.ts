@@ -101,7 +101,11 @@ function stageDocument(
       removed: [...plan.removed],
       chelate: plan.chelate && { ...plan.chelate },
       excessTitrantMolPerL: plan.excessTitrantMolPerL,
-      carried: plan.carried && { metals: [...plan.carried.metals], titrantMolPerL: plan.carried.titrantMolPerL },
+      carried: plan.carried && {
+        metals: [...plan.carried.metals],
+        titrantMolPerL: plan.carried.titrantMolPerL,
+        addedML: plan.carried.addedML,
+      },
     },
     ionicStrength: {
       molPerL: signif(evaluation.model.ionicStrengthMolPerL, 4),
@@ -119,7 +123,7 @@ function stageDocument(
       metal: ion(metal),
       log10ConditionalK: signif(k, 4),
     })),
-    interferents: vesselSample(task)
+    interferents: vesselSample(task, plan)
       .filter((c) => !plan.determines.includes(c.component) && knowledge.components.get(c.component)?.kind === "metal")
       .map((c) => {
         const mask = plan.masking.find((m) => m.masks.includes(c.component));

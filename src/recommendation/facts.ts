@@ -147,7 +147,7 @@ export function stageFacts(
     context.solids.some((s) => s.pace !== "no" && pick(s.components));
   const shownOthers = alsoShown(task, stage);
   const precipitates = stage.analytePrecipitates;
-  const magnesium = vesselSample(task).find((c) => c.component === "Mg2+")?.inVesselMolPerL ?? 0;
+  const magnesium = vesselSample(task, plan).find((c) => c.component === "Mg2+")?.inVesselMolPerL ?? 0;
   const analyteMolPerL = evaluation.presentMol / model.volumeL;
   const magnesiumOut = model.solids.some(
     (id) => (knowledge.solids.find((s) => s.id === id)?.components["Mg2+"] ?? 0) > 0,
@@ -214,7 +214,7 @@ function alsoShown(task: Task, stage: DevelopedStage): ComponentId[] {
   const used = (evaluation.model.indicator?.uses ?? [])
     .filter((u) => u.mode === "direct" && plan.pH >= u.pH[0] - 0.5 && plan.pH <= u.pH[1] + 0.5)
     .flatMap((u) => u.ions);
-  return vesselSample(task)
+  return vesselSample(task, plan)
     .filter((c) => !plan.determines.includes(c.component) && !plan.removed.includes(c.component))
     .filter((c) => used.includes(c.component) && c.inVesselMolPerL > NOTICEABLE_RATIO * analyteMolPerL)
     .map((c) => c.component);
@@ -248,7 +248,7 @@ export function componentFacts(
 ): { component: ComponentId; facts: Facts }[] {
   const { plan, evaluation } = stage;
   const analyteMolPerL = evaluation.presentMol / evaluation.model.volumeL;
-  return vesselSample(task).map(({ component, inVesselMolPerL }) => {
+  return vesselSample(task, plan).map(({ component, inVesselMolPerL }) => {
     const step = plan.masking.find((m) => m.masks.includes(component));
     const removed = plan.removed.includes(component);
     const record = step

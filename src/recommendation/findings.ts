@@ -59,7 +59,7 @@ function titration(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowl
   const present = bare.presentMol / bare.model.volumeL;
   const atEquivalence = bare.status === "failed" ? bare.model.at(bare.equivalenceML / 1000) : null;
   const where = `at pH ${plan.pH} with ${plan.titrant.id}${dye ? ` and ${dye}` : ""}`;
-  for (const { component, inVesselMolPerL } of vesselSample(task)) {
+  for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
     const isAnalyte = plan.determines.includes(component);
     if (bare.model.metals.includes(component) && !isAnalyte) {
       const share = atEquivalence
@@ -130,7 +130,7 @@ function deposits(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowle
   const { plan } = stage.bare.model;
   for (const solid of supersaturations(task, plan, knowledge, stage.bare.model.ionicStrengthMolPerL)) {
     if (solid.pace === "no") continue;
-    const fromSample = vesselSample(task)
+    const fromSample = vesselSample(task, plan)
       .map((c) => c.component)
       .filter((c) => solid.components.includes(c));
     // Solids of reagents with each other are the plan's business, not the sample's.

@@ -140,7 +140,10 @@ function simplestOf(task: Task, methods: readonly EvaluatedMethod[], knowledge: 
     const dye = stage.plan.indicator?.id ?? "";
     if (!byDye.has(dye)) byDye.set(dye, stage);
   }
-  return [...byDye].sort(([a], [b]) => usual(b) - usual(a) || a.localeCompare(b)).slice(0, SIMPLEST_SHOWN).map(([, stage]) => stage);
+  return [...byDye]
+    .sort(([a], [b]) => usual(b) - usual(a) || a.localeCompare(b))
+    .slice(0, SIMPLEST_SHOWN)
+    .map(([, stage]) => stage);
 }
 
 function rejectedOf(task: Task, judged: readonly JudgedMethod[], knowledge: Knowledge): RejectedMethod[] {

@@ -2,17 +2,6 @@ import type { ComponentForm } from "../constants/knowledge.ts";
 import { formulaMassGPerMol, readFormula } from "./units-formula.ts";
 import type { Concentration } from "./contract-brief.ts";
 
-/** Decimal point, optional exponent, optional sign; a true minus sign counts as minus. No thousands separators, no decimal comma. */
-const DECIMAL = /^[+-]?(?:\d+(?:\.\d*)?|\.\d+)(?:[eE][+-]?\d{1,3})?$/;
-
-/** The number a text writes, or null when it writes none or one too large to hold ("" and "1,5" and "1e999" are null). */
-export function readDecimal(text: string): number | null {
-  const trimmed = text.trim().replace(/^\u2212/, "-");
-  if (!DECIMAL.test(trimmed)) return null;
-  const value = Number(trimmed);
-  return Number.isFinite(value) ? value : null;
-}
-
 /** mol (or g) per litre in one unit of each spelling; the micro sign and the Greek letter mu are both understood. */
 const MOLAR: Readonly<Record<string, number>> = { "mol/L": 1, "mmol/L": 1e-3, "umol/L": 1e-6, "µmol/L": 1e-6 };
 const MASS: Readonly<Record<string, number>> = { "g/L": 1, "mg/L": 1e-3, "ug/L": 1e-6, "µg/L": 1e-6 };
