@@ -27,7 +27,7 @@ const DANGERS = [
   },
   {
     what: "sulfide",
-    brief: sample("Mg2+", { "Cu2+": 0.05 }, ["EDTA", "ammonia", "mordant-black-11", "sulfide"]),
+    brief: sample("Mg2+", { "Zn2+": 0.05 }, ["EDTA", "ammonia", "mordant-black-11", "sulfide"]),
     said: [/only in alkaline solution/, /hydrogen sulfide/, /local rules/],
   },
   {

@@ -1,7 +1,7 @@
 import { describe, expect, it } from "vitest";
 import type { ComponentForm } from "../../src/constants/knowledge.ts";
 import type { Concentration } from "../../src/recommendation/contract.ts";
-import { readDecimal, toComponentMolPerL } from "../../src/recommendation/units.ts";
+import { toComponentMolPerL } from "../../src/recommendation/units.ts";
 import { formulaMassGPerMol, readFormula } from "../../src/recommendation/units-formula.ts";
 import { expectRelative } from "../expect-relative.ts";
 
@@ -52,26 +52,6 @@ function molPerL(level: Concentration, of: ComponentForm): number {
   if (converted.kind === "fault") throw new Error(converted.expected);
   return converted.molPerL;
 }
-
-describe("readDecimal", () => {
-  it.each([
-    ["8", 8],
-    [" 0.25 ", 0.25],
-    ["-3.5e-4", -3.5e-4],
-    [".5", 0.5],
-    ["5.", 5],
-    ["\u22122", -2],
-    ["+1E3", 1000],
-  ])("reads %j as a number", (text, value) => {
-    expect(readDecimal(text)).toBe(value);
-  });
-  it.each(["", " ", "1,5", "1 000", "0x10", "NaN", "Infinity", "1e999", "1e", "--1", "5 mmol", "١"])(
-    "reads no number in %j",
-    (text) => {
-      expect(readDecimal(text)).toBeNull();
-    },
-  );
-});
 
 describe("readFormula", () => {
   it.each([
