@@ -41,7 +41,7 @@ const PLANS: readonly (readonly [what: string, matrix: Readonly<Record<string, n
   [
     "the second in one vessel",
     { "Bi3+": 0.008 },
-    inventedPlan({ carried: { metals: ["Bi3+"], titrantMolPerL: 0.002 }, pH: 5.5 }),
+    inventedPlan({ carried: { metals: ["Bi3+"], titrantMolPerL: 0.0002 / 0.12, addedML: 20 }, pH: 5.5 }),
   ],
 ];
 
