@@ -1,9 +1,10 @@
 /** `npm run bench [NAME]`: every bench in turn. What cannot be measured here is said on a line of its own and in the last line. */
 import type { Bench } from "./bench.ts";
 import { equilibriumBench } from "./equilibrium.ts";
+import { recommendBench } from "./recommend.ts";
 
 /** The benches there are, in the order in which they run. */
-export const benches: readonly Bench[] = [equilibriumBench];
+export const benches: readonly Bench[] = [equilibriumBench, recommendBench];
 
 const only = process.argv[2];
 const chosen = benches.filter(({ name }) => only === undefined || name === only);
