@@ -6,5 +6,8 @@ import { expect } from "vitest";
  */
 export function expectRelative(actual: number, expected: number, rtol: number): void {
   const error = Math.abs(actual - expected) / Math.max(Math.abs(expected), Number.MIN_VALUE);
-  expect(Number.isFinite(actual) && error <= rtol, `${actual} agrees with ${expected} within ${rtol} (is off by ${error})`).toBe(true);
+  expect(
+    Number.isFinite(actual) && error <= rtol,
+    `${actual} agrees with ${expected} within ${rtol} (is off by ${error})`,
+  ).toBe(true);
 }

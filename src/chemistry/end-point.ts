@@ -14,8 +14,11 @@ export const VISIBLE_COMPLEX_MOL_PER_L = 2.5e-6;
 /** Share of the dye still held 5 % past equivalence from which an end point counts as blocked. */
 export const BLOCKED_BOUND_FRACTION = 0.1;
 
-/** Half-width in pM that is added where an end point rests on an empirical record and is taken at equivalence. */
-export const EMPIRICAL_EXTRA_BAND_PM = 0.2;
+/**
+ * Half-width in pM that is added where an end point rests on an empirical record and is taken at equivalence: dyes that can be
+ * calculated mostly turn within 0.7 pM of it (a few within 1.5), so an unknown one is given a band of about that width.
+ */
+export const EMPIRICAL_EXTRA_BAND_PM = 0.4;
 
 /**
  * The log10 of bound over free dye at which the observer stops.

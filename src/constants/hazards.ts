@@ -45,11 +45,17 @@ export function cautionsFor(
   });
 }
 
+/** Hazards that belong to the counter ion of one form, not to the reagent. */
+const COUNTER_ION_HAZARDS: ReadonlySet<HazardTag> = new Set(["oxidiser", "heat-sensitive"]);
+
 /** Hazard tags of a reagent id: of its own record and of its further forms ("fluoride" and "fluoride:sodium"). */
 export function hazardTagsOf(id: string, knowledge: Pick<Knowledge, "reagents">): ReadonlySet<HazardTag> {
   const tags = new Set<HazardTag>();
+  // Another salt of the same reagent (ammonium nitrate for ammonium chloride) brings its counter ion's hazards only when it is used.
   for (const [key, reagent] of knowledge.reagents)
-    if (key === id || key.startsWith(`${id}:`)) for (const tag of reagent.hazardTags) tags.add(tag);
+    if (key === id) for (const tag of reagent.hazardTags) tags.add(tag);
+    else if (key.startsWith(`${id}:`))
+      for (const tag of reagent.hazardTags) if (!COUNTER_ION_HAZARDS.has(tag)) tags.add(tag);
   return tags;
 }
 

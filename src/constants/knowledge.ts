@@ -149,6 +149,8 @@ export interface IndicatorRecord {
   readonly usualMolPerL: number; // in the titrated solution
   readonly observerBandPM: number; // +/- in pM
   readonly observerBandProvenance: Provenance;
+  /** How far past half change, in pM, the observer of this dye stops, where a record of its own says so; else the general rule holds. */
+  readonly practisedShiftPM?: { readonly value: number; readonly provenance: Provenance };
   readonly colours: readonly {
     readonly pH: readonly [number, number];
     readonly free: string;

@@ -54,6 +54,7 @@ export const indicatorSchema = z.strictObject({
   usualMolPerL: molPerL,
   observerBandPM: positive.max(2),
   observerBandProvenance: provenanceSchema,
+  practisedShiftPM: z.strictObject({ value: z.number().positive(), provenance: provenanceSchema }).exactOptional(),
   colours: z
     .array(
       z.strictObject({

@@ -75,6 +75,16 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
         ((solid.components["H+"] ?? 0) < 0 ? (solid.components[metal] ?? 0) * (start.result.solidsMolPerL[i] ?? 0) : 0),
       0,
     );
-    return unmasked + (plan.pH < ALKALI_MASKS_FROM_PH ? hydrolysed + deposited : 0) > level;
+    const lying = hydrolysed + deposited;
+    const borne =
+      plan.pH < ALKALI_MASKS_FROM_PH
+        ? 0
+        : Math.max(
+            0,
+            ...knowledge.masking
+              .filter((r) => r.agent === "hydroxide" && r.ion === metal)
+              .map((r) => r.upToMolPerL ?? Infinity),
+          );
+    return unmasked + (lying > borne ? lying : 0) > level;
   });
 }

@@ -266,7 +266,8 @@ function frozenComplexes(
   plan: StagePlan,
   knowledge: Knowledge,
 ): ReadonlyMap<ComponentId, number> | undefined {
-  if (plan.backTitrant === null || !plan.preparation.includes("cool")) return undefined;
+  if (plan.backTitrant === null || !(plan.preparation.includes("cool") || plan.preparation.includes("wait")))
+    return undefined;
   const model = stageModel(task, plan, knowledge);
   const formed = model.at(0);
   const frozen = new Map<ComponentId, number>();

@@ -136,7 +136,12 @@ export function evaluateStage(
     why: null,
     endPointML: search.volumeL * ML,
     bandML: [bandLow * ML, bandHigh * ML],
-    indicatorMetal: criterion.basis === "empirical" ? (plan.chelate?.metal ?? followed) : indicatorMetal,
+    indicatorMetal:
+      criterion.basis === "empirical"
+        ? (plan.chelate?.metal ?? followed)
+        : model.indicator?.class === "self-coloured"
+          ? followed
+          : indicatorMetal,
     pM: followed ? -Math.log10(Math.max(end.free(followed), Number.MIN_VALUE)) : null,
     pMEquivalence: followed ? -Math.log10(Math.max(equivalence.free(followed), Number.MIN_VALUE)) : null,
     sharpnessFraction: Math.abs(bandHigh - bandLow) / 2 / determinedL,
@@ -165,7 +170,10 @@ function criterionOf(model: StageModel, determined: ReadonlySet<ComponentId>, ba
   const watched = back ? [plan.backTitrant!.id] : [...determined, ...(plan.chelate ? [plan.chelate.metal] : [])];
   const known = watched.filter(shows);
   if (indicator && known.length > 0) {
-    const target = practisedLog10Ratio(indicator.endPointModel, back ? "back" : "direct", plan.indicator!.molPerL);
+    const own = indicator.practisedShiftPM;
+    const target = own
+      ? -own.value
+      : practisedLog10Ratio(indicator.endPointModel, back ? "back" : "direct", plan.indicator!.molPerL);
     // A self-coloured reagent shows the colour of its iron complex; what aluminium does with it has no colour.
     const ratio = (s: VesselState): number =>
       indicator.class === "self-coloured" ? known.reduce((sum, m) => sum + s.dyeRatioOf(m), 0) : s.dyeRatio;
@@ -233,9 +241,12 @@ function holderOf(model: StageModel, state: VesselState): ComponentId | null {
 /** K' = [MY] / ([M not bound to Y] [Y not bound to metal]) as it stands in the vessel, log10, per metal bound at all. */
 function conditionalConstants(model: StageModel, state: VesselState): Map<ComponentId, number> {
   const out = new Map<ComponentId, number>();
+  const frozen = new Set(model.held.filter((h) => h.why === "kinetically-inert").map((h) => h.component));
   for (const metal of model.metals) {
+    if (frozen.has(metal)) continue; // its complex is out of the equilibrium: what is left says nothing of its strength
     const bound = state.boundToTitrant(metal);
-    const value = Math.log10(bound) - Math.log10(state.unbound(metal)) - Math.log10(state.titrantUnbound);
+    const value =
+      Math.log10(bound) - Math.log10(state.unbound(metal) - state.onDye(metal)) - Math.log10(state.titrantUnbound);
     if (Number.isFinite(value)) out.set(metal, value);
   }
   return out;
@@ -285,7 +296,11 @@ function accountOf(
   let endPoint = end.titrantUnbound * vessel;
   if (carriedFor.length === 0) endPoint -= carriedMol;
   let analyteMissing = 0;
-  const inSample = new Map(vesselSample(task, plan).map((c) => [c.component, c.inVesselMolPerL * model.volumeL]));
+  const inSample = new Map(
+    vesselSample(task, plan)
+      .filter((c) => !plan.removed.includes(c.component))
+      .map((c) => [c.component, c.inVesselMolPerL * model.volumeL]),
+  );
   for (const { from, to } of model.solution.converted)
     if (to !== null) inSample.set(to, (inSample.get(to) ?? 0) + (inSample.get(from) ?? 0));
   const carriedBound = carriedFor.reduce((s, m) => s + boundMol(m), 0);

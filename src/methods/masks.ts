@@ -111,6 +111,23 @@ export function pairHasConstants(
   return (via === "precipitation" ? index.solids : index.complexes).has(`${ion} ${agent.component}`);
 }
 
+/**
+ * Whether the claim of a row can be followed up: a reduction or oxidation needs to say what becomes of the ion, and a precipitate
+ * a solid in the model; without them a "masked" ion would simply vanish from the account.
+ */
+function canBeJudged(
+  knowledge: Knowledge,
+  agent: AgentRecord,
+  threat: Threat,
+  row: MaskingRecord,
+  pH: number,
+): boolean {
+  if (threat.holdsAnalyte) return true;
+  if (row.via === "reduction" || row.via === "oxidation")
+    return agent.converts.some((c) => c.from === threat.component && inside(pH, c.pH));
+  return row.via !== "precipitation" || pairHasConstants(knowledge, agent, threat.component, row.via);
+}
+
 /** Agents that practice uses for this component at the pH of the plan and that leave analyte, chelate and back titrant alone. */
 function optionsFor(threat: Threat, plan: StagePlan, knowledge: Knowledge, shelf: Shelf): MaskOption[] {
   const spared = [
@@ -125,12 +142,15 @@ function optionsFor(threat: Threat, plan: StagePlan, knowledge: Knowledge, shelf
     // The lower end of an agent's range is safety (cyanide, sulfide); the upper end is only the round figure of its records.
     if (plan.pH < agent.pH[0] || plan.pH > agent.pH[1] + 1) continue;
     const record = rowsFor(knowledge, agent.id, threat.component, plan.pH).find(
-      (r) => r.effect === "masks" || r.effect === "partial",
+      (r) => (r.effect === "masks" || r.effect === "partial") && canBeJudged(knowledge, agent, threat, r, plan.pH),
     );
     if (!record) continue;
     const harms = spared.some((ion) =>
       rowsFor(knowledge, agent.id, ion, plan.pH).some(
-        (r) => r.effect === "masks" || (r.effect === "partial" && !pairHasConstants(knowledge, agent, ion, r.via)),
+        (r) =>
+          r.effect === "masks" ||
+          // What precipitates the analyte harms it whatever the constants say of the rest; a weak complex they can judge.
+          (r.effect === "partial" && (r.via === "precipitation" || !pairHasConstants(knowledge, agent, ion, r.via))),
       ),
     );
     if (harms) continue;

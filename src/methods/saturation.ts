@@ -19,7 +19,10 @@ export function supersaturations(
   knowledge: Knowledge,
   ionicStrengthMolPerL: number,
 ): Supersaturation[] {
-  const { totals } = stageSolution(task, plan, knowledge);
+  const totals = new Map(stageSolution(task, plan, knowledge).totals);
+  // Titrant that goes in before the pH is raised keeps dissolved what it binds.
+  if (plan.excessTitrantMolPerL > 0)
+    totals.set(plan.titrant.id, (totals.get(plan.titrant.id) ?? 0) + plan.excessTitrantMolPerL);
   const components = [...totals.keys()].filter((c) => {
     const kind = knowledge.components.get(c)?.kind;
     return kind === "metal" || kind === "ligand" || kind === "dye";

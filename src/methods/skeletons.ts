@@ -26,7 +26,7 @@ const overlap = (a: Window, b: Window): Window | null => {
 /** The pH a bench would set inside a window: a half unit near the middle if there is one, else a tenth. */
 export function benchPH(window: Window): number {
   const middle = (window[0] + window[1]) / 2;
-  const half = Math.round(middle * 2) / 2;
+  const half = Math.round(middle * 2 - 0.01) / 2; // a tie goes to the lower: pH 10, not 10.5
   const inner = (window[1] - window[0]) / 4;
   if (half >= window[0] + inner / 2 && half <= window[1] - inner / 2) return half;
   return Math.round(middle * 10) / 10;
@@ -268,7 +268,8 @@ export function backSkeletons(make: Make): Skeleton[] {
   const { task, knowledge, shelf, determines, field } = make;
   const out: Skeleton[] = [];
   for (const indicator of knowledge.indicators.values()) {
-    if (!shelf(indicator.id) || (field.dyes && !field.dyes.has(indicator.id))) continue;
+    // Cu-PAN lends PAN its copper; a back titration with copper brings it.
+    if (indicator.id === "Cu-PAN" || !shelf(indicator.id) || (field.dyes && !field.dyes.has(indicator.id))) continue;
     const published = usesFor(indicator, determines, ["back"]);
     let byAnalogy = 0;
     for (const backTitrant of knowledge.metalTitrants.values()) {

@@ -32,6 +32,8 @@ export interface StageModel {
   /** Solves the vessel after `volumeL` from the burette. */
   readonly at: (volumeL: number) => VesselState;
   readonly metals: readonly ComponentId[];
+  /** Metals that do not react with the titrant in the time of the titration. */
+  readonly inert: ReadonlySet<ComponentId>;
 }
 
 /** The vessel at one burette volume, amounts in mol per litre of the vessel as it then is. */
@@ -43,6 +45,7 @@ export interface VesselState {
   readonly result: VesselSolution;
   readonly boundToTitrant: (metal: ComponentId) => number;
   readonly unbound: (metal: ComponentId) => number; // summed over species without titrant, so exact also when tiny
+  readonly onDye: (metal: ComponentId) => number; // held by the indicator
   readonly titrantUnbound: number; // not bound to any metal of the sample, the burette or the chelate
   readonly titrantTotal: number;
   readonly free: (component: ComponentId) => number;
@@ -57,6 +60,7 @@ interface Rows {
   readonly titrantFree: readonly (readonly [row: number, titrants: number])[];
   readonly titrantByMetal: ReadonlyMap<ComponentId, readonly (readonly [row: number, titrants: number])[]>;
   readonly dyeByMetal: ReadonlyMap<ComponentId, readonly (readonly [row: number, dyes: number])[]>;
+  readonly metalOnDye: ReadonlyMap<ComponentId, readonly (readonly [row: number, metals: number])[]>;
   readonly dyeFree: readonly (readonly [row: number, dyes: number])[];
 }
 
@@ -71,6 +75,7 @@ function classifyRows(
 ): Rows {
   const titrantByMetal = new Map<ComponentId, [number, number][]>();
   const dyeByMetal = new Map<ComponentId, [number, number][]>();
+  const metalOnDye = new Map<ComponentId, [number, number][]>();
   const dyeFree: [number, number][] = [];
   const titrantFree: [number, number][] = [];
   const unboundByMetal = new Map<ComponentId, [number, number][]>();
@@ -89,10 +94,13 @@ function classifyRows(
     const dyes = dye === null ? 0 : (species.components[dye] ?? 0);
     if (dyes > 0) {
       if (inIt.length === 0) dyeFree.push([row, dyes]);
-      for (const metal of inIt) push(dyeByMetal, metal, [row, dyes]);
+      for (const metal of inIt) {
+        push(dyeByMetal, metal, [row, dyes]);
+        push(metalOnDye, metal, [row, species.components[metal]!]);
+      }
     }
   });
-  return { titrantByMetal, titrantFree, unboundByMetal, dyeByMetal, dyeFree };
+  return { titrantByMetal, titrantFree, unboundByMetal, dyeByMetal, metalOnDye, dyeFree };
 }
 
 /**
@@ -252,6 +260,7 @@ export function stageModel(
       result,
       boundToTitrant,
       unbound,
+      onDye: (metal) => sum(rows.metalOnDye.get(metal)),
       get titrantUnbound(): number {
         return sum(rows.titrantFree);
       },
@@ -279,6 +288,7 @@ export function stageModel(
     burette,
     at,
     metals: [...metals],
+    inert,
   };
 }
 

@@ -1,6 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import { vesselSample } from "./solution.ts";
+import type { StageModel, VesselState } from "./stage-model.ts";
 import type { Task } from "./types.ts";
 import { stageBudget } from "./uncertainty.ts";
 
@@ -30,12 +31,12 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
     evaluation.status !== "failed" &&
     100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
   const allowed = ((meets ? BORNE_PART_OF_REQUIREMENT : IGNORED_PART_OF_REQUIREMENT) * task.requirementPercent) / 100;
-  const equivalence = evaluation.status === "failed" ? model.at(Math.max(evaluation.equivalenceML, 1e-6) / 1000) : null;
+  const equivalence = evaluation.status === "failed" ? atCommonEquivalence(model, evaluation.presentMol) : null;
   const threats: Threat[] = [];
   const determined = new Set(plan.determines);
   const present = evaluation.presentMol / model.volumeL;
   for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
-    if (determined.has(component) || inVesselMolPerL <= 0) continue;
+    if (determined.has(component) || inVesselMolPerL <= 0 || plan.removed.includes(component)) continue;
     if (!model.metals.includes(component)) {
       const held = knowledge.components.get(component)?.kind === "ligand" && holds(evaluation, component, knowledge);
       if (held)
@@ -49,9 +50,16 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
         });
       continue;
     }
-    const share = equivalence
-      ? equivalence.boundToTitrant(component) / Math.max(equivalence.total(component), Number.MIN_VALUE)
-      : (evaluation.titrated.get(component) ?? 0);
+    const known = model.system.species.some(
+      (s) => (s.components[component] ?? 0) > 0 && (s.components[plan.titrant.id] ?? 0) > 0,
+    );
+    // A metal that EDTA binds and for which this titrant has no constant is not thereby harmless: count it whole.
+    const share =
+      !known && !model.inert.has(component) && bindsEdta(knowledge, component)
+        ? 1
+        : equivalence
+          ? shareOf(equivalence, component)
+          : Math.min(1, Math.max(0, evaluation.titrated.get(component) ?? 0));
     const biasFraction = (share * inVesselMolPerL) / present;
     const titrates = biasFraction > allowed;
     const blocks =
@@ -61,6 +69,40 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
       threats.push({ component, titrates, blocks, holdsAnalyte: false, biasFraction, molPerL: inVesselMolPerL });
   }
   return threats;
+}
+
+/** Metals with which EDTA has a constant: what another titrant lacks a constant for among them is a gap, not an absence. */
+const edtaMetals = new WeakMap<Knowledge, ReadonlySet<ComponentId>>();
+
+function bindsEdta(knowledge: Knowledge, metal: ComponentId): boolean {
+  let metals = edtaMetals.get(knowledge);
+  if (!metals) {
+    metals = new Set(
+      knowledge.species.filter((s) => (s.components["EDTA"] ?? 0) > 0).flatMap((s) => Object.keys(s.components)),
+    );
+    edtaMetals.set(knowledge, metals);
+  }
+  return knowledge.components.get(metal)?.charge !== 1 && metals.has(metal);
+}
+
+const shareOf = (state: VesselState, metal: ComponentId): number =>
+  Math.min(1, Math.max(0, state.boundToTitrant(metal) / Math.max(state.total(metal), Number.MIN_VALUE)));
+
+/**
+ * The vessel when the titrant is enough for the analyte and for whatever binds beside it: the amount is raised until it covers
+ * the shares it finds. Tells what each metal would take where no end point was found.
+ */
+export function atCommonEquivalence(model: StageModel, presentMol: number): VesselState {
+  const { plan } = model;
+  if (plan.backTitrant !== null) return model.at(0);
+  let state = model.at(presentMol / model.burette.molPerL);
+  for (let round = 0; round < 6; round++) {
+    const others = model.metals
+      .filter((m) => !plan.determines.includes(m) && m !== plan.chelate?.metal)
+      .reduce((sum, m) => sum + shareOf(state, m) * (model.solution.fromSample.get(m) ?? 0) * model.volumeL, 0);
+    state = model.at((presentMol + others) / model.burette.molPerL);
+  }
+  return state;
 }
 
 /** Whether the equilibrium alone lets this metal keep a tenth of the dye 5 % past equivalence. */

@@ -40,7 +40,7 @@ function limitOf(
   const good = at(present);
   let low = good ? present : LOWEST_MOL_PER_L;
   let high = good ? HIGHEST_MOL_PER_L : present;
-  if (good && at(high)) return high;
+  if (good && at(high)) return null; // no limit up to here
   if (!good && !at(low)) return null;
   // First by decades, then by halving the logarithm: the criterion may jump where a dye blocks.
   while (high / low > 10) {
@@ -64,7 +64,8 @@ export function toleranceLimits(task: Task, method: EvaluatedMethod, knowledge: 
   const plans = method.stages.map((s) => s.plan);
   const bare = plans.map((p) => ({ ...p, masking: [] }));
   return task.matrix.flatMap(({ component, molPerL }) => {
-    if (knowledge.components.get(component)?.kind === "inert") return [];
+    if (knowledge.components.get(component)?.kind === "inert" || plans.some((p) => p.removed.includes(component)))
+      return [];
     const rows: ToleranceLimit[] = [];
     const masked = plans.some((p) => p.masking.some((m) => m.masks.includes(component)));
     const limit = limitOf(task, plans, component, molPerL, knowledge);

@@ -12,7 +12,11 @@ import { summaryOf } from "./summary.ts";
 
 type Preparation = StageDocument["preparation"][number];
 
-const signif = (value: number, digits = 6): number => (Number.isFinite(value) ? Number(value.toPrecision(digits)) : 0);
+/** Below this a percentage or an amount is zero for every purpose of a bench; printing 1e-13 would pretend otherwise. */
+const NOTHING = 1e-12;
+const signif = (value: number, digits = 6): number =>
+  Number.isFinite(value) && Math.abs(value) > NOTHING ? Number(value.toPrecision(digits)) : 0;
+const percentOf = (fraction: number): number => Number((100 * fraction).toFixed(4));
 
 /** A rule's word as the contract writes it. */
 export function becauseOf({ finding, stage }: Verdict): Because {
@@ -153,7 +157,7 @@ export function methodDocument(
   const ledger = method.stages.flatMap((s, i) =>
     s.evaluation.ledger.map((line) => ({
       source: method.stages.length > 1 ? `${ion(line.source)} (titration ${i + 1})` : ion(line.source),
-      percent: signif(100 * line.fraction, 4),
+      percent: percentOf(line.fraction),
     })),
   );
   const meets = judged.meets;
@@ -166,13 +170,13 @@ export function methodDocument(
     backTitrant: method.stages.find((s) => s.plan.backTitrant)?.plan.backTitrant ?? null,
     stages: method.stages.map((stage, i) => stageDocument(task, stage, judged.ranges[i] ?? null, judged, knowledge)),
     predicted: {
-      biasPercent: signif(100 * worst.biasFraction, 4),
+      biasPercent: percentOf(worst.biasFraction),
       relativeExpandedUncertaintyPercent: signif(100 * worst.budget.expanded, 4),
       biasBySource: ledger.sort((a, b) => Math.abs(b.percent) - Math.abs(a.percent)),
       titreML: signif(head.evaluation.endPointML, 5),
       perAnalyte: method.results.map((r) => ({
         determines: r.determines.map(ion),
-        biasPercent: signif(100 * r.biasFraction, 4),
+        biasPercent: percentOf(r.biasFraction),
         relativeExpandedUncertaintyPercent: signif(100 * r.budget.expanded, 4),
       })),
     },

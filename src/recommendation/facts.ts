@@ -6,6 +6,7 @@ import type { DevelopedStage } from "../methods/develop.ts";
 import type { EvaluatedMethod } from "../methods/methods.ts";
 import { supersaturations, type Supersaturation } from "../methods/saturation.ts";
 import type { Task } from "../methods/types.ts";
+import { stageBudget } from "../methods/uncertainty.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import { hazardTagsOf, reagentsOf } from "./reagents.ts";
 
@@ -146,6 +147,8 @@ export function stageFacts(
   const solidWith = (pick: (ids: readonly ComponentId[]) => boolean): boolean =>
     context.solids.some((s) => s.pace !== "no" && pick(s.components));
   const shownOthers = alsoShown(task, stage);
+  const holds = 100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
+  const window = holds ? range : null;
   const precipitates = stage.analytePrecipitates;
   const magnesium = vesselSample(task, plan).find((c) => c.component === "Mg2+")?.inVesselMolPerL ?? 0;
   const analyteMolPerL = evaluation.presentMol / model.volumeL;
@@ -159,9 +162,10 @@ export function stageFacts(
     titrant: plan.titrant.id,
     backTitrant: plan.backTitrant?.id ?? "none",
     pH: plan.pH,
-    pHLow: range?.low,
-    pHHigh: range?.high,
-    pHWindowWidth: range ? range.high - range.low : null,
+    // A method that misses the requirement has no window, which is not the same as a narrow one.
+    pHLow: window?.low,
+    pHHigh: window?.high,
+    pHWindowWidth: window ? window.high - window.low : null,
     buffer: plan.buffer.id,
     bufferMolPerL: plan.buffer.molPerL,
     detection: plan.detection,

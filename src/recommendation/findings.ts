@@ -5,6 +5,7 @@ import type { EvaluatedMethod } from "../methods/methods.ts";
 import { metalKinetics } from "../methods/kinetics.ts";
 import { supersaturations } from "../methods/saturation.ts";
 import { vesselSample } from "../methods/solution.ts";
+import { atCommonEquivalence } from "../methods/threats.ts";
 import type { Task } from "../methods/types.ts";
 import type { Finding } from "./contract.ts";
 import { OXIDANTS } from "./facts.ts";
@@ -57,14 +58,21 @@ function titration(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowl
   const allowed = (REPORTED_PART_OF_REQUIREMENT * task.requirementPercent) / 100;
   const dye = plan.indicator ? (knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id) : null;
   const present = bare.presentMol / bare.model.volumeL;
-  const atEquivalence = bare.status === "failed" ? bare.model.at(bare.equivalenceML / 1000) : null;
+  const atEquivalence =
+    bare.status === "failed" || bare.blockedBy.length > 0 ? atCommonEquivalence(bare.model, bare.presentMol) : null;
   const where = `at pH ${plan.pH} with ${plan.titrant.id}${dye ? ` and ${dye}` : ""}`;
   for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
     const isAnalyte = plan.determines.includes(component);
     if (bare.model.metals.includes(component) && !isAnalyte) {
-      const share = atEquivalence
-        ? atEquivalence.boundToTitrant(component) / Math.max(atEquivalence.total(component), Number.MIN_VALUE)
-        : (bare.titrated.get(component) ?? 0);
+      const share = Math.min(
+        1,
+        Math.max(
+          0,
+          atEquivalence
+            ? atEquivalence.boundToTitrant(component) / Math.max(atEquivalence.total(component), Number.MIN_VALUE)
+            : (bare.titrated.get(component) ?? 0),
+        ),
+      );
       const bias = (share * inVesselMolPerL) / present;
       if (Math.abs(bias) > allowed)
         put(

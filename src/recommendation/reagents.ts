@@ -45,8 +45,13 @@ export function cautionTexts(
   return [
     ...new Set(
       plans.flatMap((plan) =>
-        cautionsFor(hazardousIds(plan, sampleIds), { pH: plan.pH, hot: isHot(plan) }, knowledge).map((c) => c.text),
+        cautionsFor(hazardousIds(plan, sampleIds), { pH: plan.pH, hot: isHot(plan) }, knowledge).map((c) =>
+          c.reagents.length > 0 ? `${c.reagents.map((id) => nameOf(id, knowledge)).join(", ")}: ${c.text}` : c.text,
+        ),
       ),
     ),
   ];
 }
+
+const nameOf = (id: string, knowledge: Knowledge): string =>
+  knowledge.agents.get(id)?.name ?? knowledge.buffers.get(id)?.name ?? knowledge.indicators.get(id)?.name ?? id;

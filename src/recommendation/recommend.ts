@@ -191,7 +191,9 @@ function decidedBy(first: JudgedMethod | undefined, second: JudgedMethod | undef
     first.meets !== second.meets
       ? "The first meets the requirement, the second does not."
       : first.points !== second.points
-        ? `The rules give the first ${first.points} points and the second ${second.points}.`
+        ? `By the rules the first stands at ${signed(first.points)}, the second at ${signed(second.points)}.`
         : `Equal in the rules; the first has the smaller expanded uncertainty (${first.expandedPercent.toPrecision(2)} % against ${second.expandedPercent.toPrecision(2)} %).`;
   return { statement, differences };
 }
+
+const signed = (points: number): string => (points > 0 ? `+${points}` : `${points}`);

@@ -44,7 +44,7 @@ function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): st
   const buffer = nameOf(plan.buffer.id);
   const core = plan.backTitrant
     ? `add ${plan.titrant.id} in excess to ${what}${heat}, and titrate the excess back with ${plan.backTitrant.molPerL} mol/L ${plan.backTitrant.id} at pH ${plan.pH} (${buffer}) to ${dye}`
-    : `titrate ${what} with ${plan.titrant.molPerL} mol/L ${plan.titrant.id} at pH ${plan.pH} (${buffer})${plan.preparation.includes("boil") ? " at the boil" : plan.preparation.includes("heat") ? " hot" : ""} to ${dye}${plan.chelate ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : ""}`;
+    : `titrate ${what} with ${plan.titrant.molPerL} mol/L ${plan.titrant.id} at pH ${plan.pH} (${buffer})${plan.preparation.includes("boil") ? " at the boil" : plan.preparation.includes("heat") ? " hot" : ""} to ${dye}${plan.chelate && plan.indicator?.id !== "Cu-PAN" ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : ""}`;
   const sentence = `${separated}${core}${masks}${helped}`;
   return sentence.charAt(0).toUpperCase() + sentence.slice(1);
 }

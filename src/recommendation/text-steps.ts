@@ -25,10 +25,13 @@ function stageSteps(stage: StageDocument, index: number, method: RecommendedMeth
   const titrant = stage.titrant ?? method.titrant;
   const backTitrant = backTitrantOf(stage, method);
   const agents = [
-    ...stage.masking.map((step) => ({
-      id: step.agent,
-      words: `${amount(step.agent, step.molPerL)}, which masks ${listed(step.masks)}`,
-    })),
+    // What the alkali throws down needs no bottle: the pH step says it.
+    ...stage.masking
+      .filter((step) => step.agent !== "hydroxide")
+      .map((step) => ({
+        id: step.agent,
+        words: `${amount(step.agent, step.molPerL)}, which masks ${listed(step.masks)}`,
+      })),
     ...stage.auxiliary.map((added) => ({
       id: added.id,
       words: `${amount(added.id, added.molPerL)} (${added.purpose})`,

@@ -21,7 +21,12 @@ const PACKAGES = {
 };
 const folderOf = (path) => /^src\/([^/]+)\//.exec(path)?.[1];
 
-const result = await cruise(["src"], { doNotFollow: { path: "node_modules" }, tsPreCompilationDeps: true }, undefined, {});
+const result = await cruise(
+  ["src"],
+  { doNotFollow: { path: "node_modules" }, tsPreCompilationDeps: true },
+  undefined,
+  {},
+);
 const modules = result.output.modules.filter((m) => m.source.startsWith("src/"));
 const faults = [];
 for (const module of modules) {
@@ -29,10 +34,13 @@ for (const module of modules) {
   for (const dependency of module.dependencies) {
     if (dependency.circular) faults.push(`${module.source}: cycle through ${dependency.resolved}`);
     const to = folderOf(dependency.resolved);
-    if (from && to && to !== from && !(MAY_IMPORT[from] ?? []).includes(to)) faults.push(`${module.source}: ${from} may not import ${to}`);
+    if (from && to && to !== from && !(MAY_IMPORT[from] ?? []).includes(to))
+      faults.push(`${module.source}: ${from} may not import ${to}`);
     for (const [name, allowed] of Object.entries(PACKAGES))
-      if (dependency.module === name && from && !allowed.includes(from)) faults.push(`${module.source}: only ${allowed.join(", ")} may import ${name}`);
-    if (/^(node:)?fs/.test(dependency.module) && ["numerics", "chemistry", "methods"].includes(from)) faults.push(`${module.source}: reads files in a pure layer`);
+      if (dependency.module === name && from && !allowed.includes(from))
+        faults.push(`${module.source}: only ${allowed.join(", ")} may import ${name}`);
+    if (/^(node:)?fs/.test(dependency.module) && ["numerics", "chemistry", "methods"].includes(from))
+      faults.push(`${module.source}: reads files in a pure layer`);
   }
 }
 if (modules.length < 20) faults.push(`only ${modules.length} files were inspected`);
