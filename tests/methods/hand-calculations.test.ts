@@ -100,8 +100,10 @@ describe("calcium at pH 12.5 with calcon, by hand", () => {
 describe("magnesium at pH 10 with mordant black 11, by hand", () => {
   const evaluation = evaluateStage(inventedTask({ "Mg2+": 0.008 }), magnesiumPlan(), KNOWLEDGE);
   const { alpha, bound } = constants(evaluation, ["Mg2+", "EDTA", "mordant-black-11", "ammonia"]);
-  const free = (DIRECT_RATIO * alpha("mordant-black-11")) / bound("Mg2+", "mordant-black-11");
-  const dyeBoundMol = 0.08 * evaluation.model.plan.indicator!.molPerL * PORTION_L;
+  // This dye has a record of its own of how far past half change the observer goes on: bound over free 10^-0.4.
+  const ratio = 10 ** -KNOWLEDGE.indicators.get("mordant-black-11")!.practisedShiftPM!.value;
+  const free = (ratio * alpha("mordant-black-11")) / bound("Mg2+", "mordant-black-11");
+  const dyeBoundMol = (ratio / (1 + ratio)) * evaluation.model.plan.indicator!.molPerL * PORTION_L;
   // Free ammonia: the buffer's, thinned by the titre, less its acid; magnesium takes nothing worth counting of it.
   const ammonia = (volumeL: number) => (0.1 * PORTION_L) / (PORTION_L + volumeL) / alpha("ammonia");
 
@@ -112,7 +114,7 @@ describe("magnesium at pH 10 with mordant black 11, by hand", () => {
     expectRelative(evaluation.pM!, -Math.log10(free), 1e-4);
     expectRelative(evaluation.endPointML / 1000, volumeL, 2e-5);
     expectRelative(evaluation.biasFraction, biasOf(volumeL), 0.01);
-    expect(evaluation.biasFraction).toBeGreaterThan(0.005); // the dye holds magnesium past equivalence
+    expect(evaluation.biasFraction).toBeGreaterThan(0); // the dye holds magnesium past equivalence
   });
 });
 
