@@ -159,7 +159,8 @@ function follow(
     50 -
     Math.min(50, dyeBreadth(s.plan.indicator?.id, knowledge));
   const options = [...directSkeletons(make), ...backSkeletons(make)]
-    .filter((s) => s.plan.titrant.id === last.plan.titrant.id && s.plan.pH >= last.plan.pH - 0.05)
+    .filter((s) => s.plan.titrant.id === last.plan.titrant.id && s.plan.pH >= last.plan.pH)
+    .filter((s) => kept.every((m) => s.plan.pH >= (knowledge.agents.get(m.agent)?.pH[0] ?? 0)))
     .sort((a, b) => preference(a) - preference(b))
     .slice(0, NEXT_TRIED)
     .map((skeleton) => ({

@@ -42,9 +42,9 @@ export function stageKey(stage: DevelopedStage): string {
     plan.indicator?.id ?? plan.detection,
     plan.pH,
     plan.buffer.id,
-    [...plan.masking.map((m) => m.agent), ...plan.auxiliary.map((a) => a.id)].sort().join("+"),
+    [...new Set([...plan.masking.map((m) => m.agent), ...plan.auxiliary.map((a) => a.id)])].sort().join("+"),
     plan.preparation.join("+"),
-    plan.removed.join("+"),
+    [...plan.removed].sort().join("+"),
   ].join("|");
 }
 

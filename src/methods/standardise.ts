@@ -14,7 +14,8 @@ export function standardisedAlike(task: Task, evaluation: StageEvaluation, knowl
   if (plan.backTitrant === null && !plan.determines.every((ion) => knowledge.standards.some((s) => s.forIon === ion)))
     return evaluation;
   const alone = evaluateStage(standardTask(task, plan), standardPlan(task, plan), knowledge);
-  if (alone.status === "failed" || 1 + alone.biasFraction <= 0.5) return evaluation;
+  // An end point that is wrong by more than this is not one to standardise with: the method itself is wrong.
+  if (alone.status === "failed" || Math.abs(alone.biasFraction) > CANCELS_UP_TO) return evaluation;
   const biasFraction = (1 + evaluation.biasFraction) / (1 + alone.biasFraction) - 1;
   return {
     ...evaluation,
@@ -22,6 +23,9 @@ export function standardisedAlike(task: Task, evaluation: StageEvaluation, knowl
     ledger: [...evaluation.ledger, { source: "standardised alike", fraction: biasFraction - evaluation.biasFraction }],
   };
 }
+
+/** Largest bias of the standard titration, relative, that an analyst would let cancel. */
+const CANCELS_UP_TO = 0.02;
 
 /** The metal alone, at the same level. */
 function standardTask(task: Task, plan: StagePlan): Task {

@@ -1,8 +1,8 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { evaluate } from "./develop.ts";
 import type { EvaluatedMethod } from "./methods.ts";
-import type { StagePlan, Task } from "./types.ts";
-import { stageBudget } from "./uncertainty.ts";
+import type { MethodMode, StagePlan, Task } from "./types.ts";
+import { combineDifference, stageBudget } from "./uncertainty.ts";
 
 /** The level of one component at which the requirement breaks, mol/L in the sample. */
 export interface ToleranceLimit {
@@ -21,26 +21,49 @@ function withLevel(task: Task, component: ComponentId, molPerL: number): Task {
   return { ...task, matrix: task.matrix.map((c) => (c.component === component ? { ...c, molPerL } : c)) };
 }
 
-function holds(task: Task, plans: readonly StagePlan[], knowledge: Knowledge): boolean {
-  return plans.every((plan) => {
-    const evaluation = evaluate(task, plan, knowledge);
-    if (evaluation.status === "failed" || evaluation.blockedBy.length > 0) return false;
-    return 100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
-  });
+/** Whether every result of the method still meets the requirement; a difference is judged as the difference it is. */
+function holds(task: Task, mode: MethodMode, plans: readonly StagePlan[], knowledge: Knowledge): boolean {
+  const evaluations = plans.map((plan) => evaluate(task, plan, knowledge));
+  if (evaluations.some((e) => e.status === "failed" || e.blockedBy.length > 0)) return false;
+  const [whole, part] = evaluations;
+  const expanded =
+    mode === "difference" && whole && part
+      ? [stageBudget(task, part, knowledge).expanded, combineDifference(task, whole, part, knowledge).budget.expanded]
+      : evaluations.map((e) => stageBudget(task, e, knowledge).expanded);
+  return expanded.every((u) => 100 * u <= task.requirementPercent);
+}
+
+/** Up to where an empirical mask is reported to hold, and not used up, mol/L in the sample; Infinity where the equilibrium decides. */
+function empiricalCeiling(
+  task: Task,
+  plans: readonly StagePlan[],
+  component: ComponentId,
+  knowledge: Knowledge,
+): number {
+  const dilution = task.portion.volumeML / task.portion.titrationVolumeML;
+  const steps = plans.flatMap((p) => p.masking.filter((m) => m.basis === "empirical" && m.masks.includes(component)));
+  const limits = steps.flatMap((step) => [
+    step.molPerL / 2, // two ligands a metal ion at the least
+    ...knowledge.masking
+      .filter((r) => r.agent === step.agent && r.ion === component && r.upToMolPerL !== null)
+      .map((r) => r.upToMolPerL!),
+  ]);
+  return Math.min(Number.POSITIVE_INFINITY, ...limits) / dilution;
 }
 
 function limitOf(
   task: Task,
+  mode: MethodMode,
   plans: readonly StagePlan[],
   component: ComponentId,
   present: number,
   knowledge: Knowledge,
 ): number | null {
-  const at = (molPerL: number): boolean => holds(withLevel(task, component, molPerL), plans, knowledge);
+  const at = (molPerL: number): boolean => holds(withLevel(task, component, molPerL), mode, plans, knowledge);
   const good = at(present);
   let low = good ? present : LOWEST_MOL_PER_L;
   let high = good ? HIGHEST_MOL_PER_L : present;
-  if (good && at(high)) return null; // no limit up to here
+  if (good && at(high)) return Number.POSITIVE_INFINITY; // no limit up to here
   if (!good && !at(low)) return null;
   // First by decades, then by halving the logarithm: the criterion may jump where a dye blocks.
   while (high / low > 10) {
@@ -68,11 +91,14 @@ export function toleranceLimits(task: Task, method: EvaluatedMethod, knowledge: 
       return [];
     const rows: ToleranceLimit[] = [];
     const masked = plans.some((p) => p.masking.some((m) => m.masks.includes(component)));
-    const limit = limitOf(task, plans, component, molPerL, knowledge);
-    if (limit !== null) rows.push({ component, limitMolPerL: limit, presentMolPerL: molPerL, withMasking: true });
+    const limit = limitOf(task, method.mode, plans, component, molPerL, knowledge);
+    const ceiling = empiricalCeiling(task, plans, component, knowledge);
+    const least = limit === null ? null : Math.min(limit, ceiling);
+    if (least !== null && Number.isFinite(least))
+      rows.push({ component, limitMolPerL: least, presentMolPerL: molPerL, withMasking: true });
     if (masked) {
-      const without = limitOf(task, bare, component, molPerL, knowledge);
-      if (without !== null)
+      const without = limitOf(task, method.mode, bare, component, molPerL, knowledge);
+      if (without !== null && Number.isFinite(without))
         rows.push({ component, limitMolPerL: without, presentMolPerL: molPerL, withMasking: false });
     }
     return rows;

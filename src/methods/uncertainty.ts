@@ -63,6 +63,8 @@ export function stageBudget(task: Task, evaluation: StageEvaluation, knowledge: 
   add("titrant strength", TITRANT_STRENGTH_RELATIVE);
   add("temperature", TEMPERATURE_RELATIVE);
   add("blank", DROP_ML / 2 / RECTANGULAR / resultML);
+  // The observer does not stop at quite the same tint twice: a tenth of what cancels stays as uncertainty.
+  add("standardised alike", 0.1 * Math.abs(evaluation.uncancelledBiasFraction - evaluation.biasFraction));
   if (back) {
     const excess = (plan.excessTitrantMolPerL * evaluation.model.volumeL) / evaluation.presentMol;
     add("excess titrant", excess * 5e-4);
@@ -75,7 +77,7 @@ export function stageBudget(task: Task, evaluation: StageEvaluation, knowledge: 
 
 /**
  * A result by difference of two portions: bias and budget relative to the difference. Independent terms add in quadrature of
- * amounts; the titrant strength and the temperature are common to both and count once.
+ * amounts; the titrant strength, the temperature and the pipette of the portion are common to both and count once.
  */
 export function combineDifference(
   task: Task,
@@ -86,7 +88,7 @@ export function combineDifference(
   const difference = whole.presentMol - part.presentMol;
   const a = stageBudget(task, whole, knowledge);
   const b = stageBudget(task, part, knowledge);
-  const common = new Set(["titrant strength", "temperature"]);
+  const common = new Set(["titrant strength", "temperature", "portion"]);
   const biasFraction = (whole.biasFraction * whole.presentMol - part.biasFraction * part.presentMol) / difference;
   const term = (budget: Budget, source: string, amount: number): number =>
     ((budget.terms.find((t) => t.source === source)?.relative ?? 0) * amount) / difference;

@@ -16,7 +16,7 @@ type Preparation = StageDocument["preparation"][number];
 const NOTHING = 1e-12;
 const signif = (value: number, digits = 6): number =>
   Number.isFinite(value) && Math.abs(value) > NOTHING ? Number(value.toPrecision(digits)) : 0;
-const percentOf = (fraction: number): number => Number((100 * fraction).toFixed(4));
+const percentOf = (fraction: number): number => Number((100 * fraction).toFixed(4)) + 0; // never a minus zero
 
 /** A rule's word as the contract writes it. */
 export function becauseOf({ finding, stage }: Verdict): Because {
@@ -207,9 +207,15 @@ export function methodDocument(
   };
 }
 
+/** Below this a component of the sample is a trace, not a reagent to be warned of. */
+const HAZARDOUS_FROM_MOL_PER_L = 1e-6;
+
 /** Reagent ids under which the hazards of the sample's own components are kept (a cyanide bath, a mercury solution). */
 function sampleReagents(task: Task, knowledge: Knowledge): string[] {
-  return [...task.analytes, ...task.matrix].map((c) => c.component).filter((id) => knowledge.reagents.has(id));
+  return [...task.analytes, ...task.matrix]
+    .filter((c) => c.molPerL > HAZARDOUS_FROM_MOL_PER_L)
+    .map((c) => c.component)
+    .filter((id) => knowledge.reagents.has(id));
 }
 
 /** Part of a component from which a species counts as taking part. */
