@@ -32,6 +32,9 @@ export function becauseOf({ finding, stage }: Verdict): Because {
   };
 }
 
+/** The colour alone, without the species and remarks that the record puts in brackets. */
+const plainColour = (text: string): string => text.replace(/\s*\([^)]*\)/g, "").trim() || text;
+
 /** Colours of a dye at a pH as [before, after] the end point. */
 export function colourChangeOf(stage: DevelopedStage): readonly [string, string] {
   const indicator = stage.evaluation.model.indicator;
@@ -41,7 +44,9 @@ export function colourChangeOf(stage: DevelopedStage): readonly [string, string]
     pH < range[0] ? range[0] - pH : pH > range[1] ? pH - range[1] : 0;
   const nearest = [...indicator.colours].sort((a, b) => distance(a.pH) - distance(b.pH))[0];
   if (!nearest) return ["not stated", "not stated"];
-  return stage.plan.backTitrant ? [nearest.free, nearest.bound] : [nearest.bound, nearest.free];
+  const free = plainColour(nearest.free);
+  const bound = plainColour(nearest.bound);
+  return stage.plan.backTitrant ? [free, bound] : [bound, free];
 }
 
 function stageDocument(

@@ -60,6 +60,7 @@ export async function recommend(task: Task, knowledge: Knowledge, rules: RuleRun
     notes: [
       ...task.notes,
       ...(search.specialOpened ? ["Nothing from the usual shelf served; special reagents were considered too."] : []),
+      ...(methods.length === 0 ? whyNothing(task, search.methods.length, knowledge) : []),
     ],
     constants: first ? constantsUsed(first.method.stages, knowledge) : [],
   };
@@ -197,3 +198,19 @@ function decidedBy(first: JudgedMethod | undefined, second: JudgedMethod | undef
 }
 
 const signed = (points: number): string => (points > 0 ? `+${points}` : `${points}`);
+
+/** Why an answer has no method to show, as far as the search itself can say. */
+function whyNothing(task: Task, tried: number, knowledge: Knowledge): string[] {
+  const anions = task.analytes
+    .filter((a) => knowledge.components.get(a.component)?.kind !== "metal")
+    .map((a) => a.shown);
+  if (anions.length > 0)
+    return [
+      `${anions.join(", ")}: the titrants bind metal ions only; ways round (a precipitate or complex in excess) are not calculated.`,
+    ];
+  if (!task.laboratory.detection.includes("visual"))
+    return ["Only visual end points are calculated; the brief allows none."];
+  return tried === 0
+    ? ["No dye on record serves this ion with what the laboratory has, at a temperature it allows."]
+    : ["Every method that was tried is excluded; the reasons stand with the rejected ones."];
+}
