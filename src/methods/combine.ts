@@ -78,7 +78,7 @@ function portions(
 
 /** Order in which groups may be titrated in one portion: every order of up to three groups. */
 function orders(n: number): number[][] {
-  if (n === 1) return [[0]];
+  if (n <= 1) return n === 1 ? [[0]] : [];
   if (n > 3) return [Array.from({ length: n }, (_, i) => i)];
   return orders(n - 1).flatMap((rest) =>
     Array.from({ length: n }, (_, at) => [...rest.slice(0, at), n - 1, ...rest.slice(at)]),

@@ -15,6 +15,28 @@ export function shelfOf(task: Task, knowledge: Knowledge, withSpecial: boolean):
   };
 }
 
+/** A step of preparation that needs a bottle of its own: the chelate it adds, or alcohol, must be on the shelf like any other. */
+export function stepAllowed(task: Task, step: string): boolean {
+  const { avoid, available } = task.laboratory;
+  const ids = bottlesOf(step);
+  if (ids === null) return true;
+  if (ids.bars.some((id) => avoid.includes(id))) return false;
+  return available === null || ids.serves.some((all) => all.every((id) => available.includes(id)));
+}
+
+/** What bars a step when it is avoided, and which sets of bottles serve it; null for a step that needs none. */
+function bottlesOf(
+  step: string,
+): { readonly bars: readonly string[]; readonly serves: readonly (readonly string[])[] } | null {
+  if (step === "alcohol") return { bars: ["alcohol", "ethanol"], serves: [["alcohol"], ["ethanol"]] };
+  const chelate = /^add-((\w+)-(\w+))$/.exec(step);
+  if (!chelate) return null;
+  const [, id, metal, ligand] = chelate as unknown as [string, string, string, string];
+  const ion = `${metal}2+`;
+  // Cu-PAN is bought as PAN with its copper chelate.
+  return { bars: [id, ion], serves: [[id], [ion, ligand], ...(id === "Cu-EDTA" ? [["Cu-PAN"]] : [])] };
+}
+
 /** Reagents that a laboratory keeps only for one purpose (dimercaprol, uranyl acetate, TTHA, arsenazo, …). */
 export function isSpecial(knowledge: Knowledge, id: string): boolean {
   return Boolean(

@@ -1,6 +1,6 @@
 import type { BufferRecord, ComponentId, IndicatorRecord, IndicatorUse, Knowledge } from "../constants/knowledge.ts";
 import { metalKinetics } from "./kinetics.ts";
-import type { Shelf } from "./shelf.ts";
+import { stepAllowed, type Shelf } from "./shelf.ts";
 import { vesselSample } from "./solution.ts";
 import type { StagePlan, Task } from "./types.ts";
 
@@ -213,9 +213,10 @@ function chelateOf(
   return { metal: `${metal}2+`, ligand, molPerL: Number(molPerL.toPrecision(1)) };
 }
 
-/** Whether heat is asked for that the laboratory cannot give. */
-const tooHot = (task: Task, preparation: readonly string[]): boolean =>
-  !task.laboratory.heating && preparation.some((p) => p === "warm" || p === "heat" || p === "boil");
+/** Whether a step asks for what the laboratory cannot or will not give: heat, a chelate, alcohol. */
+const forbidden = (task: Task, preparation: readonly string[]): boolean =>
+  preparation.some((p) => !stepAllowed(task, p)) ||
+  (!task.laboratory.heating && preparation.some((p) => p === "warm" || p === "heat" || p === "boil"));
 
 /** Direct titrations, also with a chelate that lends the dye its metal. */
 export function directSkeletons(make: Make): Skeleton[] {
@@ -244,7 +245,7 @@ export function directSkeletons(make: Make): Skeleton[] {
             !plan.preparation.includes("heat")
           )
             continue;
-          if (tooHot(task, plan.preparation)) continue;
+          if (forbidden(task, plan.preparation)) continue;
           if (use.auxiliaryAnyOf) {
             const agent = use.auxiliaryAnyOf.find((a) => shelf(a) && knowledge.agents.has(a));
             if (agent) plan = withAuxiliary(plan, knowledge, agent, `asked for by the use of ${indicator.name}`);
@@ -301,7 +302,7 @@ export function backSkeletons(make: Make): Skeleton[] {
           const buffer = buffersFor(pH, knowledge, shelf, new Set())[0];
           if (!buffer) continue;
           const plan = backPlan(make, titrant, indicator, pH, buffer, backTitrant.ion, use);
-          if (!plan || tooHot(task, plan.preparation)) continue;
+          if (!plan || forbidden(task, plan.preparation)) continue;
           if (standing === "analogous") byAnalogy++;
           out.push({ plan, use: standing, useBasis: basis, window });
         }

@@ -16,6 +16,9 @@ import {
 import { describeFound, jsonPath, shapeFaults } from "./contract-faults.ts";
 import { toComponentMolPerL } from "./units.ts";
 
+/** Below this no titre exists, whatever the unit it was written in. */
+const LEAST_LEVEL_MOL_PER_L = 1e-15;
+
 /**
  * Reads a brief into a task: ions recognised, levels in mol/L of the component, defaults filled, rows of one component added with a note.
  * Throws InputError with one fault for each error found, all of them at once: shape, unknown or ambiguous ions, units,
@@ -34,7 +37,8 @@ export function readBrief(json: unknown, knowledge: Knowledge): Task {
     const { ion, concentration, report } = shaped.data;
     const path = ["analytes", index];
     const read = readRow(ion, concentration, [...path, "ion"], [...path, "concentration"], knowledge, faults, notes);
-    if (concentration.value === 0)
+    // Also a level that is lost in conversion (5e-324 ug/L) is none.
+    if (concentration.value === 0 || (read !== null && !(read.molPerL > LEAST_LEVEL_MOL_PER_L)))
       faults.push(levelFault(path, "a level above 0: the titre is computed for the level expected", concentration));
     return read === null ? [] : [{ value: { ...read, report }, path: jsonPath([...path, "ion"]) }];
   });

@@ -212,6 +212,9 @@ export function methodDocument(
   };
 }
 
+/** Components of a sample whose hazards stand under another bottle's name. */
+const HAZARD_OF_COMPONENT: Readonly<Record<string, string>> = { perchlorate: "perchloric-acid" };
+
 /** Below this a component of the sample is a trace, not a reagent to be warned of. */
 const HAZARDOUS_FROM_MOL_PER_L = 1e-6;
 
@@ -219,7 +222,7 @@ const HAZARDOUS_FROM_MOL_PER_L = 1e-6;
 function sampleReagents(task: Task, knowledge: Knowledge): string[] {
   return [...task.analytes, ...task.matrix]
     .filter((c) => c.molPerL > HAZARDOUS_FROM_MOL_PER_L)
-    .map((c) => c.component)
+    .map((c) => HAZARD_OF_COMPONENT[c.component] ?? c.component)
     .filter((id) => knowledge.reagents.has(id));
 }
 

@@ -13,6 +13,7 @@ export function reagentsOf(plan: StagePlan): string[] {
       ...plan.auxiliary.map((a) => a.id),
       ...plan.added.map((a) => a.id),
       ...(plan.chelate ? [plan.chelate.metal] : []),
+      ...(plan.preparation.includes("alcohol") ? ["alcohol"] : []),
     ]),
   ];
 }

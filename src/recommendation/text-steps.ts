@@ -25,13 +25,10 @@ function stageSteps(stage: StageDocument, index: number, method: RecommendedMeth
   const titrant = stage.titrant ?? method.titrant;
   const backTitrant = backTitrantOf(stage, method);
   const agents = [
-    // What the alkali throws down needs no bottle: the pH step says it.
-    ...stage.masking
-      .filter((step) => step.agent !== "hydroxide")
-      .map((step) => ({
-        id: step.agent,
-        words: `${amount(step.agent, step.molPerL)}, which masks ${listed(step.masks)}`,
-      })),
+    ...bottles(stage).map(({ agent, molPerL, masks }) => ({
+      id: agent,
+      words: `${amount(agent, molPerL)}, which masks ${listed(masks)}`,
+    })),
     ...stage.auxiliary.map((added) => ({
       id: added.id,
       words: `${amount(added.id, added.molPerL)} (${added.purpose})`,
@@ -103,3 +100,24 @@ function endPoint(stage: StageDocument, last: { readonly id: string; readonly mo
 
 const amount = (id: string, molPerL: number): string =>
   molPerL > 0 ? `${reagentWords(id)} to ${figures(molPerL)} mol/L` : reagentWords(id);
+
+interface Bottle {
+  readonly agent: string;
+  readonly molPerL: number;
+  readonly masks: readonly string[];
+}
+
+/** Masks as they are poured: one addition an agent, whatever it masks. What the alkali throws down needs no bottle; the pH step says it. */
+function bottles(stage: StageDocument): readonly Bottle[] {
+  const poured = new Map<string, Bottle>();
+  for (const { agent, molPerL, masks } of stage.masking) {
+    if (agent === "hydroxide") continue;
+    const before = poured.get(agent);
+    poured.set(agent, {
+      agent,
+      molPerL: Math.max(molPerL, before?.molPerL ?? 0),
+      masks: [...(before?.masks ?? []), ...masks],
+    });
+  }
+  return [...poured.values()];
+}

@@ -16,7 +16,7 @@ export function formFromBrief(brief: DeepPartial<Brief>): BriefForm {
     unit: asText(level?.unit) || "mmol/L",
     as: asText(level?.as),
   });
-  const analytes = (brief.analytes ?? []).map((a) => ({
+  const analytes = listOf(brief.analytes).map((a) => ({
     ...row(a?.ion, a?.concentration),
     report: a?.report === "sum" ? ("sum" as const) : ("individual" as const),
   }));
@@ -24,7 +24,7 @@ export function formFromBrief(brief: DeepPartial<Brief>): BriefForm {
   return {
     title: asText(brief.title),
     analytes: analytes.length > 0 ? analytes : [emptyAnalyte],
-    matrix: [...(brief.matrix ?? []).map((m) => row(m?.component, m?.concentration)), emptyRow],
+    matrix: [...listOf(brief.matrix).map((m) => row(m?.component, m?.concentration)), emptyRow],
     volumeML: asText(brief.portion?.volumeML) || empty.volumeML,
     titrationVolumeML: asText(brief.portion?.titrationVolumeML) || empty.titrationVolumeML,
     requirement: asText(brief.requirement?.relativeExpandedUncertaintyPercent) || empty.requirement,
@@ -47,3 +47,8 @@ export type DeepPartial<T> = T extends readonly (infer U)[]
   : T extends object
     ? { readonly [K in keyof T]?: DeepPartial<T[K]> | undefined }
     : T;
+
+/** An address may hold anything: what is not a list has no rows. */
+function listOf<T>(value: readonly T[] | null | undefined): readonly T[] {
+  return Array.isArray(value) ? (value as readonly T[]) : [];
+}
