@@ -52,6 +52,12 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
   );
   // What an earlier titration has bound is the titrant's again with the first drop: its remainder does not block.
   const carried = new Set(plan.carried?.metals ?? []);
+  // Only hydroxides: what a mask has thrown down (a sulfide, a fluoride) is masked.
+  const hydroxides = new Set(
+    knowledge.solids
+      .filter((s) => (s.components["H+"] ?? 0) < 0 && Object.keys(s.components).length === 2)
+      .map((s) => s.id),
+  );
   return model.metals.filter((metal) => {
     if (carried.has(metal)) return false;
     const level = blockingLevel(indicator, metal, plan.pH, plan.indicator!.molPerL);
@@ -67,12 +73,11 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
     }, 0);
     // A hydroxide that nobody asked for blocks like the ion it came from: hydrolysed iron(III) still takes the dye.
     const hydrolysed = model.held
-      .filter((h) => h.component === metal && h.why === "precipitated")
+      .filter((h) => h.component === metal && h.why === "precipitated" && hydroxides.has(h.by))
       .reduce((sum, h) => sum + h.molPerL, 0);
     const deposited = model.system.solids.reduce(
       (sum, solid, i) =>
-        sum +
-        ((solid.components["H+"] ?? 0) < 0 ? (solid.components[metal] ?? 0) * (start.result.solidsMolPerL[i] ?? 0) : 0),
+        sum + (hydroxides.has(solid.id) ? (solid.components[metal] ?? 0) * (start.result.solidsMolPerL[i] ?? 0) : 0),
       0,
     );
     const lying = hydrolysed + deposited;

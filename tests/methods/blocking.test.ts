@@ -80,4 +80,12 @@ describe("the metals that spoil the dye of a titration", () => {
     expect(blockedBy({ "Ni2+": 1e-3 })).toEqual(["Ni2+"]);
     expect(blockedBy({ "Ni2+": 1e-3 }, back)).toEqual([]);
   });
+  it("do not block where the mask has thrown them down, and do where only the ammonia has", () => {
+    const sulfide = {
+      masking: [{ agent: "sulfide", masks: ["Cu2+"], via: "precipitation", molPerL: 0.004, basis: "equilibrium" }],
+    } as const;
+    expect(blockedBy({ "Cu2+": 1e-4 }, sulfide)).toEqual([]);
+    expect(blockedBy({ "Cu2+": 1e-4 })).toEqual(["Cu2+"]);
+    expect(blockedBy({ "Al3+": 1e-3 })).toEqual(["Al3+"]);
+  });
 });

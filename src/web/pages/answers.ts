@@ -25,7 +25,9 @@ export function createAnswers(services: Pick<WebServices, "recommend" | "figureS
       return series;
     },
     answer: async (brief) => {
-      const key = JSON.stringify(brief);
+      const key = keyOf(brief);
+      // What is nested too deep to be written down is no brief: let the reader say so.
+      if (key === null) return services.recommend(brief);
       const known = kept.get(key);
       if (known) {
         kept.delete(key);
@@ -43,4 +45,13 @@ export function createAnswers(services: Pick<WebServices, "recommend" | "figureS
       }
     },
   };
+}
+
+/** The brief as text, by which its answer is kept; null where it is nested too deep to be written. */
+function keyOf(brief: unknown): string | null {
+  try {
+    return JSON.stringify(brief);
+  } catch {
+    return null;
+  }
 }
