@@ -1,4 +1,5 @@
 import type { Knowledge } from "../constants/knowledge.ts";
+import type { StageSeries } from "../recommendation/calculate-series.ts";
 import type { Recommendation } from "../recommendation/contract.ts";
 
 /** A condition of a rule, as the rule layer hands it over after its checks. */
@@ -35,27 +36,7 @@ export interface FactListing {
 }
 
 /** The numbers behind the two figures of one method. */
-export interface FigureSeries {
-  readonly logK: {
-    readonly pH: readonly number[];
-    readonly lines: readonly { readonly label: string; readonly values: readonly (number | null)[] }[];
-    readonly workingRange: readonly [number, number];
-  };
-  readonly curve: {
-    readonly volumeML: readonly number[];
-    readonly pM: readonly (number | null)[];
-    readonly label: string;
-    readonly endPoint: {
-      readonly volumeML: number;
-      readonly low: number;
-      readonly high: number;
-      readonly pMLow: number;
-      readonly pMHigh: number;
-      readonly pM: number;
-    } | null;
-    readonly equivalenceML: number;
-  };
-}
+export type FigureSeries = StageSeries;
 
 /** Everything the pages need from the layers below; the composition root supplies it. */
 export interface WebServices {
