@@ -162,7 +162,7 @@ export interface IndicatorRecord {
   readonly transitions: readonly {
     readonly ion: ComponentId;
     readonly counts: "free-ion" | "not-bound-to-titrant";
-    /** 2 where the slope of the table against pH shows two metal ions a dye (xylenol orange with Zn, Pb, Cd, La); else 1. */
+    /** 2 where the slope of the table against pH shows two metal ions a dye (xylenol orange: Zn and Pb by its constants too; Cd and La are our inference from the slope alone); else 1. */
     readonly metalsPerDye?: 2;
     readonly points: readonly (readonly [pH: number, pM: number])[];
     readonly provenance: Provenance;
