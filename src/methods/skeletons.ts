@@ -199,6 +199,10 @@ function basePlan(
     chelate,
     excessTitrantMolPerL: 0,
     carried: null,
+    electrode: null,
+    detour: null,
+    release: null,
+    demasked: null,
   };
 }
 

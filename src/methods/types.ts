@@ -82,6 +82,39 @@ export interface StagePlan {
     /** By how much the earlier titres have filled the vessel, mL. */
     readonly addedML: number;
   } | null;
+  /** Electrode of the knowledge base where `detection` is "electrode". */
+  readonly electrode: string | null;
+  readonly detour: Detour | null;
+  readonly release: Release | null;
+  readonly demasked: Demasking | null;
+}
+
+/**
+ * How an ion that the titrant does not bind, or binds too weakly, is determined through a metal that it binds well.
+ * The record of the way stands in the knowledge base (`knowledge.detours`); this is what a plan takes from it.
+ */
+export interface Detour {
+  /** Id of the record. */
+  readonly id: string;
+  /** The metal that the titration in the end counts. */
+  readonly metal: ComponentId;
+  /** How many of the analyte one metal ion stands for: 4 cyanide a nickel, 2 silver a nickel, 1 sulfate a barium. */
+  readonly analytePerMetal: number;
+  /** The reagent that goes in: a metal in known excess ("Ba2+"), or "tetracyanonickelate"; mol/L of the vessel. */
+  readonly reagent: { readonly id: string; readonly molPerL: number };
+}
+
+/** An agent that sets the titrant of the analyte free after the excess has been titrated back; that first reading is discarded. */
+export interface Release {
+  readonly agent: string;
+  readonly molPerL: number;
+}
+
+/** A mask of an earlier titration of the same solution that is taken away again: cyanide by an aldehyde. */
+export interface Demasking {
+  readonly agent: string; // what was the mask
+  readonly by: string; // what takes it away
+  readonly frees: readonly ComponentId[];
 }
 
 export interface MethodPlan {

@@ -121,7 +121,7 @@ function planOf(method: RecommendedMethod, stage: StageDocument, knowledge: Know
   const component = (spelling: string): ComponentId => componentOf(spelling, knowledge);
   const titrant = stage.titrant ?? method.titrant;
   const back = stage.mode === "direct" ? null : (stage.backTitrant ?? method.backTitrant);
-  const { removed, chelate, excessTitrantMolPerL, carried } = stage.vessel;
+  const { removed, chelate, excessTitrantMolPerL, carried, electrode, detour, release, demasked } = stage.vessel;
   return {
     determines: stage.determines.map(component),
     mode: stage.mode,
@@ -139,6 +139,10 @@ function planOf(method: RecommendedMethod, stage: StageDocument, knowledge: Know
     chelate: chelate && { ...chelate, metal: component(chelate.metal) },
     excessTitrantMolPerL,
     carried: carried && { ...carried, metals: carried.metals.map(component) },
+    electrode,
+    detour,
+    release,
+    demasked: demasked && { ...demasked, frees: demasked.frees.map(component) },
   };
 }
 

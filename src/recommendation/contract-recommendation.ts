@@ -76,6 +76,10 @@ export const stageSchema = z.strictObject({
     chelate: z.strictObject({ metal: text, ligand: text, molPerL: level }).nullable(),
     excessTitrantMolPerL: level,
     carried: z.strictObject({ metals: z.array(text), titrantMolPerL: level, addedML: level }).nullable(), // left by an earlier titration of the same solution
+    electrode: text.nullable(), // which one, where the end point is read with one
+    detour: z.strictObject({ id: text, metal: text, analytePerMetal: finite, reagent: reagentSchema }).nullable(), // the ion is determined through this metal
+    release: z.strictObject({ agent: text, molPerL: level }).nullable(), // sets the analyte's titrant free after the discarded reading
+    demasked: z.strictObject({ agent: text, by: text, frees: z.array(text).min(1) }).nullable(), // a mask taken away again
   }),
   ionicStrength: z.strictObject({ molPerL: level.nullable(), outOfModelRange: z.boolean() }),
   endPoint: endPointSchema,

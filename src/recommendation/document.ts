@@ -115,6 +115,10 @@ function stageDocument(
         titrantMolPerL: plan.carried.titrantMolPerL,
         addedML: plan.carried.addedML,
       },
+      electrode: plan.electrode,
+      detour: plan.detour && { ...plan.detour, reagent: { ...plan.detour.reagent } },
+      release: plan.release && { ...plan.release },
+      demasked: plan.demasked && { ...plan.demasked, frees: plan.demasked.frees.map(ion) },
     },
     ionicStrength: {
       molPerL: signif(evaluation.model.ionicStrengthMolPerL, 4),

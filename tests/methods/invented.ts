@@ -55,6 +55,10 @@ export function inventedPlan(change: Partial<StagePlan> = {}): StagePlan {
     chelate: null,
     excessTitrantMolPerL: 0,
     carried: null,
+    electrode: null,
+    detour: null,
+    release: null,
+    demasked: null,
     ...change,
   };
 }

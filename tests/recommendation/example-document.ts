@@ -16,7 +16,16 @@ export const STAGE: StageDocument = {
   masking: [{ agent: "fluoride", masks: ["Al3+"], via: "complexation", molPerL: 0.1, basis: "equilibrium" }],
   auxiliary: [],
   preparation: [],
-  vessel: { removed: [], chelate: null, excessTitrantMolPerL: 0, carried: null },
+  vessel: {
+    removed: [],
+    chelate: null,
+    excessTitrantMolPerL: 0,
+    carried: null,
+    electrode: null,
+    detour: null,
+    release: null,
+    demasked: null,
+  },
   ionicStrength: { molPerL: 0.12, outOfModelRange: false },
   endPoint: {
     basis: "table",
