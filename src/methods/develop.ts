@@ -1,7 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { metalKinetics } from "./kinetics.ts";
-import { maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
+import { benchAmount, maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
 import type { Shelf } from "./shelf.ts";
 import { bufferAmount, excessFor, withAuxiliary, type Skeleton } from "./skeletons.ts";
 import { vesselSample } from "./solution.ts";
@@ -148,32 +148,50 @@ const SETS_TRIED = 8;
 
 type Settled = Pick<DevelopedStage, "plan" | "evaluation" | "remaining">;
 
-/** Applies a set of masks, then lets practice records stand in where constants say no but a reported level says yes. */
+/** Applies a set of masks in the amounts they need, then lets practice records stand in where constants say no but a reported level says yes. */
 function settle(task: Task, plan: StagePlan, set: MaskSet, knowledge: Knowledge): Settled {
-  let masked: StagePlan = withExcess(
-    task,
-    { ...plan, masking: [...plan.masking, ...set.steps], preparation: prepared(plan, set.steps) },
-    knowledge,
-  );
-  let evaluation = evaluate(task, masked, knowledge);
-  let remaining = threatsOf(task, evaluation, knowledge);
-  const rescued = remaining.filter((t) => reportedToHold(t, masked, knowledge));
-  if (rescued.length > 0) {
-    masked = withExcess(
-      task,
-      {
-        ...masked,
-        masking: toEmpirical(
-          masked.masking,
-          rescued.map((t) => t.component),
-        ),
-      },
-      knowledge,
-    );
-    evaluation = evaluate(task, masked, knowledge);
-    remaining = threatsOf(task, evaluation, knowledge);
+  const apply = (masking: readonly MaskingStep[]): Settled => {
+    const masked = withExcess(task, { ...plan, masking, preparation: prepared(plan, set.steps) }, knowledge);
+    const evaluation = evaluate(task, masked, knowledge);
+    return { plan: masked, evaluation, remaining: threatsOf(task, evaluation, knowledge) };
+  };
+  let steps: readonly MaskingStep[] = [...plan.masking, ...set.steps];
+  let settled = apply(steps);
+  // What the usual amount leaves to the titrant may need more of the agent, up to the most that is usual.
+  for (let round = 0; round < RAISED_AT_MOST; round++) {
+    const raised = withMore(steps, settled.remaining, knowledge);
+    if (raised === steps) break;
+    const next = apply(raised);
+    if (next.evaluation.status === "failed" || next.remaining.length > settled.remaining.length) break;
+    steps = raised;
+    settled = next;
   }
-  return { plan: masked, evaluation, remaining };
+  const rescued = settled.remaining.filter((t) => reportedToHold(t, settled.plan, knowledge)).map((t) => t.component);
+  return rescued.length > 0 ? apply(toEmpirical(steps, rescued)) : settled;
+}
+
+const RAISED_AT_MOST = 2;
+const RAISE = 3;
+
+const mostOf = (agent: string, knowledge: Knowledge): number => knowledge.agents.get(agent)?.usualMaxMolPerL ?? 0;
+
+/** The same steps with more of the agents that did not hold what they were meant to hold; the steps themselves where none can be raised. */
+function withMore(
+  steps: readonly MaskingStep[],
+  remaining: readonly Threat[],
+  knowledge: Knowledge,
+): readonly MaskingStep[] {
+  const fails = (step: MaskingStep): boolean =>
+    step.basis === "equilibrium" &&
+    step.agent !== "hydroxide" &&
+    step.molPerL < 0.99 * mostOf(step.agent, knowledge) &&
+    step.masks.some((ion) => remaining.some((t) => t.component === ion));
+  if (!steps.some(fails)) return steps;
+  return steps.map((step) =>
+    fails(step)
+      ? { ...step, molPerL: Math.min(mostOf(step.agent, knowledge), benchAmount(RAISE * step.molPerL)) }
+      : step,
+  );
 }
 
 /** A practice row says this agent holds the ion up to a level that is not exceeded here. */

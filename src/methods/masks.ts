@@ -88,7 +88,7 @@ function indexOf(knowledge: Knowledge): MaskIndex {
 }
 
 /** Rows of practice for an agent and an ion at this pH. */
-function rowsFor(knowledge: Knowledge, agent: string, ion: ComponentId, pH: number): MaskingRecord[] {
+export function rowsFor(knowledge: Knowledge, agent: string, ion: ComponentId, pH: number): MaskingRecord[] {
   return (indexOf(knowledge).rows.get(`${agent} ${ion}`) ?? []).filter(
     (r) => inside(pH, r.pH) || (r.via === "precipitation" && near(pH, r.pH)),
   );

@@ -131,7 +131,13 @@ function planOf(method: RecommendedMethod, stage: StageDocument, knowledge: Know
     buffer: stage.buffer,
     detection: stage.detection,
     indicator: stage.indicator && { id: stage.indicator.id, molPerL: stage.indicator.molPerL },
-    masking: stage.masking.map((step) => ({ ...step, masks: step.masks.map(component) })),
+    masking: stage.masking.map(({ agent, masks, via, molPerL, basis }) => ({
+      agent,
+      masks: masks.map(component),
+      via,
+      molPerL,
+      basis,
+    })),
     auxiliary: stage.auxiliary,
     added: stage.added.filter((reagent) => reagent.id !== titrant.id), // the excess stands in the vessel already
     preparation: stage.preparation,

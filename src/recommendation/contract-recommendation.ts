@@ -45,6 +45,27 @@ export const endPointSchema = z.strictObject({
   indicatorMetal: text.nullable(), // the metal that holds the dye before the end point
 });
 
+/** What a masking agent does in the vessel at the end point, by the equilibrium; null where there are no constants for it. */
+export const maskChemistrySchema = z.strictObject({
+  masked: z.array(
+    z.strictObject({ ion: text, log10Alpha: finite.nullable(), titratedFraction: finite.nullable() }), // share that is titrated all the same
+  ),
+  onAnalyteLog10Alpha: finite.nullable(), // what the agent takes from the analyte
+  usedFraction: finite.nullable(), // share of the agent that metals hold
+});
+
+/** What the record of practice says of an agent with one ion. */
+export const maskPracticeSchema = z.strictObject({
+  ion: text,
+  order: text.nullable(),
+  failsWhen: text.nullable(),
+  sideEffects: text.nullable(),
+  freedBy: z.array(text), // what sets the ion free again
+  upToMolPerL: level.nullable(),
+  source: text,
+  basis: z.enum(["read", "memory", "computed"]),
+});
+
 /** One titration of a method. */
 export const stageSchema = z.strictObject({
   determines: z.array(text),
@@ -66,6 +87,8 @@ export const stageSchema = z.strictObject({
       via: z.enum(MASKING_VIAS),
       molPerL: level,
       basis: z.enum(["equilibrium", "empirical", "conversion"]),
+      chemistry: maskChemistrySchema,
+      practice: z.array(maskPracticeSchema),
     }),
   ),
   auxiliary: z.array(addedSchema),

@@ -6,6 +6,7 @@ import type { Task } from "../methods/types.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import type { Because, ConstantUsed, RecommendedMethod, StageDocument } from "./contract.ts";
 import type { JudgedMethod, Verdict } from "./judge.ts";
+import { maskingDocument } from "./masking-document.ts";
 import { cautionTexts } from "./reagents.ts";
 import { shownIon } from "./spelling.ts";
 import { summaryOf } from "./summary.ts";
@@ -97,13 +98,7 @@ function stageDocument(
             molPerL: plan.indicator.molPerL,
           }
         : null,
-    masking: plan.masking.map((m) => ({
-      agent: m.agent,
-      masks: m.masks.map(ion),
-      via: m.via,
-      molPerL: m.molPerL,
-      basis: m.basis,
-    })),
+    masking: maskingDocument(stage, knowledge, ion),
     auxiliary: plan.auxiliary.map((a) => ({ ...a })),
     preparation: [...plan.preparation] as Preparation[],
     vessel: {

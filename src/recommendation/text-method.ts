@@ -85,9 +85,11 @@ export function error(method: RecommendedMethod): readonly (readonly string[])[]
 /** What is masked by what, on what knowledge, and up to which level each component is borne. */
 export function masking(method: RecommendedMethod): readonly (readonly string[])[] {
   const steps = method.stages.flatMap((stage) => stage.masking);
-  const masked = steps.map(
-    (step) =>
+  const masked = steps.map((step) =>
+    [
       `${listed(step.masks)} by ${reagentWords(step.agent)} (${step.via}; rests on ${MASKING_BASIS[step.basis]})`,
+      ...maskWords(step),
+    ].join("; "),
   );
   return [
     ...[...new Set(masked)].map(bullet),
@@ -96,6 +98,25 @@ export function masking(method: RecommendedMethod): readonly (readonly string[])
         `${limit.component}: ${figures(limit.presentMolPerL)} mol/L is there, up to ${figures(limit.limitMolPerL)} mol/L is borne${steps.length === 0 ? "" : limit.withMasking ? " with the masking" : " without it"}`,
       ),
     ),
+  ];
+}
+
+/** What the equilibrium and the record say of one mask: how firmly, at what cost to the analyte, what frees the ion again. */
+function maskWords({ chemistry, practice }: StageDocument["masking"][number]): readonly string[] {
+  const held = chemistry.masked
+    .filter((m) => m.log10Alpha !== null || m.titratedFraction !== null)
+    .map((m) => {
+      const alpha = m.log10Alpha === null ? "" : `log alpha ${m.log10Alpha.toFixed(1)}, `;
+      const share = m.titratedFraction === null ? "" : `${percent(100 * Math.max(0, m.titratedFraction))} titrated`;
+      return `${m.ion} ${alpha}${share}`.replace(/, $/, "");
+    });
+  const { onAnalyteLog10Alpha: cost, usedFraction } = chemistry;
+  const freed = [...new Set(practice.flatMap((p) => p.freedBy))];
+  return [
+    ...(held.length > 0 ? [listed(held)] : []),
+    ...(cost !== null && cost >= 0.05 ? [`takes log alpha ${cost.toFixed(1)} from the analyte`] : []),
+    ...(usedFraction !== null && usedFraction > 0.01 ? [`${percent(100 * usedFraction)} of the agent is used`] : []),
+    ...(freed.length > 0 ? [`freed again by ${freed.join(" or ")}`] : []),
   ];
 }
 

@@ -13,7 +13,21 @@ export const STAGE: StageDocument = {
   buffer: { id: "hexamine", molPerL: 0.05 },
   detection: "visual",
   indicator: { id: "xylenol-orange", class: "triphenylmethane", colourChange: ["red-violet", "yellow"], molPerL: 2e-5 },
-  masking: [{ agent: "fluoride", masks: ["Al3+"], via: "complexation", molPerL: 0.1, basis: "equilibrium" }],
+  masking: [
+    {
+      agent: "fluoride",
+      masks: ["Al3+"],
+      via: "complexation",
+      molPerL: 0.1,
+      basis: "equilibrium",
+      chemistry: {
+        masked: [{ ion: "Al3+", log10Alpha: 12.1, titratedFraction: 0.0004 }],
+        onAnalyteLog10Alpha: 0.1,
+        usedFraction: 0.2,
+      },
+      practice: [],
+    },
+  ],
   auxiliary: [],
   preparation: [],
   vessel: {

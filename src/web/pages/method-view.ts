@@ -117,7 +117,7 @@ function benchRows(
         ` ${wordsOf(VIA_WORDS, m.via)}`,
       ]),
     ),
-    [...new Set(stage.masking.map((m) => wordsOf(MASKING_BASIS_WORDS, m.basis)))].map(text),
+    maskingNotes(stage, names),
   );
   const purposes = (entries: StageDocument["auxiliary"]): Markup[] =>
     entries.map((a) => joinMarkup([names.link(a.id), `, ${amount(a.molPerL, 2)}: `, names.set(a.purpose)]));
@@ -144,6 +144,26 @@ function benchRows(
     );
   add("End point lies at", endPointLines(stage), [text(wordsOf(END_POINT_BASIS_WORDS, stage.endPoint.basis))]);
   return rows;
+}
+
+/** What stands beside the masks: on what they rest, how firmly they hold, and how they are added. */
+function maskingNotes(stage: StageDocument, names: Names): readonly Markup[] {
+  const bases = [...new Set(stage.masking.map((m) => wordsOf(MASKING_BASIS_WORDS, m.basis)))].map(text);
+  const held = stage.masking.flatMap((m) =>
+    m.chemistry.masked
+      .filter((c) => c.titratedFraction !== null)
+      .map((c) =>
+        joinMarkup([
+          names.name(c.ion),
+          c.log10Alpha === null ? ": " : `: log α ${fixed(c.log10Alpha, 1)}, `,
+          `${percent(100 * Math.max(0, c.titratedFraction ?? 0))} titrated`,
+        ]),
+      ),
+  );
+  const orders = [...new Set(stage.masking.flatMap((m) => m.practice.flatMap((p) => p.order ?? [])))].map((order) =>
+    joinMarkup(["Order: ", names.set(order)]),
+  );
+  return [...bases, ...held, ...orders];
 }
 
 /** Where the requirement holds, in words. */
