@@ -55,6 +55,17 @@ export async function judge(
     );
     for (const finding of [...ofStage, ...ofComponents.flat()]) verdicts.push({ finding, stage: index });
   }
+  return weighed(task, under, facts, verdicts);
+}
+
+/** What the rules' words on a method come to. */
+export function weighed(
+  task: Task,
+  under: MethodUnderJudgement,
+  facts: Facts,
+  verdicts: readonly Verdict[],
+): JudgedMethod {
+  const { method } = under;
   const excludedBy = verdicts.filter(
     ({ finding, stage }) =>
       finding.effect === "excludes" || (finding.effect === "requires" && !satisfied(finding, under, stage)),

@@ -1,25 +1,19 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { RuleRunner } from "../inference/index.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
-import { roughCost, singleMethod, type EvaluatedMethod } from "../methods/methods.ts";
+import { roughCost, type EvaluatedMethod } from "../methods/methods.ts";
 import { searchMethods } from "../methods/search.ts";
 import { toleranceLimits } from "../methods/tolerance.ts";
 import type { Task } from "../methods/types.ts";
-import { centred, workingRange, type WorkingRange } from "../methods/working-range.ts";
 import { briefOf } from "./brief-document.ts";
 import type { Recommendation, RejectedMethod } from "./contract.ts";
 import { becauseOf, constantsUsed, methodDocument } from "./document.ts";
-import type { MethodUnderJudgement } from "./facts.ts";
 import { findingsOf } from "./findings.ts";
-import { judge, rank, type JudgedMethod } from "./judge.ts";
+import { judge, type JudgedMethod } from "./judge.ts";
+import { judgedMethods, ranged, ranking } from "./ranking.ts";
 import { shownIon } from "./spelling.ts";
 
-/** How many methods the rules look at; the rest are behind on numbers alone. */
-const JUDGED = 24;
-/** How many of those get a working range before they are judged. */
-const RANGED = 10;
-/** How many methods an answer shows. */
-const SHOWN = 8;
+/** How many of the rejected methods an answer shows. */
 const REJECTED_SHOWN = 16;
 /** How many usual dyes the findings are judged with. */
 const SIMPLEST_SHOWN = 3;
@@ -30,20 +24,9 @@ const SIMPLEST_SHOWN = 3;
  */
 export async function recommend(task: Task, knowledge: Knowledge, rules: RuleRunner): Promise<Recommendation> {
   const search = searchMethods(task, knowledge);
-  const chosen = shortlist(task, search.methods, knowledge);
-  const under = chosen.map((method, i) =>
-    i < RANGED ? ranged(task, method, knowledge) : { method, ranges: method.stages.map(() => null) },
+  const { shown, judged } = await ranking(await judgedMethods(task, search.methods, knowledge, rules), (method) =>
+    judge(task, ranged(task, method, knowledge), knowledge, rules),
   );
-  const judged: JudgedMethod[] = [];
-  for (const candidate of under) judged.push(await judge(task, candidate, knowledge, rules));
-  judged.sort(rank);
-  const feasible = distinct(judged.filter((j) => j.excludedBy.length === 0)).slice(0, SHOWN);
-  const shown: JudgedMethod[] = [];
-  for (const j of feasible)
-    shown.push(
-      j.ranges.every((r) => r === null) ? await judge(task, ranged(task, j.method, knowledge), knowledge, rules) : j,
-    );
-  shown.sort(rank);
   const methods = shown.map((j, i) =>
     methodDocument(task, j, i + 1, i === 0 ? toleranceLimits(task, j.method, knowledge) : [], knowledge),
   );
@@ -64,63 +47,6 @@ export async function recommend(task: Task, knowledge: Knowledge, rules: RuleRun
     ],
     constants: first ? constantsUsed(first.method.stages, knowledge) : [],
   };
-}
-
-/** The methods worth judging: the best by their numbers, and the best of every mode and dye, so that rivals are seen. */
-function shortlist(task: Task, methods: readonly EvaluatedMethod[], knowledge: Knowledge): EvaluatedMethod[] {
-  const cost = new Map(
-    methods.map((m) => [
-      m,
-      m.stages.reduce((s, stage) => s + roughCost(task, stage, knowledge), 0) / m.stages.length +
-        6 * (m.stages.length - 1),
-    ]),
-  );
-  const sorted = [...methods].sort((a, b) => cost.get(a)! - cost.get(b)! || a.id.localeCompare(b.id));
-  const perFamily = new Map<string, number>();
-  const family = (m: EvaluatedMethod): string =>
-    `${m.mode} ${m.stages.map((s) => s.plan.indicator?.id ?? s.plan.detection).join("+")}`;
-  const diverse = sorted.filter((m) => {
-    const n = perFamily.get(family(m)) ?? 0;
-    perFamily.set(family(m), n + 1);
-    return n < 2;
-  });
-  return diverse.slice(0, JUDGED);
-}
-
-/** Working ranges of every titration of a method, targets moved to the middle of theirs where they sat at an edge. */
-function ranged(task: Task, method: EvaluatedMethod, knowledge: Knowledge): MethodUnderJudgement {
-  const ranges: WorkingRange[] = [];
-  const stages: DevelopedStage[] = [];
-  for (const stage of method.stages) {
-    const range = workingRange(task, stage, knowledge);
-    const moved = method.stages.length === 1 ? centred(task, stage, range, knowledge) : stage;
-    stages.push(moved);
-    ranges.push(
-      moved === stage ? range : { low: Math.min(range.low, moved.plan.pH), high: Math.max(range.high, moved.plan.pH) },
-    );
-  }
-  const same = stages.every((s, i) => s === method.stages[i]);
-  const moved = same ? method : stages.length === 1 ? singleMethod(task, stages[0]!, knowledge) : method;
-  return { method: moved, ranges };
-}
-
-/** One method of a kind: the same mode, titrants, dyes and masks differ only in buffer or a shade of pH. */
-function distinct(judged: readonly JudgedMethod[]): JudgedMethod[] {
-  const seen = new Set<string>();
-  return judged.filter(({ method }) => {
-    const key = `${method.mode} ${method.stages
-      .map(
-        (s) =>
-          `${s.plan.titrant.id} ${s.plan.backTitrant?.id ?? ""} ${s.plan.indicator?.id ?? s.plan.detection} ${s.plan.masking
-            .map((m) => m.agent)
-            .sort()
-            .join()} ${s.plan.removed.join()}`,
-      )
-      .join("; ")}`;
-    if (seen.has(key)) return false;
-    seen.add(key);
-    return true;
-  });
 }
 
 /** The direct titrations of the analyte that an analyst would think of first: EDTA, published dye, nothing separated. */
