@@ -1,4 +1,5 @@
 import { factorScaled, solveScaled } from "../numerics/cholesky.ts";
+import { ManyAtoms } from "./solve-eliminated-many.ts";
 import type { EliminatedTerms } from "./solve-eliminated-terms.ts";
 import { ABSENT_LN_FREE } from "./solve-load.ts";
 
@@ -20,6 +21,7 @@ export class EliminatedNewton {
   private readonly first: Float64Array; // per segment
   private readonly second: Float64Array;
   private readonly mixedValue: Float64Array;
+  private readonly manyAtoms: ManyAtoms;
   private readonly gradient: Float64Array;
   private readonly hessian: Float64Array;
   private readonly scale: Float64Array;
@@ -34,6 +36,7 @@ export class EliminatedNewton {
     this.first = new Float64Array(terms.ligand.length);
     this.second = new Float64Array(terms.ligand.length);
     this.mixedValue = new Float64Array(terms.mixed.beta.length);
+    this.manyAtoms = new ManyAtoms(terms);
     this.gradient = new Float64Array(k);
     this.hessian = new Float64Array(k * k);
     this.scale = new Float64Array(k);
@@ -105,7 +108,7 @@ export class EliminatedNewton {
   /** Balances of the kept components (gradient) and the matrix left when the others are eliminated exactly (hessian, lower triangle). */
   private evaluate(keptTotal: Float64Array, goneTotal: Float64Array): void {
     const { terms, free, power, sum, first, second, gradient, hessian } = this;
-    const { k, constant, plan, ligand, polynomial, powerStart } = terms;
+    const { k, constant, plan, ligand, polynomial, powerStart, homonuclear } = terms;
     for (let l = 0; l < k; l++) {
       const value = free[l]!;
       let product = 1;
@@ -158,6 +161,13 @@ export class EliminatedNewton {
         continue;
       }
       if (hasMixed) total += this.mixedTotal(block);
+      if (homonuclear.blockStart[block + 1]! > homonuclear.blockStart[block]!) {
+        const m = this.manyAtoms.free(block, total, goneTotal[block - 1]!, power);
+        sum[block - 1] = m > 0 ? goneTotal[block - 1]! / m : total;
+        if (hasMixed) this.addMixed(block, m);
+        this.manyAtoms.add(block, m, total, from, to, first, second, gradient, hessian);
+        continue;
+      }
       sum[block - 1] = total;
       const inverse = 1 / total;
       const unit = goneTotal[block - 1]! * inverse;

@@ -18,6 +18,16 @@ interface MixedTerms {
   readonly exponent: Float64Array;
 }
 
+/** Species with several atoms of one eliminated component, per block: beta times powers of the kept ones, and how many atoms. */
+interface HomonuclearTerms {
+  readonly blockStart: Int32Array; // per block: its first term
+  readonly beta: Float64Array;
+  readonly atoms: Float64Array;
+  readonly start: Int32Array; // per term
+  readonly segment: Int32Array; // number of the segment, over all blocks
+  readonly exponent: Float64Array;
+}
+
 /**
  * The terms of one problem at fixed components, grouped in blocks; see `eliminatedSolver`. Block 0 holds the species without an eliminated component,
  * block e + 1 those of eliminated component e. A block is a constant, one polynomial in each kept component it holds (a segment), and
@@ -35,7 +45,9 @@ export interface EliminatedTerms {
   readonly ligand: Int32Array; // per segment: the kept component
   readonly polynomial: Float64Array; // per segment: coefficients of powers 1, 2, ... ; gaps are 0
   readonly mixed: MixedTerms;
+  readonly homonuclear: HomonuclearTerms;
   readonly powerStart: Int32Array; // per kept component: its first power in a table of powers
+  /** Species that hold two different eliminated components. */
   readonly polynuclear: readonly PolynuclearSpecies[];
 }
 
@@ -43,6 +55,7 @@ interface Block {
   constant: number;
   readonly segments: Map<number, number[]>; // kept component -> coefficients by power, from 1
   readonly mixed: Map<string, { readonly exponents: readonly number[]; beta: number }>;
+  readonly homonuclear: { readonly exponents: readonly number[]; readonly beta: number; readonly atoms: number }[];
 }
 
 /** Groups the species of a problem by eliminated component and by powers of the kept ones, or null where the form does not apply. */
@@ -58,7 +71,7 @@ export function compileEliminated(
   const kept = all.filter((j) => !isFixed(j) && !gone.includes(j));
   const blocks = Array.from(
     { length: gone.length + 1 },
-    (): Block => ({ constant: 0, segments: new Map(), mixed: new Map() }),
+    (): Block => ({ constant: 0, segments: new Map(), mixed: new Map(), homonuclear: [] }),
   );
   const polynuclear: PolynuclearSpecies[] = [];
   for (let i = 0; i < nSpecies; i++) {
@@ -69,7 +82,12 @@ export function compileEliminated(
     const unknown = all.filter((j) => !isFixed(j) && coefficient(j) !== 0);
     if (unknown.some((j) => coefficient(j) < 0)) return null;
     if (unknown.length === 0) continue;
-    const atoms = gone.reduce((sum, j) => sum + coefficient(j), 0);
+    const metals = gone.filter((j) => coefficient(j) > 0);
+    const atoms = metals.reduce((sum, j) => sum + coefficient(j), 0);
+    if (metals.length === 1 && atoms > 1) {
+      addHomonuclear(blocks[1 + gone.indexOf(metals[0]!)]!, kept.map(coefficient), Math.exp(ln), atoms);
+      continue;
+    }
     if (atoms > 1) {
       polynuclear.push({
         lnBeta: ln,
@@ -78,7 +96,7 @@ export function compileEliminated(
       });
       continue;
     }
-    const block = blocks[atoms === 0 ? 0 : 1 + gone.findIndex((j) => coefficient(j) === 1)]!;
+    const block = blocks[atoms === 0 ? 0 : 1 + gone.indexOf(metals[0]!)]!;
     addTerm(block, kept.map(coefficient), Math.exp(ln));
   }
   return {
@@ -109,18 +127,52 @@ function addTerm(block: Block, exponents: readonly number[], beta: number): void
   }
 }
 
+function addHomonuclear(block: Block, exponents: readonly number[], beta: number, atoms: number): void {
+  exponents.forEach((exponent, l) => {
+    if (exponent > 0 && !block.segments.has(l)) block.segments.set(l, []);
+  });
+  block.homonuclear.push({ exponents, beta, atoms });
+}
+
+/** Sparse rows of (segment, exponent) under construction. */
+interface Rows {
+  readonly blockStart: number[];
+  readonly beta: number[];
+  readonly start: number[];
+  readonly segment: number[];
+  readonly exponent: number[];
+}
+
+function addRow(rows: Rows, beta: number, exponents: readonly number[], place: ReadonlyMap<number, number>): void {
+  rows.beta.push(beta);
+  exponents.forEach((value, l) => {
+    if (value === 0) return;
+    rows.segment.push(place.get(l)!);
+    rows.exponent.push(value);
+  });
+  rows.start.push(rows.segment.length);
+}
+
+const emptyRows = (): Rows => ({ blockStart: [0], beta: [], start: [0], segment: [], exponent: [] });
+
+const packed = (rows: Rows): MixedTerms => ({
+  blockStart: Int32Array.from(rows.blockStart),
+  beta: Float64Array.from(rows.beta),
+  start: Int32Array.from(rows.start),
+  segment: Int32Array.from(rows.segment),
+  exponent: Float64Array.from(rows.exponent),
+});
+
 function flatten(
   blocks: readonly Block[],
   k: number,
-): Pick<EliminatedTerms, "constant" | "plan" | "ligand" | "polynomial" | "mixed" | "powerStart"> {
+): Pick<EliminatedTerms, "constant" | "plan" | "ligand" | "polynomial" | "mixed" | "homonuclear" | "powerStart"> {
   const highest = new Int32Array(k);
   const ligand: number[] = [];
   const polynomial: number[] = [];
-  const blockStart = [0];
-  const beta: number[] = [];
-  const start = [0];
-  const segment: number[] = [];
-  const exponent: number[] = [];
+  const mixed = emptyRows();
+  const homonuclear = emptyRows();
+  const atoms: number[] = [];
   for (const block of blocks) {
     const place = new Map<number, number>();
     for (const [l, coefficients] of [...block.segments].sort(([a], [b]) => a - b)) {
@@ -130,17 +182,15 @@ function flatten(
       polynomial.push(...coefficients);
       highest[l] = Math.max(highest[l]!, coefficients.length);
     }
-    for (const term of block.mixed.values()) {
-      beta.push(term.beta);
-      term.exponents.forEach((value, l) => {
-        if (value === 0) return;
-        segment.push(place.get(l)!);
-        exponent.push(value);
-        highest[l] = Math.max(highest[l]!, value);
-      });
-      start.push(segment.length);
+    for (const term of [...block.mixed.values(), ...block.homonuclear])
+      term.exponents.forEach((value, l) => (highest[l] = Math.max(highest[l]!, value)));
+    for (const term of block.mixed.values()) addRow(mixed, term.beta, term.exponents, place);
+    for (const term of block.homonuclear) {
+      addRow(homonuclear, term.beta, term.exponents, place);
+      atoms.push(term.atoms);
     }
-    blockStart.push(beta.length);
+    mixed.blockStart.push(mixed.beta.length);
+    homonuclear.blockStart.push(homonuclear.beta.length);
   }
   const powerStart = new Int32Array(k + 1);
   for (let l = 0; l < k; l++) powerStart[l + 1] = powerStart[l]! + highest[l]!;
@@ -156,13 +206,8 @@ function flatten(
     plan: Int32Array.from(plan),
     ligand: Int32Array.from(ligand),
     polynomial: Float64Array.from(polynomial),
-    mixed: {
-      blockStart: Int32Array.from(blockStart),
-      beta: Float64Array.from(beta),
-      start: Int32Array.from(start),
-      segment: Int32Array.from(segment),
-      exponent: Float64Array.from(exponent),
-    },
+    mixed: packed(mixed),
+    homonuclear: { ...packed(homonuclear), atoms: Float64Array.from(atoms) },
     powerStart,
   };
 }

@@ -3,7 +3,7 @@ import { compileEliminated, type EliminatedTerms } from "./solve-eliminated-term
 import { solveEquilibrium } from "./solve-equilibrium.ts";
 import type { MassBalanceProblem, SolveResult } from "./types.ts";
 
-const POLYNUCLEAR_NONE = 1e-14; // share of a total below which species of several metals are left out
+const POLYNUCLEAR_NONE = 1e-14; // share of a total below which species of two metals are left out
 const POLYNUCLEAR_MOST = 1e-6; // share up to which they are a correction to the totals; above it the general solver takes over
 const CORRECTIONS = 6;
 
@@ -15,7 +15,7 @@ export interface EliminatedEvidence {
   worstComponent: number;
   /** "general" where the eliminated form did not apply or did not converge and `solveEquilibrium` was used. */
   method: "eliminated" | "general";
-  /** Largest share of a total held in species with more than one eliminated atom; they are included in the answer. */
+  /** Largest share of a total held in species of two different eliminated components; they are included in the answer. */
   polynuclearShare: number;
 }
 
@@ -29,13 +29,14 @@ export interface EliminatedSolver {
 }
 
 /**
- * A fast solver for systems in which each species holds at most one of the components to `eliminate` (the metals), once.
+ * A fast solver for systems in which each species holds at most one of the components to `eliminate` (the metals).
  *
  * Each of those has an explicit free concentration once the others are known, total / (sum of beta times powers), so Newton runs on the
  * others alone: the same convex function minimised over the metals first. Species with equal powers of the unknown components (protonation steps and
- * hydroxo complexes at fixed protons) are one term; powers are products. Species with several eliminated atoms (polynuclear) enter as a
- * correction of the totals while they hold less than 1e-6 of any, checked afterwards; beyond that, and wherever it fails or
- * would lose digits, the general solver answers. No solids.
+ * hydroxo complexes at fixed protons) are one term; powers are products. Where a species holds several atoms of one eliminated component,
+ * its free concentration is the root of a polynomial instead. Species of two eliminated components enter as a correction of the totals
+ * while they hold less than 1e-6 of any, checked afterwards; beyond that, and wherever it fails or would lose digits, the general solver
+ * answers. No solids.
  *
  * `fixedLnFree`: as in `solveEquilibrium`. `eliminate`: components, e.g. all metals. Returns null when the form does not apply at all (an
  * unknown of mixed sign, constants beyond e^600).
@@ -50,7 +51,7 @@ export function eliminatedSolver(
   const { kept, gone, k } = terms;
   const keptTotal = new Float64Array(k);
   const goneTotal = new Float64Array(gone.length);
-  const held = new Float64Array(problem.nComponents); // in polynuclear species, per component
+  const held = new Float64Array(problem.nComponents); // in species of two eliminated components, per component
   const work = new EliminatedNewton(terms);
   const evidence: EliminatedEvidence = {
     status: "converged",
@@ -113,7 +114,7 @@ export function eliminatedSolver(
   return { solve };
 }
 
-/** Amounts held in species with several eliminated atoms, mol/L per component. */
+/** Amounts held in species of two eliminated components, mol/L per component. */
 function polynuclear(terms: EliminatedTerms, lnFree: Float64Array, held: Float64Array): void {
   held.fill(0);
   for (const species of terms.polynuclear) {

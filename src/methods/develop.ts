@@ -3,6 +3,7 @@ import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { metalKinetics } from "./kinetics.ts";
 import { benchAmount, maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
 import type { Shelf } from "./shelf.ts";
+import { remembered } from "./remembered.ts";
 import { bufferAmount, excessFor, withAuxiliary, type Skeleton } from "./skeletons.ts";
 import { vesselSample } from "./solution.ts";
 import { standardisedAlike } from "./standardise.ts";
@@ -272,10 +273,8 @@ function withExcess(task: Task, plan: StagePlan, knowledge: Knowledge): StagePla
 
 /** Evaluates a titration, standardised alike, with complexes frozen that, once formed hot, do not exchange in the cold acid solution. */
 export function evaluate(task: Task, plan: StagePlan, knowledge: Knowledge): StageEvaluation {
-  return standardisedAlike(
-    task,
-    evaluateStage(task, plan, knowledge, frozenComplexes(task, plan, knowledge)),
-    knowledge,
+  return remembered("titration", task, plan, knowledge, () =>
+    standardisedAlike(task, evaluateStage(task, plan, knowledge, frozenComplexes(task, plan, knowledge)), knowledge),
   );
 }
 

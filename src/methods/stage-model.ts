@@ -181,13 +181,16 @@ export function stageModel(
     system.components.forEach((c, i) => (t[i] = c === "H+" ? 0 : (totals.get(c) ?? 0)));
     return t;
   };
-  const atStart = (system: PreparedSystem): SolveResult =>
-    solveEquilibrium(system.problem, columns(system), { fixedLnFree: protonFixed(system, plan.pH) });
+  const atStart = (system: PreparedSystem, near: SolveResult | null): SolveResult =>
+    solveEquilibrium(system.problem, columns(system), {
+      fixedLnFree: protonFixed(system, plan.pH),
+      ...(near && near.solidsMolPerL.every((amount) => amount === 0) ? { start: near.lnFree } : {}),
+    });
 
   // Ionic strength of the vessel itself, half way: start from 0.1 mol/L and correct until it agrees.
   let ionicStrengthMolPerL = 0.1;
   let system = prepare(ionicStrengthMolPerL, wantsSolid);
-  let first = atStart(system);
+  let first = atStart(system, null);
   for (let round = 0; round < 4; round++) {
     const inert = inertIonsOf(totals, knowledge);
     const found = Math.max(MIN_IONIC_STRENGTH_MOL_PER_L, ionicStrengthOf(system, first, inert.cz2, inert.cz).molPerL);
@@ -195,7 +198,7 @@ export function stageModel(
     if (agrees) break;
     ionicStrengthMolPerL = found;
     system = prepare(ionicStrengthMolPerL, wantsSolid);
-    first = atStart(system);
+    first = atStart(system, first);
   }
   // Solids that formed and do not redissolve in time are out of the game; those that do stay in equilibrium.
   const stays = new Set<string>();

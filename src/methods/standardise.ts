@@ -1,5 +1,6 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
+import { remembered } from "./remembered.ts";
 import type { StagePlan, Task } from "./types.ts";
 
 /**
@@ -13,7 +14,10 @@ export function standardisedAlike(task: Task, evaluation: StageEvaluation, knowl
   if (evaluation.status === "failed" || evaluation.basis === "empirical") return evaluation;
   if (plan.backTitrant === null && !plan.determines.every((ion) => knowledge.standards.some((s) => s.forIon === ion)))
     return evaluation;
-  const alone = evaluateStage(standardTask(task, plan), standardPlan(task, plan), knowledge);
+  const standard = standardPlan(task, plan);
+  const alone = remembered("standard", task, standard, knowledge, () =>
+    evaluateStage(standardTask(task, plan), standard, knowledge),
+  );
   // An end point that is wrong by more than this is not one to standardise with: the method itself is wrong.
   if (alone.status === "failed" || Math.abs(alone.biasFraction) > CANCELS_UP_TO) return evaluation;
   const biasFraction = (1 + evaluation.biasFraction) / (1 + alone.biasFraction) - 1;

@@ -26,9 +26,9 @@ export function protonFixed(system: PreparedSystem, pH: number): Float64Array {
 }
 
 /**
- * Solves one vessel for many totals (mol/L per column of the system, H+ held at `pH`), each from the last answer. Where no solid may form
- * the metals are eliminated exactly; else, and wherever that form does not hold, the general solver answers.
- * @param metals components that no species holds beside another of them, but for polynuclear ones
+ * Solves one vessel for many totals (mol/L per column of the system, H+ held at `pH`), each from the last answer. While no solid
+ * is there the metals are eliminated exactly; else, and wherever that form does not hold, the general solver answers.
+ * @param metals components to eliminate
  */
 export function vesselSolver(
   system: PreparedSystem,
@@ -38,22 +38,44 @@ export function vesselSolver(
   const { problem } = system;
   const fixedLnFree = protonFixed(system, pH);
   const columns = system.components.flatMap((c, i) => (metals.has(c) ? [i] : []));
-  const fast =
-    system.solids.length === 0 && columns.length > 0 ? eliminatedSolver(problem, fixedLnFree, columns) : null;
+  const fast = columns.length > 0 ? eliminatedSolver(problem, fixedLnFree, columns) : null;
+  const supersaturated = saturationCheck(system);
   let warm: Float64Array | null = null;
+  let activeSolids: readonly number[] = [];
   return (totals) => {
-    if (fast && warm) {
+    if (fast && warm && activeSolids.length === 0) {
       const lnFree = warm.slice();
       const evidence = fast.solve(totals, lnFree);
-      if (evidence.status === "converged") {
+      if (evidence.status === "converged" && !supersaturated(lnFree)) {
         warm = lnFree;
         return fromLogs(system, lnFree, evidence.residual, evidence.iterations);
       }
     }
-    const result = solveEquilibrium(problem, totals, warm ? { fixedLnFree, start: warm } : { fixedLnFree });
-    if (result.status === "converged") warm = result.lnFree;
+    const result = solveEquilibrium(
+      problem,
+      totals,
+      warm ? { fixedLnFree, start: warm, activeSolids } : { fixedLnFree },
+    );
+    if (result.status === "converged") {
+      warm = result.lnFree;
+      activeSolids = system.solids.flatMap((_, i) => (result.solidsMolPerL[i]! > 0 ? [i] : []));
+    }
     return fromResult(result);
   };
+}
+
+/** Whether any solid of the system would form at these free concentrations. */
+function saturationCheck(system: PreparedSystem): (lnFree: Float64Array) => boolean {
+  const rows = system.solids.map((solid) => ({
+    lnK: Math.LN10 * solid.log10Beta,
+    parts: Object.entries(solid.components).map(([c, n]) => ({ column: system.index.get(c), n })),
+  }));
+  return (lnFree) =>
+    rows.some(({ lnK, parts }) => {
+      let sum = lnK;
+      for (const { column, n } of parts) sum += column === undefined ? -Infinity : n * lnFree[column]!;
+      return sum > 0;
+    });
 }
 
 function fromResult(result: SolveResult): VesselSolution {
@@ -67,8 +89,6 @@ function fromResult(result: SolveResult): VesselSolution {
     solidsMolPerL: result.solidsMolPerL,
   };
 }
-
-const NO_SOLIDS = new Float64Array(0);
 
 function fromLogs(system: PreparedSystem, lnFree: Float64Array, residual: number, iterations: number): VesselSolution {
   const { stoichiometry, lnBeta, nComponents, nSpecies } = system.problem;
@@ -92,6 +112,6 @@ function fromLogs(system: PreparedSystem, lnFree: Float64Array, residual: number
       all ??= Float64Array.from({ length: nSpecies }, (_, row) => species(row));
       return all;
     },
-    solidsMolPerL: NO_SOLIDS,
+    solidsMolPerL: new Float64Array(system.solids.length),
   };
 }

@@ -70,26 +70,44 @@ describe("eliminatedSolver", () => {
     expect(solver.solve([1e-3, 2e-3], lnFree)).toMatchObject({ status: "converged", method: "eliminated" });
   });
 
-  it("includes polynuclear species as a correction while they are few, and hands over when they are not", () => {
-    const build = (log10Beta: number): ReturnType<typeof massBalanceProblem> =>
-      massBalanceProblem([
+  it("eliminates exactly a metal that also stands in species with several of its atoms, however much they hold", () => {
+    for (const log10Beta of [2, 4, 9, 14]) {
+      const dinuclear = massBalanceProblem([
         [0, 1, 0],
         [0, 0, 1],
         [6, 1, 1],
         [log10Beta, 2, 1],
+        [log10Beta + 3, 3, 2],
       ]);
-    for (const [log10Beta, method] of [
-      [2, "eliminated"],
-      [4, "eliminated"],
-      [9, "general"],
-    ] as const) {
-      const dinuclear = build(log10Beta);
       const lnFree = Float64Array.of(-14, -8);
       const evidence = eliminatedSolver(dinuclear, [NaN, NaN], [0])!.solve([1e-4, 1e-3], lnFree);
+      expect(evidence.method).toBe("eliminated");
       const general = solveEquilibrium(dinuclear, [1e-4, 1e-3]);
+      general.lnFree.forEach((value, j) => expectRelative(1 + lnFree[j]! - value, 1, 1e-12));
+    }
+  });
+
+  it("includes species of two metals as a correction while they are few, and hands over when they are not", () => {
+    for (const [log10Beta, method] of [
+      [4, "eliminated"],
+      [2, "eliminated"],
+      [13, "general"],
+    ] as const) {
+      const mixed = massBalanceProblem([
+        [0, 1, 0, 0],
+        [0, 0, 1, 0],
+        [0, 0, 0, 1],
+        [6, 1, 0, 1],
+        [5, 0, 1, 1],
+        [log10Beta, 1, 1, 1],
+      ]);
+      const totals = [1e-4, 2e-4, 1e-3];
+      const lnFree = Float64Array.of(-14, -14, -8);
+      const evidence = eliminatedSolver(mixed, [NaN, NaN, NaN], [0, 1])!.solve(totals, lnFree);
+      const general = solveEquilibrium(mixed, totals);
       expect(evidence.method).toBe(method);
       general.lnFree.forEach((value, j) => expectRelative(1 + lnFree[j]! - value, 1, 1e-12));
-      expectRelative(evidence.polynuclearShare, (2 * general.speciesMolPerL[3]!) / 1e-4, 1e-3);
+      expectRelative(evidence.polynuclearShare, general.speciesMolPerL[5]! / 1e-4, 1e-3);
     }
   });
 
