@@ -47,6 +47,7 @@ export function joinKnowledge(raw: PracticeData, equilibria: EquilibriumData, ha
     masking: practice.masking,
     kinetics: practice.kinetics,
     electrodes: practice.electrodes,
+    photometric: practice.photometric,
     reagents: byId("reagents.json", practice.reagents, (r) => r.id),
     cautions: practice.cautions,
     glassware: practice.glassware,
@@ -91,6 +92,15 @@ function checkReferences(practice: PracticeData): void {
       throw new DataError("kinetics.json", `$[${i}].indicator`, `unknown indicator "${row.indicator}"`);
     if (row.titrant !== null && !titrants.has(row.titrant) && !agents.has(row.titrant))
       throw new DataError("kinetics.json", `$[${i}].titrant`, `unknown titrant "${row.titrant}"`);
+  });
+  practice.photometric.forEach((row, i) => {
+    if (row.indicator !== null && !indicators.has(row.indicator))
+      throw new DataError("photometric.json", `$[${i}].indicator`, `unknown indicator "${row.indicator}"`);
+  });
+  const electrodes = new Set(practice.electrodes.map((e) => e.id));
+  practice.electrodes.forEach((row, i) => {
+    if (row.membraneOf !== null && !electrodes.has(row.membraneOf))
+      throw new DataError("electrodes.json", `$[${i}].membraneOf`, `unknown electrode "${row.membraneOf}"`);
   });
   practice.masking.forEach((row, i) => {
     if (row.agent !== "none" && !agents.has(row.agent) && !remarked.has(row.agent))

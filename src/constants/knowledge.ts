@@ -346,17 +346,55 @@ export interface MetalTitrantRecord {
   readonly provenance: Provenance;
 }
 
+/** An indicator electrode: what it shows, how steeply, how far down, and what spoils it. Slope at 25 C. */
 export interface ElectrodeRecord {
   readonly id: string;
-  readonly ion: ComponentId;
+  readonly name: string; // in words
+  readonly ion: ComponentId; // the ion whose activity sets the potential
+  /** Metals that it follows by itself, without a chelate to lend it its ion. */
+  readonly shows: readonly ComponentId[];
+  /** The electrode whose membrane it shares, with that membrane's interfering ions and poisons. */
+  readonly membraneOf: string | null;
+  /** The chelate that is added so that it follows a metal it does not answer. */
+  readonly chelate: "Cu-EDTA" | null;
+  /** The reduced form of a redox couple, of which a trace is added; the potential then follows the ratio. */
+  readonly couple: ComponentId | null;
   readonly slopeMVPerDecade: number;
-  readonly detectionLimitMolPerL: number;
+  readonly slopeProvenance: Provenance;
+  readonly detectionLimitMolPerL: number; // in a solution that nothing buffers
+  readonly limitProvenance: Provenance;
+  /** How far it follows the free ion where a ligand in excess buffers it, as after the end of a titration. */
+  readonly bufferedLimit: { readonly molPerL: number; readonly provenance: Provenance } | null;
+  /** Scatter of one reading in a titration. */
+  readonly reading: { readonly mV: number; readonly provenance: Provenance };
   readonly pH: readonly [number, number];
   readonly interferingIons: readonly {
     readonly ion: ComponentId;
-    readonly log10Selectivity: number | null;
+    readonly log10Selectivity: number | null; // null: must be absent
     readonly provenance: Provenance;
   }[];
+  readonly poisons: readonly {
+    readonly component: ComponentId;
+    readonly effect: "absent" | "disturbs"; // it must be absent, or it shifts the reading
+    readonly text: string;
+    readonly provenance: Provenance;
+  }[];
+  /** Product [ion][Cl-]^2 above which chloride disturbs a sulfide membrane, (mol/L)^3. */
+  readonly chloride: { readonly productMax: number; readonly provenance: Provenance } | null;
+  readonly avoidBuffers: readonly { readonly buffer: string; readonly text: string; readonly provenance: Provenance }[];
+  readonly provenance: Provenance;
+}
+
+/** At which wavelengths the colour of a dye, or of a coloured complex itself, is followed in a titration; nm. */
+export interface PhotometricRecord {
+  readonly id: string;
+  readonly indicator: string | null; // null where the complex itself is coloured
+  readonly complex: { readonly metal: ComponentId; readonly titrant: ComponentId } | null;
+  readonly pH: readonly [number, number];
+  readonly freeNm: readonly [number, number] | null;
+  readonly bound: readonly { readonly ion: ComponentId; readonly nm: readonly [number, number] }[];
+  readonly usedNm: readonly [number, number];
+  readonly usedProvenance: Provenance;
   readonly provenance: Provenance;
 }
 
@@ -392,6 +430,7 @@ export interface Knowledge {
   readonly masking: readonly MaskingRecord[];
   readonly kinetics: readonly KineticRecord[];
   readonly electrodes: readonly ElectrodeRecord[];
+  readonly photometric: readonly PhotometricRecord[];
   readonly reagents: ReadonlyMap<string, ReagentRecord>;
   readonly cautions: readonly CautionRecord[];
   readonly glassware: readonly GlasswareRecord[];

@@ -11,11 +11,13 @@ import type {
   KineticRecord,
   MaskingRecord,
   MetalTitrantRecord,
+  PhotometricRecord,
   PrimaryStandardRecord,
   ReagentRecord,
   SourceRecord,
   TitrantRecord,
 } from "./knowledge.ts";
+import * as detection from "./detection-schema.ts";
 import * as schema from "./practice-schema.ts";
 import { type ReadFile, readRecords } from "./read-records.ts";
 import * as shelf from "./shelf-schema.ts";
@@ -31,6 +33,7 @@ export interface PracticeData {
   readonly masking: readonly MaskingRecord[];
   readonly kinetics: readonly KineticRecord[];
   readonly electrodes: readonly ElectrodeRecord[];
+  readonly photometric: readonly PhotometricRecord[];
   readonly reagents: readonly ReagentRecord[];
   readonly cautions: readonly CautionRecord[];
   readonly glassware: readonly GlasswareRecord[];
@@ -53,7 +56,8 @@ export function loadPractice(readFile: ReadFile): PracticeData {
     agents: list("agents.json", schema.agentSchema),
     masking: list("masking.json", schema.maskingSchema),
     kinetics: list("kinetics.json", schema.kineticSchema),
-    electrodes: list("electrodes.json", shelf.electrodeSchema),
+    electrodes: list("electrodes.json", detection.electrodeSchema),
+    photometric: list("photometric.json", detection.photometricSchema),
     reagents: list("reagents.json", shelf.reagentSchema),
     cautions: list("cautions.json", shelf.cautionSchema),
     glassware: list("glassware.json", shelf.glasswareSchema),

@@ -46,6 +46,7 @@ export function resolveIons(
   const [mask, kinetic, conversion] = [resolve("masking"), resolve("kinetics"), resolve("conversion")];
   const [electrode, standard, fact] = [resolve("electrode"), resolve("standard"), resolve("ion fact")];
   const metal = resolve("metal titrant");
+  const photometric = resolve("photometric wavelength");
   for (const titrant of practice.titrants) modelled(titrant.id, titrant.id);
   const resolved: PracticeData = {
     ...practice,
@@ -71,7 +72,15 @@ export function resolveIons(
     electrodes: practice.electrodes.map((row) => ({
       ...row,
       ion: electrode(row.ion),
+      shows: row.shows.map(electrode),
+      couple: row.couple === null ? null : electrode(row.couple),
       interferingIons: row.interferingIons.map((i) => ({ ...i, ion: electrode(i.ion) })),
+      poisons: row.poisons.map((p) => ({ ...p, component: electrode(p.component) })),
+    })),
+    photometric: practice.photometric.map((row) => ({
+      ...row,
+      complex: row.complex && { ...row.complex, metal: photometric(row.complex.metal) },
+      bound: row.bound.map((b) => ({ ...b, ion: photometric(b.ion) })),
     })),
     standards: practice.standards.map((row) => ({ ...row, forIon: standard(row.forIon) })),
     metalTitrants: practice.metalTitrants.map((row) => ({ ...row, ion: metal(row.ion) })),

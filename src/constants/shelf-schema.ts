@@ -1,7 +1,7 @@
 import { z } from "zod";
 import { provenanceSchema } from "./practice-schema.ts";
 
-// What stands on the shelf: reagents and their cautions, glassware, standards, titrants, electrodes. Strict, as all practice data.
+// What stands on the shelf: reagents and their cautions, glassware, standards, titrants. Strict, as all practice data.
 const text = z.string().min(1);
 const positive = z.number().positive();
 const molPerL = positive.max(20);
@@ -85,18 +85,5 @@ export const metalTitrantSchema = z.strictObject({
   ion: text,
   usualMolPerL: z.array(molPerL).min(1),
   special: z.boolean(),
-  provenance: provenanceSchema,
-});
-
-/** An indicator electrode; slope in mV per decade, detection limit mol/L. */
-export const electrodeSchema = z.strictObject({
-  id: text,
-  ion: text,
-  slopeMVPerDecade: z.number(),
-  detectionLimitMolPerL: positive,
-  pH: range,
-  interferingIons: z.array(
-    z.strictObject({ ion: text, log10Selectivity: z.number().nullable(), provenance: provenanceSchema }),
-  ),
   provenance: provenanceSchema,
 });

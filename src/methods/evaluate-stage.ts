@@ -1,10 +1,9 @@
-import { BLOCKED_BOUND_FRACTION } from "../chemistry/end-point.ts";
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { accountOf, type StageAccount } from "./account.ts";
 import { blockersOf } from "./blocking.ts";
-import { criterionOf, holderOf, showsColour, type EndPointBasis } from "./criterion.ts";
-import { firstCrossing, nearCrossing } from "./end-point-search.ts";
+import { holderOf, type EndPointBasis } from "./criterion.ts";
 import { inertMetals } from "./kinetics.ts";
+import { readEndPoint, type EndPointFault, type EndPointRead } from "./read-end-point.ts";
 import { stageModel, type StageModel, type VesselState } from "./stage-model.ts";
 import { vesselSample } from "./solution.ts";
 import type { StagePlan, Task } from "./types.ts";
@@ -12,7 +11,7 @@ import type { StagePlan, Task } from "./types.ts";
 /** What one titration gives, calculated; all fractions relative to the amount determined. */
 export interface StageEvaluation extends StageAccount {
   readonly status: "converged" | "failed" | "outOfModelRange";
-  readonly why: "no-colour" | "no-end-point" | "dye-held" | "not-converged" | null;
+  readonly why: EndPointFault | "not-converged" | null;
   readonly model: StageModel;
   readonly basis: EndPointBasis;
   readonly endPointML: number;
@@ -25,6 +24,8 @@ export interface StageEvaluation extends StageAccount {
   readonly bandPM: number;
   readonly sharpnessFraction: number; // half-width of the observer band over the titre that determines
   readonly blockedBy: readonly ComponentId[];
+  readonly electrode: EndPointRead["electrode"]; // null unless read with one
+  readonly photometric: EndPointRead["photometric"];
   readonly log10ConditionalK: ReadonlyMap<ComponentId, number>;
   readonly log10AlphaOfAnalyte: number; // side reactions of the first determined metal before the titrant comes
 }
@@ -58,13 +59,15 @@ export function evaluateStage(
   const titrantBefore = model.at(0);
   const expectedMol = back ? Math.max(titrantBefore.titrantUnbound * model.volumeL, 1e-9) : presentMol;
   const equivalenceL = expectedMol / model.burette.molPerL;
-  const criterion = criterionOf(model, determined, back);
+  const read = readEndPoint(model, determined, equivalenceL, knowledge);
   const base = {
     model,
-    basis: criterion.basis,
+    basis: read.basis,
+    electrode: read.electrode,
+    photometric: read.photometric,
     equivalenceML: equivalenceL * ML,
     presentMol,
-    bandPM: criterion.bandPM,
+    bandPM: read.bandPM,
     blockedBy: blockersOf(model, titrantBefore, knowledge),
   };
   const failed = (why: StageEvaluation["why"]): StageEvaluation => ({
@@ -88,40 +91,31 @@ export function evaluateStage(
     backTitrantStealsFraction: 0,
   });
   if (!titrantBefore.ok) return failed("not-converged");
-  if (criterion.basis !== "empirical") {
-    const early = model.at(back ? 0 : 0.5 * equivalenceL);
-    if (!back && !showsColour(model, criterion.ratio(early))) return failed("no-colour");
-    if (back && criterion.ratio(early) / (1 + criterion.ratio(early)) > BLOCKED_BOUND_FRACTION)
-      return failed("dye-held");
-  }
-  const search = firstCrossing((v) => criterion.of(model.at(v)), equivalenceL);
-  if (!search.found) return failed("no-end-point");
-  const end = model.at(search.volumeL);
+  if (read.why !== null) return failed(read.why);
+  const end = model.at(read.volumeL);
   if (!end.ok) return failed("not-converged");
-  const shifted = (by: number): number =>
-    nearCrossing((v) => criterion.of(model.at(v)) + by, search.volumeL, by > 0 ? -1 : 1, equivalenceL) ??
-    search.volumeL;
-  const bandLow = shifted(criterion.bandLog10);
-  const bandHigh = shifted(-criterion.bandLog10);
-  const account = accountOf(task, model, end, search.volumeL, presentMol, determined);
-  const half = model.at(back ? search.volumeL : 0.5 * search.volumeL);
+  const [bandLow, bandHigh] = read.bandL;
+  const account = accountOf(task, model, end, read.volumeL, presentMol, determined);
+  const half = model.at(back ? read.volumeL : 0.5 * read.volumeL);
   const indicatorMetal = holderOf(model, half);
   const followed = back ? plan.backTitrant.id : (plan.determines[0] ?? indicatorMetal);
   const equivalence = model.at(equivalenceL);
-  const determinedL = back ? presentMol / plan.titrant.molPerL : search.volumeL;
+  const determinedL = back ? presentMol / plan.titrant.molPerL : read.volumeL;
   return {
     ...base,
     ...account,
     status: model.system.outOfModelRange ? "outOfModelRange" : "converged",
     why: null,
-    endPointML: search.volumeL * ML,
+    endPointML: read.volumeL * ML,
     bandML: [bandLow * ML, bandHigh * ML],
     indicatorMetal:
-      criterion.basis === "empirical"
-        ? (plan.chelate?.metal ?? followed)
-        : model.indicator?.class === "self-coloured"
-          ? followed
-          : indicatorMetal,
+      plan.indicator === null
+        ? null
+        : read.basis === "empirical"
+          ? (plan.chelate?.metal ?? followed)
+          : model.indicator?.class === "self-coloured"
+            ? followed
+            : indicatorMetal,
     pM: followed ? -Math.log10(Math.max(end.free(followed), Number.MIN_VALUE)) : null,
     pMEquivalence: followed ? -Math.log10(Math.max(equivalence.free(followed), Number.MIN_VALUE)) : null,
     sharpnessFraction: Math.abs(bandHigh - bandLow) / 2 / determinedL,

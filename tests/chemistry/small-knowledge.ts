@@ -122,6 +122,7 @@ export function smallKnowledge(
     masking: [],
     kinetics: [],
     electrodes: [],
+    photometric: [],
     reagents: new Map(),
     cautions: [],
     glassware: [],
