@@ -53,6 +53,7 @@ export function joinKnowledge(raw: PracticeData, equilibria: EquilibriumData, ha
     glassware: practice.glassware,
     standards: practice.standards,
     ionFacts: practice.ionFacts,
+    precedents: practice.precedents,
     remarks: [...equilibria.remarks, ...practice.remarks, ...remarks],
     atomicWeights: new Map(practice.atomicWeights.map((a) => [a.element, a.gPerMol])),
   };

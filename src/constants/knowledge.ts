@@ -409,8 +409,26 @@ export interface DataRemark {
 export interface IonFact {
   readonly ion: ComponentId;
   readonly fact: string;
-  readonly kind: "oxidation-state" | "hydrolysis" | "hazard" | "not-by-this-technique" | "usual-practice";
+  readonly kind: "oxidation-state" | "hydrolysis" | "hazard" | "not-by-this-technique";
   readonly provenance: Provenance;
+}
+
+/** A published method of one ion. Found after the ranking, to stand beside a recommended method; it never steers it. */
+export interface PrecedentRecord {
+  readonly ion: ComponentId;
+  readonly mode: "direct" | "back" | "displacement" | "indirect" | "successive" | "difference";
+  readonly titrant: string;
+  readonly backTitrant: ComponentId | null;
+  readonly pH: readonly [number, number]; // at the end point
+  readonly pHBasis: "read" | "memory"; // a read source may give the scheme while its pH is recalled
+  readonly indicators: readonly string[];
+  readonly buffers: readonly string[];
+  readonly preparation: readonly string[];
+  readonly auxiliary: readonly string[];
+  readonly stoichiometry: string | null;
+  readonly scope: string | null;
+  readonly provenance: Provenance;
+  readonly otherSources: readonly Provenance[];
 }
 
 /** Everything the program knows. Immutable after loading. */
@@ -436,6 +454,7 @@ export interface Knowledge {
   readonly glassware: readonly GlasswareRecord[];
   readonly standards: readonly PrimaryStandardRecord[];
   readonly ionFacts: readonly IonFact[];
+  readonly precedents: readonly PrecedentRecord[];
   readonly remarks: readonly DataRemark[];
   /** Atomic weights, g/mol, by element symbol. */
   readonly atomicWeights: ReadonlyMap<string, number>;

@@ -12,6 +12,7 @@ import type {
   MaskingRecord,
   MetalTitrantRecord,
   PhotometricRecord,
+  PrecedentRecord,
   PrimaryStandardRecord,
   ReagentRecord,
   SourceRecord,
@@ -39,6 +40,7 @@ export interface PracticeData {
   readonly glassware: readonly GlasswareRecord[];
   readonly standards: readonly PrimaryStandardRecord[];
   readonly ionFacts: readonly IonFact[];
+  readonly precedents: readonly PrecedentRecord[];
   readonly remarks: readonly DataRemark[];
   readonly atomicWeights: readonly z.infer<typeof schema.atomicWeightSchema>[];
 }
@@ -63,6 +65,7 @@ export function loadPractice(readFile: ReadFile): PracticeData {
     glassware: list("glassware.json", shelf.glasswareSchema),
     standards: list("standards.json", shelf.standardSchema),
     ionFacts: list("ion-facts.json", schema.ionFactSchema),
+    precedents: list("precedents.json", schema.precedentSchema),
     remarks: list("practice-remarks.json", schema.remarkSchema),
     atomicWeights: list("atomic-weights.json", schema.atomicWeightSchema),
   };

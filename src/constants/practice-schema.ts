@@ -196,8 +196,26 @@ export const kineticSchema = z.strictObject({
 export const ionFactSchema = z.strictObject({
   ion: text,
   fact: text,
-  kind: z.enum(["oxidation-state", "hydrolysis", "hazard", "not-by-this-technique", "usual-practice"]),
+  kind: z.enum(["oxidation-state", "hydrolysis", "hazard", "not-by-this-technique"]),
   provenance: provenanceSchema,
+});
+
+/** A published method of one ion, as far as the source states it. */
+export const precedentSchema = z.strictObject({
+  ion: text,
+  mode: z.enum(["direct", "back", "displacement", "indirect", "successive", "difference"]),
+  titrant: text,
+  backTitrant: text.nullable(),
+  pH: z.tuple([z.number(), z.number()]),
+  pHBasis: z.enum(["read", "memory"]),
+  indicators: z.array(text),
+  buffers: z.array(text),
+  preparation: z.array(text),
+  auxiliary: z.array(text),
+  stoichiometry: text.nullable(),
+  scope: text.nullable(),
+  provenance: provenanceSchema,
+  otherSources: z.array(provenanceSchema),
 });
 
 /** Half width of the interval of the standard atomic weight; null where only the conventional value is on record. */

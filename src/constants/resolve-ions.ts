@@ -45,8 +45,8 @@ export function resolveIons(
   const [use, blocker, transition] = [resolve("indicator use"), resolve("blocker"), resolve("transition table")];
   const [mask, kinetic, conversion] = [resolve("masking"), resolve("kinetics"), resolve("conversion")];
   const [electrode, standard, fact] = [resolve("electrode"), resolve("standard"), resolve("ion fact")];
-  const metal = resolve("metal titrant");
   const photometric = resolve("photometric wavelength");
+  const [metal, precedent] = [resolve("metal titrant"), resolve("precedent")];
   for (const titrant of practice.titrants) modelled(titrant.id, titrant.id);
   const resolved: PracticeData = {
     ...practice,
@@ -85,6 +85,11 @@ export function resolveIons(
     standards: practice.standards.map((row) => ({ ...row, forIon: standard(row.forIon) })),
     metalTitrants: practice.metalTitrants.map((row) => ({ ...row, ion: metal(row.ion) })),
     ionFacts: practice.ionFacts.map((row) => ({ ...row, ion: fact(row.ion) })),
+    precedents: practice.precedents.map((row) => ({
+      ...row,
+      ion: precedent(row.ion),
+      backTitrant: row.backTitrant === null ? null : precedent(row.backTitrant),
+    })),
   };
   for (const [ion, rows] of [...outside].sort(([a], [b]) => (a < b ? -1 : 1))) {
     const where = [...rows].map(([kind, count]) => `${kind} ${count}`).join(", ");

@@ -154,6 +154,14 @@ export const methodSchema = z.strictObject({
   }),
   scores: z.array(z.strictObject({ rule: text, weight: finite, statement: text })),
   because: z.array(becauseSchema),
+  precedents: z.array(
+    z.strictObject({
+      stage: z.int().min(0),
+      statement: text,
+      sources: z.array(z.strictObject({ cite: text, basis: z.enum(["read", "memory", "computed"]) })).min(1),
+      pHBasis: z.enum(["read", "memory"]),
+    }),
+  ), // published methods that the titrations follow; found after the ranking
   cautions: z.array(text),
 });
 
@@ -211,6 +219,7 @@ export const recommendationSchema = z.strictObject({
       differences: z.array(z.strictObject({ rule: text, first: finite, second: finite, statement: text })),
     })
     .nullable(), // null where there is no second method
+  disagreement: text.nullable(), // where published methods differ and methods shown here follow different ones
   notes: z.array(text),
   constants: z.array(constantUsedSchema),
 });

@@ -7,6 +7,7 @@ import type { WorkingRange } from "../methods/working-range.ts";
 import type { Because, ConstantUsed, RecommendedMethod, StageDocument } from "./contract.ts";
 import type { JudgedMethod, Verdict } from "./judge.ts";
 import { maskingDocument } from "./masking-document.ts";
+import { precedentsOf } from "./precedents.ts";
 import { cautionTexts } from "./reagents.ts";
 import { shownIon } from "./spelling.ts";
 import { summaryOf } from "./summary.ts";
@@ -203,6 +204,7 @@ export function methodDocument(
       .filter(({ finding }) => finding.weight !== 0)
       .map(({ finding }) => ({ rule: finding.rule, weight: finding.weight, statement: finding.statement })),
     because: judged.verdicts.map(becauseOf),
+    precedents: precedentsOf(method, knowledge),
     cautions: cautionTexts(
       method.stages.map((s) => s.plan),
       sampleReagents(task, knowledge),

@@ -9,6 +9,7 @@ import { briefOf } from "./brief-document.ts";
 import type { Recommendation, RejectedMethod } from "./contract.ts";
 import { becauseOf, constantsUsed, methodDocument } from "./document.ts";
 import { findingsOf } from "./findings.ts";
+import { disagreementOf } from "./precedents.ts";
 import { judge, type JudgedMethod } from "./judge.ts";
 import { judgedMethods, ranged, ranking } from "./ranking.ts";
 import { shownIon } from "./spelling.ts";
@@ -40,6 +41,10 @@ export async function recommend(task: Task, knowledge: Knowledge, rules: RuleRun
     methods,
     rejected: rejectedOf(task, judged, knowledge),
     decidedBy: decidedBy(shown[0], shown[1]),
+    disagreement: disagreementOf(
+      shown.map((j) => j.method),
+      knowledge,
+    ),
     notes: [
       ...task.notes,
       ...(search.specialOpened ? ["Nothing from the usual shelf served; special reagents were considered too."] : []),

@@ -24,6 +24,7 @@ export function recommendationText(document: Recommendation): string {
     ...(first === undefined ? [] : firstMethod(document, first)),
     section("What the components would do, if nothing were done", findings(document)),
     section("Rivals", rivals(document)),
+    section("Published practice differs", document.disagreement === null ? [] : [wrap(document.disagreement, "  ")]),
     section("Rejected", rejected(document)),
     section(
       "Notes on the brief",
@@ -68,7 +69,16 @@ function firstMethod(document: Recommendation, method: RecommendedMethod): reado
     section("Error of one determination", error(method)),
     section("Masking and limits", masking(method)),
     section("Why", reasons(method)),
+    section("Precedents, looked up after the ranking", precedents(method)),
   ];
+}
+
+function precedents(method: RecommendedMethod): readonly (readonly string[])[] {
+  return method.precedents.map(({ statement, sources, pHBasis }) =>
+    bullet(
+      `${statement} [${sources.map(({ cite, basis }) => `${cite}; ${basis}`).join(" | ")}; pH ${pHBasis === "read" ? "read" : "from memory"}]`,
+    ),
+  );
 }
 
 function findings(document: Recommendation): readonly (readonly string[])[] {

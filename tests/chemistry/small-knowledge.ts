@@ -128,6 +128,7 @@ export function smallKnowledge(
     glassware: [],
     standards: [],
     ionFacts: [],
+    precedents: [],
     remarks: [],
     atomicWeights: new Map(),
   };

@@ -84,6 +84,7 @@ export const METHOD: RecommendedMethod = {
   ],
   workingConditions: { ionicStrengthMolPerL: 0.12, temperatureC: 25, outOfModelRange: false },
   scores: [{ rule: "mode/direct-first", weight: 3, statement: "A direct titration has the fewest steps." }],
+  precedents: [],
   because: [
     {
       rule: "mode/direct-first",
@@ -160,6 +161,7 @@ export const DOCUMENT: Recommendation = {
       { rule: "mode/direct-first", first: 3, second: 0, statement: "A direct titration has the fewest steps." },
     ],
   },
+  disagreement: null,
   notes: ["Rows of one component were added."],
   constants: [
     {

@@ -23,6 +23,7 @@ import { BASIS_WORDS, wordsOf } from "../format/words.ts";
 import { formulaMarkup, reactionMarkup } from "../format/typeset.ts";
 import { Markup, joinMarkup } from "../render/markup.ts";
 import { renderView } from "../render/render-view.ts";
+import { precedentWords } from "../../recommendation/precedents.ts";
 import type { WebServices } from "../services.ts";
 import { shell } from "./shell.ts";
 
@@ -158,6 +159,7 @@ function componentView(knowledge: Knowledge, index: KnowledgeIndex, names: Names
   const about = (list: readonly { provenance: Provenance }[], text: (i: number) => string): readonly object[] =>
     list.map((entry, i) => ({ text: names.set(text(i)), source: sourceMarkup(entry.provenance) }));
   const facts = knowledge.ionFacts.filter((f) => f.ion === id);
+  const precedents = knowledge.precedents.filter((p) => p.ion === id);
   const kinetics = knowledge.kinetics.filter((k) => k.ion === id);
   const masking = knowledge.masking.filter((m) => m.ion === id);
   return {
@@ -171,6 +173,7 @@ function componentView(knowledge: Knowledge, index: KnowledgeIndex, names: Names
     species: (index.speciesOf.get(id) ?? []).filter((s) => s.chain.length > 0).map(row),
     solids: knowledge.solids.filter((s) => id in s.components).map((s) => ({ ...row(s), pace: s.pace })),
     facts: about(facts, (i) => facts[i]?.fact ?? ""),
+    precedents: about(precedents, (i) => (precedents[i] ? precedentWords(precedents[i]) : "")),
     kinetics: about(kinetics, (i) => {
       const k = kinetics[i];
       return k

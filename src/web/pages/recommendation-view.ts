@@ -85,6 +85,7 @@ export function recommendationView(
       reasons: reasonViews(r.because, catalogue, names),
     })),
     constants: constantViews(recommendation, names),
+    disagreement: recommendation.disagreement === null ? null : names.set(recommendation.disagreement),
     notes: recommendation.notes.map((n) => names.set(n)),
     knowledge: `${recommendation.knowledge.version}, ${recommendation.knowledge.hash.slice(0, 16)}`,
   };
@@ -104,6 +105,10 @@ function methodView(
   return {
     rank: String(method.rank),
     summary: names.set(method.summary),
+    precedents: method.precedents.map((p) => ({
+      statement: names.set(p.statement),
+      sources: names.set(p.sources.map(({ cite, basis }) => `${cite} (${basis})`).join("; ")),
+    })),
     heading: method.meetsRequirement ? "The method" : "The nearest method",
     meets: method.meetsRequirement ? "keeps the requirement" : "does not keep the requirement",
     uncertainty: percent(method.predicted.relativeExpandedUncertaintyPercent),
