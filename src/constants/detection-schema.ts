@@ -26,6 +26,14 @@ export const electrodeSchema = z.strictObject({
   interferingIons: z.array(
     z.strictObject({ ion: text, log10Selectivity: z.number().nullable(), provenance: provenanceSchema }),
   ),
+  uses: z.array(
+    z.strictObject({
+      mode: z.enum(["direct", "back"]),
+      ions: z.array(text).min(1),
+      text,
+      provenance: provenanceSchema,
+    }),
+  ),
   poisons: z.array(
     z.strictObject({ component: text, effect: z.enum(["absent", "disturbs"]), text, provenance: provenanceSchema }),
   ),

@@ -373,6 +373,13 @@ export interface ElectrodeRecord {
     readonly log10Selectivity: number | null; // null: must be absent
     readonly provenance: Provenance;
   }[];
+  /** Titrations that practice does with it. */
+  readonly uses: readonly {
+    readonly mode: "direct" | "back";
+    readonly ions: readonly ComponentId[];
+    readonly text: string;
+    readonly provenance: Provenance;
+  }[];
   readonly poisons: readonly {
     readonly component: ComponentId;
     readonly effect: "absent" | "disturbs"; // it must be absent, or it shifts the reading

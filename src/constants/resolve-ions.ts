@@ -75,6 +75,7 @@ export function resolveIons(
       shows: row.shows.map(electrode),
       couple: row.couple === null ? null : electrode(row.couple),
       interferingIons: row.interferingIons.map((i) => ({ ...i, ion: electrode(i.ion) })),
+      uses: row.uses.map((u) => ({ ...u, ions: u.ions.map(electrode) })),
       poisons: row.poisons.map((p) => ({ ...p, component: electrode(p.component) })),
     })),
     photometric: practice.photometric.map((row) => ({

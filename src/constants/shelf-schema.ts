@@ -5,7 +5,6 @@ import { provenanceSchema } from "./practice-schema.ts";
 const text = z.string().min(1);
 const positive = z.number().positive();
 const molPerL = positive.max(20);
-const range = z.tuple([z.number(), z.number()]).refine(([low, high]) => low <= high, "low end above high end");
 
 /** Kinds of hazard a reagent can carry. */
 export const hazardTagSchema = z.enum([

@@ -1,16 +1,18 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop, type DevelopedStage } from "./develop.ts";
+import { skeletonsOf } from "./detection-skeletons.ts";
 import {
   dyeBreadth,
   promising,
   roughCost,
+  seenWith,
   stageKey,
   stagesFor,
   type EvaluatedMethod,
   type MethodResult,
 } from "./methods.ts";
 import type { Shelf } from "./shelf.ts";
-import { backSkeletons, directSkeletons, USUAL_FIELD, type Skeleton } from "./skeletons.ts";
+import { USUAL_FIELD, type Skeleton } from "./skeletons.ts";
 import type { MaskingStep, Task } from "./types.ts";
 import { combineDifference, stageBudget } from "./uncertainty.ts";
 
@@ -43,7 +45,7 @@ function best(task: Task, stages: readonly DevelopedStage[], knowledge: Knowledg
     .filter((s) => s.evaluation.status !== "failed")
     .sort((a, b) => cost.get(a)! - cost.get(b)! || stageKey(a).localeCompare(stageKey(b)))
     .filter((s) => {
-      const kind = `${s.plan.mode} ${s.plan.indicator?.id ?? ""} ${s.plan.removed.join()}`;
+      const kind = `${s.plan.mode} ${seenWith(s.plan)} ${s.plan.removed.join()}`;
       const n = seen.get(kind) ?? 0;
       seen.set(kind, n + 1);
       return n < 1;
@@ -155,10 +157,10 @@ function follow(
   const make = { task, knowledge, shelf, determines: next, field: USUAL_FIELD };
   // The dye that is in the vessel already comes first, then those in wide use.
   const preference = (s: Skeleton): number =>
-    (s.plan.indicator?.id === last.plan.indicator?.id ? 0 : 100) +
+    (seenWith(s.plan) === seenWith(last.plan) ? 0 : 100) +
     50 -
     Math.min(50, dyeBreadth(s.plan.indicator?.id, knowledge));
-  const options = [...directSkeletons(make), ...backSkeletons(make)]
+  const options = skeletonsOf(make)
     .filter((s) => s.plan.titrant.id === last.plan.titrant.id && s.plan.pH >= last.plan.pH)
     .filter((s) => kept.every((m) => s.plan.pH >= (knowledge.agents.get(m.agent)?.pH[0] ?? 0)))
     .sort((a, b) => preference(a) - preference(b))
@@ -181,7 +183,7 @@ function follow(
     starts.flatMap((s) => develop(task, s, knowledge, shelf)),
     knowledge,
   ).filter((s) => s.plan.removed.length === 0);
-  const sameDye = (s: DevelopedStage): number => Number(s.plan.indicator?.id !== last.plan.indicator?.id);
+  const sameDye = (s: DevelopedStage): number => Number(seenWith(s.plan) !== seenWith(last.plan));
   developed.sort((a, b) => sameDye(a) - sameDye(b));
   return developed.slice(0, FOLLOWED).flatMap((s) => follow(task, [...done, s], todo.slice(1), knowledge, shelf));
 }

@@ -3,15 +3,8 @@ import { bareStage, develop, type BareStage, type DevelopedStage } from "./devel
 import { hazardBurden } from "./masks.ts";
 import { supersaturations } from "./saturation.ts";
 import type { Shelf } from "./shelf.ts";
-import {
-  backSkeletons,
-  directSkeletons,
-  LAST_TITRANTS,
-  OTHER_TITRANTS,
-  USUAL_FIELD,
-  type Field,
-  type Skeleton,
-} from "./skeletons.ts";
+import { skeletonsOf } from "./detection-skeletons.ts";
+import { LAST_TITRANTS, OTHER_TITRANTS, USUAL_FIELD, type Field, type Skeleton } from "./skeletons.ts";
 import type { MethodMode, Task } from "./types.ts";
 import { stageBudget, type Budget } from "./uncertainty.ts";
 
@@ -31,6 +24,13 @@ export interface EvaluatedMethod {
   readonly portions: number;
 }
 
+/** By what the end of a titration is seen: the dye, the dye with a photometer, the electrode. */
+export function seenWith(plan: DevelopedStage["plan"]): string {
+  if (plan.detection === "electrode") return plan.electrode ?? "electrode";
+  const dye = plan.indicator?.id ?? "own colour";
+  return plan.detection === "photometric" ? `${dye} (photometer)` : (plan.indicator?.id ?? plan.detection);
+}
+
 /** Readable key of a titration: the same plan always has the same key. */
 export function stageKey(stage: DevelopedStage): string {
   const { plan } = stage;
@@ -39,7 +39,7 @@ export function stageKey(stage: DevelopedStage): string {
     plan.mode,
     plan.titrant.id,
     plan.backTitrant?.id ?? "",
-    plan.indicator?.id ?? plan.detection,
+    seenWith(plan),
     plan.pH,
     plan.buffer.id,
     [...new Set([...plan.masking.map((m) => m.agent), ...plan.auxiliary.map((a) => a.id)])].sort().join("+"),
@@ -73,7 +73,7 @@ export function stagesFor(
   const seen = new Set<string>();
   const search = (field: Field): DevelopedStage[] => {
     const make = { task, knowledge, shelf, determines, field };
-    const skeletons: Skeleton[] = [...directSkeletons(make), ...backSkeletons(make)];
+    const skeletons: Skeleton[] = skeletonsOf(make);
     const bare = skeletons.map((skeleton) => bareStage(task, skeleton, knowledge, shelf));
     return promising(task, bare, knowledge).flatMap((start) =>
       develop(task, start, knowledge, shelf).filter((stage) => {
@@ -131,7 +131,7 @@ export function promising(task: Task, stages: readonly BareStage[], knowledge: K
     .filter((s) => s.threats.length > 0)
     .sort((a, b) => cost(a) - cost(b))
     .filter((s) => {
-      const dye = `${s.plan.mode} ${s.plan.indicator?.id ?? ""}`;
+      const dye = `${s.plan.mode} ${seenWith(s.plan)}`;
       const n = perDye.get(dye) ?? 0;
       perDye.set(dye, n + 1);
       return n < 2;
@@ -171,6 +171,9 @@ const COMMON_DYE_IONS = 8;
 export const dyeBreadth = (dye: string | undefined, knowledge: Knowledge): number =>
   new Set(knowledge.indicators.get(dye ?? "")?.uses.flatMap((u) => u.ions)).size;
 
+/** What an instrument costs against the eye, as the rules weigh it. */
+const COST_OF_DETECTION = { visual: 0, photometric: 3, electrode: 4 } as const;
+
 /** A stage's promise, smaller is better: bias and band against the requirement, what is left undone, steps. */
 export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledge): number {
   const { evaluation, plan } = stage;
@@ -189,7 +192,8 @@ export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledg
     (plan.titrant.id === "EDTA" ? 0 : 5) +
     (stage.skeleton.use === "published" ? 0 : plan.backTitrant ? 4 : 12) +
     (evaluation.basis === "empirical" ? 5 : 0) +
-    (dyeBreadth(plan.indicator?.id, knowledge) < COMMON_DYE_IONS ? 4 : 0) +
+    (plan.indicator && dyeBreadth(plan.indicator.id, knowledge) < COMMON_DYE_IONS ? 4 : 0) +
+    COST_OF_DETECTION[plan.detection] +
     (plan.preparation.includes("boil") || plan.preparation.includes("heat") ? 3 : 0)
   );
 }

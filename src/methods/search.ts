@@ -25,8 +25,6 @@ export function searchMethods(task: Task, knowledge: Knowledge): MethodSearch {
 }
 
 function methodsOn(task: Task, knowledge: Knowledge, shelf: Shelf): EvaluatedMethod[] {
-  // End points are calculated for the eye; a laboratory that offers none of these gets no method, and the reason.
-  if (!task.laboratory.detection.includes("visual")) return [];
   const groups = groupsOf(task);
   if (groups.length === 1)
     return stagesFor(task, groups[0]!, knowledge, shelf).map((stage) => singleMethod(task, stage, knowledge));

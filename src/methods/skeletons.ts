@@ -153,7 +153,8 @@ export const USUAL_FIELD: Field = { titrants: ["EDTA"], dyes: null, analogous: f
 export const OTHER_TITRANTS = ["CDTA", "DTPA", "EGTA"] as const;
 export const LAST_TITRANTS = ["HEDTA", "NTA", "TTHA", "trien"] as const;
 
-interface Make {
+/** What skeletons are made from: the task, and what of the field is searched. */
+export interface Make {
   readonly task: Task;
   readonly knowledge: Knowledge;
   readonly shelf: Shelf;
@@ -161,10 +162,11 @@ interface Make {
   readonly field: Field;
 }
 
-function basePlan(
+/** A direct titration before anything is done about the matrix; without a dye where the end is read otherwise. */
+export function basePlan(
   make: Make,
   titrant: string,
-  indicator: IndicatorRecord,
+  indicator: IndicatorRecord | null,
   pH: number,
   buffer: BufferRecord,
   use: IndicatorUse | null,
@@ -174,10 +176,11 @@ function basePlan(
     .filter((c) => determines.includes(c.component))
     .reduce((s, c) => s + (c.inVesselMolPerL * task.portion.titrationVolumeML) / 1000, 0);
   const strengths = knowledge.titrants.get(titrant)?.usualMolPerL ?? [0.01];
-  const chelateId = use?.chelate ?? (indicator.id === "Cu-PAN" ? "Cu-EDTA" : undefined);
-  const chelate = chelateId
-    ? chelateOf(chelateId, indicator.usualMolPerL, amountMol / (task.portion.titrationVolumeML / 1000))
-    : null;
+  const chelateId = use?.chelate ?? (indicator?.id === "Cu-PAN" ? "Cu-EDTA" : undefined);
+  const chelate =
+    chelateId && indicator
+      ? chelateOf(chelateId, indicator.usualMolPerL, amountMol / (task.portion.titrationVolumeML / 1000))
+      : null;
   const preparation: string[] = [];
   if (chelateId) preparation.push(`add-${chelateId}`);
   if (use?.temperature) preparation.push(use.temperature);
@@ -190,7 +193,7 @@ function basePlan(
     pH,
     buffer: { id: buffer.id, molPerL: bufferAmount(buffer, pH) },
     detection: "visual",
-    indicator: { id: indicator.id, molPerL: indicator.usualMolPerL },
+    indicator: indicator && { id: indicator.id, molPerL: indicator.usualMolPerL },
     masking: [],
     auxiliary: [],
     added: [],
@@ -218,7 +221,7 @@ function chelateOf(
 }
 
 /** Whether a step asks for what the laboratory cannot or will not give: heat, a chelate, alcohol. */
-const forbidden = (task: Task, preparation: readonly string[]): boolean =>
+export const forbidden = (task: Task, preparation: readonly string[]): boolean =>
   preparation.some((p) => !stepAllowed(task, p)) ||
   (!task.laboratory.heating && preparation.some((p) => p === "warm" || p === "heat" || p === "boil"));
 
@@ -306,7 +309,7 @@ export function backSkeletons(make: Make): Skeleton[] {
           const buffer = buffersFor(pH, knowledge, shelf, new Set())[0];
           if (!buffer) continue;
           const plan = backPlan(make, titrant, indicator, pH, buffer, backTitrant.ion, use);
-          if (!plan || forbidden(task, plan.preparation)) continue;
+          if (forbidden(task, plan.preparation)) continue;
           if (standing === "analogous") byAnalogy++;
           out.push({ plan, use: standing, useBasis: basis, window });
         }
@@ -320,28 +323,29 @@ export function backSkeletons(make: Make): Skeleton[] {
 const ANALOGIES_PER_DYE = 2;
 
 /** A back titration by analogy has to be calculable at least: the dye has constants, or a transition with the back titrant. */
-const calculable = (indicator: IndicatorRecord, metal: ComponentId): boolean =>
+export const calculable = (indicator: IndicatorRecord, metal: ComponentId): boolean =>
   indicator.hasConstants || indicator.transitions.some((t) => t.ion === metal);
 
-function backPlan(
+/** A back titration with this metal: titrant in excess first, hot where the analyte is slow. */
+export function backPlan(
   make: Make,
   titrant: string,
-  indicator: IndicatorRecord,
+  indicator: IndicatorRecord | null,
   pH: number,
   buffer: BufferRecord,
   metal: ComponentId,
-  use: IndicatorUse,
-): StagePlan | null {
+  use: IndicatorUse | null,
+): StagePlan {
   const { task, knowledge, determines } = make;
-  const direct = basePlan(make, titrant, indicator, pH, buffer, { ...use, ...(use.chelate ? {} : {}) });
+  const direct = basePlan(make, titrant, indicator, pH, buffer, use);
   const preparation = ["excess-titrant-first"];
   const needs = determines.map((ion) => metalKinetics(knowledge, ion, titrant).needs);
   if (needs.includes("boil")) preparation.push("boil", "cool");
   else if (needs.includes("heat")) preparation.push("heat", "cool");
   else if (needs.includes("wait")) preparation.push("wait");
-  if (use.temperature && !preparation.includes("boil") && !preparation.includes("heat"))
+  if (use?.temperature && !preparation.includes("boil") && !preparation.includes("heat"))
     preparation.push(use.temperature);
-  if (use.alcohol) preparation.push("alcohol");
+  if (use?.alcohol) preparation.push("alcohol");
   const analyteMolPerL = vesselSample(task)
     .filter((c) => determines.includes(c.component))
     .reduce((s, c) => s + c.inVesselMolPerL, 0);

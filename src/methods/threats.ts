@@ -64,6 +64,7 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
     const titrates = biasFraction > allowed;
     const blocks =
       evaluation.blockedBy.includes(component) ||
+      spoilsElectrode(evaluation, component) ||
       (!plan.backTitrant && model.indicator !== null && plan.indicator !== null && heldDye(evaluation, component));
     if (titrates || blocks)
       threats.push({ component, titrates, blocks, holdsAnalyte: false, biasFraction, molPerL: inVesselMolPerL });
@@ -104,6 +105,11 @@ export function atCommonEquivalence(model: StageModel, presentMol: number): Vess
   }
   return state;
 }
+
+/** Whether this ion sets the potential instead of the one that is followed, or must not meet the membrane at all. */
+const spoilsElectrode = ({ electrode, why }: StageEvaluation, ion: ComponentId): boolean =>
+  electrode !== null &&
+  (electrode.poisonedBy.includes(ion) || (why === "interferent" && electrode.interferingIon === ion));
 
 /** Whether the equilibrium alone lets this metal keep a tenth of the dye 5 % past equivalence. */
 function heldDye(evaluation: StageEvaluation, metal: ComponentId): boolean {

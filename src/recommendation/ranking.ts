@@ -1,7 +1,7 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { RuleRunner } from "../inference/index.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
-import { roughCost, singleMethod, type EvaluatedMethod } from "../methods/methods.ts";
+import { roughCost, seenWith, singleMethod, type EvaluatedMethod } from "../methods/methods.ts";
 import type { Task } from "../methods/types.ts";
 import { centred, workingRange, type WorkingRange } from "../methods/working-range.ts";
 import type { MethodUnderJudgement } from "./facts.ts";
@@ -61,8 +61,7 @@ function shortlist(task: Task, methods: readonly EvaluatedMethod[], knowledge: K
   );
   const sorted = [...methods].sort((a, b) => cost.get(a)! - cost.get(b)! || a.id.localeCompare(b.id));
   const perFamily = new Map<string, number>();
-  const family = (m: EvaluatedMethod): string =>
-    `${m.mode} ${m.stages.map((s) => s.plan.indicator?.id ?? s.plan.detection).join("+")}`;
+  const family = (m: EvaluatedMethod): string => `${m.mode} ${m.stages.map((s) => seenWith(s.plan)).join("+")}`;
   const diverse = sorted.filter((m) => {
     const n = perFamily.get(family(m)) ?? 0;
     perFamily.set(family(m), n + 1);
@@ -95,7 +94,7 @@ function distinct(judged: readonly JudgedMethod[]): JudgedMethod[] {
     const key = `${method.mode} ${method.stages
       .map(
         (s) =>
-          `${s.plan.titrant.id} ${s.plan.backTitrant?.id ?? ""} ${s.plan.indicator?.id ?? s.plan.detection} ${s.plan.masking
+          `${s.plan.titrant.id} ${s.plan.backTitrant?.id ?? ""} ${seenWith(s.plan)} ${s.plan.masking
             .map((m) => m.agent)
             .sort()
             .join()} ${s.plan.removed.join()}`,

@@ -130,6 +130,9 @@ function decidedBy(first: JudgedMethod | undefined, second: JudgedMethod | undef
 
 const signed = (points: number): string => (points > 0 ? `+${points}` : `${points}`);
 
+const INSTRUMENT = { visual: "dye", photometric: "dye with calculable colour", electrode: "electrode" } as const;
+const listed = (words: readonly string[]): string => words.join(" or ");
+
 /** Why an answer has no method to show, as far as the search itself can say. */
 function whyNothing(task: Task, tried: number, knowledge: Knowledge): string[] {
   const anions = task.analytes
@@ -139,8 +142,10 @@ function whyNothing(task: Task, tried: number, knowledge: Knowledge): string[] {
     return [
       `${anions.join(", ")}: the titrants bind metal ions only; ways round (a precipitate or complex in excess) are not calculated.`,
     ];
-  if (!task.laboratory.detection.includes("visual"))
-    return ["Only visual end points are calculated; the brief allows none."];
+  if (tried === 0 && !task.laboratory.detection.includes("visual"))
+    return [
+      `No ${listed(task.laboratory.detection.map((d) => INSTRUMENT[d]))} on record follows ${listed(task.analytes.map((a) => a.shown))} with what the laboratory has.`,
+    ];
   return tried === 0
     ? ["No dye on record serves this ion with what the laboratory has, at a temperature it allows."]
     : ["Every method that was tried is excluded; the reasons stand with the rejected ones."];
