@@ -1,3 +1,4 @@
+import { ELECTRODE_ROWS, END_POINT_FAULTS, PHOTOMETER_ROWS } from "./detection-facts.ts";
 import type { FactDefinition, RuleScope } from "./types.ts";
 
 // Known from the record of the masking, not from the solved solution.
@@ -94,6 +95,7 @@ const STAGE_FACTS = facts("stage", "solutionStatus", [
   ],
   ["pHDrop", "number", "pH", "may be absent", "fall of pH from the protons that the titration sets free"],
   ["detection", "string", null, "always", "visual, photometric or electrode"],
+  ["endPointFault", "string", null, "always", 'why no end point shows, "none" where one does'],
   ["indicator", "string", null, "always", 'id of the dye, "none" where there is none'],
   ["indicatorClass", "string", null, "always", 'class of the dye, "none" where there is none'],
   ["endPointModel", "string", null, "always", 'kind of end point, "none" for an electrode'],
@@ -211,19 +213,27 @@ const COMPONENT_FACTS = facts("component", "solutionStatus", [
   ["solutionStatus", "string", null, "always", "converged or failed; numbers exist when converged"],
 ]).map((fact) => (EMPIRICAL.includes(fact.name) ? { ...fact, guard: "maskingBasis" } : fact));
 
+const ALL_STAGE_FACTS: readonly FactDefinition[] = [
+  ...STAGE_FACTS,
+  ...facts("stage", "electrodeStatus", ELECTRODE_ROWS),
+  ...facts("stage", "photometerStatus", PHOTOMETER_ROWS),
+];
+
 /** Every fact a rule may look at. Numbers that may be absent name the status fact that says whether they exist. */
-export const FACT_CATALOGUE: readonly FactDefinition[] = [...METHOD_FACTS, ...STAGE_FACTS, ...COMPONENT_FACTS];
+export const FACT_CATALOGUE: readonly FactDefinition[] = [...METHOD_FACTS, ...ALL_STAGE_FACTS, ...COMPONENT_FACTS];
 
 /** For each guard fact, the values under which the numbers it guards may exist; a rule that uses one must narrow the guard to these. */
 export const GUARD_VALUES: Readonly<Record<string, readonly string[]>> = {
   evaluationStatus: ["converged", "outOfModelRange"],
   solutionStatus: ["converged"],
   maskingBasis: ["empirical"],
+  electrodeStatus: ["read"],
+  photometerStatus: ["read"],
 };
 
 const BY_SCOPE: Readonly<Record<RuleScope, ReadonlyMap<string, FactDefinition>>> = {
   method: new Map(METHOD_FACTS.map((fact) => [fact.name, fact])),
-  stage: new Map(STAGE_FACTS.map((fact) => [fact.name, fact])),
+  stage: new Map(ALL_STAGE_FACTS.map((fact) => [fact.name, fact])),
   component: new Map(COMPONENT_FACTS.map((fact) => [fact.name, fact])),
 };
 
@@ -240,6 +250,11 @@ const VOCABULARY: Readonly<Record<string, readonly string[]>> = {
   evaluationStatus: [...STATUS_WORDS, "outOfModelRange"],
   solutionStatus: STATUS_WORDS,
   detection: ["visual", "photometric", "electrode"],
+  endPointFault: END_POINT_FAULTS,
+  electrodeStatus: ["read", "none"],
+  photometerStatus: ["read", "none"],
+  electrodeUse: ["published", "analogous", "none"],
+  electrodeBasis: ["read", "memory", "none"],
   endPointBasis: ["constants", "table", "empirical", "electrode"],
   indicatorUse: ["published", "analogous", "none"],
   indicatorUseBasis: ["read", "memory", "none"],

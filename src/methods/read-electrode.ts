@@ -38,7 +38,7 @@ export interface ReadByElectrode {
 
 const ML = 1000;
 /** A jump must stand this many times above the scatter of one reading to be found at all (limit of detection: three times the noise). */
-const JUMP_OVER_SCATTER = 3;
+export const JUMP_OVER_SCATTER = 3;
 
 /**
  * Reads a titration with the electrode of the plan: the end is where the computed potential is steepest; the band is what the

@@ -3,6 +3,7 @@ import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { Facts, FactValue } from "../inference/types.ts";
 import { metalKinetics } from "../methods/kinetics.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
+import { detectionFacts } from "./detection-facts.ts";
 import type { EvaluatedMethod } from "../methods/methods.ts";
 import { supersaturations, type Supersaturation } from "../methods/saturation.ts";
 import type { Task } from "../methods/types.ts";
@@ -204,6 +205,7 @@ export function stageFacts(
     temperatureRegime: regime,
     backTitrantStealsFraction: ok && plan.backTitrant ? evaluation.backTitrantStealsFraction : null,
     chelateAdded: plan.chelate ? `${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : "none",
+    ...detectionFacts(stage, knowledge),
     solutionStatus: ok ? "converged" : "failed",
   });
 }
@@ -227,7 +229,8 @@ function alsoShown(task: Task, stage: DevelopedStage): ComponentId[] {
 /** The contrast of the dye at the pH of the titration; a dye without colour records at this pH counts as good only in its published window. */
 export function contrastAt(stage: DevelopedStage): "good" | "poor" | "none" {
   const indicator = stage.evaluation.model.indicator;
-  if (!indicator) return "good";
+  // A photometer reads at one wavelength: tints that an eye confuses are apart for it.
+  if (!indicator || stage.plan.detection === "photometric") return "good";
   const here = indicator.colours.filter((c) => stage.plan.pH >= c.pH[0] && stage.plan.pH <= c.pH[1]);
   if (here.length === 0) return stage.skeleton.use === "published" ? "good" : "poor";
   const order = ["none", "poor", "good"] as const;

@@ -13,9 +13,19 @@ describe("the built-in rules", () => {
     expect(rules.length).toBeGreaterThanOrEqual(60);
   });
 
-  it("cover the eight topics, one file each", () => {
+  it("cover the nine topics, one file each", () => {
     expect([...base.topics.keys()].sort()).toEqual(
-      ["indicator", "kinetics", "masking", "mode", "practicability", "precipitation", "precision", "safety"].sort(),
+      [
+        "detection",
+        "indicator",
+        "kinetics",
+        "masking",
+        "mode",
+        "practicability",
+        "precipitation",
+        "precision",
+        "safety",
+      ].sort(),
     );
     for (const rule of base.rules) expect(rule.file).toBe(`${rule.topic}.rules.json`);
   });
