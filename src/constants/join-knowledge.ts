@@ -31,6 +31,7 @@ export function joinKnowledge(raw: PracticeData, equilibria: EquilibriumData, ha
   const { practice, remarks } = resolveIons(raw, equilibria.components);
   const sources = joinSources(practice.sources, equilibria.sources);
   checkReferences(practice);
+  checkDetours(practice, equilibria);
   const knowledge: Knowledge = {
     version: KNOWLEDGE_VERSION,
     hash,
@@ -54,6 +55,7 @@ export function joinKnowledge(raw: PracticeData, equilibria: EquilibriumData, ha
     standards: practice.standards,
     ionFacts: practice.ionFacts,
     precedents: practice.precedents,
+    detours: byId("detours.json", practice.detours, (d) => d.id),
     remarks: [...equilibria.remarks, ...practice.remarks, ...remarks],
     atomicWeights: new Map(practice.atomicWeights.map((a) => [a.element, a.gPerMol])),
   };
@@ -106,6 +108,31 @@ function checkReferences(practice: PracticeData): void {
   practice.masking.forEach((row, i) => {
     if (row.agent !== "none" && !agents.has(row.agent) && !remarked.has(row.agent))
       throw new DataError("masking.json", `$[${i}].agent`, `unknown agent "${row.agent}", and no remark says so`);
+  });
+}
+
+/** Components, solids and dyes that a way round names exist, and a way that is calculated has a solid or needs none. */
+function checkDetours(practice: PracticeData, equilibria: EquilibriumData): void {
+  const components = new Set(equilibria.components.map((c) => c.id));
+  const solids = new Set(equilibria.solids.map((s) => s.id));
+  const indicators = new Set(practice.indicators.map((i) => i.id));
+  practice.detours.forEach((row, i) => {
+    const fault = (field: string, text: string): DataError => new DataError("detours.json", `$[${i}].${field}`, text);
+    const named = [
+      row.analyte,
+      row.metal,
+      ...row.finish.backTitrants,
+      ...Object.keys(row.reagent.components),
+      ...Object.keys(row.precipitant?.components ?? {}),
+      ...Object.keys(row.precipitation?.with ?? {}),
+    ];
+    for (const id of named) if (!components.has(id)) throw fault("analyte", `unknown component "${id}"`);
+    for (const id of row.solids) if (!solids.has(id)) throw fault("solids", `unknown solid "${id}"`);
+    for (const id of row.finish.dyes) if (!indicators.has(id)) throw fault("finish.dyes", `unknown indicator "${id}"`);
+    if ((row.finish.mode === "back") !== row.finish.backTitrants.length > 0)
+      throw fault("finish", "a back titration names its back titrants, a direct one has none");
+    if (row.rests === "equilibrium" && row.precipitation !== null && row.solids.length === 0)
+      throw fault("solids", "a precipitation that is calculated needs a solid of the model");
   });
 }
 

@@ -412,6 +412,68 @@ export interface DataRemark {
   readonly text: string;
 }
 
+/**
+ * A way round: how an ion that the titrants do not bind, or bind too weakly, is determined through a metal that they bind well.
+ * "surplus": a metal in known excess takes the analyte up, what is left of it is titrated. "precipitate": the precipitate is
+ * collected and its metal titrated. "exchange": the analyte (or the silver of its silver salt) sets the metal free from a complex.
+ * "conversion": the precipitate sets titrant free from another complex, which is titrated with a metal.
+ */
+export interface DetourRecord {
+  readonly id: string;
+  readonly analyte: ComponentId;
+  readonly kind: "surplus" | "precipitate" | "exchange" | "conversion";
+  readonly methodMode: "indirect" | "displacement";
+  /** The metal that the titration counts (in a conversion: the metal of the burette). */
+  readonly metal: ComponentId;
+  /** How many of the analyte one of it stands for. */
+  readonly analytePerMetal: number;
+  /** What takes the analyte up, or gives the metal: a bottle, and what it brings to the solution per mole. */
+  readonly reagent: DetourReagent;
+  /** Amount of the reagent over what the analyte needs, usually taken. */
+  readonly reagentOverNeed: number;
+  /** A metal that precipitates the analyte before the exchange, and how many of the analyte one of it holds. */
+  readonly precipitant: (DetourReagent & { readonly analytePerMetal: number; readonly overNeed: number }) | null;
+  /** Further bottles, with what they are for. */
+  readonly further: readonly { readonly id: string; readonly purpose: string; readonly molPerL: number }[];
+  /** Where the precipitate forms; null where nothing precipitates. `with`: what else is in that solution, mol/L. */
+  readonly precipitation: {
+    readonly pH: number;
+    readonly with: Readonly<Record<ComponentId, number>>;
+    readonly words: string;
+  } | null;
+  /** Solids of the model that hold the analyte; empty where the model has none (then `basis` is "composition"). */
+  readonly solids: readonly string[];
+  readonly filtered: boolean;
+  /** "equilibrium": loss and company are calculated; "composition": the precipitate is taken as complete and of this composition. */
+  readonly rests: "equilibrium" | "composition";
+  /** Standard uncertainty of that composition, relative; an assumption where no source gives one. 0 with "equilibrium". */
+  readonly compositionUncertainty: number;
+  /** How the metal is titrated in the end: at once, or with titrant in excess and a back titrant. */
+  readonly finish: {
+    readonly mode: "direct" | "back";
+    readonly pH: readonly [number, number];
+    readonly backTitrants: readonly ComponentId[];
+    /** Dyes that the record of the way names. */
+    readonly dyes: readonly ComponentId[];
+  };
+  /** Agents of the titration vessel that belong to the way (carbonate that holds uranium). */
+  readonly auxiliary: readonly { readonly id: string; readonly purpose: string }[];
+  readonly preparation: readonly string[];
+  readonly note: string;
+  readonly provenance: Provenance;
+  readonly otherSources: readonly Provenance[];
+}
+
+export interface DetourReagent {
+  readonly id: string;
+  /** Other ids of the same bottle. */
+  readonly alsoCalled: readonly string[];
+  /** Ids that bar it when a laboratory avoids them (a cyanide complex where cyanide is avoided). */
+  readonly barredWith: readonly string[];
+  readonly components: Readonly<Record<ComponentId, number>>;
+  readonly special: boolean;
+}
+
 /** Hydrolysis and redox facts of a metal ion that equilibrium data do not hold. */
 export interface IonFact {
   readonly ion: ComponentId;
@@ -462,6 +524,7 @@ export interface Knowledge {
   readonly standards: readonly PrimaryStandardRecord[];
   readonly ionFacts: readonly IonFact[];
   readonly precedents: readonly PrecedentRecord[];
+  readonly detours: ReadonlyMap<string, DetourRecord>;
   readonly remarks: readonly DataRemark[];
   /** Atomic weights, g/mol, by element symbol. */
   readonly atomicWeights: ReadonlyMap<string, number>;

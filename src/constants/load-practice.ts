@@ -4,6 +4,7 @@ import type {
   BufferRecord,
   CautionRecord,
   DataRemark,
+  DetourRecord,
   ElectrodeRecord,
   GlasswareRecord,
   IndicatorRecord,
@@ -19,6 +20,7 @@ import type {
   TitrantRecord,
 } from "./knowledge.ts";
 import * as detection from "./detection-schema.ts";
+import { detourSchema } from "./detour-schema.ts";
 import * as schema from "./practice-schema.ts";
 import { type ReadFile, readRecords } from "./read-records.ts";
 import * as shelf from "./shelf-schema.ts";
@@ -41,6 +43,7 @@ export interface PracticeData {
   readonly standards: readonly PrimaryStandardRecord[];
   readonly ionFacts: readonly IonFact[];
   readonly precedents: readonly PrecedentRecord[];
+  readonly detours: readonly DetourRecord[];
   readonly remarks: readonly DataRemark[];
   readonly atomicWeights: readonly z.infer<typeof schema.atomicWeightSchema>[];
 }
@@ -66,6 +69,7 @@ export function loadPractice(readFile: ReadFile): PracticeData {
     standards: list("standards.json", shelf.standardSchema),
     ionFacts: list("ion-facts.json", schema.ionFactSchema),
     precedents: list("precedents.json", schema.precedentSchema),
+    detours: list("detours.json", detourSchema),
     remarks: list("practice-remarks.json", schema.remarkSchema),
     atomicWeights: list("atomic-weights.json", schema.atomicWeightSchema),
   };

@@ -46,7 +46,7 @@ export function resolveIons(
   const [mask, kinetic, conversion] = [resolve("masking"), resolve("kinetics"), resolve("conversion")];
   const [electrode, standard, fact] = [resolve("electrode"), resolve("standard"), resolve("ion fact")];
   const photometric = resolve("photometric wavelength");
-  const [metal, precedent] = [resolve("metal titrant"), resolve("precedent")];
+  const [metal, precedent, detour] = [resolve("metal titrant"), resolve("precedent"), resolve("way round")];
   for (const titrant of practice.titrants) modelled(titrant.id, titrant.id);
   const resolved: PracticeData = {
     ...practice,
@@ -85,6 +85,7 @@ export function resolveIons(
     })),
     standards: practice.standards.map((row) => ({ ...row, forIon: standard(row.forIon) })),
     metalTitrants: practice.metalTitrants.map((row) => ({ ...row, ion: metal(row.ion) })),
+    detours: practice.detours.map((row) => ({ ...row, analyte: detour(row.analyte), metal: detour(row.metal) })),
     ionFacts: practice.ionFacts.map((row) => ({ ...row, ion: fact(row.ion) })),
     precedents: practice.precedents.map((row) => ({
       ...row,

@@ -1,5 +1,6 @@
 import type { ComponentId, IndicatorBlocker, IndicatorRecord, Knowledge } from "../constants/knowledge.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
+import { countedIn } from "./types.ts";
 
 /** Where no level is stated a metal spoils the change from about a tenth of the dye's concentration (inference from read levels). */
 const UNSTATED_LEVEL_OF_DYE = 0.1;
@@ -63,7 +64,7 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
     const level = blockingLevel(indicator, metal, plan.pH, plan.indicator!.molPerL);
     if (level === null) return false;
     // A dye that is in use for the very metal at this pH is not blocked by it (hot, or with a catalyst: its use says so).
-    if (plan.determines.includes(metal) && published.has(metal)) return false;
+    if (countedIn(plan).includes(metal) && published.has(metal)) return false;
     const unmasked = model.system.species.reduce((sum, species, row) => {
       const n = species.components[metal] ?? 0;
       if (n <= 0 || (species.components[plan.titrant.id] ?? 0) > 0) return sum;

@@ -98,6 +98,8 @@ function successive(
     const starts = (byGroup[order[0]!] ?? []).filter(
       (s) =>
         s.plan.backTitrant === null &&
+        // A way round changes the whole portion: nothing else is titrated in it after.
+        s.plan.detour === null &&
         s.plan.removed.length === 0 &&
         s.remaining.length === 0 &&
         !holdsLater(

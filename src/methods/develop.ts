@@ -262,6 +262,7 @@ function separations(
 /** Titrant in excess for a back titration: a good third above everything in the vessel that binds. */
 function withExcess(task: Task, plan: StagePlan, knowledge: Knowledge): StagePlan {
   if (plan.backTitrant === null) return plan;
+  if (plan.detour) return withExcessForWay(task, plan, knowledge);
   const everything = vesselSample(task, plan)
     .filter((c) => knowledge.components.get(c.component)?.kind === "metal" && !plan.removed.includes(c.component))
     .reduce((s, c) => s + c.inVesselMolPerL, 0);
@@ -269,6 +270,30 @@ function withExcess(task: Task, plan: StagePlan, knowledge: Knowledge): StagePla
   const state = model.at(0);
   const bound = model.metals.reduce((s, m) => s + state.boundToTitrant(m), 0);
   return { ...plan, excessTitrantMolPerL: excessFor(Math.max(bound, everything * 1e-6)) };
+}
+
+/** Titrant over what binds, tried in turn until a collected precipitate has dissolved. */
+const EXCESS_TO_DISSOLVE = [1, 1.5, 2.5];
+/** Share of the precipitate that may lie undissolved. */
+const UNDISSOLVED_BORNE = 1e-3;
+
+/** Titrant in excess for the metal of a way round: what binds and a good third, more where the precipitate would not dissolve in it. */
+function withExcessForWay(task: Task, plan: StagePlan, knowledge: Knowledge): StagePlan {
+  const bare = stageModel(task, { ...plan, excessTitrantMolPerL: 0 }, knowledge);
+  const { way, totals } = bare.solution;
+  // Titrant that the precipitate sets free needs no further excess.
+  if (!way || way.record.kind === "conversion") return plan;
+  const chelated = plan.chelate ? [plan.chelate.metal] : [];
+  const metals = bare.metals.filter((m) => !chelated.includes(m)).reduce((s, m) => s + (totals.get(m) ?? 0), 0);
+  let made = plan;
+  for (const factor of EXCESS_TO_DISSOLVE) {
+    made = { ...plan, excessTitrantMolPerL: excessFor(factor * metals) };
+    const model = stageModel(task, made, knowledge);
+    const start = model.at(0);
+    const lying = model.system.solids.reduce((s, _, i) => s + (start.result.solidsMolPerL[i] ?? 0), 0);
+    if (lying <= UNDISSOLVED_BORNE * way.expectedMolPerL) break;
+  }
+  return made;
 }
 
 /** Evaluates a titration, standardised alike, with complexes frozen that, once formed hot, do not exchange in the cold acid solution. */
@@ -320,6 +345,8 @@ function soluble(
     return gone > 1e-3 * present || deposited > DEPOSIT_BORNE_FRACTION * present;
   };
   const bare = evaluate(task, plan, knowledge);
+  // Whether the metal of a way round stays dissolved, the way itself has settled.
+  if (plan.detour) return { plan, bare, precipitates: false };
   // In a back titration the titrant goes in first; what would precipitate without it does not.
   if (plan.backTitrant !== null)
     return { plan, bare, precipitates: lost(stageModel(task, { ...plan, excessTitrantMolPerL: 0 }, knowledge)) };

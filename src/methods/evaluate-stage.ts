@@ -2,11 +2,12 @@ import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { accountOf, type StageAccount } from "./account.ts";
 import { blockersOf } from "./blocking.ts";
 import { holderOf, type EndPointBasis } from "./criterion.ts";
+import { detourAccount } from "./detour-account.ts";
 import { inertMetals } from "./kinetics.ts";
 import { readEndPoint, type EndPointFault, type EndPointRead } from "./read-end-point.ts";
 import { stageModel, type StageModel, type VesselState } from "./stage-model.ts";
 import { vesselSample } from "./solution.ts";
-import type { StagePlan, Task } from "./types.ts";
+import { countedIn, type StagePlan, type Task } from "./types.ts";
 
 /** What one titration gives, calculated; all fractions relative to the amount determined. */
 export interface StageEvaluation extends StageAccount {
@@ -46,18 +47,19 @@ export function evaluateStage(
   const sample = vesselSample(task, plan);
   const inert = inertMetals(
     knowledge,
-    sample.map((c) => c.component),
+    [...sample.map((c) => c.component), ...countedIn(plan)],
     plan.titrant.id,
     plan.pH,
     hot,
   );
   const model = stageModel(task, plan, knowledge, frozen ? { inert, frozen } : { inert });
-  const determined = new Set(plan.determines);
+  const determined = new Set(countedIn(plan));
   const presentMol =
-    sample.filter((c) => determined.has(c.component)).reduce((s, c) => s + c.inVesselMolPerL, 0) * model.volumeL;
+    sample.filter((c) => plan.determines.includes(c.component)).reduce((s, c) => s + c.inVesselMolPerL, 0) *
+    model.volumeL;
   const back = plan.backTitrant !== null;
   const titrantBefore = model.at(0);
-  const expectedMol = back ? Math.max(titrantBefore.titrantUnbound * model.volumeL, 1e-9) : presentMol;
+  const expectedMol = back ? Math.max(titrantBefore.titrantUnbound * model.volumeL, 1e-9) : metalMol(model, presentMol);
   const equivalenceL = expectedMol / model.burette.molPerL;
   const read = readEndPoint(model, determined, equivalenceL, knowledge);
   const base = {
@@ -95,12 +97,18 @@ export function evaluateStage(
   const end = model.at(read.volumeL);
   if (!end.ok) return failed("not-converged");
   const [bandLow, bandHigh] = read.bandL;
-  const account = accountOf(task, model, end, read.volumeL, presentMol, determined);
+  const { way } = model.solution;
+  const account = way
+    ? detourAccount(task, model, way, end, read.volumeL, presentMol)
+    : accountOf(task, model, end, read.volumeL, presentMol, determined);
   const half = model.at(back ? read.volumeL : 0.5 * read.volumeL);
   const indicatorMetal = holderOf(model, half);
-  const followed = back ? plan.backTitrant.id : (plan.determines[0] ?? indicatorMetal);
+  const followed = back ? plan.backTitrant.id : (countedIn(plan)[0] ?? indicatorMetal);
   const equivalence = model.at(equivalenceL);
-  const determinedL = back ? presentMol / plan.titrant.molPerL : read.volumeL;
+  const determinedL =
+    back || plan.detour
+      ? presentMol / (plan.detour?.analytePerMetal ?? 1) / (plan.detour ? model.burette.molPerL : plan.titrant.molPerL)
+      : read.volumeL;
   return {
     ...base,
     ...account,
@@ -124,6 +132,10 @@ export function evaluateStage(
   };
 }
 
+/** What the burette has to find, mol: the analyte, or the metal that a way round leaves for it. */
+const metalMol = (model: StageModel, presentMol: number): number =>
+  model.solution.way ? Math.max(model.solution.way.expectedMolPerL * model.volumeL, 1e-9) : presentMol;
+
 /** K' = [MY] / ([M not bound to Y] [Y not bound to metal]) as it stands in the vessel, log10, per metal bound at all. */
 function conditionalConstants(model: StageModel, state: VesselState): Map<ComponentId, number> {
   const out = new Map<ComponentId, number>();
@@ -139,7 +151,7 @@ function conditionalConstants(model: StageModel, state: VesselState): Map<Compon
 }
 
 function alphaOfAnalyte(model: StageModel, start: VesselState, plan: StagePlan): number {
-  const metal = plan.determines[0];
+  const metal = countedIn(plan)[0];
   if (metal === undefined) return 0;
   const value = Math.log10(start.unbound(metal) / start.free(metal));
   return Number.isFinite(value) ? value : 0;

@@ -1,7 +1,7 @@
 import type { AgentRecord, ComponentId, Knowledge, MaskingRecord } from "../constants/knowledge.ts";
 import type { Shelf } from "./shelf.ts";
 import type { Threat } from "./threats.ts";
-import type { MaskingStep, StagePlan } from "./types.ts";
+import { countedIn, type MaskingStep, type StagePlan } from "./types.ts";
 
 /** One way of keeping one component out of a titration. */
 interface MaskOption {
@@ -131,14 +131,21 @@ function canBeJudged(
 /** Agents that practice uses for this component at the pH of the plan and that leave analyte, chelate and back titrant alone. */
 function optionsFor(threat: Threat, plan: StagePlan, knowledge: Knowledge, shelf: Shelf): MaskOption[] {
   const spared = [
-    ...plan.determines,
+    ...countedIn(plan),
     ...(plan.backTitrant ? [plan.backTitrant.id] : []),
     ...(plan.chelate ? [plan.chelate.metal] : []),
   ];
+  // An agent that brings the analyte itself, or what the reagent of a way round holds, would undo the way.
+  const ofWay = new Set(
+    plan.detour
+      ? [...plan.determines, ...Object.keys(knowledge.detours.get(plan.detour.id)?.reagent.components ?? {})]
+      : [],
+  );
   const out: MaskOption[] = [];
   for (const agent of knowledge.agents.values()) {
     // Hydroxide is what the pH itself does; its precipitates are in the equilibrium of the plan already.
     if (agent.id !== "hydroxide" && !shelf(agent.id)) continue;
+    if (agent.component !== null && ofWay.has(agent.component)) continue;
     // The lower end of an agent's range is safety (cyanide, sulfide); the upper end is only the round figure of its records.
     if (plan.pH < agent.pH[0] || plan.pH > agent.pH[1] + 1) continue;
     const record = rowsFor(knowledge, agent.id, threat.component, plan.pH).find(

@@ -1,12 +1,14 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop, type BareStage, type DevelopedStage } from "./develop.ts";
+import { detourSkeletons } from "./detours.ts";
 import { hazardBurden } from "./masks.ts";
 import { supersaturations } from "./saturation.ts";
 import type { Shelf } from "./shelf.ts";
 import { skeletonsOf } from "./detection-skeletons.ts";
 import { LAST_TITRANTS, OTHER_TITRANTS, USUAL_FIELD, type Field, type Skeleton } from "./skeletons.ts";
-import type { MethodMode, Task } from "./types.ts";
+import { countedIn, type MethodMode, type Task } from "./types.ts";
 import { stageBudget, type Budget } from "./uncertainty.ts";
+import { detourRecord } from "./way-round.ts";
 
 /** One result of a method: what it gives, how wrong, how sure. */
 export interface MethodResult {
@@ -36,7 +38,7 @@ export function stageKey(stage: DevelopedStage): string {
   const { plan } = stage;
   return [
     plan.determines.join("+"),
-    plan.mode,
+    plan.detour?.id ?? plan.mode,
     plan.titrant.id,
     plan.backTitrant?.id ?? "",
     seenWith(plan),
@@ -68,8 +70,26 @@ export function stagesFor(
   shelf: Shelf,
   widen = true,
 ): DevelopedStage[] {
-  // Only metal ions are bound by the titrant itself; anions need a way round.
-  if (determines.some((id) => knowledge.components.get(id)?.kind !== "metal")) return [];
+  // Only metal ions are bound by the titrant itself; anions need a way round, and so do some metals.
+  const around = developed(task, detourSkeletons(task, determines, knowledge, shelf), knowledge, shelf);
+  if (determines.some((id) => knowledge.components.get(id)?.kind !== "metal")) return around;
+  return [...directly(task, determines, knowledge, shelf, widen), ...around];
+}
+
+/** Skeletons worked out against the matrix, as far as they are worth it. */
+function developed(task: Task, skeletons: readonly Skeleton[], knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
+  const bare = skeletons.map((skeleton) => bareStage(task, skeleton, knowledge, shelf));
+  return promising(task, bare, knowledge).flatMap((start) => develop(task, start, knowledge, shelf));
+}
+
+/** Titrations in which the titrant binds the analyte itself. */
+function directly(
+  task: Task,
+  determines: readonly ComponentId[],
+  knowledge: Knowledge,
+  shelf: Shelf,
+  widen: boolean,
+): DevelopedStage[] {
   const seen = new Set<string>();
   const search = (field: Field): DevelopedStage[] => {
     const make = { task, knowledge, shelf, determines, field };
@@ -131,7 +151,7 @@ export function promising(task: Task, stages: readonly BareStage[], knowledge: K
     .filter((s) => s.threats.length > 0)
     .sort((a, b) => cost(a) - cost(b))
     .filter((s) => {
-      const dye = `${s.plan.mode} ${seenWith(s.plan)}`;
+      const dye = `${s.plan.detour?.id ?? s.plan.mode} ${seenWith(s.plan)}`;
       const n = perDye.get(dye) ?? 0;
       perDye.set(dye, n + 1);
       return n < 2;
@@ -140,7 +160,9 @@ export function promising(task: Task, stages: readonly BareStage[], knowledge: K
 }
 
 function analyteConstant(stage: BareStage): number {
-  const own = stage.plan.determines.map((ion) => stage.bare.log10ConditionalK.get(ion)).filter((k) => k !== undefined);
+  const own = countedIn(stage.plan)
+    .map((ion) => stage.bare.log10ConditionalK.get(ion))
+    .filter((k) => k !== undefined);
   return own.length > 0 ? Math.min(...own) : 8;
 }
 
@@ -198,12 +220,17 @@ export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledg
   );
 }
 
+/** Mode of a method of one titration: its stage's own, or that of the way round. */
+function modeOf({ plan }: DevelopedStage, knowledge: Knowledge): MethodMode {
+  return plan.detour ? detourRecord(plan.detour, knowledge).methodMode : plan.mode;
+}
+
 /** A method of one titration. */
 export function singleMethod(task: Task, stage: DevelopedStage, knowledge: Knowledge): EvaluatedMethod {
   const budget = stageBudget(task, stage.evaluation, knowledge);
   return {
     id: stageKey(stage),
-    mode: stage.plan.mode,
+    mode: modeOf(stage, knowledge),
     stages: [stage],
     results: [{ determines: stage.plan.determines, biasFraction: stage.evaluation.biasFraction, budget }],
     portions: 1,

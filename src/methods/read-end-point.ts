@@ -5,6 +5,7 @@ import { firstCrossing, nearCrossing } from "./end-point-search.ts";
 import { readWithElectrode, type ElectrodeFault, type ElectrodeReading } from "./read-electrode.ts";
 import { readWithPhotometer, type PhotometricFault, type PhotometricReading } from "./read-photometer.ts";
 import type { StageModel } from "./stage-model.ts";
+import { countedIn } from "./types.ts";
 
 /** Why a titration shows no end point. */
 export type EndPointFault = "no-colour" | "no-end-point" | "dye-held" | ElectrodeFault | PhotometricFault;
@@ -38,7 +39,7 @@ export function readEndPoint(
   }
   const criterion = criterionOf(model, determined, back);
   if (plan.detection === "photometric") {
-    const followed = plan.backTitrant?.id ?? plan.determines[0] ?? "";
+    const followed = plan.backTitrant?.id ?? countedIn(plan)[0] ?? "";
     const { reading, ...rest } = readWithPhotometer(model, criterion, back, equivalenceL, followed, knowledge);
     const basis = plan.indicator === null ? "constants" : criterion.basis;
     return { ...rest, basis, electrode: null, photometric: reading };

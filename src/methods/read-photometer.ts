@@ -3,6 +3,7 @@ import type { Criterion } from "./criterion.ts";
 import { firstCrossing, nearCrossing } from "./end-point-search.ts";
 import { dyeComponentOf } from "./solution.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
+import { countedIn } from "./types.ts";
 
 /** A straight line, signal against volume in L. */
 export interface Branch {
@@ -38,13 +39,13 @@ export const PHOTOMETRIC_DYE_PART = 0.2;
 /** The record of the dye, or of the coloured complex that the titration itself makes. */
 export function photometricRecord(
   knowledge: Knowledge,
-  plan: Pick<StageModel["plan"], "indicator" | "titrant" | "determines">,
+  plan: Pick<StageModel["plan"], "indicator" | "titrant" | "determines" | "detour">,
 ): PhotometricRecord | null {
   const dye = plan.indicator === null ? null : dyeComponentOf(plan.indicator.id);
   return (
     knowledge.photometric.find((r) =>
       dye === null
-        ? r.complex !== null && r.complex.titrant === plan.titrant.id && plan.determines.includes(r.complex.metal)
+        ? r.complex !== null && r.complex.titrant === plan.titrant.id && countedIn(plan).includes(r.complex.metal)
         : r.indicator === dye,
     ) ?? null
   );

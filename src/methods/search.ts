@@ -16,13 +16,23 @@ export function searchMethods(task: Task, knowledge: Knowledge): MethodSearch {
   for (const withSpecial of [false, true]) {
     const shelf = shelfOf(task, knowledge, withSpecial);
     const methods = methodsOn(task, knowledge, shelf);
-    const works = methods.some((m) =>
-      m.stages.every((s) => s.evaluation.status !== "failed" && s.remaining.length === 0),
-    );
+    const works =
+      methods.some((m) => m.stages.every((s) => s.evaluation.status !== "failed" && s.remaining.length === 0)) &&
+      !(hasSpecialWay(task, knowledge) && methods.every((m) => !meets(task, m)));
     if (works || withSpecial) return { methods, shelf, specialOpened: withSpecial };
   }
   throw new Error("unreachable: the second round always returns");
 }
+
+const meets = (task: Task, method: EvaluatedMethod): boolean =>
+  method.stages.every((s) => s.evaluation.status !== "failed") &&
+  method.results.every((r) => 100 * r.budget.expanded <= task.requirementPercent);
+
+/** An analyte that the titrants hardly bind seems to be titrated by many things; its way round may need a special bottle. */
+const hasSpecialWay = (task: Task, knowledge: Knowledge): boolean =>
+  [...knowledge.detours.values()].some(
+    (d) => d.reagent.special && task.analytes.some((a) => a.component === d.analyte),
+  );
 
 function methodsOn(task: Task, knowledge: Knowledge, shelf: Shelf): EvaluatedMethod[] {
   const groups = groupsOf(task);

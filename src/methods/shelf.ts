@@ -1,4 +1,4 @@
-import type { Knowledge } from "../constants/knowledge.ts";
+import type { DetourReagent, Knowledge } from "../constants/knowledge.ts";
 import type { Task } from "./types.ts";
 
 /** Whether a reagent may be proposed for this laboratory. */
@@ -37,13 +37,22 @@ function bottlesOf(
   return { bars: [id, ion], serves: [[id], [ion, ligand], ...(id === "Cu-EDTA" ? [["Cu-PAN"]] : [])] };
 }
 
+/** Whether the bottle of a way round may be taken: under any of its names, and not barred with what is avoided. */
+export function bottleOnShelf(task: Task, bottle: DetourReagent, shelf: Shelf): boolean {
+  const names = [bottle.id, ...bottle.alsoCalled];
+  const { avoid, available } = task.laboratory;
+  if ([...names, ...bottle.barredWith].some((id) => avoid.includes(id))) return false;
+  return available === null ? shelf(bottle.id) : names.some((id) => available.includes(id));
+}
+
 /** Reagents that a laboratory keeps only for one purpose (dimercaprol, uranyl acetate, TTHA, arsenazo, …). */
 export function isSpecial(knowledge: Knowledge, id: string): boolean {
-  return Boolean(
+  return (
     knowledge.titrants.get(id)?.special ??
-      knowledge.agents.get(id)?.special ??
-      knowledge.indicators.get(id)?.special ??
-      knowledge.buffers.get(id)?.special ??
-      knowledge.metalTitrants.get(id)?.special,
+    knowledge.agents.get(id)?.special ??
+    knowledge.indicators.get(id)?.special ??
+    knowledge.buffers.get(id)?.special ??
+    knowledge.metalTitrants.get(id)?.special ??
+    [...knowledge.detours.values()].some((d) => d.reagent.id === id && d.reagent.special)
   );
 }

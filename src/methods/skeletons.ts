@@ -16,8 +16,8 @@ export interface Skeleton {
   readonly window: readonly [number, number];
 }
 
-type Window = readonly [number, number];
-const overlap = (a: Window, b: Window): Window | null => {
+export type Window = readonly [number, number];
+export const overlap = (a: Window, b: Window): Window | null => {
   const low = Math.max(a[0], b[0]);
   const high = Math.min(a[1], b[1]);
   return high - low >= -1e-9 ? [low, high] : null;
@@ -33,10 +33,10 @@ export function benchPH(window: Window): number {
 }
 
 /** A use that only one recollection knows stands no firmer than an analogy. */
-const standingOf = (use: IndicatorUse): UseStanding =>
+export const standingOf = (use: IndicatorUse): UseStanding =>
   use.detail.includes("second recollection only") ? "analogous" : "published";
 
-interface DyeUse {
+export interface DyeUse {
   readonly window: Window;
   readonly use: IndicatorUse;
   readonly basis: "read" | "memory";
@@ -45,7 +45,7 @@ interface DyeUse {
 const basisOf = (use: IndicatorUse): "read" | "memory" => (use.provenance.basis === "read" ? "read" : "memory");
 
 /** pH windows in which the dye is in use for all of `ions` in this mode (one record for all, or one for each, overlapping). */
-function usesFor(indicator: IndicatorRecord, ions: readonly ComponentId[], modes: readonly string[]): DyeUse[] {
+export function usesFor(indicator: IndicatorRecord, ions: readonly ComponentId[], modes: readonly string[]): DyeUse[] {
   const rows = indicator.uses.filter((u) => modes.includes(u.mode));
   const whole = rows.filter(
     (u) => ions.every((ion) => u.ions.includes(ion)) && u.ions.length <= ions.length + (ions.length > 1 ? 1 : 0),

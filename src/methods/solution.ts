@@ -1,5 +1,6 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { StagePlan, Task, TaskComponent } from "./types.ts";
+import { detourRecord, wayRound, type WayRound } from "./way-round.ts";
 
 /** An amount of a component that does not take part in the titration's equilibrium, and why. */
 export interface HeldAmount {
@@ -17,6 +18,7 @@ export interface StageSolution {
   readonly fromSample: ReadonlyMap<ComponentId, number>;
   readonly held: readonly HeldAmount[];
   /** Sample components that were converted into another: Fe3+ to Fe2+. */
+  readonly way: WayRound | null;
   readonly converted: readonly { readonly from: ComponentId; readonly to: ComponentId | null; readonly by: string }[];
 }
 
@@ -47,7 +49,8 @@ export function stageSolution(task: Task, plan: StagePlan, knowledge: Knowledge)
   const add = (map: Map<ComponentId, number>, id: ComponentId, molPerL: number): void => {
     if (molPerL > 0) map.set(id, (map.get(id) ?? 0) + molPerL);
   };
-  for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
+  const way = wayOf(task, plan, knowledge, held);
+  for (const { component, inVesselMolPerL } of way ? afterWay(way) : vesselSample(task, plan)) {
     if (plan.removed.includes(component)) {
       held.push({ component, molPerL: inVesselMolPerL, why: "separated", by: "separate" });
       continue;
@@ -72,12 +75,55 @@ export function stageSolution(task: Task, plan: StagePlan, knowledge: Knowledge)
     const component = knowledge.agents.get(id)?.component;
     if (component) add(totals, component, molPerL);
   }
-  for (const reagent of plan.added) if (knowledge.components.has(reagent.id)) add(totals, reagent.id, reagent.molPerL);
+  for (const [component, molPerL] of way?.reagent ?? []) add(totals, component, molPerL);
+  // What the way round adds stands in it already.
+  for (const reagent of way ? [] : plan.added)
+    if (knowledge.components.has(reagent.id)) add(totals, reagent.id, reagent.molPerL);
   if (plan.chelate) {
     add(totals, plan.chelate.metal, plan.chelate.molPerL);
     add(totals, plan.chelate.ligand, plan.chelate.molPerL);
   }
-  return { volumeL: vesselML(task, plan) / 1000, totals, fromSample, held, converted };
+  return { volumeL: vesselML(task, plan) / 1000, totals, fromSample, held, converted, way };
+}
+
+const afterWay = (way: WayRound): { readonly component: ComponentId; readonly inVesselMolPerL: number }[] =>
+  [...way.sample].map(([component, inVesselMolPerL]) => ({ component, inVesselMolPerL }));
+
+/** What is to be filtered precipitates from the portion and about as much of the reagents, before it is made up (common practice). */
+const PRECIPITATED_IN_PORTIONS = 2;
+
+const precipitationRatio = (task: Task, plan: StagePlan, knowledge: Knowledge): number =>
+  plan.detour && detourRecord(plan.detour, knowledge).filtered
+    ? Math.min(1, (PRECIPITATED_IN_PORTIONS * task.portion.volumeML) / vesselML(task, plan))
+    : 1;
+
+/** The way round of a plan, and into `held` what it keeps from the titration: separated, filtered away, or left as a deposit. */
+function wayOf(task: Task, plan: StagePlan, knowledge: Knowledge, held: HeldAmount[]): WayRound | null {
+  if (!plan.detour) return null;
+  const sample = new Map<ComponentId, number>();
+  for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
+    const drivenOff = component === "carbonate" && plan.preparation.includes("remove-carbonate");
+    if (!plan.removed.includes(component) && !drivenOff) sample.set(component, inVesselMolPerL);
+    else
+      held.push({
+        component,
+        molPerL: inVesselMolPerL,
+        why: "separated",
+        by: drivenOff ? "remove-carbonate" : "separate",
+      });
+  }
+  const way = wayRound(
+    plan.detour,
+    sample,
+    { temperatureC: task.temperatureC, volumeRatio: precipitationRatio(task, plan, knowledge) },
+    knowledge,
+  );
+  for (const { solid, components, molPerL } of way.left)
+    for (const [component, n] of Object.entries(components))
+      if (n > 0) held.push({ component, molPerL: n * molPerL, why: "precipitated", by: solid });
+  for (const [component, molPerL] of way.filteredAway)
+    held.push({ component, molPerL, why: "separated", by: "precipitate-and-filter" });
+  return way;
 }
 
 /** The ion that an agent makes of another by complete reduction or oxidation; null when the product takes no part. */

@@ -12,8 +12,10 @@ import type {
 } from "../constants/knowledge.ts";
 import { protonFixed, vesselSolver, type VesselSolution } from "./vessel-solver.ts";
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
+import { inertIonsOf } from "./inert-ions.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
-import type { StagePlan, Task } from "./types.ts";
+import { solidsOfDetour } from "./way-round.ts";
+import { countedIn, type StagePlan, type Task } from "./types.ts";
 
 /** What the burette delivers, and everything else that stays the same while it runs. */
 export interface StageModel {
@@ -125,7 +127,10 @@ export function stageModel(
   if (!totals.has(plan.titrant.id)) totals.set(plan.titrant.id, 0);
   totals.set(
     plan.titrant.id,
-    totals.get(plan.titrant.id)! + plan.excessTitrantMolPerL + (plan.carried?.titrantMolPerL ?? 0),
+    totals.get(plan.titrant.id)! +
+      (solution.way?.titrantMolPerL ?? 0) +
+      plan.excessTitrantMolPerL +
+      (plan.carried?.titrantMolPerL ?? 0),
   );
   if (!totals.has(burette.component)) totals.set(burette.component, 0);
   const held: HeldAmount[] = [...solution.held];
@@ -151,7 +156,7 @@ export function stageModel(
   const titrant = plan.titrant.id;
   // A doubtful constant may serve for the metal the dye is used for, but does not prove that a bystander holds the dye.
   const watched = new Set([
-    ...plan.determines,
+    ...countedIn(plan),
     ...(plan.backTitrant ? [plan.backTitrant.id] : []),
     ...(plan.chelate ? [plan.chelate.metal] : []),
   ]);
@@ -165,8 +170,11 @@ export function stageModel(
     return false;
   };
   const maskedSolids = new Set(plan.masking.filter((m) => m.via === "precipitation").flatMap((m) => m.masks));
+  const ofDetour = solidsOfDetour(plan, knowledge);
   const wantsSolid = (solid: SolidDefinition): boolean =>
-    formsInTitration(solid, "at-once") || Object.keys(solid.components).some((c) => maskedSolids.has(c));
+    (formsInTitration(solid, "at-once") && !ofDetour.dissolved.has(solid.id)) ||
+    ofDetour.dissolving.has(solid.id) ||
+    Object.keys(solid.components).some((c) => maskedSolids.has(c));
 
   const prepare = (ionicStrengthMolPerL: number, withSolids: (s: SolidDefinition) => boolean): PreparedSystem =>
     prepareSystem(
@@ -205,7 +213,11 @@ export function stageModel(
   system.solids.forEach((solid, i) => {
     const amount = first.solidsMolPerL[i] ?? 0;
     if (amount <= 0) return;
-    if (knowledge.solids.find((s) => s.id === solid.id)?.redissolvesWhileTitrated) {
+    // A precipitate that was collected to be dissolved goes on dissolving while its metal is taken up.
+    if (
+      ofDetour.dissolving.has(solid.id) ||
+      knowledge.solids.find((s) => s.id === solid.id)?.redissolvesWhileTitrated
+    ) {
       stays.add(solid.id);
       return;
     }
@@ -293,19 +305,6 @@ export function stageModel(
     metals: [...metals],
     inert,
   };
-}
-
-/** Ions of the composition that take no part but carry charge (perchlorate, …): sums of c·z² and c·z, mol/L. */
-function inertIonsOf(totals: ReadonlyMap<ComponentId, number>, knowledge: Knowledge): { cz2: number; cz: number } {
-  let cz2 = 0;
-  let cz = 0;
-  for (const [id, molPerL] of totals) {
-    const component = knowledge.components.get(id);
-    if (component?.kind !== "inert") continue;
-    cz2 += molPerL * component.charge ** 2;
-    cz += molPerL * component.charge;
-  }
-  return { cz2, cz };
 }
 
 /** Whether every record of some step of the species' chain is doubtful. */

@@ -1,6 +1,7 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { remembered } from "./remembered.ts";
+import type { ComponentId } from "../constants/knowledge.ts";
 import type { StagePlan, Task } from "./types.ts";
 
 /**
@@ -12,6 +13,7 @@ import type { StagePlan, Task } from "./types.ts";
 export function standardisedAlike(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): StageEvaluation {
   const { plan } = evaluation.model;
   if (evaluation.status === "failed" || evaluation.basis === "empirical") return evaluation;
+  if (plan.detour) return blankOfDetour(task, evaluation, knowledge);
   if (plan.backTitrant === null && !plan.determines.every((ion) => knowledge.standards.some((s) => s.forIon === ion)))
     return evaluation;
   const standard = standardPlan(task, plan);
@@ -20,13 +22,57 @@ export function standardisedAlike(task: Task, evaluation: StageEvaluation, knowl
   );
   // An end point that is wrong by more than this is not one to standardise with: the method itself is wrong.
   if (alone.status === "failed" || Math.abs(alone.biasFraction) > CANCELS_UP_TO) return evaluation;
-  const biasFraction = (1 + evaluation.biasFraction) / (1 + alone.biasFraction) - 1;
+  return corrected(evaluation, (1 + evaluation.biasFraction) / (1 + alone.biasFraction) - 1);
+}
+
+const corrected = (evaluation: StageEvaluation, biasFraction: number): StageEvaluation => ({
+  ...evaluation,
+  biasFraction,
+  ledger: [...evaluation.ledger, { source: "standardised alike", fraction: biasFraction - evaluation.biasFraction }],
+});
+
+/**
+ * A way round is calibrated by its metal alone: the reagent titrated the same way is the blank of a surplus (the amounts subtract),
+ * a standard of the metal serves the rest (the amounts divide). Titrant that a precipitate set free has no such blank.
+ */
+function blankOfDetour(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): StageEvaluation {
+  const { plan, solution, volumeL } = evaluation.model;
+  const { detour } = plan;
+  const { way } = solution;
+  if (!detour || !way || way.record.kind === "conversion") return evaluation;
+  const surplus = way.record.kind === "surplus";
+  const molPerL = surplus ? detour.reagent.molPerL : evaluation.presentMol / detour.analytePerMetal / volumeL;
+  const alone = evaluateStage(
+    metalAlone(task, detour.metal, molPerL),
+    metalPlan(plan, detour.metal, molPerL),
+    knowledge,
+  );
+  if (alone.status === "failed" || Math.abs(alone.biasFraction) > CANCELS_UP_TO) return evaluation;
+  if (!surplus) return corrected(evaluation, (1 + evaluation.biasFraction) / (1 + alone.biasFraction) - 1);
+  const blankMol = alone.foundMol - alone.presentMol;
+  return corrected(evaluation, evaluation.biasFraction + (detour.analytePerMetal * blankMol) / evaluation.presentMol);
+}
+
+/** A solution of one metal, mol/L of the vessel. */
+function metalAlone(task: Task, metal: ComponentId, inVesselMolPerL: number): Task {
+  const molPerL = (inVesselMolPerL * task.portion.titrationVolumeML) / task.portion.volumeML;
   return {
-    ...evaluation,
-    biasFraction,
-    ledger: [...evaluation.ledger, { source: "standardised alike", fraction: biasFraction - evaluation.biasFraction }],
+    ...task,
+    analytes: [{ component: metal, shown: metal, molPerL, protonsPerComponent: 0, report: "individual" }],
+    matrix: [],
   };
 }
+
+const metalPlan = (plan: StagePlan, metal: ComponentId, molPerL: number): StagePlan => ({
+  ...plan,
+  determines: [metal],
+  mode: plan.backTitrant ? "back" : "direct",
+  detour: null,
+  masking: [],
+  removed: [],
+  added: [],
+  excessTitrantMolPerL: plan.backTitrant ? STANDARD_EXCESS * molPerL : 0,
+});
 
 /** Largest bias of the standard titration, relative, that an analyst would let cancel. */
 const CANCELS_UP_TO = 0.02;

@@ -2,7 +2,7 @@ import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import { vesselSample } from "./solution.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
-import type { Task } from "./types.ts";
+import { countedIn, type Task } from "./types.ts";
 import { stageBudget } from "./uncertainty.ts";
 
 /** A component of the sample that the titration cannot leave alone. */
@@ -36,6 +36,7 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
   const determined = new Set(plan.determines);
   const present = evaluation.presentMol / model.volumeL;
   for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
+    // The counted metal in the sample itself is no less a part of the titre.
     if (determined.has(component) || inVesselMolPerL <= 0 || plan.removed.includes(component)) continue;
     if (!model.metals.includes(component)) {
       const held = knowledge.components.get(component)?.kind === "ligand" && holds(evaluation, component, knowledge);
@@ -60,7 +61,7 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
         : equivalence
           ? shareOf(equivalence, component)
           : Math.min(1, Math.max(0, evaluation.titrated.get(component) ?? 0));
-    const biasFraction = (share * inVesselMolPerL) / present;
+    const biasFraction = (share * inVesselMolPerL * (plan.detour?.analytePerMetal ?? 1)) / present;
     const titrates = biasFraction > allowed;
     const blocks =
       evaluation.blockedBy.includes(component) ||
@@ -96,12 +97,14 @@ const shareOf = (state: VesselState, metal: ComponentId): number =>
 export function atCommonEquivalence(model: StageModel, presentMol: number): VesselState {
   const { plan } = model;
   if (plan.backTitrant !== null) return model.at(0);
-  let state = model.at(presentMol / model.burette.molPerL);
+  const ownMol = model.solution.way ? model.solution.way.expectedMolPerL * model.volumeL : presentMol;
+  const counted = countedIn(plan);
+  let state = model.at(ownMol / model.burette.molPerL);
   for (let round = 0; round < 6; round++) {
     const others = model.metals
-      .filter((m) => !plan.determines.includes(m) && m !== plan.chelate?.metal)
+      .filter((m) => !counted.includes(m) && m !== plan.chelate?.metal)
       .reduce((sum, m) => sum + shareOf(state, m) * (model.solution.fromSample.get(m) ?? 0) * model.volumeL, 0);
-    state = model.at((presentMol + others) / model.burette.molPerL);
+    state = model.at((ownMol + others) / model.burette.molPerL);
   }
   return state;
 }
@@ -121,7 +124,7 @@ function heldDye(evaluation: StageEvaluation, metal: ComponentId): boolean {
 
 function holds(evaluation: StageEvaluation, ligand: ComponentId, knowledge: Knowledge): boolean {
   const { model } = evaluation;
-  const metal = model.plan.determines[0];
+  const metal = countedIn(model.plan)[0];
   if (metal === undefined || !knowledge.components.has(ligand)) return false;
   const start = model.at(0);
   const held = model.system.species.reduce((sum, s, row) => {

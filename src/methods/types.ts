@@ -102,6 +102,8 @@ export interface Detour {
   readonly analytePerMetal: number;
   /** The reagent that goes in: a metal in known excess ("Ba2+"), or "tetracyanonickelate"; mol/L of the vessel. */
   readonly reagent: { readonly id: string; readonly molPerL: number };
+  /** What precipitates the analyte before the exchange (silver for halides); mol/L of the vessel. */
+  readonly precipitant: { readonly id: string; readonly molPerL: number } | null;
 }
 
 /** An agent that sets the titrant of the analyte free after the excess has been titrated back; that first reading is discarded. */
@@ -116,6 +118,10 @@ export interface Demasking {
   readonly by: string; // what takes it away
   readonly frees: readonly ComponentId[];
 }
+
+/** The metals whose titre is the result: what is determined, or the metal through which it is. */
+export const countedIn = (plan: Pick<StagePlan, "determines" | "detour">): readonly ComponentId[] =>
+  plan.detour ? [plan.detour.metal] : plan.determines;
 
 export interface MethodPlan {
   readonly mode: MethodMode;

@@ -44,7 +44,10 @@ export function stageBudget(task: Task, evaluation: StageEvaluation, knowledge: 
   const { plan } = evaluation.model;
   const back = plan.backTitrant !== null;
   // In a back titration the result is a difference: the same millilitre weighs more against it.
-  const resultML = back ? (evaluation.presentMol / plan.backTitrant.molPerL) * 1000 : evaluation.endPointML;
+  // So it is with a way round, whose result is what the metal stands for.
+  const { detour } = plan;
+  const metalMol = evaluation.presentMol / (detour?.analytePerMetal ?? 1);
+  const resultML = back || detour ? (metalMol / evaluation.model.burette.molPerL) * 1000 : evaluation.endPointML;
   const fills = Math.max(1, Math.ceil(evaluation.endPointML / task.laboratory.buretteML));
   const buretteTolerance = toleranceOf(knowledge, "burette", task.laboratory.buretteML) ?? 0.05;
   const portionTolerance = toleranceOf(knowledge, "pipette", task.portion.volumeML);
@@ -65,8 +68,16 @@ export function stageBudget(task: Task, evaluation: StageEvaluation, knowledge: 
   add("blank", DROP_ML / 2 / RECTANGULAR / resultML);
   // The observer does not stop at quite the same tint twice: a tenth of what cancels stays as uncertainty.
   add("standardised alike", 0.1 * Math.abs(evaluation.uncancelledBiasFraction - evaluation.biasFraction));
-  if (back) {
-    const excess = (plan.excessTitrantMolPerL * evaluation.model.volumeL) / evaluation.presentMol;
+  const { way } = evaluation.model.solution;
+  if (way?.record.kind === "surplus" && detour) {
+    // The reagent is measured by its own titration: the same burette and eye once more, and a pipette.
+    const own = ["burette", "end point"].map((source) => terms.find((t) => t.source === source)?.relative ?? 0);
+    add("titration of the reagent alone", Math.hypot(...own));
+    add("reagent in excess", ((detour.reagent.molPerL * evaluation.model.volumeL) / metalMol) * 5e-4);
+  }
+  if (way) add("composition of the precipitate", way.record.compositionUncertainty);
+  if (back && way?.record.kind !== "conversion") {
+    const excess = (plan.excessTitrantMolPerL * evaluation.model.volumeL) / metalMol;
     add("excess titrant", excess * 5e-4);
     add("back titrant strength", Math.max(0, excess - 1) * TITRANT_STRENGTH_RELATIVE);
   }

@@ -1,7 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { evaluate } from "../methods/develop.ts";
 import { stageModel, type StageModel } from "../methods/stage-model.ts";
-import type { StagePlan, Task } from "../methods/types.ts";
+import { countedIn, type StagePlan, type Task } from "../methods/types.ts";
 import { readBrief } from "./brief.ts";
 import type { Recommendation, RecommendedMethod, StageDocument } from "./contract.ts";
 
@@ -50,7 +50,7 @@ export function figureSeries(document: Recommendation, methodId: string, knowled
 function stageSeries(task: Task, plan: StagePlan, stage: StageDocument, knowledge: Knowledge): StageSeries {
   const evaluation = evaluate(task, plan, knowledge);
   const { model, equivalenceML } = evaluation;
-  const followed = plan.backTitrant?.id ?? plan.determines[0] ?? "";
+  const followed = plan.backTitrant?.id ?? countedIn(plan)[0] ?? "";
   const pMAt = (volumeML: number): number | null => pM(model, volumeML, followed);
   const volumeML = volumes(equivalenceML);
   const [low, high] = evaluation.bandML;
@@ -104,7 +104,7 @@ function conditionalSeries(
       return state.ok && Number.isFinite(value) ? value : null;
     }),
   }));
-  const first = (label: string): number => Number(!plan.determines.includes(label)); // what is determined is drawn first
+  const first = (label: string): number => Number(!countedIn(plan).includes(label)); // what is determined is drawn first
   return {
     pH,
     lines: lines
@@ -146,7 +146,13 @@ function planOf(method: RecommendedMethod, stage: StageDocument, knowledge: Know
     excessTitrantMolPerL,
     carried: carried && { ...carried, metals: carried.metals.map(component) },
     electrode,
-    detour,
+    detour: detour && {
+      id: detour.id,
+      metal: component(detour.metal),
+      analytePerMetal: detour.analytePerMetal,
+      reagent: detour.reagent,
+      precipitant: detour.precipitant,
+    },
     release,
     demasked: demasked && { ...demasked, frees: demasked.frees.map(component) },
   };

@@ -100,7 +100,24 @@ export const stageSchema = z.strictObject({
     excessTitrantMolPerL: level,
     carried: z.strictObject({ metals: z.array(text), titrantMolPerL: level, addedML: level }).nullable(), // left by an earlier titration of the same solution
     electrode: text.nullable(), // which one, where the end point is read with one
-    detour: z.strictObject({ id: text, metal: text, analytePerMetal: finite, reagent: reagentSchema }).nullable(), // the ion is determined through this metal
+    // the ion is determined through this metal
+    detour: z
+      .strictObject({
+        id: text,
+        metal: text,
+        analytePerMetal: finite,
+        reagent: reagentSchema,
+        precipitant: reagentSchema.nullable(),
+        kind: z.enum(["surplus", "precipitate", "exchange", "conversion"]),
+        filtered: z.boolean(),
+        precipitationPH: finite.nullable(),
+        precipitationWords: text.nullable(), // how the precipitate is made
+        stoichiometry: text, // "2 Ag+ for 1 EDTA"
+        rests: z.enum(["equilibrium", "composition"]),
+        source: text,
+        basis: z.enum(["read", "memory", "computed"]),
+      })
+      .nullable(),
     release: z.strictObject({ agent: text, molPerL: level }).nullable(), // sets the analyte's titrant free after the discarded reading
     demasked: z.strictObject({ agent: text, by: text, frees: z.array(text).min(1) }).nullable(), // a mask taken away again
   }),

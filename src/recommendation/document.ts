@@ -10,6 +10,7 @@ import { maskingDocument } from "./masking-document.ts";
 import { precedentsOf } from "./precedents.ts";
 import { cautionTexts } from "./reagents.ts";
 import { shownIon } from "./spelling.ts";
+import { detourDocument } from "./detour-words.ts";
 import { summaryOf } from "./summary.ts";
 
 type Preparation = StageDocument["preparation"][number];
@@ -112,7 +113,7 @@ function stageDocument(
         addedML: plan.carried.addedML,
       },
       electrode: plan.electrode,
-      detour: plan.detour && { ...plan.detour, reagent: { ...plan.detour.reagent } },
+      detour: plan.detour && detourDocument(plan.detour, plan, ion, knowledge),
       release: plan.release && { ...plan.release },
       demasked: plan.demasked && { ...plan.demasked, frees: plan.demasked.frees.map(ion) },
     },

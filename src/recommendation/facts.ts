@@ -6,7 +6,7 @@ import type { DevelopedStage } from "../methods/develop.ts";
 import { detectionFacts } from "./detection-facts.ts";
 import type { EvaluatedMethod } from "../methods/methods.ts";
 import { supersaturations, type Supersaturation } from "../methods/saturation.ts";
-import type { Task } from "../methods/types.ts";
+import { countedIn, type Task } from "../methods/types.ts";
 import { stageBudget } from "../methods/uncertainty.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import { hazardTagsOf, reagentsOf } from "./reagents.ts";
@@ -92,7 +92,7 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
     empiricalMasking: masking.some((m) => m.basis === "empirical"),
     empiricalEndPoint: stages.some((s) => s.evaluation.basis === "empirical"),
     analyteKinetics: worst(
-      stages.flatMap((s) => s.plan.determines.map((ion) => metalKinetics(knowledge, ion, s.plan.titrant.id).class)),
+      stages.flatMap((s) => countedIn(s.plan).map((ion) => metalKinetics(knowledge, ion, s.plan.titrant.id).class)),
     ),
     convertsByRedox: masking.some((m) => m.via === "reduction" || m.via === "oxidation"),
     anyBlocked: stages.some((s) => s.evaluation.blockedBy.length > 0 || s.evaluation.why === "dye-held"),
@@ -135,11 +135,13 @@ export function stageFacts(
   const { model } = evaluation;
   const ok = usable(stage);
   const indicator = model.indicator;
-  const own = plan.determines.map((ion) => evaluation.log10ConditionalK.get(ion)).filter((v) => v !== undefined);
+  const own = countedIn(plan)
+    .map((ion) => evaluation.log10ConditionalK.get(ion))
+    .filter((v) => v !== undefined);
   const weakest = own.length > 0 ? Math.min(...own) : null;
   const others = [...evaluation.log10ConditionalK].filter(
     ([ion]) =>
-      !plan.determines.includes(ion) &&
+      !countedIn(plan).includes(ion) &&
       ion !== plan.backTitrant?.id &&
       ion !== plan.chelate?.metal &&
       evaluation.titrated.has(ion),
@@ -188,7 +190,7 @@ export function stageFacts(
     blocked: evaluation.blockedBy.length > 0 || evaluation.why === "dye-held",
     blockedBy: evaluation.blockedBy,
     indicatorMetal: evaluation.indicatorMetal ?? "none",
-    analyteKinetics: worst(plan.determines.map((ion) => metalKinetics(knowledge, ion, plan.titrant.id).class)),
+    analyteKinetics: worst(countedIn(plan).map((ion) => metalKinetics(knowledge, ion, plan.titrant.id).class)),
     heats: heats(stage),
     analytePrecipitates: precipitates,
     analyteKeptInSolution: precipitates && (plan.backTitrant !== null || plan.auxiliary.length > 0),

@@ -61,7 +61,8 @@ function shortlist(task: Task, methods: readonly EvaluatedMethod[], knowledge: K
   );
   const sorted = [...methods].sort((a, b) => cost.get(a)! - cost.get(b)! || a.id.localeCompare(b.id));
   const perFamily = new Map<string, number>();
-  const family = (m: EvaluatedMethod): string => `${m.mode} ${m.stages.map((s) => seenWith(s.plan)).join("+")}`;
+  const family = (m: EvaluatedMethod): string =>
+    `${m.mode} ${m.stages.map((s) => `${s.plan.detour?.id ?? ""} ${seenWith(s.plan)}`).join("+")}`;
   const diverse = sorted.filter((m) => {
     const n = perFamily.get(family(m)) ?? 0;
     perFamily.set(family(m), n + 1);
@@ -94,7 +95,7 @@ function distinct(judged: readonly JudgedMethod[]): JudgedMethod[] {
     const key = `${method.mode} ${method.stages
       .map(
         (s) =>
-          `${s.plan.titrant.id} ${s.plan.backTitrant?.id ?? ""} ${seenWith(s.plan)} ${s.plan.masking
+          `${s.plan.detour?.id ?? ""} ${s.plan.titrant.id} ${s.plan.backTitrant?.id ?? ""} ${seenWith(s.plan)} ${s.plan.masking
             .map((m) => m.agent)
             .sort()
             .join()} ${s.plan.removed.join()}`,

@@ -1,6 +1,8 @@
 import { cautionsFor, type Knowledge } from "../constants/index.ts";
 import type { StagePlan } from "../methods/types.ts";
 
+const EXCHANGE = "tetracyanonickelate-exchange";
+
 /** Every reagent id that a titration uses, once each. */
 export function reagentsOf(plan: StagePlan): string[] {
   return [
@@ -14,6 +16,8 @@ export function reagentsOf(plan: StagePlan): string[] {
       ...plan.added.map((a) => a.id),
       ...(plan.chelate ? [plan.chelate.metal] : []),
       ...(plan.preparation.includes("alcohol") ? ["alcohol"] : []),
+      // The bottle of the exchange keeps its hazards under the name of the step.
+      ...(plan.preparation.includes(EXCHANGE) ? [EXCHANGE] : []),
     ]),
   ];
 }

@@ -12,6 +12,7 @@ import { findingsOf } from "./findings.ts";
 import { disagreementOf } from "./precedents.ts";
 import { judge, type JudgedMethod } from "./judge.ts";
 import { judgedMethods, ranged, ranking } from "./ranking.ts";
+import { notByThisTechnique } from "./not-by-this-technique.ts";
 import { shownIon } from "./spelling.ts";
 
 /** How many of the rejected methods an answer shows. */
@@ -32,12 +33,15 @@ export async function recommend(task: Task, knowledge: Knowledge, rules: RuleRun
     methodDocument(task, j, i + 1, i === 0 ? toleranceLimits(task, j.method, knowledge) : [], knowledge),
   );
   const first = shown[0] ?? null;
+  // Where the answer is a way round, no direct titration of the analyte is one that an analyst would think of.
+  const around = first?.method.stages.some((s) => s.plan.detour !== null) ?? false;
+  const simplest = around ? [] : simplestOf(task, search.methods, knowledge);
   return {
     contract: 1,
     knowledge: { version: knowledge.version, hash: knowledge.hash },
     brief: briefOf(task, knowledge),
     verdict: methods[0]?.verdict ?? "not-fit",
-    findings: findingsOf(task, first?.method ?? null, simplestOf(task, search.methods, knowledge), knowledge),
+    findings: findingsOf(task, first?.method ?? null, simplest, knowledge),
     methods,
     rejected: rejectedOf(task, judged, knowledge),
     decidedBy: decidedBy(shown[0], shown[1]),
@@ -61,6 +65,7 @@ function simplestOf(task: Task, methods: readonly EvaluatedMethod[], knowledge: 
     .filter(
       (s) =>
         s.plan.mode === "direct" &&
+        s.plan.detour === null &&
         s.plan.titrant.id === "EDTA" &&
         s.skeleton.use === "published" &&
         s.plan.removed.length === 0,
@@ -135,13 +140,8 @@ const listed = (words: readonly string[]): string => words.join(" or ");
 
 /** Why an answer has no method to show, as far as the search itself can say. */
 function whyNothing(task: Task, tried: number, knowledge: Knowledge): string[] {
-  const anions = task.analytes
-    .filter((a) => knowledge.components.get(a.component)?.kind !== "metal")
-    .map((a) => a.shown);
-  if (anions.length > 0)
-    return [
-      `${anions.join(", ")}: the titrants bind metal ions only; ways round (a precipitate or complex in excess) are not calculated.`,
-    ];
+  const foreign = notByThisTechnique(task, knowledge);
+  if (foreign.length > 0) return foreign;
   if (tried === 0 && !task.laboratory.detection.includes("visual"))
     return [
       `No ${listed(task.laboratory.detection.map((d) => INSTRUMENT[d]))} on record follows ${listed(task.analytes.map((a) => a.shown))} with what the laboratory has.`,

@@ -1,7 +1,10 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
+import type { Detour } from "../methods/types.ts";
+import { detourRecord } from "../methods/way-round.ts";
 import type { Task } from "../methods/types.ts";
 import type { JudgedMethod } from "./judge.ts";
+import { stoichiometryOf } from "./detour-words.ts";
 import { shownIon } from "./spelling.ts";
 
 const list = (words: readonly string[]): string =>
@@ -22,6 +25,7 @@ export function summaryOf(task: Task, judged: JudgedMethod, knowledge: Knowledge
 
 function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): string {
   const { plan } = stage;
+  if (plan.detour) return detourWords(task, stage, plan.detour, knowledge);
   const ion = (id: string): string => shownIon(task, id, knowledge);
   const nameOf = (id: string): string => knowledge.agents.get(id)?.name ?? knowledge.buffers.get(id)?.name ?? id;
   const what = list(plan.determines.map(ion));
@@ -46,5 +50,47 @@ function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): st
     ? `add ${plan.titrant.id} in excess to ${what}${heat}, and titrate the excess back with ${plan.backTitrant.molPerL} mol/L ${plan.backTitrant.id} at pH ${plan.pH} (${buffer}) to ${dye}`
     : `titrate ${what} with ${plan.titrant.molPerL} mol/L ${plan.titrant.id} at pH ${plan.pH} (${buffer})${plan.preparation.includes("boil") ? " at the boil" : plan.preparation.includes("heat") ? " hot" : ""} to ${dye}${plan.chelate && plan.indicator?.id !== "Cu-PAN" ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : ""}`;
   const sentence = `${separated}${core}${masks}${helped}`;
+  return sentence.charAt(0).toUpperCase() + sentence.slice(1);
+}
+
+/** A way round in one sentence: what takes the analyte up, what is titrated, and what one titrant stands for. */
+function detourWords(task: Task, stage: DevelopedStage, detour: Detour, knowledge: Knowledge): string {
+  const { plan } = stage;
+  const ion = (id: string): string => shownIon(task, id, knowledge);
+  const nameOf = (id: string): string => knowledge.agents.get(id)?.name ?? knowledge.buffers.get(id)?.name ?? id;
+  const record = detourRecord(detour, knowledge);
+  const what = list(plan.determines.map(ion));
+  const metal = ion(detour.metal);
+  const reagent = ion(detour.reagent.id).replaceAll("-", " ");
+  const filter = record.filtered ? ", filter" : "";
+  const taken = {
+    surplus: record.precipitation
+      ? `precipitate ${what} with ${metal} in known excess${filter}, and titrate the surplus of ${metal}`
+      : `bind ${what} with ${metal} in known excess, and titrate the surplus of ${metal}`,
+    precipitate: `precipitate ${what} with ${reagent}, filter and wash, dissolve the precipitate, and titrate its ${metal}`,
+    exchange: detour.precipitant
+      ? `precipitate ${what} with ${detour.precipitant.id}, filter and wash, dissolve the precipitate in ${reagent}, and titrate the ${metal} set free`
+      : `let ${what} set ${metal} free from ${reagent}, and titrate it`,
+    conversion: `precipitate ${what} with ${reagent}, filter and wash, let the precipitate set ${plan.titrant.id} free, and titrate that`,
+  }[record.kind];
+  const dye = plan.indicator
+    ? (knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id)
+    : "an electrode";
+  const back = plan.backTitrant;
+  const how =
+    record.kind === "conversion" && back
+      ? `with ${back.molPerL} mol/L ${back.id}`
+      : back
+        ? `by ${plan.titrant.id} in excess and ${back.molPerL} mol/L ${back.id} back`
+        : `with ${plan.titrant.molPerL} mol/L ${plan.titrant.id}`;
+  const masks =
+    plan.masking.length > 0
+      ? `, with ${list(plan.masking.map((m) => `${nameOf(m.agent)} against ${list(m.masks.map(ion))}`))}`
+      : "";
+  const chelate = plan.chelate
+    ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}`
+    : "";
+  const separated = plan.removed.length > 0 ? `after separation of ${list(plan.removed.map(ion))}, ` : "";
+  const sentence = `${separated}${taken} ${how} at pH ${plan.pH} (${nameOf(plan.buffer.id)}) to ${dye}${chelate}${masks}: ${stoichiometryOf(plan, detour, ion)}`;
   return sentence.charAt(0).toUpperCase() + sentence.slice(1);
 }

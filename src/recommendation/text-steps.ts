@@ -1,4 +1,5 @@
 import type { Brief, RecommendedMethod, StageDocument } from "./contract.ts";
+import { detourSteps } from "./text-detour.ts";
 import { backTitrantOf } from "./text-method.ts";
 import { figures, listed, PREPARATION_WORDS, reagentWords } from "./text-words.ts";
 
@@ -39,6 +40,14 @@ function stageSteps(stage: StageDocument, index: number, method: RecommendedMeth
   const before = stage.preparation.filter((step) => FLASK_FIRST.has(step));
   const after = stage.preparation.filter((step) => !FLASK_FIRST.has(step));
   const titrantFirst = after.includes("excess-titrant-first");
+  const { detour } = stage.vessel;
+  if (detour)
+    return detourSteps(stage, {
+      opening: opening(index, method, brief),
+      agents: agents.map((agent) => `Add ${agent.words}.`),
+      preparation: (step) => preparationStep(step, stage),
+      endPoint: endPoint(stage, backTitrant ?? titrant),
+    });
   return [
     opening(index, method, brief),
     ...before.map((step) => preparationStep(step, stage)),
@@ -98,7 +107,7 @@ function endPoint(stage: StageDocument, last: { readonly id: string; readonly mo
   ];
 }
 
-const amount = (id: string, molPerL: number): string =>
+export const amount = (id: string, molPerL: number): string =>
   molPerL > 0 ? `${reagentWords(id)} to ${figures(molPerL)} mol/L` : reagentWords(id);
 
 interface Bottle {

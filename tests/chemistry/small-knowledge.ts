@@ -120,6 +120,7 @@ export function smallKnowledge(
     buffers: new Map(),
     agents: new Map(),
     masking: [],
+    detours: new Map(),
     kinetics: [],
     electrodes: [],
     photometric: [],
