@@ -56,6 +56,7 @@ export function joinKnowledge(raw: PracticeData, equilibria: EquilibriumData, ha
     ionFacts: practice.ionFacts,
     precedents: practice.precedents,
     detours: byId("detours.json", practice.detours, (d) => d.id),
+    separations: practice.separations,
     remarks: [...equilibria.remarks, ...practice.remarks, ...remarks],
     atomicWeights: new Map(practice.atomicWeights.map((a) => [a.element, a.gPerMol])),
   };

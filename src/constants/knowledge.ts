@@ -482,6 +482,17 @@ export interface IonFact {
   readonly provenance: Provenance;
 }
 
+/** A way of taking ions out of a solution before a titration. */
+export interface SeparationRecord {
+  readonly id: string;
+  readonly removes: readonly ComponentId[];
+  /** Ions that go the same way in whole or in part: the step does not part the first from these. */
+  readonly takesAlong: readonly ComponentId[];
+  readonly kind: "extraction" | "ion exchange" | "precipitation" | "electrolysis" | "volatilisation" | "destruction";
+  readonly step: string;
+  readonly provenance: Provenance;
+}
+
 /** A published method of one ion. Found after the ranking, to stand beside a recommended method; it never steers it. */
 export interface PrecedentRecord {
   readonly ion: ComponentId;
@@ -525,6 +536,7 @@ export interface Knowledge {
   readonly ionFacts: readonly IonFact[];
   readonly precedents: readonly PrecedentRecord[];
   readonly detours: ReadonlyMap<string, DetourRecord>;
+  readonly separations: readonly SeparationRecord[];
   readonly remarks: readonly DataRemark[];
   /** Atomic weights, g/mol, by element symbol. */
   readonly atomicWeights: ReadonlyMap<string, number>;

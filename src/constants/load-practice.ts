@@ -16,6 +16,7 @@ import type {
   PrecedentRecord,
   PrimaryStandardRecord,
   ReagentRecord,
+  SeparationRecord,
   SourceRecord,
   TitrantRecord,
 } from "./knowledge.ts";
@@ -44,6 +45,7 @@ export interface PracticeData {
   readonly ionFacts: readonly IonFact[];
   readonly precedents: readonly PrecedentRecord[];
   readonly detours: readonly DetourRecord[];
+  readonly separations: readonly SeparationRecord[];
   readonly remarks: readonly DataRemark[];
   readonly atomicWeights: readonly z.infer<typeof schema.atomicWeightSchema>[];
 }
@@ -70,6 +72,7 @@ export function loadPractice(readFile: ReadFile): PracticeData {
     ionFacts: list("ion-facts.json", schema.ionFactSchema),
     precedents: list("precedents.json", schema.precedentSchema),
     detours: list("detours.json", detourSchema),
+    separations: list("separations.json", schema.separationSchema),
     remarks: list("practice-remarks.json", schema.remarkSchema),
     atomicWeights: list("atomic-weights.json", schema.atomicWeightSchema),
   };

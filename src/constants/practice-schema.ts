@@ -200,6 +200,16 @@ export const ionFactSchema = z.strictObject({
   provenance: provenanceSchema,
 });
 
+/** A way of taking ions out of a solution before a titration. */
+export const separationSchema = z.strictObject({
+  id: text,
+  removes: z.array(text).min(1),
+  takesAlong: z.array(text),
+  kind: z.enum(["extraction", "ion exchange", "precipitation", "electrolysis", "volatilisation", "destruction"]),
+  step: text,
+  provenance: provenanceSchema,
+});
+
 /** A published method of one ion, as far as the source states it. */
 export const precedentSchema = z.strictObject({
   ion: text,

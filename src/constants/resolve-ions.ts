@@ -47,6 +47,7 @@ export function resolveIons(
   const [electrode, standard, fact] = [resolve("electrode"), resolve("standard"), resolve("ion fact")];
   const photometric = resolve("photometric wavelength");
   const [metal, precedent, detour] = [resolve("metal titrant"), resolve("precedent"), resolve("way round")];
+  const separated = resolve("separation");
   for (const titrant of practice.titrants) modelled(titrant.id, titrant.id);
   const resolved: PracticeData = {
     ...practice,
@@ -87,6 +88,11 @@ export function resolveIons(
     metalTitrants: practice.metalTitrants.map((row) => ({ ...row, ion: metal(row.ion) })),
     detours: practice.detours.map((row) => ({ ...row, analyte: detour(row.analyte), metal: detour(row.metal) })),
     ionFacts: practice.ionFacts.map((row) => ({ ...row, ion: fact(row.ion) })),
+    separations: practice.separations.map((row) => ({
+      ...row,
+      removes: row.removes.map(separated),
+      takesAlong: row.takesAlong.map(separated),
+    })),
     precedents: practice.precedents.map((row) => ({
       ...row,
       ion: precedent(row.ion),

@@ -244,8 +244,7 @@ function separations(
 ): Settled[] {
   const hopeless = new Set(failed.map((t) => t.component));
   const metals = threats.filter((t) => !t.holdsAnalyte);
-  if (metals.length === 0) return [];
-  const choices = [metals.filter((t) => hopeless.has(t.component)), metals].filter((c) => c.length > 0);
+  const choices = [threats.filter((t) => hopeless.has(t.component)), metals, threats].filter((c) => c.length > 0);
   const seen = new Set<string>();
   return choices.flatMap((out) => {
     const removed = out.map((t) => t.component);

@@ -95,7 +95,18 @@ export const stageSchema = z.strictObject({
   preparation: z.array(z.enum(PREPARATION_STEPS)),
   // What the calculation put into the vessel beside the reagents above: enough, with them, to compute the titration again.
   vessel: z.strictObject({
-    removed: z.array(text), // ions taken out by a separation step
+    removed: z.array(text), // ions taken out by a separation
+    separation: z.array(
+      z.strictObject({
+        kind: z.enum(["extraction", "ion exchange", "precipitation", "electrolysis", "volatilisation", "destruction"]),
+        step: text,
+        takes: z.enum(["interferents", "analyte"]),
+        ions: z.array(text).min(1), // parted from the analyte by it
+        source: text,
+        basis: z.enum(["read", "memory", "computed"]),
+      }),
+    ),
+    separationUnknown: z.array(text), // of `removed`, what no step on record parts from the analyte
     chelate: z.strictObject({ metal: text, ligand: text, molPerL: level }).nullable(),
     excessTitrantMolPerL: level,
     carried: z.strictObject({ metals: z.array(text), titrantMolPerL: level, addedML: level }).nullable(), // left by an earlier titration of the same solution

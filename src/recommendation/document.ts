@@ -2,7 +2,8 @@ import type { Knowledge } from "../constants/knowledge.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
 import type { ToleranceLimit } from "../methods/tolerance.ts";
 import { vesselSample } from "../methods/solution.ts";
-import type { Task } from "../methods/types.ts";
+import { separationOf } from "../methods/separation.ts";
+import type { StagePlan, Task } from "../methods/types.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import type { Because, ConstantUsed, RecommendedMethod, StageDocument } from "./contract.ts";
 import type { JudgedMethod, Verdict } from "./judge.ts";
@@ -105,6 +106,7 @@ function stageDocument(
     preparation: [...plan.preparation] as Preparation[],
     vessel: {
       removed: [...plan.removed],
+      ...separationDocument(plan, knowledge, ion),
       chelate: plan.chelate && { ...plan.chelate },
       excessTitrantMolPerL: plan.excessTitrantMolPerL,
       carried: plan.carried && {
@@ -145,6 +147,26 @@ function stageDocument(
           maskedBy: mask?.agent ?? (plan.removed.includes(c.component) ? "separate" : null),
         };
       }),
+  };
+}
+
+/** How what is removed is parted from the analyte, as far as a step is on record. */
+function separationDocument(
+  plan: StagePlan,
+  knowledge: Knowledge,
+  ion: (id: string) => string,
+): Pick<StageDocument["vessel"], "separation" | "separationUnknown"> {
+  const { steps, unknown } = separationOf(plan.removed, plan.determines, knowledge);
+  return {
+    separation: steps.map(({ record, takes, ions }) => ({
+      kind: record.kind,
+      step: record.step,
+      takes,
+      ions: ions.map(ion),
+      source: knowledge.sources.get(record.provenance.source)?.citation ?? record.provenance.source,
+      basis: record.provenance.basis,
+    })),
+    separationUnknown: unknown.map(ion),
   };
 }
 

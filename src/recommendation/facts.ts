@@ -5,6 +5,7 @@ import { metalKinetics } from "../methods/kinetics.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
 import { detectionFacts } from "./detection-facts.ts";
 import type { EvaluatedMethod } from "../methods/methods.ts";
+import { separationOf } from "../methods/separation.ts";
 import { supersaturations, type Supersaturation } from "../methods/saturation.ts";
 import { countedIn, type Task } from "../methods/types.ts";
 import { stageBudget } from "../methods/uncertainty.ts";
@@ -48,6 +49,7 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
   const reagents = [...new Set(stages.flatMap((s) => reagentsOf(s.plan)))];
   const masking = stages.flatMap((s) => s.plan.masking);
   const titres = stages.map((s) => s.evaluation.endPointML);
+  const separations = stages.map((s) => separationOf(s.plan.removed, s.plan.determines, knowledge));
   return finite({
     mode: method.mode,
     titrant: stages[0]?.plan.titrant.id ?? "none",
@@ -87,6 +89,9 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
     heats: stages.some(heats),
     boils: stages.some((s) => has(s, "boil")),
     separates: stages.some((s) => s.plan.removed.length > 0),
+    separationStepCount: new Set(separations.flatMap((s) => s.steps.map((step) => step.record.id))).size,
+    separationUnknownCount: new Set(separations.flatMap((s) => s.unknown)).size,
+    separationUnknown: [...new Set(separations.flatMap((s) => s.unknown))],
     preparation: [...new Set(stages.flatMap((s) => s.plan.preparation))],
     maskedComponentCount: new Set(masking.flatMap((m) => m.masks)).size,
     empiricalMasking: masking.some((m) => m.basis === "empirical"),

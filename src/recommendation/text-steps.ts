@@ -77,9 +77,21 @@ function preparationStep(step: StageDocument["preparation"][number], stage: Stag
   const { removed } = stage.vessel;
   if (removed.length === 0 || (step !== "separate" && step !== "precipitate-and-filter"))
     return PREPARATION_WORDS[step];
-  return step === "separate"
-    ? `Separate ${listed(removed)} first (extraction, ion exchange or precipitation), and go on with the fraction that holds the analyte.`
-    : `Let ${listed(removed)} precipitate, and filter it off.`;
+  return step === "separate" ? separationWords(stage) : `Let ${listed(removed)} precipitate, and filter it off.`;
+}
+
+/** The steps of a separation, by name where one is on record. */
+function separationWords({ vessel, determines }: StageDocument): string {
+  const known = vessel.separation.map(({ takes, ions, kind, step }) =>
+    takes === "analyte"
+      ? `Take ${listed(determines)} out of the solution, away from ${listed(ions)} (${kind}): ${step}`
+      : `Take ${listed(ions)} out (${kind}): ${step}`,
+  );
+  const unknown =
+    vessel.separationUnknown.length > 0
+      ? [`Separate ${listed(vessel.separationUnknown)}: no step for it is on record here`]
+      : [];
+  return `${[...known, ...unknown].join(". ")}.`;
 }
 
 function addTitrant(stage: StageDocument): readonly string[] {

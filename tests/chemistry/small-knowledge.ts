@@ -130,6 +130,7 @@ export function smallKnowledge(
     standards: [],
     ionFacts: [],
     precedents: [],
+    separations: [],
     remarks: [],
     atomicWeights: new Map(),
   };

@@ -32,6 +32,8 @@ export const STAGE: StageDocument = {
   preparation: [],
   vessel: {
     removed: [],
+    separation: [],
+    separationUnknown: [],
     chelate: null,
     excessTitrantMolPerL: 0,
     carried: null,

@@ -135,10 +135,22 @@ describe("stepsOf", () => {
     }
   });
   it("says what a separation has to take away, under both its names", () => {
-    const vessel = { ...STAGE.vessel, removed: ["Fe3+", "Cu2+"] };
+    const separation = [
+      {
+        kind: "precipitation",
+        step: "precipitate it",
+        takes: "interferents",
+        ions: ["Fe3+"],
+        source: "s",
+        basis: "memory",
+      },
+    ] as const;
+    const vessel = { ...STAGE.vessel, removed: ["Fe3+", "Cu2+"], separation, separationUnknown: ["Cu2+"] };
     const list = (step: "separate" | "precipitate-and-filter") =>
       steps(withStages({ ...STAGE, vessel, preparation: [step] }));
-    expect(list("separate")[1]).toMatch(/^Separate Fe3\+ and Cu2\+ first/);
+    expect(list("separate")[1]).toBe(
+      "Take Fe3+ out (precipitation): precipitate it. Separate Cu2+: no step for it is on record here.",
+    );
     expect(list("precipitate-and-filter")[1]).toBe("Let Fe3+ and Cu2+ precipitate, and filter it off.");
   });
   it("reads an electrode instead of a colour where there is no indicator", () => {

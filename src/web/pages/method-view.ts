@@ -127,8 +127,17 @@ function benchRows(
     "Steps, in order",
     stage.preparation.map((p) => text(wordsOf(PREPARATION_WORDS, p))),
   );
-  const { removed, carried } = stage.vessel; // chelates and excess titrant stand among what is added
-  if (removed.length > 0) add("Removed before", [list(removed.map((c) => names.name(c)))]);
+  const { removed, separation, carried } = stage.vessel; // chelates and excess titrant stand among what is added
+  if (removed.length > 0)
+    add(
+      "Removed before",
+      [list(removed.map((c) => names.name(c)))],
+      separation.map((s) =>
+        names.set(
+          `${s.takes === "analyte" ? "the analyte is taken out" : `${s.ions.join(", ")} taken out`} by ${s.kind}: ${s.step} (${s.source}; ${s.basis})`,
+        ),
+      ),
+    );
   if (carried)
     add("Left from before", [
       joinMarkup([
