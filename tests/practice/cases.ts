@@ -62,8 +62,11 @@ export type AcceptedMethod = z.output<typeof acceptedMethodSchema>;
 export type AcceptedStage = z.output<typeof acceptedStageSchema>;
 export type WrongMethod = z.output<typeof wrongMethodSchema>;
 
-/** The acceptance cases: briefs, and every answer that published practice supports. Throws when the file does not keep its schema. */
-export function practiceCases(): readonly PracticeCase[] {
-  const file = new URL("cases.json", import.meta.url);
+/**
+ * Briefs, and every answer that published practice supports: the acceptance cases, or the project's own invented briefs of the trades.
+ * Throws when the file does not keep its schema.
+ */
+export function practiceCases(set: "cases" | "trade-briefs" = "cases"): readonly PracticeCase[] {
+  const file = new URL(`${set}.json`, import.meta.url);
   return z.array(caseSchema).parse(JSON.parse(readFileSync(file, "utf8")));
 }

@@ -1,5 +1,6 @@
 // Scores the engine against published practice, in process:
-//   npm run practice -- [--only ID,ID] [--verbose]
+//   npm run practice -- [--trades] [--only ID,ID] [--verbose]
+// --trades takes the invented briefs of the trades in place of the acceptance cases.
 // --verbose shows, for each case that missed, the first three methods and what counted for and against them.
 // The last line printed is the figures. Exit code 1 where a case had no answer.
 import { parseArgs } from "node:util";
@@ -11,10 +12,16 @@ import { lastLine, type Outcome, tallies, tallyLine } from "./tally.ts";
 import type { PracticeCase } from "./cases.ts";
 
 const { values } = parseArgs({
-  options: { only: { type: "string" }, verbose: { type: "boolean", default: false } },
+  options: {
+    only: { type: "string" },
+    verbose: { type: "boolean", default: false },
+    trades: { type: "boolean", default: false },
+  },
 });
 const only = values.only?.split(",");
-const cases = practiceCases().filter((testCase) => only?.includes(testCase.id) ?? true);
+const cases = practiceCases(values.trades ? "trade-briefs" : "cases").filter(
+  (testCase) => only?.includes(testCase.id) ?? true,
+);
 const print = (line: string): void => void process.stdout.write(`${line}\n`);
 
 if (cases.length === 0) {
