@@ -111,6 +111,7 @@ const STAGE_FACTS = facts("stage", "solutionStatus", [
     "published, analogous or none: record of this dye for this metal, mode and pH",
   ],
   ["indicatorUseBasis", "string", null, "always", "read, memory or none: what that record rests on"],
+  ["indicatorUseConfidence", "string", null, "always", "high, medium, low or none: how firmly that record is known"],
   ["contrast", "string", null, "always", "good, poor or none: contrast of the colours at this pH"],
   [
     "log10ConditionalK",
@@ -127,6 +128,7 @@ const STAGE_FACTS = facts("stage", "solutionStatus", [
     "the same minus that of the strongest unmasked interferent",
   ],
   ["sharpnessPercent", "number", "%", "may be absent", "half-width of the observer band in the titre"],
+  ["sharpnessToRequirementRatio", "number", null, "may be absent", "sharpnessPercent over what the brief requires"],
   ["endPointBiasPercent", "number", "%", "may be absent", "end point against equivalence point"],
   ["titreML", "number", "mL", "may be absent", "titre of the stage"],
   ["titreToBuretteRatio", "number", null, "may be absent", "titre over the volume of the burette"],
@@ -261,6 +263,7 @@ const VOCABULARY: Readonly<Record<string, readonly string[]>> = {
   endPointBasis: ["constants", "table", "empirical", "electrode"],
   indicatorUse: ["published", "analogous", "none"],
   indicatorUseBasis: ["read", "memory", "none"],
+  indicatorUseConfidence: ["high", "medium", "low", "none"],
   contrast: ["good", "poor", "none"],
   analyteKinetics: KINETIC_WORDS,
   kinetics: KINETIC_WORDS,

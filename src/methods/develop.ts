@@ -1,4 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
+import { declared, withoutFlocs } from "./alkali-masks.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { metalKinetics } from "./kinetics.ts";
 import { benchAmount, maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
@@ -84,7 +85,15 @@ function otherConditions(skeleton: Skeleton, knowledge: Knowledge): StagePlan[] 
 /** Works a titration out into the variants worth judging: masked in a few ways, or with the unmaskable separated. */
 export function develop(task: Task, start: BareStage, knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
   const { plan, threats } = start;
-  if (threats.length === 0) return [declared({ ...start, evaluation: start.bare, remaining: [] }, knowledge)];
+  const finished = (variants: readonly DevelopedStage[]): DevelopedStage[] =>
+    variants.flatMap((v) => {
+      const clear = v.remaining.length === 0 ? withoutFlocs(v, knowledge, shelf) : null;
+      if (clear === null) return [declared(v, knowledge)];
+      const evaluation = evaluate(task, clear, knowledge);
+      const remaining = threatsOf(task, evaluation, knowledge);
+      return [v, { ...v, plan: clear, evaluation, remaining }].map((each) => declared(each, knowledge));
+    });
+  if (threats.length === 0) return finished([{ ...start, evaluation: start.bare, remaining: [] }]);
   const out: DevelopedStage[] = [];
   const failed: Threat[] = [];
   const clean = (v: DevelopedStage): boolean =>
@@ -114,30 +123,7 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
   const bulk = threats.some((t) => t.molPerL > BULK_RATIO * present);
   if (!anyClean || bulk)
     out.push(...separations(task, plan, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
-  return out.map((v) => declared(v, knowledge));
-}
-
-/** Share of a metal that must lie as hydroxide for the alkali to count as its mask. */
-const PRECIPITATED_FRACTION = 0.5;
-
-/** Says by name what the alkali keeps out: metals of the matrix that lie as hydroxide while the analyte is titrated. */
-function declared(stage: DevelopedStage, knowledge: Knowledge): DevelopedStage {
-  const { model } = stage.evaluation;
-  const hydroxides = knowledge.solids.filter(
-    (s) => (s.components["H+"] ?? 0) < 0 && (model.solids.includes(s.id) || model.held.some((h) => h.by === s.id)),
-  );
-  const named = new Set(stage.plan.masking.flatMap((m) => m.masks));
-  const masks = [...model.solution.fromSample.keys()].filter(
-    (ion) =>
-      !named.has(ion) &&
-      !stage.plan.determines.includes(ion) &&
-      hydroxides.some((s) => (s.components[ion] ?? 0) > 0) &&
-      knowledge.masking.some((r) => r.agent === "hydroxide" && r.ion === ion && stage.plan.pH >= r.pH[0] - 0.3) &&
-      (stage.evaluation.titrated.get(ion) ?? 1) < 1 - PRECIPITATED_FRACTION,
-  );
-  if (masks.length === 0) return stage;
-  const step: MaskingStep = { agent: "hydroxide", masks, via: "precipitation", molPerL: 0, basis: "equilibrium" };
-  return { ...stage, plan: { ...stage.plan, masking: [...stage.plan.masking, step] } };
+  return finished(out);
 }
 
 /** How many working sets of masks of one titration go on to judgement. */

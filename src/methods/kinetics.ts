@@ -5,6 +5,8 @@ export interface MetalKinetics {
   readonly class: KineticClass;
   /** What brings the reaction to completion: nothing, standing, heat or boiling (with the titrant in excess). */
   readonly needs: "none" | "wait" | "heat" | "boil";
+  /** Whether its polymers have to be broken in strong acid before the titrant can reach it. */
+  readonly polymeric: boolean;
   readonly records: readonly KineticRecord[]; // those that decided
 }
 
@@ -34,19 +36,49 @@ function fromRecords(knowledge: Knowledge, ion: ComponentId, titrant: string): M
   const rate = all.find((k) => k.waterExchangePerS !== undefined);
   const polymer = all.filter((k) => k.consequences.includes("depolymerise"));
   const exchange = rate?.waterExchangePerS ?? Number.POSITIVE_INFINITY;
-  if (exchange >= SLOW_BELOW_PER_S && polymer.length === 0)
-    return { class: "fast", needs: "none", records: rate ? [rate] : [] };
+  const polymeric = polymer.some((k) => k.consequences.includes("boil"));
+  if (exchange >= SLOW_BELOW_PER_S && polymer.length === 0) return hydrolysed(knowledge, ion, own, rate, exchange);
   // A record of this very titrant that asks only for time (Al with CDTA) needs no heat.
   const time = own.filter((k) => k.consequences.includes("excess-and-wait"));
   const hot = own.filter((k) => k.consequences.includes("boil") || k.consequences.includes("heat"));
   if (time.length > 0 && hot.length === 0)
-    return { class: "slow", needs: "wait", records: [...time, ...(rate ? [rate] : [])] };
+    return { class: "slow", needs: "wait", polymeric, records: [...time, ...(rate ? [rate] : [])] };
   const kineticClass: KineticClass = exchange < INERT_BELOW_PER_S ? "inert" : "slow";
   const boils = [...own, ...polymer].some((k) => k.consequences.includes("boil"));
   return {
     class: kineticClass,
     needs: boils || kineticClass === "inert" ? "boil" : "heat",
+    polymeric,
     records: [...(rate ? [rate] : []), ...hot, ...polymer],
+  };
+}
+
+/** A metal that exchanges water faster than this meets the titrant at once, hydrolysed or not. */
+const AT_ONCE_ABOVE_PER_S = 1e3;
+
+/**
+ * Metals of which no slow exchange is on record. Some stand hydrolysed when the titrant comes, and practice puts it in excess and
+ * heats (Ga, Sn): a record says so by heat and back titration together. An ion of charge 4 is then called slow.
+ */
+function hydrolysed(
+  knowledge: Knowledge,
+  ion: ComponentId,
+  own: readonly KineticRecord[],
+  rate: KineticRecord | undefined,
+  exchange: number,
+): MetalKinetics {
+  const asked = own.filter(
+    (k) => k.consequences.includes("back-only") && k.consequences.some((c) => c === "boil" || c === "heat"),
+  );
+  const inTime = exchange > AT_ONCE_ABOVE_PER_S && Number.isFinite(exchange);
+  if (asked.length === 0 || inTime)
+    return { class: "fast", needs: "none", polymeric: false, records: rate ? [rate] : [] };
+  const highlyCharged = (knowledge.components.get(ion)?.charge ?? 0) >= 4;
+  return {
+    class: highlyCharged ? "slow" : "fast",
+    needs: asked.some((k) => k.consequences.includes("boil")) ? "boil" : "heat",
+    polymeric: false,
+    records: [...(rate ? [rate] : []), ...asked],
   };
 }
 

@@ -12,6 +12,8 @@ export interface Skeleton {
   readonly plan: StagePlan;
   readonly use: UseStanding;
   readonly useBasis: "read" | "memory" | "none";
+  /** How firmly the record of that use is known; absent where no record stands behind it. */
+  readonly useConfidence?: IndicatorUse["provenance"]["confidence"];
   /** pH window of that use. */
   readonly window: readonly [number, number];
 }
@@ -252,12 +254,19 @@ export function directSkeletons(make: Make): Skeleton[] {
             !plan.preparation.includes("heat")
           )
             continue;
+          if (kinetics.some((k) => k.polymeric)) plan = { ...plan, preparation: ["depolymerise", ...plan.preparation] };
           if (forbidden(task, plan.preparation)) continue;
           if (use.auxiliaryAnyOf) {
             const agent = use.auxiliaryAnyOf.find((a) => shelf(a) && knowledge.agents.has(a));
             if (agent) plan = withAuxiliary(plan, knowledge, agent, `asked for by the use of ${indicator.name}`);
           }
-          out.push({ plan, use: standingOf(use), useBasis: basis, window });
+          out.push({
+            plan,
+            use: standingOf(use),
+            useBasis: basis,
+            useConfidence: use.provenance.confidence,
+            window,
+          });
         }
       }
     }
@@ -311,7 +320,7 @@ export function backSkeletons(make: Make): Skeleton[] {
           const plan = backPlan(make, titrant, indicator, pH, buffer, backTitrant.ion, use);
           if (forbidden(task, plan.preparation)) continue;
           if (standing === "analogous") byAnalogy++;
-          out.push({ plan, use: standing, useBasis: basis, window });
+          out.push({ plan, use: standing, useBasis: basis, useConfidence: use.provenance.confidence, window });
         }
       }
     }
@@ -338,8 +347,9 @@ export function backPlan(
 ): StagePlan {
   const { task, knowledge, determines } = make;
   const direct = basePlan(make, titrant, indicator, pH, buffer, use);
-  const preparation = ["excess-titrant-first"];
-  const needs = determines.map((ion) => metalKinetics(knowledge, ion, titrant).needs);
+  const kinetics = determines.map((ion) => metalKinetics(knowledge, ion, titrant));
+  const preparation = [...(kinetics.some((k) => k.polymeric) ? ["depolymerise"] : []), "excess-titrant-first"];
+  const needs = kinetics.map((k) => k.needs);
   if (needs.includes("boil")) preparation.push("boil", "cool");
   else if (needs.includes("heat")) preparation.push("heat", "cool");
   else if (needs.includes("wait")) preparation.push("wait");
