@@ -1,7 +1,13 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import type { DevelopedStage } from "./develop.ts";
+import type { StageEvaluation } from "./evaluate-stage.ts";
 import type { Shelf } from "./shelf.ts";
 import type { MaskingStep, StagePlan } from "./types.ts";
+
+/** A titration that has been worked out. */
+interface Worked {
+  readonly plan: StagePlan;
+  readonly evaluation: StageEvaluation;
+}
 
 /** Share of a metal that must lie as hydroxide for the alkali to count as its mask. */
 const PRECIPITATED_FRACTION = 0.5;
@@ -12,7 +18,7 @@ const ALKALI_FROM_PH = 11.5;
 const QUIET = 0.5;
 
 /** Metals of the matrix that lie as hydroxide while the analyte is titrated, for which the alkali is on record as a mask. */
-function heldByAlkali(stage: DevelopedStage, knowledge: Knowledge): ComponentId[] {
+function heldByAlkali(stage: Worked, knowledge: Knowledge): ComponentId[] {
   const { model } = stage.evaluation;
   const hydroxides = knowledge.solids.filter(
     (s) => (s.components["H+"] ?? 0) < 0 && (model.solids.includes(s.id) || model.held.some((h) => h.by === s.id)),
@@ -32,7 +38,7 @@ function heldByAlkali(stage: DevelopedStage, knowledge: Knowledge): ComponentId[
  * Says by name what the alkali keeps out, and what an agent that is in the solution anyway holds before the alkali comes
  * (triethanolamine taken for iron holds aluminium too).
  */
-export function declared(stage: DevelopedStage, knowledge: Knowledge): DevelopedStage {
+export function declared<S extends Worked>(stage: S, knowledge: Knowledge): S {
   const held = heldByAlkali(stage, knowledge);
   const named = new Set(stage.plan.masking.flatMap((m) => m.masks));
   const quiet = [...stage.evaluation.model.solution.fromSample.keys()].filter(
@@ -68,7 +74,7 @@ const holds = (knowledge: Knowledge, agent: string, ion: ComponentId, pH: number
  * The same titration with an agent that keeps dissolved, as a complex, what would lie as hydroxide flocs and take dye and
  * analyte down (triethanolamine for iron); null where nothing but magnesium lies there or no such agent is at hand.
  */
-export function withoutFlocs(stage: DevelopedStage, knowledge: Knowledge, shelf: Shelf): StagePlan | null {
+export function withoutFlocs(stage: Worked, knowledge: Knowledge, shelf: Shelf): StagePlan | null {
   const flocs = heldByAlkali(stage, knowledge).filter((ion) => ion !== "Mg2+");
   if (flocs.length === 0) return null;
   const { plan } = stage;
