@@ -5,7 +5,8 @@ import { runCommandLine } from "./cli/run-command-line.ts";
 import type { Knowledge } from "./constants/knowledge.ts";
 import { AppError } from "./errors.ts";
 import type { RuleBase, RuleRunner } from "./inference/index.ts";
-import type { Recommendation } from "./recommendation/contract.ts";
+import type { IonMap, MethodMap, Recommendation } from "./recommendation/contract.ts";
+import type { WebServices } from "./web/index.ts";
 
 // Composition root: the only place that knows every layer. Modules are loaded when a command needs them, so that `recommend` starts without the web server.
 
@@ -60,6 +61,7 @@ function doors(io: CommandIO): Doors {
       const [{ answerCurve }, { loadKnowledge }] = await calculators();
       return answerCurve(question, loadKnowledge());
     },
+    methodMap: async (ion) => methodMap(ion, await openEngine()),
     knowledge: async () => summary(await openEngine()),
     checkRules: async (folder) => {
       const { checkRules } = await import("./inference/index.ts");
@@ -72,28 +74,67 @@ function doors(io: CommandIO): Doors {
 
 const calculators = () => Promise.all([import("./recommendation/calculate.ts"), import("./constants/index.ts")]);
 
-async function serve(host: string, port: number, io: CommandIO): Promise<string> {
-  const [engine, { startServer }, { FACT_CATALOGUE, OPERATORS }, { figureSeries }] = await Promise.all([
+/** The method map of one ion, or of all, worked out one after the other. */
+async function methodMap(ion: string | null, { knowledge, rules }: Engine): Promise<MethodMap> {
+  const { mapIon, mapIons, SEVERAL_ANALYTES } = await import("./recommendation/method-map.ts");
+  const wanted = ion === null ? mapIons(knowledge) : [ion];
+  const ions: IonMap[] = [];
+  for (const one of wanted) ions.push(await mapIon(one, knowledge, rules));
+  return {
+    contract: 1,
+    knowledge: { version: knowledge.version, hash: knowledge.hash },
+    total: wanted.length,
+    done: ions.length,
+    failed: [],
+    severalAnalytes: SEVERAL_ANALYTES,
+    ions,
+  };
+}
+
+/** What the pages need, over the real knowledge: briefs and the method map are worked out in threads of their own, so that the server goes on answering. */
+export async function openServices(
+  log: (line: string) => void,
+): Promise<{ readonly services: WebServices; readonly close: () => Promise<void> }> {
+  const [engine, { FACT_CATALOGUE, OPERATORS }, { figureSeries }, { readBrief }, pools, maps] = await Promise.all([
     openEngine(),
-    import("./web/index.ts"),
     import("./inference/index.ts"),
     import("./recommendation/calculate-series.ts"),
+    import("./recommendation/brief.ts"),
+    import("./engine/worker-pool.ts"),
+    import("./engine/method-map-service.ts"),
   ]);
-  const { knowledge, ruleBase, recommend } = engine;
+  const { knowledge, ruleBase } = engine;
+  const pool = pools.createWorkerPool({ data: { hash: knowledge.hash } });
+  return {
+    services: {
+      knowledge,
+      rules: ruleBase.rules,
+      facts: FACT_CATALOGUE,
+      operators: OPERATORS,
+      // A faulty brief is answered here; only a task that can be worked out goes to a thread.
+      recommend: async (brief) => pool.ask("recommend", readBrief(brief, knowledge)),
+      figureSeries: (document, methodId) => figureSeries(document, methodId, knowledge),
+      methodMap: maps.createMethodMap(knowledge, (ion) => pool.ask("mapIon", ion), log),
+      log,
+    },
+    close: pool.close,
+  };
+}
+
+async function serve(host: string, port: number, io: CommandIO): Promise<string> {
+  const [{ services, close }, { startServer }] = await Promise.all([
+    openServices((line) => {
+      io.err(`${line}\n`);
+    }),
+    import("./web/index.ts"),
+  ]);
   try {
-    const server = await startServer(
-      {
-        knowledge,
-        rules: ruleBase.rules,
-        facts: FACT_CATALOGUE,
-        operators: OPERATORS,
-        recommend,
-        figureSeries: (document, methodId) => figureSeries(document, methodId, knowledge),
-        log: (line) => io.err(`${line}\n`),
-      },
-      { host, port },
-    );
-    for (const signal of ["SIGINT", "SIGTERM"] as const) process.once(signal, () => void server.stop());
+    const server = await startServer(services, { host, port });
+    const stop = async (): Promise<void> => {
+      await server.stop();
+      await close();
+    };
+    for (const signal of ["SIGINT", "SIGTERM"] as const) process.once(signal, () => void stop());
     return server.url;
   } catch (cause) {
     const code = cause instanceof Error && "code" in cause ? String(cause.code) : null;

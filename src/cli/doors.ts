@@ -1,5 +1,5 @@
 import type { CurveAnswer, EquilibriumAnswer } from "../recommendation/calculate.ts";
-import type { Recommendation } from "../recommendation/contract.ts";
+import type { MethodMap, Recommendation } from "../recommendation/contract.ts";
 
 /** What the knowledge base holds, counted, and what it is known to lack. */
 export interface KnowledgeSummary {
@@ -20,6 +20,8 @@ export interface Doors {
   readonly recommend: (brief: unknown) => Promise<Recommendation>;
   readonly equilibrium: (question: unknown) => Promise<EquilibriumAnswer>;
   readonly curve: (question: unknown) => Promise<CurveAnswer>;
+  /** `ion` null means every metal ion of the knowledge base. */
+  readonly methodMap: (ion: string | null) => Promise<MethodMap>;
   readonly knowledge: () => Promise<KnowledgeSummary>;
   /** `folder` null means the project's own rules. */
   readonly checkRules: (folder: string | null) => Promise<RuleCheck>;

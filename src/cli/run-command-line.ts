@@ -1,5 +1,6 @@
 import { Command, CommanderError } from "commander";
 import { AppError, InputError } from "../errors.ts";
+import { methodMapText } from "../recommendation/method-map-text.ts";
 import { recommendationText } from "../recommendation/text.ts";
 import type { CommandIO, Doors, KnowledgeSummary } from "./doors.ts";
 import { readJsonFile } from "./read-input.ts";
@@ -47,6 +48,18 @@ function commands(io: CommandIO, doors: Doors, exit: (code: number) => void): Co
       const document = await doors.recommend(await read(file));
       if (options.json === true) json(document);
       else io.out(recommendationText(document));
+    });
+  program
+    .command("map")
+    .description(
+      "say which ways of titrating are open for one metal ion, or for all of them, and why the others are not",
+    )
+    .argument("[ion]", "ion, such as Zn2+ (default: every metal ion of the knowledge base)")
+    .option("--json", "print the map as JSON")
+    .action(async (ion: string | undefined, options: { readonly json?: boolean }) => {
+      const map = await doors.methodMap(ion ?? null);
+      if (options.json === true) json(map);
+      else io.out(methodMapText(map));
     });
   program
     .command("equilibrium")

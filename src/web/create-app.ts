@@ -10,6 +10,7 @@ import { calculatorsPage } from "./pages/calculators-page.ts";
 import { constantsPage } from "./pages/constants-page.ts";
 import { dataPages } from "./pages/data-pages.ts";
 import { knowledgePage } from "./pages/knowledge-page.ts";
+import { methodMapPage } from "./pages/method-map-page.ts";
 import { recommendationPage } from "./pages/recommendation-page.ts";
 import { rulesPage } from "./pages/rules-page.ts";
 import { STYLESHEET } from "./pages/shell.ts";
@@ -55,6 +56,7 @@ export function createApp(services: WebServices): Express {
   app.use(apiRoutes(services, answers));
   app.use(briefPage(services, names));
   app.use(recommendationPage(services, names, answers));
+  app.use(methodMapPage(services, names));
   app.use(constantsPage(services, names));
   app.use(dataPages(services, names));
   app.use(rulesPage(services, names));

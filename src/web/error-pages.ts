@@ -51,6 +51,13 @@ export function failures({ knowledge, log }: WebServices): ErrorRequestHandler {
       else response.status(status).send(errorPage(knowledge, "The request could not be read", [message], ""));
       return;
     }
+    if (status === 503) {
+      const message = "The server has too much to do, or this question takes longer than it allows. Try again later.";
+      response.set("Retry-After", "60");
+      if (wantsJson(request)) response.status(503).json({ error: message });
+      else response.status(503).send(errorPage(knowledge, "Not now", [message], ""));
+      return;
+    }
     const id = randomUUID();
     log(
       `${id} ${request.method} ${request.path} ${error instanceof Error ? (error.stack ?? error.message) : String(error)}`,

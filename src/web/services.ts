@@ -1,6 +1,6 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { StageSeries } from "../recommendation/calculate-series.ts";
-import type { Recommendation } from "../recommendation/contract.ts";
+import type { MethodMap, Recommendation } from "../recommendation/contract.ts";
 
 /** A condition of a rule, as the rule layer hands it over after its checks. */
 export type RuleCondition =
@@ -49,6 +49,8 @@ export interface WebServices {
   readonly recommend: (brief: unknown) => Promise<Recommendation>;
   /** The figures of one method of an answer; null where they cannot be computed. */
   readonly figureSeries: (recommendation: Recommendation, methodId: string) => FigureSeries | null;
+  /** The method map as far as it is worked out; the first call sets the work going. */
+  readonly methodMap: () => MethodMap;
   /** Where one line about an unexpected failure goes; the page shows only its id. */
   readonly log: (line: string) => void;
 }

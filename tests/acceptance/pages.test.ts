@@ -11,11 +11,18 @@ let site: Awaited<ReturnType<typeof startRealSite>>;
 let browser: Browser;
 beforeAll(async () => {
   [site, browser] = await Promise.all([startRealSite(), launchBrowser()]);
+  await mapReady();
 });
 afterAll(async () => {
   await browser.close();
   await site.stop();
 });
+
+/** Waits until the whole method map is worked out, so that its pages are looked at as they stay. */
+async function mapReady(): Promise<void> {
+  while ((await fetch(`${site.url}/api/method-map`)).status === 202)
+    await new Promise((resolve) => setTimeout(resolve, 500));
+}
 
 /** What the browser reports of a form that is answered with 400: it counts the page as a resource that failed. */
 const MEANT = "the server responded with a status of 400";
@@ -49,6 +56,8 @@ const PAGES: readonly (readonly [name: string, path: (services: WebServices) => 
   ["filled brief", () => "/?scenario=feed-water"],
   ["answer that fits", () => answerTo(0)],
   ["answer that does not fit", () => answerTo(3)],
+  ["method map", () => "/method-map"],
+  ["ion on the method map", () => "/method-map/Mg2%2B"],
   ["constants", () => "/constants"],
   ["metal", () => "/constants/Sr2%2B"],
   ["ligand", () => "/constants/piperidine"],

@@ -1,21 +1,18 @@
-import { openEngine } from "../../src/main.ts";
-import { FACT_CATALOGUE, OPERATORS } from "../../src/inference/index.ts";
-import { figureSeries } from "../../src/recommendation/calculate-series.ts";
+import { openServices } from "../../src/main.ts";
 import { startServer, type RunningServer, type WebServices } from "../../src/web/index.ts";
 
-/** The whole program on a free port: real constants, real rules, real answers. */
+/** The whole program on a free port: real constants, real rules, real answers, worked out in threads as the command does. */
 export async function startRealSite(): Promise<RunningServer & { readonly services: WebServices }> {
-  const { knowledge, ruleBase, recommend } = await openEngine();
-  const services: WebServices = {
-    knowledge,
-    rules: ruleBase.rules,
-    facts: FACT_CATALOGUE,
-    operators: OPERATORS,
-    recommend,
-    figureSeries: (document, methodId) => figureSeries(document, methodId, knowledge),
-    log: (line) => {
-      throw new Error(line);
+  const { services, close } = await openServices((line) => {
+    throw new Error(line);
+  });
+  const server = await startServer(services, { port: 0 });
+  return {
+    ...server,
+    services,
+    stop: async () => {
+      await server.stop();
+      await close();
     },
   };
-  return { ...(await startServer(services, { port: 0 })), services };
 }

@@ -12,6 +12,7 @@ const NO_DOORS: Doors = {
   recommend: unused,
   equilibrium: unused,
   curve: unused,
+  methodMap: unused,
   knowledge: unused,
   checkRules: unused,
   serve: unused,
@@ -19,7 +20,7 @@ const NO_DOORS: Doors = {
 
 describe("chelwright", () => {
   it.each([
-    [["--help"], /recommend .*\n.*equilibrium/],
+    [["--help"], /recommend .*\n.*map .*\n(.*\n)*.*equilibrium/],
     [["recommend", "--help"], /--json/],
   ])("explains itself on %j", async (argv, help) => {
     const { code, out } = await run(argv);

@@ -11,6 +11,7 @@ const MAY_IMPORT = {
   report: ["constants", "recommendation"],
   register: ["constants", "recommendation"],
   web: ["constants", "recommendation", "report", "register"],
+  engine: ["constants", "methods", "recommendation"],
   cli: ["constants", "inference", "recommendation", "report", "register", "web"],
 };
 const PACKAGES = {

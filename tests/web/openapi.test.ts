@@ -23,9 +23,10 @@ test("the description is OpenAPI 3.1 and each reference in it leads to a schema"
 });
 
 test("each door says what it answers when the question is faulty", () => {
-  expect(Object.keys(document.paths)).toEqual(["/api/recommendations", "/api/equilibrium", "/api/curve"]);
-  for (const path of Object.values(document.paths))
-    expect(Object.keys(path.post.responses)).toEqual(["200", "400", "413", "422", "500"]);
+  const questions = ["/api/recommendations", "/api/equilibrium", "/api/curve"];
+  expect(Object.keys(document.paths).sort()).toEqual([...questions, "/api/method-map"].sort());
+  for (const path of questions)
+    expect(Object.keys(document.paths[path]?.post.responses ?? {})).toEqual(["200", "400", "413", "422", "500", "503"]);
 });
 
 test("the schemas are those that check the data", () => {

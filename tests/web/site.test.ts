@@ -1,6 +1,8 @@
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import { encodeBrief } from "../../src/web/form/brief-link.ts";
 import { SCENARIOS } from "../../src/web/form/scenarios.ts";
+import { methodMapSchema } from "../../src/recommendation/contract.ts";
+import { inventedMap } from "./fixture/method-map.ts";
 import { NOTHING_FITS } from "./fixture/recommendation.ts";
 import { startSite, type Site } from "./fixture/site.ts";
 
@@ -53,6 +55,9 @@ const pages = (): readonly string[] => [
   `/?brief=${encodeBrief(BRIEF)}`,
   `/recommendation?brief=${encodeBrief(BRIEF)}`,
   `/recommendation?brief=${encodeBrief(BRIEF)}&method=back-two`,
+  "/method-map",
+  "/method-map/Zn2%2B",
+  "/method-map/Sn4%2B",
   "/constants",
   "/constants?q=zinc",
   "/constants?q=nothing-of-the-kind",
@@ -321,6 +326,51 @@ describe("failures", () => {
       expect(await response.text(), path).toContain('role="alert"');
     }
     expect((await get("/calculators/curve.csv?pH=x")).status).toBe(422);
+  });
+});
+
+describe("the method map", () => {
+  test("names each standing in signs and words, and leads to the ions", async () => {
+    const body = await (await get("/method-map")).text();
+    expect(body).toMatch(/●<\/span> <span class="word">open</);
+    expect(body).toMatch(/\?<\/span> <span class="word">not known</);
+    expect(body).toContain('href="/method-map/Zn2%2B"');
+    expect(body).not.toContain("Being calculated");
+  });
+  test("asks again by itself, without script, only while ions are missing", async () => {
+    expect((await get("/method-map")).headers.get("refresh")).toBeNull();
+    const unready = await startSite({ methodMap: () => inventedMap(site.knowledge, 65) });
+    try {
+      const page = await fetch(`${unready.url}/method-map`);
+      expect(page.headers.get("refresh")).toBe("5; url=/method-map");
+      expect(await page.text()).toContain("Being calculated: 2 of 65");
+      const ion = await fetch(`${unready.url}/method-map/Cd2%2B`);
+      expect(ion.status).toBe(200);
+      expect(ion.headers.get("refresh")).toBe("5; url=/method-map/Cd2%2B");
+      expect((await fetch(`${unready.url}/method-map/Zn2%2B`)).headers.get("refresh")).toBeNull();
+      expect((await fetch(`${unready.url}/api/method-map`)).status).toBe(202);
+    } finally {
+      await unready.stop();
+    }
+  });
+  test("shows values, reasons and cautions of an ion, and leads to the answer and the brief", async () => {
+    const body = await (await get("/method-map/Zn2%2B")).text();
+    expect(body).toContain("0.33 %");
+    expect(body).toContain("Invented caution: &lt;gloves&gt;.");
+    expect(body).toContain('href="/rules/kinetics/back-titrant-steals-much"');
+    const answer = /href="(\/recommendation\?brief=[\w-]+&amp;method=[^"]+)"/.exec(body)?.[1] ?? "";
+    expect((await get(answer.replaceAll("&amp;", "&"))).status).toBe(200);
+    const brief = /href="(\/\?brief=[\w-]+)"/.exec(body)?.[1] ?? "";
+    expect((await get(brief)).status).toBe(200);
+  });
+  test("is not there for what is no metal ion", async () => {
+    expect((await get("/method-map/sulfate")).status).toBe(404);
+    expect((await get("/method-map/nothing")).status).toBe(404);
+  });
+  test("is JSON for programs", async () => {
+    const response = await get("/api/method-map");
+    expect(response.status).toBe(200);
+    expect(methodMapSchema.safeParse(await response.json()).error).toBeUndefined();
   });
 });
 

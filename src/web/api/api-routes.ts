@@ -8,7 +8,7 @@ import type { WebServices } from "../services.ts";
 import { openApiDocument } from "./openapi.ts";
 
 /** The JSON doors: the recommendation, the two calculators, and their description. */
-export function apiRoutes({ knowledge }: WebServices, answers: Answers): Router {
+export function apiRoutes({ knowledge, methodMap }: WebServices, answers: Answers): Router {
   const router = Router();
   const description = openApiDocument(knowledge.version);
 
@@ -18,6 +18,10 @@ export function apiRoutes({ knowledge }: WebServices, answers: Answers): Router 
   router.get("/api/recommendations", async (request, response) => {
     const { brief } = request.query;
     response.json(await answers.answer(decodeBrief(typeof brief === "string" ? brief : "")));
+  });
+  router.get("/api/method-map", (_request, response) => {
+    const map = methodMap();
+    response.status(map.done < map.total ? 202 : 200).json(map);
   });
   router.post("/api/equilibrium", (request, response) => {
     response.json(answerEquilibrium(request.body as unknown, knowledge));

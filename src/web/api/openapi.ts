@@ -1,5 +1,5 @@
 import { z } from "zod";
-import { briefSchema, recommendationSchema } from "../../recommendation/contract.ts";
+import { briefSchema, methodMapSchema, recommendationSchema } from "../../recommendation/contract.ts";
 import { curveRequestSchema, equilibriumRequestSchema } from "../../recommendation/calculate.ts";
 
 const faultsSchema = z.object({
@@ -18,6 +18,7 @@ const failures = {
     content: json(ref("Faults")),
   },
   "500": { description: "Something failed on our side; the id stands in the log.", content: json(ref("Error")) },
+  "503": { description: "Too much to do at present, or a question that takes too long.", content: json(ref("Error")) },
 };
 
 const operation = (id: string, summary: string, body: string, answer: object): object => ({
@@ -49,6 +50,17 @@ export function openApiDocument(version: string): object {
         "Brief",
         ref("Recommendation"),
       ),
+      "/api/method-map": {
+        get: {
+          operationId: "methodMap",
+          summary:
+            "For each metal ion, which ways of titrating are open, by the same search and rules, and why the others are not.",
+          responses: {
+            "200": { description: "The whole map.", content: json(ref("MethodMap")) },
+            "202": { description: "The map as far as it is worked out; ask again.", content: json(ref("MethodMap")) },
+          },
+        },
+      },
       "/api/equilibrium": operation(
         "equilibrium",
         "Solves a solution at a fixed acidity: species, side-reaction coefficients, conditional constants, solids.",
@@ -63,6 +75,7 @@ export function openApiDocument(version: string): object {
       schemas: {
         Brief: input(briefSchema),
         Recommendation: output(recommendationSchema),
+        MethodMap: output(methodMapSchema),
         EquilibriumQuestion: input(equilibriumRequestSchema),
         CurveQuestion: input(curveRequestSchema),
         Faults: output(faultsSchema),

@@ -4,6 +4,7 @@ import type { Knowledge } from "../../constants/knowledge.ts";
 
 const NAVIGATION = [
   ["brief", "/", "Brief"],
+  ["method-map", "/method-map", "Method map"],
   ["constants", "/constants", "Constants"],
   ["indicators", "/indicators", "Indicators"],
   ["masking", "/masking", "Masking"],

@@ -1,0 +1,20 @@
+import type { Recommendation, IonMap } from "../recommendation/contract.ts";
+import type { Task } from "../methods/types.ts";
+
+/** What a worker can be asked, and what it answers. Everything in it can be copied between threads. */
+export interface Jobs {
+  readonly recommend: { readonly asks: Task; readonly answers: Recommendation };
+  readonly mapIon: { readonly asks: string; readonly answers: IonMap };
+}
+
+export type JobKind = keyof Jobs;
+
+export interface Question {
+  readonly id: number;
+  readonly kind: JobKind;
+  readonly asks: Jobs[JobKind]["asks"];
+}
+
+export type Reply =
+  | { readonly id: number; readonly ok: true; readonly answers: Jobs[JobKind]["answers"] }
+  | { readonly id: number; readonly ok: false; readonly message: string; readonly stack: string };
