@@ -1,7 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { RuleRunner } from "../inference/index.ts";
 import { everyWay } from "../methods/every-way.ts";
-import { roughCost, type EvaluatedMethod } from "../methods/methods.ts";
+import { roughCost, seenWith, type EvaluatedMethod } from "../methods/methods.ts";
 import type { Task } from "../methods/types.ts";
 import { readBrief } from "./brief.ts";
 import {
@@ -27,6 +27,8 @@ export const MAP_REQUIREMENT_PERCENT = 1;
 /** How many titrations of one mode with one titrant go before the rules: as many with EDTA as an answer shows. */
 const JUDGED_USUAL = 8;
 const JUDGED_OTHER = 3;
+/** … and how many of these that are seen alike. */
+const JUDGED_ALIKE = 2;
 
 /** Modes of the contract that combine titrations of several analytes: why the map of single ions has no column for them. */
 export const SEVERAL_ANALYTES: Readonly<Record<string, string>> = {
@@ -88,13 +90,16 @@ function worthJudging(task: Task, methods: readonly EvaluatedMethod[], knowledge
     methods.map((m) => [m, m.stages.reduce((s, stage) => s + roughCost(task, stage, knowledge), 0)]),
   );
   const taken = new Map<string, number>();
+  const count = (key: string): number => {
+    taken.set(key, (taken.get(key) ?? 0) + 1);
+    return taken.get(key)!;
+  };
   return [...methods]
     .sort((a, b) => cost.get(a)! - cost.get(b)! || a.id.localeCompare(b.id))
     .filter((m) => {
-      const { titrant } = m.stages[0]!.plan;
-      const n = taken.get(titrant.id) ?? 0;
-      taken.set(titrant.id, n + 1);
-      return n < (titrant.id === "EDTA" ? JUDGED_USUAL : JUDGED_OTHER);
+      const { plan } = m.stages[0]!;
+      if (count(`${plan.titrant.id} ${seenWith(plan)}`) > JUDGED_ALIKE) return false;
+      return count(plan.titrant.id) <= (plan.titrant.id === "EDTA" ? JUDGED_USUAL : JUDGED_OTHER);
     });
 }
 
