@@ -8,6 +8,7 @@ const NEUTRAL: Readonly<Record<string, FactValue>> = {
   titrant: "EDTA",
   analytes: ["Zn2+"],
   determines: ["Zn2+"],
+  counted: ["Zn2+"],
   component: "Zn2+",
   role: "matrix",
   kind: "metal",

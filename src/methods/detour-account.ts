@@ -3,10 +3,12 @@ import type { ComponentId } from "../constants/knowledge.ts";
 import { vesselSample } from "./solution.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
 import type { Task } from "./types.ts";
-import type { WayRound } from "./way-round.ts";
+import { companyOf, partnerOf, type WayRound } from "./way-round.ts";
 
 /** Name of the ledger line for analyte that the way round leaves behind. */
 export const LEFT_BEHIND = "analyte not taken up";
+/** How the ledger line of a deposit begins that counts as analyte and is none. */
+export const ALSO_PRECIPITATED = "also precipitated";
 
 /**
  * What the titre of a way round comes to, in analyte: (metal put in − metal found) × ratio for a surplus, metal found × ratio
@@ -47,8 +49,12 @@ export function detourAccount(
     biasOf.set(component, sign * part(counted));
     ledger.push({ source: component, fraction: sign * part(counted) });
   }
-  for (const line of deposits(model, way, presentMol)) ledger.push(line);
-  ledger.push({ source: LEFT_BEHIND, fraction: part(takenUp(model, way, end, vessel)) - 1 });
+  const company = deposits(model, way, presentMol);
+  ledger.push(...company);
+  // What an exchange or a conversion gives counts the company too; what a deposit holds of the metal does not.
+  const included = way.record.kind === "exchange" || way.record.kind === "conversion";
+  const withTaken = included ? company.reduce((sum, line) => sum + line.fraction, 0) : 0;
+  ledger.push({ source: LEFT_BEHIND, fraction: part(takenUp(model, way, end, vessel)) - 1 - withTaken });
   const bias = (foundMol - presentMol) / presentMol;
   const endPoint = bias - ledger.reduce((sum, line) => sum + line.fraction, 0);
   ledger.unshift({ source: "end-point", fraction: endPoint });
@@ -88,8 +94,8 @@ function takenUp(model: StageModel, way: WayRound, end: VesselState, vesselL: nu
   if (kind === "surplus") return inDeposits(way.left) + inSpecies(analyte) + inLateSolids(model, way, end, vesselL);
   if (kind === "precipitate") return inDeposits(way.collected) - undissolved(model, end, vesselL, metal);
   if (kind === "conversion") return way.titrantMolPerL * model.volumeL;
-  const partner = Object.keys(way.record.reagent.components).find((c) => c !== metal)!;
-  return end.total(metal) * vesselL - inSpecies(partner);
+  const partner = partnerOf(way.record);
+  return end.total(metal) * vesselL - (partner ? inSpecies(partner) : 0);
 }
 
 /** Counted metal in deposits with the analyte that formed or dissolve only in the titration vessel, mol. */
@@ -129,25 +135,21 @@ function undissolved(model: StageModel, end: VesselState, vesselL: number, metal
   );
 }
 
-/** Deposits of the counted metal without the analyte: carbonate or phosphate that fell with it. */
+/** Deposits without the analyte that count as analyte: carbonate or phosphate that fell with the reagent, another halide. */
 function deposits(model: StageModel, way: WayRound, presentMol: number): LedgerLine[] {
   const { metal, analytePerMetal } = model.plan.detour!;
   const { analyte, kind } = way.record;
   const lines = new Map<string, number>();
-  const put = (solid: string, molPerL: number): void => {
-    if (molPerL > 0) lines.set(solid, (lines.get(solid) ?? 0) + molPerL);
-  };
-  const list = kind === "surplus" ? way.left : kind === "precipitate" ? way.collected : [];
-  for (const d of list) if (!((d.components[analyte] ?? 0) > 0)) put(d.solid, (d.components[metal] ?? 0) * d.molPerL);
+  for (const { deposit, asAnalyteMolPerL } of companyOf(way))
+    if (asAnalyteMolPerL > 0) lines.set(deposit.solid, asAnalyteMolPerL);
   if (kind === "surplus")
-    for (const h of model.held)
-      if (h.why === "precipitated" && h.component === metal && !solidHolds(h.by, way, analyte) && !lines.has(h.by))
-        put(
-          h.by,
-          lateHeld(model, way, (solid) => solid === h.by),
-        );
+    for (const h of model.held) {
+      if (h.why !== "precipitated" || h.component !== metal || solidHolds(h.by, way, analyte) || lines.has(h.by))
+        continue;
+      lines.set(h.by, analytePerMetal * lateHeld(model, way, (solid) => solid === h.by));
+    }
   return [...lines].map(([solid, molPerL]) => ({
-    source: `also precipitated: ${solid}`,
-    fraction: (analytePerMetal * molPerL * model.volumeL) / presentMol,
+    source: `${ALSO_PRECIPITATED}: ${solid}`,
+    fraction: (molPerL * model.volumeL) / presentMol,
   }));
 }

@@ -194,7 +194,7 @@ function aroundPlan(way: Way, made: StagePlan): StagePlan | null {
     let plan: StagePlan = {
       ...made,
       determines: [record.analyte],
-      mode: record.kind === "exchange" ? "displacement" : made.mode,
+      mode: record.kind === "exchange" || record.kind === "conversion" ? "displacement" : made.mode,
       excessTitrantMolPerL: 0,
       added: addedOf(record, detour),
       preparation,

@@ -14,7 +14,7 @@ import { protonFixed, vesselSolver, type VesselSolution } from "./vessel-solver.
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
 import { inertIonsOf } from "./inert-ions.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
-import { solidsOfDetour } from "./way-round.ts";
+import { heldByWay, solidsOfDetour } from "./way-round.ts";
 import { countedIn, type StagePlan, type Task } from "./types.ts";
 
 /** What the burette delivers, and everything else that stays the same while it runs. */
@@ -74,6 +74,7 @@ function classifyRows(
   titrant: string,
   dye: ComponentId | null,
   metals: ReadonlySet<ComponentId>,
+  heldByWay: (species: Readonly<Record<ComponentId, number>>) => boolean,
 ): Rows {
   const titrantByMetal = new Map<ComponentId, [number, number][]>();
   const dyeByMetal = new Map<ComponentId, [number, number][]>();
@@ -92,7 +93,8 @@ function classifyRows(
     if (titrants > 0) {
       if (inIt.length === 0) titrantFree.push([row, titrants]);
       for (const metal of inIt) push(titrantByMetal, metal, [row, titrants]);
-    } else for (const metal of inIt) push(unboundByMetal, metal, [row, species.components[metal]!]);
+    } else if (!heldByWay(species.components))
+      for (const metal of inIt) push(unboundByMetal, metal, [row, species.components[metal]!]);
     const dyes = dye === null ? 0 : (species.components[dye] ?? 0);
     if (dyes > 0) {
       if (inIt.length === 0) dyeFree.push([row, dyes]);
@@ -230,7 +232,7 @@ export function stageModel(
   });
   system = prepare(ionicStrengthMolPerL, (s) => stays.has(s.id));
   const base = columns(system);
-  const rows = classifyRows(system, titrant, dye, metals);
+  const rows = classifyRows(system, titrant, dye, metals, heldByWay(plan, knowledge));
 
   const solve = vesselSolver(system, plan.pH, metals);
   const buretteColumn = system.index.get(burette.component)!;

@@ -58,6 +58,42 @@ export function solidsOfDetour(
     : { dissolving: solids, dissolved: NO_SOLIDS };
 }
 
+/** What holds the counted metal as long as the way round keeps it from the titrant: the analyte, or the ligand it is exchanged from. */
+export function partnerOf(record: DetourRecord): ComponentId | null {
+  if (record.kind === "surplus") return record.analyte;
+  if (record.kind !== "exchange") return null;
+  return Object.keys(record.reagent.components).find((c) => c !== record.metal) ?? null;
+}
+
+/** Whether a species is the counted metal as the way round holds it: that is not the titrant's to take. */
+export function heldByWay(
+  plan: Pick<StagePlan, "detour">,
+  knowledge: Knowledge,
+): (components: Readonly<Record<ComponentId, number>>) => boolean {
+  const { detour } = plan;
+  const partner = detour && partnerOf(detourRecord(detour, knowledge));
+  if (!detour || !partner) return () => false;
+  return (components) => (components[detour.metal] ?? 0) > 0 && (components[partner] ?? 0) > 0;
+}
+
+/** Deposits without the analyte that count as analyte all the same, in mol of analyte per litre of the vessel. */
+export function companyOf(way: WayRound): { readonly deposit: Deposit; readonly asAnalyteMolPerL: number }[] {
+  const { record } = way;
+  // An exchange counts the silver of the deposit, a conversion the reagent in it; else it is the counted metal itself.
+  const [id, analytePerIt] =
+    record.kind === "exchange"
+      ? [Object.keys(record.precipitant?.components ?? {})[0], record.precipitant?.analytePerMetal ?? 0]
+      : record.kind === "conversion"
+        ? [Object.keys(record.reagent.components)[0], 1]
+        : [record.metal, record.analytePerMetal];
+  return [...way.left, ...way.collected]
+    .filter((deposit) => !((deposit.components[record.analyte] ?? 0) > 0))
+    .map((deposit) => ({
+      deposit,
+      asAnalyteMolPerL: analytePerIt * (deposit.components[id ?? ""] ?? 0) * deposit.molPerL,
+    }));
+}
+
 type Amounts = Map<ComponentId, number>;
 const add = (map: Amounts, id: ComponentId, molPerL: number): void => {
   if (molPerL !== 0) map.set(id, (map.get(id) ?? 0) + molPerL);

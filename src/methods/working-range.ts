@@ -4,6 +4,7 @@ import { benchPH } from "./skeletons.ts";
 import { threatsOf } from "./threats.ts";
 import type { Task } from "./types.ts";
 import { stageBudget } from "./uncertainty.ts";
+import { detourRecord } from "./way-round.ts";
 
 /** pH range in which a titration still meets the requirement, all else kept. */
 export interface WorkingRange {
@@ -20,6 +21,10 @@ const round = (pH: number): number => Math.round(pH * 100) / 100;
 function holdsAt(task: Task, stage: DevelopedStage, pH: number, knowledge: Knowledge): boolean {
   const { window } = stage.skeleton;
   if (pH < window[0] - BEYOND_WINDOW || pH > window[1] + BEYOND_WINDOW) return false;
+  // A way round keeps to the pH of its record: cyanide is not brought below what is safe because the sums would allow it.
+  const { detour } = stage.plan;
+  const finish = detour ? detourRecord(detour, knowledge).finish.pH : null;
+  if (finish && (pH < finish[0] || pH > finish[1])) return false;
   const agents = [...stage.plan.masking.map((m) => m.agent), ...stage.plan.auxiliary.map((a) => a.id)];
   if (agents.some((id) => outsideAgent(knowledge, id, pH))) return false;
   const evaluation = evaluate(task, { ...stage.plan, pH }, knowledge);

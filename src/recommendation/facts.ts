@@ -10,6 +10,7 @@ import { supersaturations, type Supersaturation } from "../methods/saturation.ts
 import { countedIn, type Task } from "../methods/types.ts";
 import { stageBudget } from "../methods/uncertainty.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
+import { detourFacts } from "./detour-facts.ts";
 import { hazardTagsOf, reagentsOf } from "./reagents.ts";
 
 /** A method on its way to judgement, with what the facts need besides its evaluation. */
@@ -167,6 +168,8 @@ export function stageFacts(
   return finite({
     stageMode: plan.mode,
     determines: plan.determines,
+    counted: countedIn(plan),
+    ...detourFacts(task, stage),
     titrant: plan.titrant.id,
     backTitrant: plan.backTitrant?.id ?? "none",
     pH: plan.pH,

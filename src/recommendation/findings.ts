@@ -6,7 +6,8 @@ import { metalKinetics } from "../methods/kinetics.ts";
 import { supersaturations } from "../methods/saturation.ts";
 import { vesselSample } from "../methods/solution.ts";
 import { atCommonEquivalence } from "../methods/threats.ts";
-import type { Task } from "../methods/types.ts";
+import { companyOf } from "../methods/way-round.ts";
+import { countedIn, type Task } from "../methods/types.ts";
 import type { Finding } from "./contract.ts";
 import { OXIDANTS } from "./facts.ts";
 import { shownIon } from "./spelling.ts";
@@ -42,6 +43,7 @@ export function findingsOf(
   for (const stage of stages) {
     titration(task, stage, put, knowledge);
     deposits(task, stage, put, knowledge);
+    company(task, stage, put);
   }
   for (const analyte of task.analytes) slowness(analyte.component, first, put, knowledge);
   for (const row of task.matrix)
@@ -73,7 +75,12 @@ function titration(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowl
             : (bare.titrated.get(component) ?? 0),
         ),
       );
-      const bias = (share * inVesselMolPerL) / present;
+      // What is counted with the surplus of a way round takes from the result.
+      const { detour } = plan;
+      const weight = detour
+        ? detour.analytePerMetal * (bare.model.solution.way?.record.kind === "surplus" ? -1 : 1)
+        : 1;
+      const bias = (weight * share * inVesselMolPerL) / present;
       if (Math.abs(bias) > allowed)
         put(
           component,
@@ -109,7 +116,7 @@ function titration(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowl
 /** Ligands of the sample that hold the analyte before the titrant comes. */
 function bindings(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowledge): void {
   const { model } = stage.bare;
-  const metal = model.plan.determines[0];
+  const metal = countedIn(model.plan)[0];
   if (metal === undefined) return;
   const start = model.at(0);
   if (!start.ok) return;
@@ -140,7 +147,9 @@ function deposits(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowle
     if (solid.pace === "no") continue;
     const fromSample = vesselSample(task, plan)
       .map((c) => c.component)
-      .filter((c) => solid.components.includes(c));
+      .filter((c) => solid.components.includes(c))
+      // That the analyte of a way round precipitates is the way itself.
+      .filter((c) => plan.detour === null || !plan.determines.includes(c));
     // Solids of reagents with each other are the plan's business, not the sample's.
     if (fromSample.length === 0) continue;
     const partners = fromSample.filter((c) => !plan.determines.includes(c));
@@ -151,6 +160,24 @@ function deposits(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowle
         `can deposit ${solid.solid} at pH ${plan.pH}: supersaturated by ${solid.saturationIndex.toFixed(1)} in log10 (${PACE_WORDS[solid.pace]})`,
         { saturationIndex: solid.saturationIndex, pH: plan.pH, solid: solid.solid },
       );
+  }
+}
+
+/** Components of the matrix that fall with the reagent of a way round and count as analyte. */
+function company(task: Task, stage: DevelopedStage, put: Put): void {
+  const { bare } = stage;
+  const { way } = bare.model.solution;
+  if (!way) return;
+  for (const { deposit, asAnalyteMolPerL } of companyOf(way)) {
+    const { solid, components } = deposit;
+    const share = (asAnalyteMolPerL * bare.model.volumeL) / bare.presentMol;
+    for (const { component } of task.matrix)
+      if ((components[component] ?? 0) > 0)
+        put(component, "precipitates", `falls as ${solid} with the reagent: ${percentText(share)} of the result`, {
+          biasPercent: 100 * share,
+          pH: way.record.precipitation?.pH ?? bare.model.plan.pH,
+          solid,
+        });
   }
 }
 

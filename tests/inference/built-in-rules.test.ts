@@ -13,11 +13,12 @@ describe("the built-in rules", () => {
     expect(rules.length).toBeGreaterThanOrEqual(60);
   });
 
-  it("cover the nine topics, one file each", () => {
+  it("cover the ten topics, one file each", () => {
     expect([...base.topics.keys()].sort()).toEqual(
       [
         "detection",
         "indicator",
+        "indirect",
         "kinetics",
         "masking",
         "mode",
