@@ -71,7 +71,7 @@ export function readWithElectrode(
     steepestMVPerML: steepest.atEdge ? 0 : Math.abs(steepest.slopePerL) / ML,
     detectionLimitRatio: limitRatio(electrode, withMetal),
     limitMolPerL: record.detectionLimitMolPerL,
-    ...disturbance(electrode, withMetal),
+    ...disturbance(electrode, withMetal, model.plan.determines),
     poisonedBy: poisonsIn(electrode, model, model.at(0), "absent").filter((c) => !record.shows.includes(c)),
     disturbedBy: poisonsIn(electrode, model, model.at(0), "disturbs"),
     chlorideRatio: chlorideRatio(electrode, withMetal),
@@ -106,8 +106,12 @@ function limitRatio({ record }: Electrode, state: VesselState): number | null {
 function disturbance(
   electrode: Electrode,
   state: VesselState,
+  determines: readonly ComponentId[],
 ): Pick<ElectrodeReading, "interferenceRatio" | "interferingIon"> {
-  const terms = [...electrode.interference(state)].filter(([ion]) => !electrode.record.shows.includes(ion));
+  // What is determined itself moves the potential at its own end point, by whichever way it reaches the membrane.
+  const terms = [...electrode.interference(state)].filter(
+    ([ion]) => !electrode.record.shows.includes(ion) && !determines.includes(ion),
+  );
   const sum = terms.reduce((s, [, term]) => s + term, 0);
   const own = electrode.record.shows
     .filter((ion) => ion !== electrode.record.ion)

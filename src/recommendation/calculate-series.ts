@@ -4,8 +4,9 @@ import { stageModel, type StageModel } from "../methods/stage-model.ts";
 import { countedIn, type StagePlan, type Task } from "../methods/types.ts";
 import { readBrief } from "./brief.ts";
 import type { Recommendation, RecommendedMethod, StageDocument } from "./contract.ts";
+import { readingSeries, type ReadingSeries } from "./reading-series.ts";
 
-/** The numbers behind the two figures of one titration; null where a point has no value. */
+/** The numbers behind the figures of one titration; null where a point has no value. */
 export interface StageSeries {
   readonly logK: {
     readonly pH: readonly number[];
@@ -26,6 +27,7 @@ export interface StageSeries {
     } | null;
     readonly equivalenceML: number;
   };
+  readonly reading: ReadingSeries | null; // what an electrode or a photometer shows
 }
 
 const PH_STEP = 0.25;
@@ -67,6 +69,7 @@ function stageSeries(task: Task, plan: StagePlan, stage: StageDocument, knowledg
           : { volumeML: evaluation.endPointML, low, high, pMLow, pMHigh, pM: evaluation.pM },
       equivalenceML,
     },
+    reading: readingSeries(evaluation, volumeML, knowledge),
   };
 }
 

@@ -43,6 +43,18 @@ export const endPointSchema = z.strictObject({
   bandPM: level, // +/- of the observer
   sharpnessPercent: level.nullable(), // half-width of the band in % of the titre
   indicatorMetal: text.nullable(), // the metal that holds the dye before the end point
+  // What an electrode shows: its step from 99 to 101 % of the volume, the scatter of a reading, and what disturbs it most.
+  electrode: z
+    .strictObject({
+      id: text,
+      name: text,
+      slopeMVPerDecade: finite,
+      readingMV: level,
+      jumpMV: level,
+      interferingIon: text.nullable(),
+    })
+    .nullable(),
+  wavelengthNm: z.tuple([level, level]).nullable(), // where a photometer measures; null where nothing is on record or it is seen otherwise
 });
 
 /** What a masking agent does in the vessel at the end point, by the equilibrium; null where there are no constants for it. */

@@ -70,7 +70,7 @@ function stageDocument(
           {
             id: `${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}`,
             molPerL: plan.chelate.molPerL,
-            purpose: "lends the indicator its metal",
+            purpose: plan.electrode === null ? "lends the indicator its metal" : "lends the electrode its ion",
           },
         ]
       : []),
@@ -130,6 +130,15 @@ function stageDocument(
       bandPM: evaluation.bandPM,
       sharpnessPercent: converged ? signif(100 * evaluation.sharpnessFraction, 4) : null,
       indicatorMetal: evaluation.indicatorMetal === null ? null : ion(evaluation.indicatorMetal),
+      electrode: evaluation.electrode && {
+        id: evaluation.electrode.id,
+        name: evaluation.electrode.name,
+        slopeMVPerDecade: evaluation.electrode.slopeMVPerDecade,
+        readingMV: evaluation.electrode.readingMV,
+        jumpMV: signif(evaluation.electrode.jumpMV, 3),
+        interferingIon: evaluation.electrode.interferingIon && ion(evaluation.electrode.interferingIon),
+      },
+      wavelengthNm: evaluation.photometric?.wavelengthNm ? [...evaluation.photometric.wavelengthNm] : null,
     },
     conditional: [...evaluation.log10ConditionalK].map(([metal, k]) => ({
       metal: ion(metal),

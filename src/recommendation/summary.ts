@@ -1,8 +1,7 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
-import type { Detour } from "../methods/types.ts";
+import type { Detour, StagePlan, Task } from "../methods/types.ts";
 import { detourRecord } from "../methods/way-round.ts";
-import type { Task } from "../methods/types.ts";
 import type { JudgedMethod } from "./judge.ts";
 import { stoichiometryOf } from "./detour-words.ts";
 import { shownIon } from "./spelling.ts";
@@ -23,15 +22,25 @@ export function summaryOf(task: Task, judged: JudgedMethod, knowledge: Knowledge
   return `${lead[method.mode] ?? "In stages"}: ${sentences.map((s) => s.charAt(0).toLowerCase() + s.slice(1)).join("; then ")}.`;
 }
 
+/** To what a titration is done: a dye, a dye under a photometer, the inflection of an electrode. */
+function seenBy(plan: StagePlan, knowledge: Knowledge): string {
+  if (plan.detection === "electrode") {
+    const name = knowledge.electrodes.find((e) => e.id === plan.electrode)?.name ?? "electrode";
+    return `the inflection of the ${name}`;
+  }
+  const dye = plan.indicator && (knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id);
+  if (plan.detection === "photometric")
+    return dye ? `${dye}, read with a photometer` : "the break of its own absorbance, read with a photometer";
+  return dye ?? "the end point";
+}
+
 function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): string {
   const { plan } = stage;
   if (plan.detour) return detourWords(task, stage, plan.detour, knowledge);
   const ion = (id: string): string => shownIon(task, id, knowledge);
   const nameOf = (id: string): string => knowledge.agents.get(id)?.name ?? knowledge.buffers.get(id)?.name ?? id;
   const what = list(plan.determines.map(ion));
-  const dye = plan.indicator
-    ? (knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id)
-    : "an electrode";
+  const dye = seenBy(plan, knowledge);
   const heat = plan.preparation.includes("boil")
     ? ", boil"
     : plan.preparation.includes("heat")
@@ -48,7 +57,7 @@ function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): st
   const buffer = nameOf(plan.buffer.id);
   const core = plan.backTitrant
     ? `add ${plan.titrant.id} in excess to ${what}${heat}, and titrate the excess back with ${plan.backTitrant.molPerL} mol/L ${plan.backTitrant.id} at pH ${plan.pH} (${buffer}) to ${dye}`
-    : `titrate ${what} with ${plan.titrant.molPerL} mol/L ${plan.titrant.id} at pH ${plan.pH} (${buffer})${plan.preparation.includes("boil") ? " at the boil" : plan.preparation.includes("heat") ? " hot" : ""} to ${dye}${plan.chelate && plan.indicator?.id !== "Cu-PAN" ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : ""}`;
+    : `titrate ${what} with ${plan.titrant.molPerL} mol/L ${plan.titrant.id} at pH ${plan.pH} (${buffer})${plan.preparation.includes("boil") ? " at the boil" : plan.preparation.includes("heat") ? " hot" : ""} to ${dye}${plan.chelate && plan.electrode === null && plan.indicator?.id !== "Cu-PAN" ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : ""}`;
   const sentence = `${separated}${core}${masks}${helped}`;
   return sentence.charAt(0).toUpperCase() + sentence.slice(1);
 }

@@ -32,7 +32,9 @@ function stageConditions(stage: StageDocument, method: RecommendedMethod): reado
   const { molPerL, outOfModelRange } = stage.ionicStrength;
   const range = `works from ${figures(pH.low)} to ${figures(pH.high)}`;
   const seen =
-    indicator === null ? stage.detection : `${reagentWords(indicator.id)}, ${indicator.colourChange.join(" → ")}`;
+    stage.detection === "visual" && indicator !== null
+      ? `${reagentWords(indicator.id)}, ${indicator.colourChange.join(" → ")}`
+      : instrumentWords(stage);
   const bound = stage.conditional.filter((entry) => entry.log10ConditionalK >= 0); // the rest is not bound at all
   const constants = bound.map((entry) => `${entry.metal} ${entry.log10ConditionalK.toFixed(1)}`).join(", ");
   const rows: readonly (readonly [string, string | null])[] = [
@@ -40,6 +42,11 @@ function stageConditions(stage: StageDocument, method: RecommendedMethod): reado
     ["Back titrant", back && `${back.id} ${figures(back.molPerL)} mol/L`],
     ["pH", `${figures(pH.target)} (${range}), ${reagentWords(buffer.id)} ${figures(buffer.molPerL)} mol/L`],
     ["End point", `${seen} (${END_POINT_BASIS[endPoint.basis]})`],
+    [
+      "Step",
+      endPoint.electrode &&
+        `${figures(endPoint.electrode.jumpMV)} mV from 99 to 101 % of the volume, read to ${figures(endPoint.electrode.readingMV)} mV; slope ${figures(endPoint.electrode.slopeMVPerDecade)} mV a decade`,
+    ],
     [
       "pM",
       endPoint.pM === null || endPoint.pMEquivalence === null
@@ -54,6 +61,14 @@ function stageConditions(stage: StageDocument, method: RecommendedMethod): reado
     ],
   ];
   return rows.flatMap(([name, value]) => (value === null ? [] : [row(name, value)]));
+}
+
+/** How the end is read when no eye reads it: the electrode, or the dye, the photometer and its wavelength. */
+export function instrumentWords(stage: StageDocument): string {
+  const { electrode, wavelengthNm } = stage.endPoint;
+  if (stage.detection === "electrode") return electrode?.name ?? "an electrode";
+  const what = stage.indicator === null ? "the colour of the complex itself" : reagentWords(stage.indicator.id);
+  return `${what}, read with a photometer${wavelengthNm ? ` at ${wavelengthNm.join(" to ")} nm` : ""}`;
 }
 
 /** The metal that a titration is finished with; a direct titration has none, whatever the others of its method have. */

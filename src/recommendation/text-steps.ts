@@ -108,10 +108,27 @@ function endPoint(stage: StageDocument, last: { readonly id: string; readonly mo
     stage.determines.length > 0
       ? `${titre}. This gives ${listed(stage.determines)}.`
       : `${titre}. Discard this reading.`;
-  if (stage.indicator === null)
+  if (stage.detection === "electrode") {
+    const { electrode } = stage.endPoint;
+    const step = electrode ? ` (about ${figures(electrode.jumpMV)} mV from 99 to 101 % of the volume)` : "";
     return [
-      `${withWhat} to the end point of the ${stage.detection === "electrode" ? "electrode" : stage.detection} reading${gives}`,
+      `Put in the ${electrode?.name ?? "electrode"} and a reference electrode.`,
+      `${withWhat}, in equal small portions near the end and waiting for the reading each time; the end is where the potential changes fastest${step}${gives}`,
     ];
+  }
+  if (stage.detection === "photometric") {
+    const { wavelengthNm } = stage.endPoint;
+    const where = wavelengthNm
+      ? `${wavelengthNm.join(" to ")} nm`
+      : "the wavelength at which bound and free form differ most";
+    return [
+      ...(stage.indicator
+        ? [`Add ${reagentWords(stage.indicator.id)} (about ${figures(stage.indicator.molPerL)} mol/L).`]
+        : []),
+      `${withWhat}, reading the absorbance at ${where} and correcting it for dilution; the end is where its two straight branches meet${gives}`,
+    ];
+  }
+  if (stage.indicator === null) return [`${withWhat}${gives}`];
   const [from, to] = stage.indicator.colourChange;
   return [
     `Add ${reagentWords(stage.indicator.id)} (about ${figures(stage.indicator.molPerL)} mol/L).`,

@@ -35,7 +35,7 @@ export interface FactListing {
   readonly unit: string | null;
 }
 
-/** The numbers behind the two figures of one method. */
+/** The numbers behind the figures of one method. */
 export type FigureSeries = StageSeries;
 
 /** Everything the pages need from the layers below; the composition root supplies it. */

@@ -50,6 +50,8 @@ export const STAGE: StageDocument = {
     bandPM: 0.3,
     sharpnessPercent: 0.05,
     indicatorMetal: "Zn2+",
+    electrode: null,
+    wavelengthNm: null,
   },
   conditional: [
     { metal: "Zn2+", log10ConditionalK: 10.4 },

@@ -155,7 +155,7 @@ describe("stepsOf", () => {
   });
   it("reads an electrode instead of a colour where there is no indicator", () => {
     const list = steps(withStages({ ...STAGE, detection: "electrode", indicator: null }));
-    expect(list.at(-1)).toContain("to the end point of the electrode reading");
+    expect(list.at(-1)).toContain("the end is where the potential changes fastest");
   });
 });
 

@@ -197,7 +197,8 @@ describe("the answer", () => {
   test("shows another method when asked, and leads back to the first", async () => {
     const html = await (await get(`/recommendation?brief=${encodeBrief(BRIEF)}&method=back-two`)).text();
     expect(html).toContain("See the first");
-    expect(html).toContain("read with an electrode");
+    expect(html).toContain("copper electrode");
+    expect(html).toContain("84 mV from 99 to 101 % of the volume");
     expect(html).toContain("first reading, discarded");
     expect(html).toContain("does not keep the requirement");
   });

@@ -17,6 +17,12 @@ export function logKCsv(series: FigureSeries["logK"]): string {
   ]);
 }
 
+/** What an electrode or a photometer shows as CSV: volume in mL, mV or relative absorbance. */
+export function readingCsv(series: NonNullable<FigureSeries["reading"]>): string {
+  const name = series.kind === "potential" ? "E / mV against the end point" : "A / A of full colour";
+  return rows([["titrant added / mL", name], ...series.volumeML.map((v, i) => [v, series.values[i] ?? null])]);
+}
+
 /** The titration curve as CSV: volume in mL, pM. */
 export function curveCsv(series: FigureSeries["curve"]): string {
   return rows([

@@ -105,8 +105,8 @@ function benchRows(
         ? []
         : [joinMarkup([names.name(stage.endPoint.indicatorMetal), " holds the dye until then"])],
     );
-  } else
-    add("End point", [text(stage.detection === "electrode" ? "read with an electrode" : `seen by ${stage.detection}`)]);
+  }
+  if (stage.detection !== "visual") add("Read with", [text(readWith(stage))], readingNotes(stage));
   add(
     "Masking",
     stage.masking.map((m) =>
@@ -180,6 +180,24 @@ function rangeWords(meets: boolean, { low, high }: StageDocument["pH"]): string 
   if (!meets) return "the requirement is kept at no pH";
   if (fixed(low, 1) === fixed(high, 1)) return "works at this pH only";
   return `works from ${fixed(low, 1)} to ${fixed(high, 1)}`;
+}
+
+/** The instrument that finds the end, in words. */
+function readWith(stage: StageDocument): string {
+  const { electrode, wavelengthNm } = stage.endPoint;
+  if (stage.detection === "electrode") return electrode?.name ?? "an electrode";
+  return `a photometer${wavelengthNm ? `, ${wavelengthNm.join(" to ")} nm` : "; no wavelength is on record"}${stage.indicator ? "" : ", the colour of the complex itself"}`;
+}
+
+function readingNotes(stage: StageDocument): readonly Markup[] {
+  const { electrode } = stage.endPoint;
+  if (electrode === null) return [];
+  return [
+    text(
+      `${fixed(electrode.jumpMV, 0)} mV from 99 to 101 % of the volume, read to ${significant(electrode.readingMV, 2)} mV`,
+    ),
+    text(`slope ${fixed(electrode.slopeMVPerDecade, 0)} mV a decade`),
+  ];
 }
 
 function endPointLines(stage: StageDocument): readonly Markup[] {

@@ -1,7 +1,7 @@
 import { Router, type Request } from "express";
 import { InputError } from "../../errors.ts";
 import type { Recommendation, RecommendedMethod } from "../../recommendation/contract.ts";
-import { curveCsv, logKCsv } from "../figures/figure-csv.ts";
+import { curveCsv, logKCsv, readingCsv } from "../figures/figure-csv.ts";
 import { formFromBrief } from "../form/brief-to-form.ts";
 import { decodeBrief } from "../form/brief-link.ts";
 import { briefFromForm } from "../form/form-to-brief.ts";
@@ -46,14 +46,21 @@ export function recommendationPage(services: WebServices, names: Names, answers:
     const method = chosenMethod(request, recommendation);
     const figures = method === null ? null : answers.figures(recommendation, method.id);
     const { figure } = request.params;
-    if (figures === null || (figure !== "log-k" && figure !== "curve")) {
+    const csv =
+      figures === null
+        ? null
+        : figure === "log-k"
+          ? logKCsv(figures.logK)
+          : figure === "curve"
+            ? curveCsv(figures.curve)
+            : figure === "reading" && figures.reading
+              ? readingCsv(figures.reading)
+              : null;
+    if (csv === null) {
       next();
       return;
     }
-    response
-      .type("text/csv; charset=utf-8")
-      .attachment(`${figure}.csv`)
-      .send(figure === "log-k" ? logKCsv(figures.logK) : curveCsv(figures.curve));
+    response.type("text/csv; charset=utf-8").attachment(`${figure}.csv`).send(csv);
   });
   return router;
 }

@@ -1,5 +1,6 @@
 import type { Brief, Recommendation, RecommendedMethod } from "../../recommendation/contract.ts";
 import { curveFigure, curveDescription } from "../figures/curve-figure.ts";
+import { readingDescription, readingFigure } from "../figures/reading-figure.ts";
 import { NARROW, WIDE } from "../figures/frame.ts";
 import { logKDescription, logKFigure } from "../figures/log-k-figure.ts";
 import { encodeBrief } from "../form/brief-link.ts";
@@ -164,9 +165,25 @@ function methodView(
               description: names.set(curveDescription(figures.curve)),
               csvHref: csv("curve"),
             },
+            ...(figures.reading === null
+              ? []
+              : [
+                  {
+                    wide: readingFigure("reading-wide", figures.reading, WIDE),
+                    narrow: readingFigure("reading-narrow", figures.reading, NARROW),
+                    caption: names.set(`${READING_CAPTION[figures.reading.kind]} ${conditions}`),
+                    description: names.set(readingDescription(figures.reading)),
+                    csvHref: csv("reading"),
+                  },
+                ]),
           ],
   };
 }
+
+const READING_CAPTION = {
+  potential: "What the electrode shows, with the inflection.",
+  absorbance: "What the photometer shows, with the two straight branches and where they meet.",
+} as const;
 
 /** The conditions a figure was computed for, as one sentence. */
 function conditionsText(method: RecommendedMethod, brief: Brief): string {
