@@ -82,9 +82,7 @@ function detourWords(task: Task, stage: DevelopedStage, detour: Detour, knowledg
       : `let ${what} set ${metal} free from ${reagent}, and titrate it`,
     conversion: `precipitate ${what} with ${reagent}, filter and wash, let the precipitate set ${plan.titrant.id} free, and titrate that`,
   }[record.kind];
-  const dye = plan.indicator
-    ? (knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id)
-    : "an electrode";
+  const dye = seenBy(plan, knowledge);
   const back = plan.backTitrant;
   const how =
     record.kind === "conversion" && back
