@@ -12,7 +12,7 @@ export const solverCampaign: Campaign = {
   name: "solver",
   about:
     "10,000 random systems cold and near; 50 against a 50-digit oracle; 500 with up to three solids, 500 with up to eight; 1,000 with unknown protons; 2,000 by elimination",
-  run: (seed) => {
+  run: ({ seed }) => {
     const balances = runBalances(seed, 10_000);
     const oracle = runOracle(seed + 1, 50);
     const solids = runSolids(seed + 2, 500);

@@ -3,16 +3,24 @@ import type { LooseBrief } from "./invented-briefs.ts";
 type Row = NonNullable<LooseBrief["matrix"]>[number];
 
 /** The same brief with its rows in the opposite order. */
-export const reversed = (brief: LooseBrief): LooseBrief => ({ ...brief, matrix: [...(brief.matrix ?? [])].reverse() });
+export const reversed = (brief: LooseBrief): LooseBrief => ({
+  ...brief,
+  analytes: [...brief.analytes].reverse(),
+  matrix: [...(brief.matrix ?? [])].reverse(),
+});
 
-/** The same brief with every amount of substance in another unit of the same. */
-export const inMicromol = (brief: LooseBrief): LooseBrief => {
-  const factors: Readonly<Record<string, number>> = { "mol/L": 1e6, "mmol/L": 1e3 };
+/** The same brief with every amount of substance in another unit of the same, and every mass in another unit of mass. */
+export const inSmallUnits = (brief: LooseBrief): LooseBrief => {
+  const units: Readonly<Record<string, readonly [factor: number, unit: string]>> = {
+    "mol/L": [1e6, "umol/L"],
+    "mmol/L": [1e3, "umol/L"],
+    "mg/L": [1e3, "ug/L"],
+  };
   const level = <T extends Pick<Row, "concentration">>(row: T): T => {
-    const factor = factors[row.concentration.unit];
-    return factor === undefined
+    const [factor, unit] = units[row.concentration.unit] ?? [];
+    return factor === undefined || unit === undefined
       ? row
-      : { ...row, concentration: { value: row.concentration.value * factor, unit: "umol/L" } };
+      : { ...row, concentration: { ...row.concentration, value: row.concentration.value * factor, unit } };
   };
   return { ...brief, analytes: brief.analytes.map(level), matrix: (brief.matrix ?? []).map(level) };
 };

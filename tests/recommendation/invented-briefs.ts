@@ -5,7 +5,14 @@ export interface LooseBrief {
   readonly matrix?: readonly { readonly component: string; readonly concentration: Level }[];
   readonly portion?: { readonly volumeML: number; readonly titrationVolumeML: number };
   readonly requirement?: { readonly relativeExpandedUncertaintyPercent: number };
-  readonly laboratory?: { readonly avoid?: readonly string[]; readonly available?: readonly string[] | null };
+  readonly laboratory?: {
+    readonly avoid?: readonly string[];
+    readonly available?: readonly string[] | null;
+    readonly detection?: readonly string[];
+    readonly heating?: boolean;
+    readonly buretteML?: number;
+  };
+  readonly temperatureC?: number;
 }
 
 /** A concentration of a brief. */

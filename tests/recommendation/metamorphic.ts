@@ -3,7 +3,7 @@ import {
   type RecommendedMethod,
   recommendationSchema,
 } from "../../src/recommendation/contract.ts";
-import { asking, beside, halved, inMicromol, reversed, without } from "./bend-brief.ts";
+import { asking, beside, halved, inSmallUnits, reversed, without } from "./bend-brief.ts";
 import type { LooseBrief } from "./invented-briefs.ts";
 import { differencesOf } from "./same-answer.ts";
 
@@ -58,7 +58,7 @@ export const RELATIONS: readonly Relation[] = [
   },
   {
     name: "the unit says nothing",
-    faults: async (brief, answer, document) => differencesOf(document, await answer(inMicromol(brief)), SAME),
+    faults: async (brief, answer, document) => differencesOf(document, await answer(inSmallUnits(brief)), SAME),
   },
   {
     name: "two halves of a row say what the row says, with a note",
@@ -86,11 +86,13 @@ export const RELATIONS: readonly Relation[] = [
   {
     name: "what is forbidden is never proposed",
     faults: async (brief, answer, document) => {
-      const [first] = document.methods;
-      const forbidden = first?.stages.flatMap((stage) => [
-        ...stage.masking.map((step) => step.agent).filter((agent) => agent !== "hydroxide"),
-        ...(stage.indicator ? [stage.indicator.id] : []),
-      ])[0];
+      const own = new Set(document.brief.analytes.map((row) => row.ion));
+      // Any reagent of the first method, another one for every brief; the analyte is in the vessel whatever is forbidden.
+      const used = document.methods
+        .slice(0, 1)
+        .flatMap(reagentIdsOf)
+        .filter((id) => !own.has(id));
+      const forbidden = used[brief.title.length % used.length];
       if (forbidden === undefined) return [];
       const { methods } = await answer(without(brief, forbidden));
       return methods

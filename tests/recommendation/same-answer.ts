@@ -56,7 +56,7 @@ export function differencesOf(
 }
 
 /** The key of a method, its lists in one order: they are written in the order of the brief. */
-const idOf = (method: RecommendedMethod): string =>
+export const idOf = (method: RecommendedMethod): string =>
   method.id
     .split("|")
     .map((part) =>
