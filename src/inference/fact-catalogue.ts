@@ -70,11 +70,11 @@ const METHOD_FACTS = facts("method", "evaluationStatus", [
   ["maxTitreML", "number", "mL", "may be absent", "largest titre of the stages"],
   ["buretteML", "number", "mL", "always", "volume of the burette"],
   [
-    "tolerancelow",
+    "matrixRoom",
     "number",
     null,
     "may be absent",
-    "smallest ratio of tolerance limit to present level over the components",
+    "1, 1.5 or 3: how much richer all metals of the matrix may be with the requirement still met",
   ],
 ]);
 

@@ -1,4 +1,5 @@
-import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
+import { bufferCapacity, bufferModel } from "../chemistry/buffer.ts";
+import type { BufferRecord, ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { declared, withoutFlocs } from "./alkali-masks.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { metalKinetics } from "./kinetics.ts";
@@ -39,7 +40,7 @@ export function bareStage(task: Task, skeleton: Skeleton, knowledge: Knowledge, 
   };
   const middle = at(skeleton.plan);
   if (bareCost(task, middle, knowledge) <= CONTENT) return middle;
-  return otherConditions(skeleton, knowledge)
+  return otherConditions(task, skeleton, knowledge)
     .map(at)
     .reduce((best, next) => (bareCost(task, next, knowledge) < bareCost(task, best, knowledge) ? next : best), middle);
 }
@@ -57,7 +58,7 @@ function bareCost(task: Task, stage: BareStage, knowledge: Knowledge): number {
 }
 
 /** Other conditions of the same titration: towards the acid and the alkaline end of the dye's window, and with the least buffer. */
-function otherConditions(skeleton: Skeleton, knowledge: Knowledge): StagePlan[] {
+function otherConditions(task: Task, skeleton: Skeleton, knowledge: Knowledge): StagePlan[] {
   const { plan } = skeleton;
   const buffer = knowledge.buffers.get(plan.buffer.id);
   // A pair still buffers a whole unit from its pKa, whatever range is usual for it.
@@ -77,10 +78,28 @@ function otherConditions(skeleton: Skeleton, knowledge: Knowledge): StagePlan[] 
   // A buffer that binds the analyte (ammonia) is best taken sparingly.
   const binds =
     buffer?.component != null && plan.determines.some((ion) => pairHasComplex(knowledge, buffer.component!, ion));
-  const least = binds ? buffer.usualMolPerL[0] : null;
-  if (least === null || least >= plan.buffer.molPerL) return plans;
-  return [...plans, ...[plan, ...plans].map((p) => ({ ...p, buffer: { ...p.buffer, molPerL: least } }))];
+  if (!binds) return plans;
+  const sparing = [plan, ...plans].map((p) => ({
+    ...p,
+    buffer: { ...p.buffer, molPerL: leastBuffer(task, p, buffer, knowledge) },
+  }));
+  return [...plans, ...sparing.filter((p) => p.buffer.molPerL < plan.buffer.molPerL)];
 }
+
+/** The least of its usual amounts with which a buffer holds the pH while the analyte sets two protons free for each titrant (mol/L). */
+function leastBuffer(task: Task, plan: StagePlan, buffer: BufferRecord, knowledge: Knowledge): number {
+  const analyte = vesselSample(task, plan)
+    .filter((c) => plan.determines.includes(c.component))
+    .reduce((sum, c) => sum + c.inVesselMolPerL, 0);
+  const conditions = { ionicStrengthMolPerL: 0.1, temperatureC: task.temperatureC };
+  const capacityPerMol = bufferCapacity(bufferModel(knowledge, buffer, conditions), 1, plan.pH);
+  const needed = (2 * analyte) / (BORNE_PH_DROP * capacityPerMol);
+  const [least, most] = buffer.usualMolPerL;
+  return Number(Math.min(most, Math.max(least, needed)).toPrecision(2));
+}
+
+/** A fall of the pH by less than this is borne while titrating (common practice). */
+const BORNE_PH_DROP = 0.15;
 
 /** Works a titration out into the variants worth judging: masked in a few ways, or with the unmaskable separated. */
 export function develop(task: Task, start: BareStage, knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {

@@ -2,6 +2,7 @@ import { vesselSample } from "../methods/solution.ts";
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { Facts, FactValue } from "../inference/types.ts";
 import { metalKinetics } from "../methods/kinetics.ts";
+import { bufferStrain } from "../methods/protons.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
 import { detectionFacts } from "./detection-facts.ts";
 import type { EvaluatedMethod } from "../methods/methods.ts";
@@ -17,6 +18,8 @@ import { hazardTagsOf, reagentsOf } from "./reagents.ts";
 export interface MethodUnderJudgement {
   readonly method: EvaluatedMethod;
   readonly ranges: readonly (WorkingRange | null)[];
+  /** How much richer the metals of the matrix may be (see `matrixRoom`); null: not looked at, or nothing there. */
+  readonly matrixRoom: number | null;
 }
 
 const KINETIC_ORDER = ["fast", "slow", "inert"] as const;
@@ -107,6 +110,7 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
     minTitreML: converged ? Math.min(...titres) : null,
     maxTitreML: converged ? Math.max(...titres) : null,
     buretteML: task.laboratory.buretteML,
+    matrixRoom: judged.matrixRoom,
   });
 }
 
@@ -164,7 +168,7 @@ export function stageFacts(
   const magnesiumOut = model.solids.some(
     (id) => (knowledge.solids.find((s) => s.id === id)?.components["Mg2+"] ?? 0) > 0,
   );
-  const regime = has(stage, "boil") || has(stage, "heat") ? "hot" : has(stage, "warm") ? "warm" : "ambient";
+  const strain = ok ? bufferStrain(evaluation, task.temperatureC, knowledge) : null;
   return finite({
     stageMode: plan.mode,
     determines: plan.determines,
@@ -179,6 +183,8 @@ export function stageFacts(
     pHWindowWidth: window ? window.high - window.low : null,
     buffer: plan.buffer.id,
     bufferMolPerL: plan.buffer.molPerL,
+    bufferCapacityMolPerLPerPH: strain?.capacityMolPerLPerPH,
+    pHDrop: strain?.pHDrop,
     detection: plan.detection,
     indicator: plan.indicator?.id ?? "none",
     indicatorClass: indicator?.class ?? "none",
@@ -214,12 +220,22 @@ export function stageFacts(
     maskAgents: [...new Set(plan.masking.map((m) => m.agent))],
     preparation: plan.preparation,
     reductants: [...new Set(plan.masking.filter((m) => m.via === "reduction").map((m) => m.agent))],
-    temperatureRegime: regime,
+    temperatureRegime: regimeOf(task, stage),
     backTitrantStealsFraction: ok && plan.backTitrant ? evaluation.backTitrantStealsFraction : null,
     chelateAdded: plan.chelate ? `${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : "none",
     ...detectionFacts(stage, knowledge),
     solutionStatus: ok ? "converged" : "failed",
   });
+}
+
+/** From these temperatures, in C, a room counts as cold or warm, a solution as hot (common practice). */
+const REGIMES = { coldBelow: 15, warmFrom: 35, hotFrom: 60 } as const;
+
+/** How warm the solution is while it is titrated: by its steps of preparation, else by the temperature of the brief. */
+function regimeOf({ temperatureC }: Task, stage: DevelopedStage): "cold" | "ambient" | "warm" | "hot" {
+  if (has(stage, "boil") || has(stage, "heat") || temperatureC >= REGIMES.hotFrom) return "hot";
+  if (has(stage, "warm") || temperatureC >= REGIMES.warmFrom) return "warm";
+  return temperatureC < REGIMES.coldBelow ? "cold" : "ambient";
 }
 
 /** Share of the analyte from which a metal that the dye also answers is worth a word. */

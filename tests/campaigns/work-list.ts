@@ -1,5 +1,5 @@
 import { appendFileSync, existsSync, readFileSync } from "node:fs";
-import { casesIn, practiceCases, type PracticeCase } from "../practice/cases.ts";
+import { z } from "zod";
 import type { LooseBrief } from "../recommendation/invented-briefs.ts";
 import type { CampaignOptions } from "./campaign.ts";
 import { randomBrief } from "./random-brief.ts";
@@ -11,9 +11,16 @@ export interface WorkItem {
   readonly brief: LooseBrief;
 }
 
-/** The acceptance cases: the copy of the tests, or those of the file that is named. */
-export const acceptanceCases = ({ practice }: Pick<CampaignOptions, "practice">): readonly PracticeCase[] =>
-  practice === null ? practiceCases() : casesIn(practice);
+/** What a campaign reads of an acceptance case; the files say more. */
+const acceptanceSchema = z.array(
+  z.looseObject({ id: z.string(), difficulty: z.string(), brief: z.looseObject({ title: z.string() }) }),
+);
+
+/** Ids, difficulties and briefs of the acceptance cases: of the copy of the tests, or of the file that is named. */
+export function acceptanceCases({ practice }: Pick<CampaignOptions, "practice">): z.output<typeof acceptanceSchema> {
+  const file = practice ?? new URL("../practice/cases.json", import.meta.url);
+  return acceptanceSchema.parse(JSON.parse(readFileSync(file, "utf8")));
+}
 
 /** The briefs that these options ask for: acceptance briefs, then generated ones, cut to the part asked for. */
 export function workList(options: CampaignOptions): WorkItem[] {

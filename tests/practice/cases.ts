@@ -66,10 +66,7 @@ export type WrongMethod = z.output<typeof wrongMethodSchema>;
  * Briefs, and every answer that published practice supports: the acceptance cases, or the project's own invented briefs of the trades.
  * Throws when the file does not keep its schema.
  */
-export const practiceCases = (set: "cases" | "trade-briefs" = "cases"): readonly PracticeCase[] =>
-  casesIn(new URL(`${set}.json`, import.meta.url));
-
-/** The cases of a file. Throws when it does not keep the schema. */
-export function casesIn(file: string | URL): readonly PracticeCase[] {
+export function practiceCases(set: "cases" | "trade-briefs" = "cases"): readonly PracticeCase[] {
+  const file = new URL(`${set}.json`, import.meta.url);
   return z.array(caseSchema).parse(JSON.parse(readFileSync(file, "utf8")));
 }

@@ -1,0 +1,53 @@
+import { bufferCapacity, bufferModel, pHDrop } from "../chemistry/buffer.ts";
+import type { Knowledge } from "../constants/knowledge.ts";
+import type { StageEvaluation } from "./evaluate-stage.ts";
+import type { VesselState } from "./stage-model.ts";
+
+/** How a buffer stands up to the protons that its titration sets free. */
+export interface BufferStrain {
+  readonly capacityMolPerLPerPH: number;
+  readonly pHDrop: number;
+}
+
+/** Charge of the anion that the bottle of a titrant holds: complexones are made up as disodium salts (common practice). */
+const CHARGE_IN_BOTTLE = -2;
+
+/**
+ * Protons set free from the start of a titration to its end point at constant pH, mol/L of the vessel at the end point; negative where
+ * protons are bound. What the species of the vessel hold at the start and what comes with a complexone from the burette, less what they
+ * hold at the end.
+ */
+export function protonsFreed(evaluation: StageEvaluation, knowledge: Knowledge): number {
+  const { model } = evaluation;
+  const endL = evaluation.endPointML / 1000;
+  const held = (state: VesselState): number =>
+    model.system.species.reduce((sum, { components }, row) => {
+      const protons = components["H+"] ?? 0;
+      const water = Object.keys(components).every((id) => id === "H+");
+      return protons === 0 || water ? sum : sum + protons * state.result.species(row);
+    }, 0);
+  const titrant = knowledge.components.get(model.burette.component);
+  const protonsInBottle = titrant?.kind === "ligand" ? Math.max(0, CHARGE_IN_BOTTLE - titrant.charge) : 0;
+  const endVolumeL = model.volumeL + endL;
+  const before = held(model.at(0)) * model.volumeL + protonsInBottle * model.burette.molPerL * endL;
+  return before / endVolumeL - held(model.at(endL));
+}
+
+/** Capacity of the buffer at the pH of a titration that converged, and how far the freed protons bring that pH down. */
+export function bufferStrain(
+  evaluation: StageEvaluation,
+  temperatureC: number,
+  knowledge: Knowledge,
+): BufferStrain | null {
+  const { model } = evaluation;
+  const buffer = knowledge.buffers.get(model.plan.buffer.id);
+  if (buffer === undefined) return null;
+  const { ionicStrengthMolPerL } = model;
+  const chemistry = bufferModel(knowledge, buffer, { ionicStrengthMolPerL, temperatureC });
+  const { pH } = model.plan;
+  const molPerL = (model.plan.buffer.molPerL * model.volumeL) / (model.volumeL + evaluation.endPointML / 1000);
+  return {
+    capacityMolPerLPerPH: bufferCapacity(chemistry, molPerL, pH),
+    pHDrop: pHDrop(chemistry, molPerL, pH, protonsFreed(evaluation, knowledge)),
+  };
+}
