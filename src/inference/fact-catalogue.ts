@@ -70,11 +70,11 @@ const METHOD_FACTS = facts("method", "evaluationStatus", [
   ["maxTitreML", "number", "mL", "may be absent", "largest titre of the stages"],
   ["buretteML", "number", "mL", "always", "volume of the burette"],
   [
-    "matrixRoom",
-    "number",
+    "richerMatrixBreaks",
+    "boolean",
     null,
-    "may be absent",
-    "1, 1.5 or 3: how much richer all metals of the matrix may be with the requirement still met",
+    "always",
+    "half as much again of the metals of the matrix breaks the requirement",
   ],
 ]);
 

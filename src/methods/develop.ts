@@ -98,8 +98,8 @@ function leastBuffer(task: Task, plan: StagePlan, buffer: BufferRecord, knowledg
   return Number(Math.min(most, Math.max(least, needed)).toPrecision(2));
 }
 
-/** A fall of the pH by less than this is borne while titrating (common practice). */
-const BORNE_PH_DROP = 0.15;
+/** A fall of the pH by 0.2 is borne while titrating (common practice); a little less, for it falls faster the further it goes. */
+const BORNE_PH_DROP = 0.18;
 
 /** Works a titration out into the variants worth judging: masked in a few ways, or with the unmaskable separated. */
 export function develop(task: Task, start: BareStage, knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {

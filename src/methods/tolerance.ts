@@ -82,15 +82,15 @@ function limitOf(
   return low;
 }
 
-/** A sample this much richer is ordinary; one this much richer is the most that a laboratory plans for (common practice). */
-export const RICHER = [1.5, 3] as const;
+/** How much richer in what disturbs an ordinary sample may be than its brief expects (common practice). */
+const RICHER = 1.5;
 
 /**
- * By which of the factors of `RICHER` every metal ion of two or more charges in the matrix may be richer at once, the method unchanged, with
- * the requirement still met and no empirical mask beyond its level; 1 where even the smallest breaks it. Null where the method as it stands
- * does not meet the requirement or nothing of the kind is in the matrix.
+ * Whether every metal ion of two or more charges in the matrix may be half as much again, all at once and the method unchanged, with the
+ * requirement still met and no empirical mask beyond its level. Null where the method as it stands does not meet the requirement or nothing
+ * of the kind is left in the vessel.
  */
-export function matrixRoom(task: Task, method: EvaluatedMethod, knowledge: Knowledge): number | null {
+export function bearsRicherMatrix(task: Task, method: EvaluatedMethod, knowledge: Knowledge): boolean | null {
   const plans = method.stages.map((s) => s.plan);
   const counts = (component: ComponentId): boolean => {
     const record = knowledge.components.get(component);
@@ -98,14 +98,9 @@ export function matrixRoom(task: Task, method: EvaluatedMethod, knowledge: Knowl
   };
   const rows = task.matrix.filter((c) => c.molPerL > 0 && counts(c.component));
   if (rows.length === 0 || method.results.some((r) => 100 * r.budget.expanded > task.requirementPercent)) return null;
-  const ceilings = rows.map((c) => empiricalCeiling(task, plans, c.component, knowledge) / c.molPerL);
-  let room = 1;
-  for (const factor of RICHER) {
-    const matrix = task.matrix.map((c) => (counts(c.component) ? { ...c, molPerL: factor * c.molPerL } : c));
-    if (Math.min(...ceilings) < factor || !holds({ ...task, matrix }, method.mode, plans, knowledge)) break;
-    room = factor;
-  }
-  return room;
+  if (rows.some((c) => empiricalCeiling(task, plans, c.component, knowledge) < RICHER * c.molPerL)) return false;
+  const matrix = task.matrix.map((c) => (counts(c.component) ? { ...c, molPerL: RICHER * c.molPerL } : c));
+  return holds({ ...task, matrix }, method.mode, plans, knowledge);
 }
 
 /** Tolerance limits of a method for the components of the matrix, with its masking, and without it where it masks. */

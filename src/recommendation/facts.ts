@@ -18,8 +18,8 @@ import { hazardTagsOf, reagentsOf } from "./reagents.ts";
 export interface MethodUnderJudgement {
   readonly method: EvaluatedMethod;
   readonly ranges: readonly (WorkingRange | null)[];
-  /** How much richer the metals of the matrix may be (see `matrixRoom`); null: not looked at, or nothing there. */
-  readonly matrixRoom: number | null;
+  /** See `bearsRicherMatrix`; null also where it was not looked at. */
+  readonly bearsRicherMatrix: boolean | null;
 }
 
 const KINETIC_ORDER = ["fast", "slow", "inert"] as const;
@@ -110,7 +110,7 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
     minTitreML: converged ? Math.min(...titres) : null,
     maxTitreML: converged ? Math.max(...titres) : null,
     buretteML: task.laboratory.buretteML,
-    matrixRoom: judged.matrixRoom,
+    richerMatrixBreaks: judged.bearsRicherMatrix === false,
   });
 }
 

@@ -2,7 +2,7 @@ import type { Knowledge } from "../constants/knowledge.ts";
 import type { RuleRunner } from "../inference/index.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
 import { roughCost, seenWith, singleMethod, type EvaluatedMethod } from "../methods/methods.ts";
-import { matrixRoom } from "../methods/tolerance.ts";
+import { bearsRicherMatrix } from "../methods/tolerance.ts";
 import type { Task } from "../methods/types.ts";
 import { centred, workingRange, type WorkingRange } from "../methods/working-range.ts";
 import type { MethodUnderJudgement } from "./facts.ts";
@@ -29,7 +29,9 @@ export async function judgedMethods(
   rules: RuleRunner,
 ): Promise<JudgedMethod[]> {
   const under = shortlist(task, methods, knowledge).map((method, i) =>
-    i < RANGED ? ranged(task, method, knowledge) : { method, ranges: method.stages.map(() => null), matrixRoom: null },
+    i < RANGED
+      ? ranged(task, method, knowledge)
+      : { method, ranges: method.stages.map(() => null), bearsRicherMatrix: null },
   );
   const judged: JudgedMethod[] = [];
   for (const candidate of under) judged.push(await judge(task, candidate, knowledge, rules));
@@ -72,7 +74,7 @@ function shortlist(task: Task, methods: readonly EvaluatedMethod[], knowledge: K
   return diverse.slice(0, JUDGED);
 }
 
-/** Working ranges of every titration of a method, and the room it leaves for a richer matrix; targets moved to the middle of theirs where they sat at an edge. */
+/** Working ranges of every titration of a method, and whether it bears a richer matrix; targets moved to the middle of theirs where they sat at an edge. */
 export function ranged(task: Task, method: EvaluatedMethod, knowledge: Knowledge): MethodUnderJudgement {
   const ranges: WorkingRange[] = [];
   const stages: DevelopedStage[] = [];
@@ -86,7 +88,7 @@ export function ranged(task: Task, method: EvaluatedMethod, knowledge: Knowledge
   }
   const same = stages.every((s, i) => s === method.stages[i]);
   const moved = same ? method : stages.length === 1 ? singleMethod(task, stages[0]!, knowledge) : method;
-  return { method: moved, ranges, matrixRoom: matrixRoom(task, moved, knowledge) };
+  return { method: moved, ranges, bearsRicherMatrix: bearsRicherMatrix(task, moved, knowledge) };
 }
 
 /** One method of a kind: the same mode, titrants, dyes and masks differ only in buffer or a shade of pH. */

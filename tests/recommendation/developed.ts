@@ -30,5 +30,5 @@ export function developed(task: Task, plan: StagePlan, change: Partial<Developed
 export const underJudgement = (task: Task, stage: DevelopedStage): MethodUnderJudgement => ({
   method: singleMethod(task, stage, KNOWLEDGE),
   ranges: [{ low: stage.plan.pH - 0.5, high: stage.plan.pH + 0.5 }],
-  matrixRoom: null,
+  bearsRicherMatrix: null,
 });
