@@ -1,5 +1,4 @@
-import { bufferCapacity, bufferModel } from "../chemistry/buffer.ts";
-import type { BufferRecord, ComponentId, Knowledge } from "../constants/knowledge.ts";
+import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { declared, withoutFlocs } from "./alkali-masks.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { metalKinetics } from "./kinetics.ts";
@@ -8,6 +7,7 @@ import type { Shelf } from "./shelf.ts";
 import { remembered } from "./remembered.ts";
 import { bufferAmount, excessFor, withAuxiliary, type Skeleton } from "./skeletons.ts";
 import { vesselSample } from "./solution.ts";
+import { leastBuffer } from "./protons.ts";
 import { standardisedAlike } from "./standardise.ts";
 import { stageModel, type StageModel } from "./stage-model.ts";
 import { threatsOf, type Threat } from "./threats.ts";
@@ -85,21 +85,6 @@ function otherConditions(task: Task, skeleton: Skeleton, knowledge: Knowledge): 
   }));
   return [...plans, ...sparing.filter((p) => p.buffer.molPerL < plan.buffer.molPerL)];
 }
-
-/** The least of its usual amounts with which a buffer holds the pH while the analyte sets two protons free for each titrant (mol/L). */
-function leastBuffer(task: Task, plan: StagePlan, buffer: BufferRecord, knowledge: Knowledge): number {
-  const analyte = vesselSample(task, plan)
-    .filter((c) => plan.determines.includes(c.component))
-    .reduce((sum, c) => sum + c.inVesselMolPerL, 0);
-  const conditions = { ionicStrengthMolPerL: 0.1, temperatureC: task.temperatureC };
-  const capacityPerMol = bufferCapacity(bufferModel(knowledge, buffer, conditions), 1, plan.pH);
-  const needed = (2 * analyte) / (BORNE_PH_DROP * capacityPerMol);
-  const [least, most] = buffer.usualMolPerL;
-  return Number(Math.min(most, Math.max(least, needed)).toPrecision(2));
-}
-
-/** A fall of the pH by 0.2 is borne while titrating (common practice); a little less, for it falls faster the further it goes. */
-const BORNE_PH_DROP = 0.18;
 
 /** Works a titration out into the variants worth judging: masked in a few ways, or with the unmaskable separated. */
 export function develop(task: Task, start: BareStage, knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {

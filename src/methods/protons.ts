@@ -1,7 +1,9 @@
 import { bufferCapacity, bufferModel, pHDrop } from "../chemistry/buffer.ts";
-import type { Knowledge } from "../constants/knowledge.ts";
+import type { BufferRecord, Knowledge } from "../constants/knowledge.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
+import { vesselSample } from "./solution.ts";
 import type { VesselState } from "./stage-model.ts";
+import type { StagePlan, Task } from "./types.ts";
 
 /** How a buffer stands up to the protons that its titration sets free. */
 export interface BufferStrain {
@@ -50,4 +52,19 @@ export function bufferStrain(
     capacityMolPerLPerPH: bufferCapacity(chemistry, molPerL, pH),
     pHDrop: pHDrop(chemistry, molPerL, pH, protonsFreed(evaluation, knowledge)),
   };
+}
+
+/** A fall of the pH by 0.2 is borne while titrating (common practice); a little less, for it falls faster the further it goes. */
+const BORNE_PH_DROP = 0.18;
+
+/** The least of its usual amounts with which a buffer holds the pH while the analyte sets two protons free for each titrant (mol/L). */
+export function leastBuffer(task: Task, plan: StagePlan, buffer: BufferRecord, knowledge: Knowledge): number {
+  const analyte = vesselSample(task, plan)
+    .filter((c) => plan.determines.includes(c.component))
+    .reduce((sum, c) => sum + c.inVesselMolPerL, 0);
+  const conditions = { ionicStrengthMolPerL: 0.1, temperatureC: task.temperatureC };
+  const capacityPerMol = bufferCapacity(bufferModel(knowledge, buffer, conditions), 1, plan.pH);
+  const needed = (2 * analyte) / (BORNE_PH_DROP * capacityPerMol);
+  const [least, most] = buffer.usualMolPerL;
+  return Number(Math.min(most, Math.max(least, needed)).toPrecision(2));
 }
