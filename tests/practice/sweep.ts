@@ -48,7 +48,11 @@ async function fates(row: IonPractice, shown: readonly RecommendedMethod[]): Pro
     }
     const alike = methods.filter((m) => m.stages.length === 1 && isAlike(m.stages[0]!.plan, way));
     const judged = await Promise.all(
-      alike.slice(0, 4).map((method) => judgeMethod(task, { method, ranges: [null] }, engine.knowledge, engine.rules)),
+      alike
+        .slice(0, 4)
+        .map((method) =>
+          judgeMethod(task, { method, ranges: [null], bearsRicherMatrix: null }, engine.knowledge, engine.rules),
+        ),
     );
     const why = judged.map((j) =>
       j.excludedBy.length > 0
