@@ -47,6 +47,7 @@ export function joinKnowledge(raw: PracticeData, equilibria: EquilibriumData, ha
     agents: byId("agents.json", practice.agents, (a) => a.id),
     masking: practice.masking,
     kinetics: practice.kinetics,
+    releases: practice.releases,
     electrodes: practice.electrodes,
     photometric: practice.photometric,
     reagents: byId("reagents.json", practice.reagents, (r) => r.id),
@@ -105,6 +106,14 @@ function checkReferences(practice: PracticeData): void {
   practice.electrodes.forEach((row, i) => {
     if (row.membraneOf !== null && !electrodes.has(row.membraneOf))
       throw new DataError("electrodes.json", `$[${i}].membraneOf`, `unknown electrode "${row.membraneOf}"`);
+  });
+  practice.releases.forEach((row, i) => {
+    const unknown = [
+      ...[row.agent, ...row.beside].filter((id) => !agents.has(id)),
+      ...row.indicators.filter((id) => !indicators.has(id)),
+      ...row.titrants.filter((id) => !titrants.has(id)),
+    ];
+    if (unknown.length > 0) throw new DataError("releases.json", `$[${i}]`, `no record for "${unknown.join('", "')}"`);
   });
   practice.masking.forEach((row, i) => {
     if (row.agent !== "none" && !agents.has(row.agent) && !remarked.has(row.agent))

@@ -240,6 +240,38 @@ export interface AgentRecord {
   readonly provenance: Provenance;
 }
 
+/** An agent that takes metals from the chelate, so that what it sets free can be titrated: one published or remembered way. */
+export interface ReleaseRecord {
+  readonly id: string;
+  readonly agent: string;
+  /** Agents that go in with it (ascorbic acid with thiourea). */
+  readonly beside: readonly string[];
+  readonly titrants: readonly string[];
+  /**
+   * Which metals give up the chelate and which keep it. "constants": the equilibrium decides how far; "record": completely freed,
+   * or completely left, as the source says, because the model lacks constants or the exchange is a matter of rate.
+   */
+  readonly ions: readonly {
+    readonly ion: ComponentId;
+    readonly freed: boolean;
+    readonly judgedBy: "constants" | "record";
+    readonly provenance?: Provenance; // where it is not that of the record
+  }[];
+  readonly pH: readonly [number, number];
+  readonly buffers: readonly string[];
+  readonly backTitrants: readonly ComponentId[];
+  readonly indicators: readonly string[];
+  /** Steps between the excess of titrant and the first end point, and between the agent and the second. */
+  readonly before: readonly ("warm" | "heat" | "boil" | "cool" | "wait")[];
+  readonly step: "fluoride-release" | "iodide-release" | "thiol-release" | null;
+  readonly after: readonly ("warm" | "heat" | "boil" | "cool" | "wait")[];
+  /** Ion total in the titrated solution up to which it is reported. */
+  readonly upTo: { readonly molPerL: number; readonly text: string } | null;
+  readonly detail: string;
+  readonly provenance: Provenance;
+  readonly otherSources: readonly Provenance[];
+}
+
 export type KineticClass = "fast" | "slow" | "inert";
 
 /** What is known of the rate of one metal with one titrant (or with any), or of its release from one dye. */
@@ -527,6 +559,7 @@ export interface Knowledge {
   readonly agents: ReadonlyMap<string, AgentRecord>;
   readonly masking: readonly MaskingRecord[];
   readonly kinetics: readonly KineticRecord[];
+  readonly releases: readonly ReleaseRecord[];
   readonly electrodes: readonly ElectrodeRecord[];
   readonly photometric: readonly PhotometricRecord[];
   readonly reagents: ReadonlyMap<string, ReagentRecord>;

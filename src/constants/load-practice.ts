@@ -16,6 +16,7 @@ import type {
   PrecedentRecord,
   PrimaryStandardRecord,
   ReagentRecord,
+  ReleaseRecord,
   SeparationRecord,
   SourceRecord,
   TitrantRecord,
@@ -24,6 +25,7 @@ import * as detection from "./detection-schema.ts";
 import { detourSchema } from "./detour-schema.ts";
 import * as schema from "./practice-schema.ts";
 import { type ReadFile, readRecords } from "./read-records.ts";
+import { releaseSchema } from "./release-schema.ts";
 import * as shelf from "./shelf-schema.ts";
 
 /** Handbook and trade knowledge as its files hold it: ions still in the spelling of the files, nothing joined. */
@@ -36,6 +38,7 @@ export interface PracticeData {
   readonly agents: readonly AgentRecord[];
   readonly masking: readonly MaskingRecord[];
   readonly kinetics: readonly KineticRecord[];
+  readonly releases: readonly ReleaseRecord[];
   readonly electrodes: readonly ElectrodeRecord[];
   readonly photometric: readonly PhotometricRecord[];
   readonly reagents: readonly ReagentRecord[];
@@ -65,6 +68,7 @@ export function loadPractice(readFile: ReadFile): PracticeData {
     kinetics: list("kinetics.json", schema.kineticSchema),
     electrodes: list("electrodes.json", detection.electrodeSchema),
     photometric: list("photometric.json", detection.photometricSchema),
+    releases: list("releases.json", releaseSchema),
     reagents: list("reagents.json", shelf.reagentSchema),
     cautions: list("cautions.json", shelf.cautionSchema),
     glassware: list("glassware.json", shelf.glasswareSchema),

@@ -48,6 +48,7 @@ export function resolveIons(
   const photometric = resolve("photometric wavelength");
   const [metal, precedent, detour] = [resolve("metal titrant"), resolve("precedent"), resolve("way round")];
   const separated = resolve("separation");
+  const release = resolve("release");
   for (const titrant of practice.titrants) modelled(titrant.id, titrant.id);
   const resolved: PracticeData = {
     ...practice,
@@ -70,6 +71,11 @@ export function resolveIons(
     })),
     masking: practice.masking.map((row) => ({ ...row, ion: mask(row.ion) })),
     kinetics: practice.kinetics.map((row) => ({ ...row, ion: kinetic(row.ion) })),
+    releases: practice.releases.map((row) => ({
+      ...row,
+      ions: row.ions.map((i) => ({ ...i, ion: release(i.ion) })),
+      backTitrants: row.backTitrants.map(release),
+    })),
     electrodes: practice.electrodes.map((row) => ({
       ...row,
       ion: electrode(row.ion),

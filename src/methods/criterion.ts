@@ -58,7 +58,8 @@ export function criterionOf(model: StageModel, determined: ReadonlySet<Component
   const bandPM = (indicator?.observerBandPM ?? 0.3) + EMPIRICAL_EXTRA_BAND_PM;
   const log10Excess = (s: VesselState): number => {
     const metal = shown.reduce((sum, m) => sum + s.unbound(m), 0);
-    const titrant = s.titrantUnbound + deaf.reduce((sum, m) => sum + s.boundToTitrant(m), 0);
+    // In a back titration the back titrant itself decides by equilibrium which of the deaf metals it takes the titrant from.
+    const titrant = s.titrantUnbound + (back ? 0 : deaf.reduce((sum, m) => sum + s.boundToTitrant(m), 0));
     return Math.log10(Math.max(titrant, FLOOR)) - Math.log10(Math.max(metal, FLOOR));
   };
   // pM up by b means metal down and free titrant up by b each: twice b on this scale.

@@ -2,6 +2,7 @@ import type { BufferRecord, ComponentId, ElectrodeRecord, Knowledge } from "../c
 import { metalKinetics } from "./kinetics.ts";
 import { pairHasComplex } from "./masks.ts";
 import { PHOTOMETRIC_DYE_PART } from "./read-photometer.ts";
+import { releaseSkeletons } from "./release-plan.ts";
 import { stepAllowed } from "./shelf.ts";
 import {
   backPlan,
@@ -21,7 +22,7 @@ import type { StagePlan } from "./types.ts";
 export function skeletonsOf(make: Make): Skeleton[] {
   const { detection } = make.task.laboratory;
   const eye = detection.includes("visual") || detection.includes("photometric");
-  const withDye = eye ? [...directSkeletons(make), ...backSkeletons(make)] : [];
+  const withDye = eye ? [...directSkeletons(make), ...backSkeletons(make), ...releaseSkeletons(make)] : [];
   return [
     ...(detection.includes("visual") ? withDye : []),
     ...(detection.includes("photometric") ? [...photometricSkeletons(make, withDye), ...selfColoured(make)] : []),

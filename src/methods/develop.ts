@@ -1,8 +1,10 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { declared, withoutFlocs } from "./alkali-masks.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
-import { metalKinetics } from "./kinetics.ts";
+import { frozenComplexes } from "./frozen.ts";
 import { benchAmount, maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
+import { evaluateRelease } from "./release.ts";
+import { releaseExcess, withReleaseAmount } from "./release-plan.ts";
 import type { Shelf } from "./shelf.ts";
 import { remembered } from "./remembered.ts";
 import { bufferAmount, excessFor, withAuxiliary, type Skeleton } from "./skeletons.ts";
@@ -35,7 +37,9 @@ export interface BareStage {
  */
 export function bareStage(task: Task, skeleton: Skeleton, knowledge: Knowledge, shelf: Shelf): BareStage {
   const at = (plan: StagePlan): BareStage => {
-    const { plan: made, bare, precipitates } = soluble(task, withExcess(task, plan, knowledge), knowledge, shelf);
+    const enough = withExcess(task, plan, knowledge);
+    const measured = enough.release === null ? enough : withReleaseAmount(task, enough, knowledge);
+    const { plan: made, bare, precipitates } = soluble(task, measured, knowledge, shelf);
     return { skeleton, plan: made, bare, threats: threatsOf(task, bare, knowledge), analytePrecipitates: precipitates };
   };
   const middle = at(skeleton.plan);
@@ -252,6 +256,7 @@ function separations(
 function withExcess(task: Task, plan: StagePlan, knowledge: Knowledge): StagePlan {
   if (plan.backTitrant === null) return plan;
   if (plan.detour) return withExcessForWay(task, plan, knowledge);
+  if (plan.release !== null) return { ...plan, excessTitrantMolPerL: releaseExcess(task, plan, knowledge) };
   const everything = vesselSample(task, plan)
     .filter((c) => knowledge.components.get(c.component)?.kind === "metal" && !plan.removed.includes(c.component))
     .reduce((s, c) => s + c.inVesselMolPerL, 0);
@@ -285,29 +290,20 @@ function withExcessForWay(task: Task, plan: StagePlan, knowledge: Knowledge): St
   return made;
 }
 
-/** Evaluates a titration, standardised alike, with complexes frozen that, once formed hot, do not exchange in the cold acid solution. */
+/**
+ * Evaluates a titration, standardised alike, with complexes frozen that, once formed hot, do not exchange in the cold acid solution.
+ * A release is read between two end points of the same kind, and stands as it is.
+ */
 export function evaluate(task: Task, plan: StagePlan, knowledge: Knowledge): StageEvaluation {
   return remembered("titration", task, plan, knowledge, () =>
-    standardisedAlike(task, evaluateStage(task, plan, knowledge, frozenComplexes(task, plan, knowledge)), knowledge),
+    plan.release !== null
+      ? evaluateRelease(task, plan, knowledge)
+      : standardisedAlike(
+          task,
+          evaluateStage(task, plan, knowledge, frozenComplexes(task, plan, knowledge)),
+          knowledge,
+        ),
   );
-}
-
-function frozenComplexes(
-  task: Task,
-  plan: StagePlan,
-  knowledge: Knowledge,
-): ReadonlyMap<ComponentId, number> | undefined {
-  if (plan.backTitrant === null || !(plan.preparation.includes("cool") || plan.preparation.includes("wait")))
-    return undefined;
-  const model = stageModel(task, plan, knowledge);
-  const formed = model.at(0);
-  const frozen = new Map<ComponentId, number>();
-  for (const metal of model.metals) {
-    const kinetics = metalKinetics(knowledge, metal, plan.titrant.id);
-    if (kinetics.class === "inert" || (kinetics.class === "slow" && plan.pH < 7))
-      frozen.set(metal, formed.boundToTitrant(metal));
-  }
-  return frozen;
 }
 
 /** Share of the analyte that may lie as a redissolving deposit when the titration starts. */

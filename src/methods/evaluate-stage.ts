@@ -5,7 +5,8 @@ import { holderOf, type EndPointBasis } from "./criterion.ts";
 import { detourAccount } from "./detour-account.ts";
 import { inertMetals } from "./kinetics.ts";
 import { readEndPoint, type EndPointFault, type EndPointRead } from "./read-end-point.ts";
-import { stageModel, type StageModel, type VesselState } from "./stage-model.ts";
+import { alphaOfAnalyte, conditionalConstants } from "./stage-measures.ts";
+import { stageModel, type StageModel } from "./stage-model.ts";
 import { vesselSample } from "./solution.ts";
 import { countedIn, type StagePlan, type Task } from "./types.ts";
 
@@ -28,7 +29,15 @@ export interface StageEvaluation extends StageAccount {
   readonly electrode: EndPointRead["electrode"]; // null unless read with one
   readonly photometric: EndPointRead["photometric"];
   readonly log10ConditionalK: ReadonlyMap<ComponentId, number>;
+  /** In a release: the end point of the excess, whose reading is discarded, mL from the burette. */
+  readonly firstReading: FirstReading | null;
   readonly log10AlphaOfAnalyte: number; // side reactions of the first determined metal before the titrant comes
+}
+
+/** The discarded first end point of a release: its volume and the observer's band around it, mL. */
+export interface FirstReading {
+  readonly volumeML: number;
+  readonly bandML: readonly [number, number];
 }
 
 const ML = 1000;
@@ -71,6 +80,7 @@ export function evaluateStage(
     presentMol,
     bandPM: read.bandPM,
     blockedBy: blockersOf(model, titrantBefore, knowledge),
+    firstReading: null,
   };
   const failed = (why: StageEvaluation["why"]): StageEvaluation => ({
     ...base,
@@ -135,24 +145,3 @@ export function evaluateStage(
 /** What the burette has to find, mol: the analyte, or the metal that a way round leaves for it. */
 const metalMol = (model: StageModel, presentMol: number): number =>
   model.solution.way ? Math.max(model.solution.way.expectedMolPerL * model.volumeL, 1e-9) : presentMol;
-
-/** K' = [MY] / ([M not bound to Y] [Y not bound to metal]) as it stands in the vessel, log10, per metal bound at all. */
-function conditionalConstants(model: StageModel, state: VesselState): Map<ComponentId, number> {
-  const out = new Map<ComponentId, number>();
-  const frozen = new Set(model.held.filter((h) => h.why === "kinetically-inert").map((h) => h.component));
-  for (const metal of model.metals) {
-    if (frozen.has(metal)) continue; // its complex is out of the equilibrium: what is left says nothing of its strength
-    const bound = state.boundToTitrant(metal);
-    const value =
-      Math.log10(bound) - Math.log10(state.unbound(metal) - state.onDye(metal)) - Math.log10(state.titrantUnbound);
-    if (Number.isFinite(value)) out.set(metal, value);
-  }
-  return out;
-}
-
-function alphaOfAnalyte(model: StageModel, start: VesselState, plan: StagePlan): number {
-  const metal = countedIn(plan)[0];
-  if (metal === undefined) return 0;
-  const value = Math.log10(start.unbound(metal) / start.free(metal));
-  return Number.isFinite(value) ? value : 0;
-}

@@ -146,6 +146,7 @@ function optionsFor(threat: Threat, plan: StagePlan, knowledge: Knowledge, shelf
     // Hydroxide is what the pH itself does; its precipitates are in the equilibrium of the plan already.
     if (agent.id !== "hydroxide" && !shelf(agent.id)) continue;
     if (agent.component !== null && ofWay.has(agent.component)) continue;
+    if (agent.id === plan.release?.agent) continue; // what frees the analyte cannot be in the vessel before
     // The lower end of an agent's range is safety (cyanide, sulfide); the upper end is only the round figure of its records.
     if (plan.pH < agent.pH[0] || plan.pH > agent.pH[1] + 1) continue;
     const record = rowsFor(knowledge, agent.id, threat.component, plan.pH).find(

@@ -14,6 +14,7 @@ import { protonFixed, vesselSolver, type VesselSolution } from "./vessel-solver.
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
 import { inertIonsOf } from "./inert-ions.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
+import { agentComponents, classifyRows } from "./stage-rows.ts";
 import { heldByWay, solidsOfDetour } from "./way-round.ts";
 import { countedIn, type StagePlan, type Task } from "./types.ts";
 
@@ -57,55 +58,8 @@ export interface VesselState {
   readonly dyeRatioOf: (metal: ComponentId) => number;
 }
 
-interface Rows {
-  readonly unboundByMetal: ReadonlyMap<ComponentId, readonly (readonly [row: number, metals: number])[]>;
-  readonly titrantFree: readonly (readonly [row: number, titrants: number])[];
-  readonly titrantByMetal: ReadonlyMap<ComponentId, readonly (readonly [row: number, titrants: number])[]>;
-  readonly dyeByMetal: ReadonlyMap<ComponentId, readonly (readonly [row: number, dyes: number])[]>;
-  readonly metalOnDye: ReadonlyMap<ComponentId, readonly (readonly [row: number, metals: number])[]>;
-  readonly dyeFree: readonly (readonly [row: number, dyes: number])[];
-}
-
 const MIN_IONIC_STRENGTH_MOL_PER_L = 1e-4; // pure water never stands in a titration vessel
 const IONIC_STRENGTH_AGREES = 0.03; // relative; a shift below this moves no log K by more than 0.005
-
-function classifyRows(
-  system: PreparedSystem,
-  titrant: string,
-  dye: ComponentId | null,
-  metals: ReadonlySet<ComponentId>,
-  heldByWay: (species: Readonly<Record<ComponentId, number>>) => boolean,
-): Rows {
-  const titrantByMetal = new Map<ComponentId, [number, number][]>();
-  const dyeByMetal = new Map<ComponentId, [number, number][]>();
-  const metalOnDye = new Map<ComponentId, [number, number][]>();
-  const dyeFree: [number, number][] = [];
-  const titrantFree: [number, number][] = [];
-  const unboundByMetal = new Map<ComponentId, [number, number][]>();
-  const push = (map: Map<ComponentId, [number, number][]>, key: ComponentId, value: [number, number]): void => {
-    const list = map.get(key);
-    if (list) list.push(value);
-    else map.set(key, [value]);
-  };
-  system.species.forEach((species, row) => {
-    const inIt = Object.keys(species.components).filter((c) => metals.has(c));
-    const titrants = species.components[titrant] ?? 0;
-    if (titrants > 0) {
-      if (inIt.length === 0) titrantFree.push([row, titrants]);
-      for (const metal of inIt) push(titrantByMetal, metal, [row, titrants]);
-    } else if (!heldByWay(species.components))
-      for (const metal of inIt) push(unboundByMetal, metal, [row, species.components[metal]!]);
-    const dyes = dye === null ? 0 : (species.components[dye] ?? 0);
-    if (dyes > 0) {
-      if (inIt.length === 0) dyeFree.push([row, dyes]);
-      for (const metal of inIt) {
-        push(dyeByMetal, metal, [row, dyes]);
-        push(metalOnDye, metal, [row, species.components[metal]!]);
-      }
-    }
-  });
-  return { titrantByMetal, titrantFree, unboundByMetal, dyeByMetal, metalOnDye, dyeFree };
-}
 
 /**
  * Builds the model of one titration: composition, constants at its own ionic strength, and a solver for any burette volume.
@@ -232,7 +186,10 @@ export function stageModel(
   });
   system = prepare(ionicStrengthMolPerL, (s) => stays.has(s.id));
   const base = columns(system);
-  const rows = classifyRows(system, titrant, dye, metals, heldByWay(plan, knowledge));
+  const rows = classifyRows(system, titrant, dye, metals, {
+    way: heldByWay(plan, knowledge),
+    agents: agentComponents(plan, knowledge),
+  });
 
   const solve = vesselSolver(system, plan.pH, metals);
   const buretteColumn = system.index.get(burette.component)!;
@@ -263,7 +220,8 @@ export function stageModel(
     const dyeRatioOf = (metal: ComponentId): number => {
       const half = dyeBasis.byTable.get(metal);
       if (half !== undefined) {
-        const concentration = half.counts === "free-ion" ? free(metal) : unbound(metal);
+        // A table that counts all that the titrant leaves knows nothing of masks: what an agent holds the dye does not see.
+        const concentration = half.counts === "free-ion" ? free(metal) : sum(rows.unheldByMetal.get(metal));
         return (concentration * 10 ** half.pM) ** half.metalsPerDye;
       }
       const bound = rows.dyeByMetal.get(metal);

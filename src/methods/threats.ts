@@ -31,7 +31,8 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
     evaluation.status !== "failed" &&
     100 * stageBudget(task, evaluation, knowledge).expanded <= task.requirementPercent;
   const allowed = ((meets ? BORNE_PART_OF_REQUIREMENT : IGNORED_PART_OF_REQUIREMENT) * task.requirementPercent) / 100;
-  const equivalence = evaluation.status === "failed" ? atCommonEquivalence(model, evaluation.presentMol) : null;
+  const equivalence =
+    evaluation.status === "failed" && plan.release === null ? atCommonEquivalence(model, evaluation.presentMol) : null;
   const threats: Threat[] = [];
   const determined = new Set(plan.determines);
   const present = evaluation.presentMol / model.volumeL;

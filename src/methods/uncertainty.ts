@@ -42,7 +42,9 @@ function toleranceOf(knowledge: Knowledge, kind: GlasswareRecord["kind"], nomina
  */
 export function stageBudget(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): Budget {
   const { plan } = evaluation.model;
-  const back = plan.backTitrant !== null;
+  // A release counts the titre between its two end points: the excess cancels.
+  const first = evaluation.firstReading;
+  const back = plan.backTitrant !== null && plan.release === null;
   // In a back titration the result is a difference: the same millilitre weighs more against it.
   // So it is with a way round, whose result is what the metal stands for.
   const { detour } = plan;
@@ -63,6 +65,10 @@ export function stageBudget(task: Task, evaluation: StageEvaluation, knowledge: 
   // Half the observer's band as a rectangular limit, and never better than half a drop.
   const bandML = Math.abs(evaluation.bandML[1] - evaluation.bandML[0]) / 2;
   add("end point", Math.hypot(bandML / RECTANGULAR, DROP_ML / 2 / RECTANGULAR) / resultML);
+  if (first) {
+    const firstBandML = Math.abs(first.bandML[1] - first.bandML[0]) / 2;
+    add("first end point", Math.hypot(firstBandML / RECTANGULAR, DROP_ML / 2 / RECTANGULAR) / resultML);
+  }
   add("titrant strength", TITRANT_STRENGTH_RELATIVE);
   add("temperature", TEMPERATURE_RELATIVE);
   add("blank", DROP_ML / 2 / RECTANGULAR / resultML);

@@ -122,6 +122,7 @@ export function smallKnowledge(
     masking: [],
     detours: new Map(),
     kinetics: [],
+    releases: [],
     electrodes: [],
     photometric: [],
     reagents: new Map(),
