@@ -214,6 +214,13 @@ const STAGE_FACTS = facts("stage", "solutionStatus", [
   ],
   ["detourSurplusRatio", "number", null, "may be absent", "reagent left over to what the analyte takes, in a surplus"],
   ["chelateAdded", "string", null, "always", 'chelate added for a displacement, "none" where there is none'],
+  ["releaseAgent", "string", null, "always", 'agent that sets the titrant free, "none" where there is none'],
+  ["releaseBasis", "string", null, "always", "equilibrium, record or none: on what the release rests"],
+  ["releaseMolPerL", "number", "mol/L", "always", "release agent in the titrated solution, 0 where there is none"],
+  ["alsoReleased", "strings", null, "always", "metals of the matrix that the agent frees too"],
+  ["leftBound", "strings", null, "always", "metals of the matrix that stay bound through a release"],
+  ["leftBoundCount", "number", null, "always", "how many metals stay bound through a release"],
+  ["ratioToReleaseLimit", "number", null, "always", "analyte over the reported limit of the release, 0 without one"],
   ["solutionStatus", "string", null, "always", "converged or failed; numbers exist when converged"],
 ]);
 
@@ -301,6 +308,7 @@ const VOCABULARY: Readonly<Record<string, readonly string[]>> = {
   detourKind: ["none", "surplus", "precipitate", "exchange", "conversion"],
   detourRests: ["none", "equilibrium", "composition"],
   chelateAdded: ["none", "Mg-EDTA", "Zn-EDTA", "Cu-EDTA", "Zn-EGTA"],
+  releaseBasis: ["none", "equilibrium", "record"],
   role: ["analyte", "matrix"],
   kind: ["metal", "ligand"],
   maskedVia: ["complexation", "precipitation", "reduction", "oxidation", "kinetic", "none"],

@@ -292,17 +292,17 @@ function withExcessForWay(task: Task, plan: StagePlan, knowledge: Knowledge): St
 
 /**
  * Evaluates a titration, standardised alike, with complexes frozen that, once formed hot, do not exchange in the cold acid solution.
- * A release is read between two end points of the same kind, and stands as it is.
+ * A release is read between two end points of the same kind.
  */
 export function evaluate(task: Task, plan: StagePlan, knowledge: Knowledge): StageEvaluation {
   return remembered("titration", task, plan, knowledge, () =>
-    plan.release !== null
-      ? evaluateRelease(task, plan, knowledge)
-      : standardisedAlike(
-          task,
-          evaluateStage(task, plan, knowledge, frozenComplexes(task, plan, knowledge)),
-          knowledge,
-        ),
+    standardisedAlike(
+      task,
+      plan.release === null
+        ? evaluateStage(task, plan, knowledge, frozenComplexes(task, plan, knowledge))
+        : evaluateRelease(task, plan, knowledge),
+      knowledge,
+    ),
   );
 }
 

@@ -1,4 +1,4 @@
-import type { BufferRecord, ComponentId, Knowledge, ReleaseRecord } from "../constants/knowledge.ts";
+import type { AgentRecord, BufferRecord, ComponentId, Knowledge, ReleaseRecord } from "../constants/knowledge.ts";
 import { benchAmount } from "./masks.ts";
 import { evaluateRelease } from "./release.ts";
 import { beforeRelease, boundByRecord, releaseRecordOf } from "./release-vessels.ts";
@@ -17,6 +17,9 @@ import { vesselSample } from "./solution.ts";
 import { stageModel } from "./stage-model.ts";
 import type { StagePlan, Task } from "./types.ts";
 import { stageBudget } from "./uncertainty.ts";
+
+/** How the purpose of an agent begins that goes in only then. */
+export const AFTER_FIRST_END_POINT = "after the first end point";
 
 /** Releases that free all of these ions, as the records have them: titrant in excess, first end point, agent, second end point. */
 export function releaseSkeletons(make: Make): Skeleton[] {
@@ -68,7 +71,7 @@ function releasePlan(
     auxiliary: agents.map((id) => ({
       id,
       molPerL: knowledge.agents.get(id)?.usualMolPerL ?? 0.05,
-      purpose: `after the first end point: sets free the titrant of ${determines.join(", ")}`,
+      purpose: `${AFTER_FIRST_END_POINT}: sets free the titrant of ${determines.join(", ")}`,
     })),
     preparation: [
       "excess-titrant-first",
@@ -110,6 +113,14 @@ export function releaseExcess(task: Task, plan: StagePlan, knowledge: Knowledge)
   return Number((bound * (1 + EXCESS_OVER_ALL) + EXCESS_OVER_ANALYTE * analyte).toPrecision(3));
 }
 
+/** The amount usual for this agent with the ions determined, where their record says so, else the agent's own. */
+function usualAmount(plan: StagePlan, agent: AgentRecord, knowledge: Knowledge): number {
+  const rows = knowledge.masking.filter(
+    (r) => r.agent === agent.id && plan.determines.includes(r.ion) && r.effect === "masks" && r.usualMolPerL !== null,
+  );
+  return rows.length > 0 ? Math.max(...rows.map((r) => r.usualMolPerL!)) : agent.usualMolPerL;
+}
+
 /** The plan with another amount of its release agent. */
 function withAgent(plan: StagePlan, molPerL: number): StagePlan {
   const release = plan.release;
@@ -140,7 +151,7 @@ export function withReleaseAmount(task: Task, plan: StagePlan, knowledge: Knowle
   const freed = vesselSample(task, plan)
     .filter((c) => record.ions.some((i) => i.freed && i.ion === c.component))
     .reduce((s, c) => s + c.inVesselMolPerL, 0);
-  const usual = agent.usualMolPerL;
+  const usual = usualAmount(plan, agent, knowledge);
   const need = benchAmount(LIGANDS_PER_METAL * freed);
   let best = plan;
   let least = Number.POSITIVE_INFINITY;

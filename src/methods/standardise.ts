@@ -1,24 +1,26 @@
-import type { Knowledge } from "../constants/knowledge.ts";
+import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { remembered } from "./remembered.ts";
-import type { ComponentId } from "../constants/knowledge.ts";
+import { evaluateRelease } from "./release.ts";
+import { releaseExcess } from "./release-plan.ts";
 import type { StagePlan, Task } from "./types.ts";
 
 /**
  * The evaluation as it counts when the titrant was standardised against the same metal with the same dye, pH and buffer: what the
  * observer does wrong in both titrations cancels (common practice: Ca or Mg for hardness, Zn for hexamine work). In a back
  * titration the blank, titrant against back titrant to the same end point, does the same.
- * Left as it is where no primary standard of the metal is on record, or where the standard titration itself has no end point.
+ * A release is standardised as a whole, with the metal itself. Left as it is where no primary standard of the metal is on record, or where the standard titration itself has no end point.
  */
 export function standardisedAlike(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): StageEvaluation {
   const { plan } = evaluation.model;
   if (evaluation.status === "failed" || evaluation.basis === "empirical") return evaluation;
   if (plan.detour) return blankOfDetour(task, evaluation, knowledge);
-  if (plan.backTitrant === null && !plan.determines.every((ion) => knowledge.standards.some((s) => s.forIon === ion)))
+  const blankServes = plan.backTitrant !== null && plan.release === null;
+  if (!blankServes && !plan.determines.every((ion) => knowledge.standards.some((s) => s.forIon === ion)))
     return evaluation;
   const standard = standardPlan(task, plan);
   const alone = remembered("standard", task, standard, knowledge, () =>
-    evaluateStage(standardTask(task, plan), standard, knowledge),
+    standardEvaluation(standardTask(task, plan), standard, knowledge),
   );
   // An end point that is wrong by more than this is not one to standardise with: the method itself is wrong.
   if (alone.status === "failed" || Math.abs(alone.biasFraction) > CANCELS_UP_TO) return evaluation;
@@ -73,6 +75,13 @@ const metalPlan = (plan: StagePlan, metal: ComponentId, molPerL: number): StageP
   added: [],
   excessTitrantMolPerL: plan.backTitrant ? STANDARD_EXCESS * molPerL : 0,
 });
+
+/** The same titration of the metal alone; a release is done on it as a whole. */
+function standardEvaluation(own: Task, plan: StagePlan, knowledge: Knowledge): StageEvaluation {
+  if (plan.release === null) return evaluateStage(own, plan, knowledge);
+  const excessTitrantMolPerL = releaseExcess(own, plan, knowledge);
+  return evaluateRelease(own, { ...plan, excessTitrantMolPerL }, knowledge);
+}
 
 /** Largest bias of the standard titration, relative, that an analyst would let cancel. */
 const CANCELS_UP_TO = 0.02;

@@ -12,6 +12,7 @@ import { countedIn, type Task } from "../methods/types.ts";
 import { stageBudget } from "../methods/uncertainty.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import { detourFacts } from "./detour-facts.ts";
+import { releaseFacts } from "./release-facts.ts";
 import { hazardTagsOf, reagentsOf } from "./reagents.ts";
 
 /** A method on its way to judgement, with what the facts need besides its evaluation. */
@@ -225,6 +226,7 @@ export function stageFacts(
     chelateAdded: plan.chelate ? `${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : "none",
     ...detectionFacts(stage, knowledge),
     solutionStatus: ok ? "converged" : "failed",
+    ...releaseFacts(task, stage, knowledge),
   });
 }
 
@@ -244,6 +246,8 @@ const NOTICEABLE_RATIO = 0.05;
 /** Metals of the matrix, left in the vessel, that the dye is also in use for at this pH. */
 function alsoShown(task: Task, stage: DevelopedStage): ComponentId[] {
   const { plan, evaluation } = stage;
+  // What stays bound through a release is in neither colour.
+  if (plan.release !== null) return [];
   const analyteMolPerL = evaluation.presentMol / evaluation.model.volumeL;
   const used = (evaluation.model.indicator?.uses ?? [])
     .filter((u) => u.mode === "direct" && plan.pH >= u.pH[0] - 0.5 && plan.pH <= u.pH[1] + 0.5)

@@ -1,5 +1,6 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
+import { AFTER_FIRST_END_POINT } from "../methods/release-plan.ts";
 import type { Detour, StagePlan, Task } from "../methods/types.ts";
 import { detourRecord } from "../methods/way-round.ts";
 import type { JudgedMethod } from "./judge.ts";
@@ -34,6 +35,14 @@ function seenBy(plan: StagePlan, knowledge: Knowledge): string {
   return dye ?? "the end point";
 }
 
+/** The agents that go in after the first end point of a release. */
+const releaseAgents = (plan: StagePlan): string[] =>
+  plan.release === null
+    ? []
+    : plan.auxiliary
+        .filter((a) => a.id === plan.release!.agent || a.purpose.startsWith(AFTER_FIRST_END_POINT))
+        .map((a) => a.id);
+
 function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): string {
   const { plan } = stage;
   if (plan.detour) return detourWords(task, stage, plan.detour, knowledge);
@@ -53,11 +62,14 @@ function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): st
     plan.masking.length > 0
       ? `, with ${list(plan.masking.map((m) => `${m.agent === "hydroxide" ? "the alkali" : nameOf(m.agent)} against ${list(m.masks.map(ion))}`))}`
       : "";
-  const helped = plan.auxiliary.length > 0 ? ` and ${list(plan.auxiliary.map((a) => nameOf(a.id)))} present` : "";
+  const present = plan.auxiliary.filter((a) => !releaseAgents(plan).includes(a.id));
+  const helped = present.length > 0 ? ` and ${list(present.map((a) => nameOf(a.id)))} present` : "";
   const buffer = nameOf(plan.buffer.id);
-  const core = plan.backTitrant
-    ? `add ${plan.titrant.id} in excess to ${what}${heat}, and titrate the excess back with ${plan.backTitrant.molPerL} mol/L ${plan.backTitrant.id} at pH ${plan.pH} (${buffer}) to ${dye}`
-    : `titrate ${what} with ${plan.titrant.molPerL} mol/L ${plan.titrant.id} at pH ${plan.pH} (${buffer})${plan.preparation.includes("boil") ? " at the boil" : plan.preparation.includes("heat") ? " hot" : ""} to ${dye}${plan.chelate && plan.electrode === null && plan.indicator?.id !== "Cu-PAN" ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : ""}`;
+  const core = plan.release
+    ? `add ${plan.titrant.id} in excess to ${what}${heat}, titrate the excess with ${plan.backTitrant!.molPerL} mol/L ${plan.backTitrant!.id} at pH ${plan.pH} (${buffer}) to ${dye} and discard that reading, add ${list(releaseAgents(plan).map(nameOf))}, and titrate on what ${releaseAgents(plan).length > 1 ? "they set" : "it sets"} free`
+    : plan.backTitrant
+      ? `add ${plan.titrant.id} in excess to ${what}${heat}, and titrate the excess back with ${plan.backTitrant.molPerL} mol/L ${plan.backTitrant.id} at pH ${plan.pH} (${buffer}) to ${dye}`
+      : `titrate ${what} with ${plan.titrant.molPerL} mol/L ${plan.titrant.id} at pH ${plan.pH} (${buffer})${plan.preparation.includes("boil") ? " at the boil" : plan.preparation.includes("heat") ? " hot" : ""} to ${dye}${plan.chelate && plan.electrode === null && plan.indicator?.id !== "Cu-PAN" ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : ""}`;
   const sentence = `${separated}${core}${masks}${helped}`;
   return sentence.charAt(0).toUpperCase() + sentence.slice(1);
 }

@@ -1,6 +1,7 @@
 import type { Brief, RecommendedMethod, StageDocument } from "./contract.ts";
 import { detourSteps } from "./text-detour.ts";
 import { backTitrantOf } from "./text-method.ts";
+import { AFTER_FIRST_END_POINT } from "../methods/release-plan.ts";
 import { figures, listed, PREPARATION_WORDS, reagentWords } from "./text-words.ts";
 
 /**
@@ -8,6 +9,7 @@ import { figures, listed, PREPARATION_WORDS, reagentWords } from "./text-words.t
  * hydrogen fluoride. All others go in first, while metals that hydrolyse are still dissolved.
  */
 const AFTER_THE_BUFFER = new Set(["cyanide", "sulfide", "fluoride"]);
+const RELEASE_WORDS = ["fluoride-release", "iodide-release", "thiol-release"] as const;
 const FLASK_FIRST = new Set([
   "remove-carbonate",
   "separate",
@@ -23,6 +25,36 @@ export function stepsOf(method: RecommendedMethod, brief: Brief): readonly strin
 }
 
 function stageSteps(stage: StageDocument, index: number, method: RecommendedMethod, brief: Brief): readonly string[] {
+  if (stage.vessel.release !== null) return releaseSteps(stage, index, method, brief);
+  return plainSteps(stage, index, method, brief);
+}
+
+/** A release is the same titration twice: up to the first end point without the agent, then with it. */
+function releaseSteps(stage: StageDocument, index: number, method: RecommendedMethod, brief: Brief): readonly string[] {
+  const late = stage.auxiliary.filter((a) => a.purpose.startsWith(AFTER_FIRST_END_POINT));
+  const words = RELEASE_WORDS.map((w) => stage.preparation.indexOf(w)).find((at) => at >= 0);
+  // Without a word of its own the release follows the first pause.
+  const pauses = [stage.preparation.indexOf("cool"), stage.preparation.indexOf("wait")].filter((at) => at >= 0);
+  const split = words ?? (pauses.length > 0 ? Math.min(...pauses) : 0);
+  const before: StageDocument = {
+    ...stage,
+    mode: "back",
+    determines: [],
+    titreML: null,
+    auxiliary: stage.auxiliary.filter((a) => !late.includes(a)),
+    preparation: stage.preparation.slice(0, words ?? split + 1),
+  };
+  const back = backTitrantOf(stage, method) ?? method.titrant;
+  const titre = stage.titreML === null ? "" : `: about ${figures(stage.titreML)} mL more`;
+  return [
+    ...plainSteps(before, index, method, brief),
+    ...late.map((a) => `Add ${amount(a.id, a.molPerL)}, which sets free the titrant of ${listed(stage.determines)}.`),
+    ...stage.preparation.slice(split + 1).map((step) => PREPARATION_WORDS[step]),
+    `Titrate on with ${figures(back.molPerL)} mol/L ${back.id} to the same shade${titre}. This volume alone gives ${listed(stage.determines)}.`,
+  ];
+}
+
+function plainSteps(stage: StageDocument, index: number, method: RecommendedMethod, brief: Brief): readonly string[] {
   const titrant = stage.titrant ?? method.titrant;
   const backTitrant = backTitrantOf(stage, method);
   const agents = [
