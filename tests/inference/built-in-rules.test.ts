@@ -25,6 +25,7 @@ describe("the built-in rules", () => {
         "practicability",
         "precipitation",
         "precision",
+        "release",
         "safety",
       ].sort(),
     );
