@@ -110,7 +110,9 @@ export function releaseExcess(task: Task, plan: StagePlan, knowledge: Knowledge)
   const bound =
     model.metals.reduce((s, m) => s + (whole.has(m) ? 0 : state.boundToTitrant(m)), 0) +
     [...whole.values()].reduce((s, v) => s + v, 0);
-  return Number((bound * (1 + EXCESS_OVER_ALL) + EXCESS_OVER_ANALYTE * analyte).toPrecision(3));
+  // Titrant that an earlier titration left is bound to its own metals already.
+  const there = plan.carried?.titrantMolPerL ?? 0;
+  return Number(Math.max(0, bound * (1 + EXCESS_OVER_ALL) + EXCESS_OVER_ANALYTE * analyte - there).toPrecision(3));
 }
 
 /** The amount usual for this agent with the ions determined, where their record says so, else the agent's own. */

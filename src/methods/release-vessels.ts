@@ -1,6 +1,7 @@
 import type { ComponentId, Knowledge, ReleaseRecord } from "../constants/knowledge.ts";
 import { frozenComplexes } from "./frozen.ts";
 import { inertMetals, metalKinetics } from "./kinetics.ts";
+import { pairHasConstants, rowsFor } from "./masks.ts";
 import { vesselSample } from "./solution.ts";
 import { stageModel, type StageModel, type VesselState } from "./stage-model.ts";
 import type { MaskingStep, StagePlan, Task } from "./types.ts";
@@ -50,9 +51,26 @@ export function beforeRelease(plan: StagePlan, record: ReleaseRecord | undefined
   };
 }
 
-/** Metals that the record says are freed although the model cannot follow it. */
-const freedByRecord = (record: ReleaseRecord | undefined): ComponentId[] =>
-  (record?.ions ?? []).filter((i) => i.freed && i.judgedBy === "record").map((i) => i.ion);
+/**
+ * Metals that are freed although the model cannot follow it: those the record says so of, and those it does not name but the
+ * agent is known to mask at this pH, where no constant says how far: a gap is not an absence.
+ */
+function freedWithoutConstants(
+  plan: StagePlan,
+  record: ReleaseRecord | undefined,
+  metals: Iterable<ComponentId>,
+  knowledge: Knowledge,
+): ComponentId[] {
+  const agent = knowledge.agents.get(plan.release?.agent ?? "");
+  return [...metals].filter((ion) => {
+    const named = record?.ions.find((i) => i.ion === ion);
+    if (named) return named.freed && named.judgedBy === "record";
+    if (!agent || ion === plan.backTitrant?.id) return false;
+    return rowsFor(knowledge, agent.id, ion, plan.pH).some(
+      (r) => (r.effect === "masks" || r.effect === "partial") && !pairHasConstants(knowledge, agent, ion, r.via),
+    );
+  });
+}
 const leftByRecord = (record: ReleaseRecord | undefined): ComponentId[] =>
   (record?.ions ?? []).filter((i) => !i.freed && i.judgedBy === "record").map((i) => i.ion);
 
@@ -113,7 +131,7 @@ export function releaseVessels(task: Task, plan: StagePlan, knowledge: Knowledge
   const after = (first: VesselState): StageModel => {
     const back = plan.backTitrant?.id;
     const masked = new Set(plan.masking.flatMap((m) => m.masks));
-    const freed = freedByRecord(record).filter((ion) => sampleMol.has(ion) && !masked.has(ion));
+    const freed = freedWithoutConstants(plan, record, sampleMol.keys(), knowledge).filter((ion) => !masked.has(ion));
     const hotAfter = isHot(record?.after ?? []);
     const stays = new Map<ComponentId, number>();
     for (const [ion, molPerL] of frozen)
