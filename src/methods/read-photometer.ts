@@ -76,6 +76,8 @@ const LEVEL_AFTER = [1.15, 1.2, 1.25, 1.3];
 const LEVEL_BEFORE = [0.4, 0.5, 0.6, 0.7];
 /** A change smaller than this share of the colour is not a break. */
 const LEAST_CHANGE = 0.1;
+/** A level branch steeper than this part of the steep one bends into it: there is no break to extrapolate. */
+const LEVEL_ENOUGH = 0.2;
 
 /**
  * Reads a titration with a photometer: the end is where the two straight branches of the computed absorbance meet. No observer
@@ -111,7 +113,7 @@ export function readWithPhotometer(
     return search.found ? search.volumeL : null;
   };
   const steep = steepBranch(signal, crossing);
-  if (steep === null) return failed("no-break");
+  if (steep === null || Math.abs(level.slopePerL) > LEVEL_ENOUGH * Math.abs(steep.slopePerL)) return failed("no-break");
   const volumeL = (level.intercept - steep.intercept) / (steep.slopePerL - level.slopePerL);
   if (!(volumeL > 0.2 * expected && volumeL < 3 * expected)) return failed("no-break");
   const end = model.at(volumeL);
