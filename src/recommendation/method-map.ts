@@ -4,6 +4,7 @@ import { everyWay } from "../methods/every-way.ts";
 import { roughCost, seenWith, type EvaluatedMethod } from "../methods/methods.ts";
 import type { Task } from "../methods/types.ts";
 import { readBrief } from "./brief.ts";
+import { readReagents } from "./brief-reagents.ts";
 import {
   briefSchema,
   SINGLE_MODES,
@@ -158,7 +159,7 @@ function mappedMethod(task: Task, brief: Brief, judged: JudgedMethod, knowledge:
     relativeExpandedUncertaintyPercent: document.predicted.relativeExpandedUncertaintyPercent,
     reservations: document.reservations,
     cautions: document.cautions,
-    brief: withOwnBottles(brief, judged),
+    brief: withOwnBottles(brief, judged, knowledge),
   };
 }
 
@@ -168,12 +169,11 @@ const STEP_BOTTLES: Readonly<Record<string, string>> = { alcohol: "alcohol" };
 const ACID_AND_ALKALI = ["nitric-acid", "sodium-hydroxide"] as const;
 
 /** The same question asked of a shelf that holds only what the method uses, so that the full answer is about this method. */
-function withOwnBottles(brief: Brief, judged: JudgedMethod): Brief {
+function withOwnBottles(brief: Brief, judged: JudgedMethod, knowledge: Knowledge): Brief {
   const ids = judged.method.stages.flatMap(({ plan }) => [
     plan.titrant.id,
     ...(plan.backTitrant ? [plan.backTitrant.id] : []),
     ...(plan.indicator ? [plan.indicator.id] : []),
-    ...(plan.electrode === null ? [] : [plan.electrode]),
     ...(plan.detour ? [plan.detour.reagent.id] : []),
     ...(plan.release ? [plan.release.agent] : []),
     plan.buffer.id,
@@ -184,7 +184,12 @@ function withOwnBottles(brief: Brief, judged: JudgedMethod): Brief {
   const detection = [...new Set(judged.method.stages.map((s) => s.plan.detection))];
   return {
     ...brief,
-    laboratory: { ...brief.laboratory, detection, available: [...new Set([...ids, ...ACID_AND_ALKALI])] },
+    laboratory: {
+      ...brief.laboratory,
+      detection,
+      // Only what a brief can name: a trace that gives an electrode its couple is no bottle of the shelf.
+      available: [...readReagents([...ids, ...ACID_AND_ALKALI], [], knowledge).ids],
+    },
   };
 }
 

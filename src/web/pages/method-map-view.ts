@@ -1,4 +1,4 @@
-import type { ComponentRecord } from "../../constants/knowledge.ts";
+import type { ComponentRecord, Knowledge } from "../../constants/knowledge.ts";
 import {
   SINGLE_MODES,
   type IonMap,
@@ -43,10 +43,16 @@ const SHORT_REASON: Readonly<Record<MapReason["kind"], string>> = {
 
 const statusView = (status: MapStatus): object => ({ ...STATUS[status], id: status });
 
+/** Names of the electrodes by their ids. */
+type ElectrodeNames = ReadonlyMap<string, string>;
+const electrodeNames = (knowledge: Knowledge): ElectrodeNames =>
+  new Map(knowledge.electrodes.map((e) => [e.id, e.name]));
+
 /** The table of all ions. */
 export function methodMapView({ knowledge }: WebServices, names: Names, map: MethodMap): object {
   const opened = (mode: string): number =>
     map.ions.filter((i) => i.modes.some((m) => m.mode === mode && m.methods.length > 0)).length;
+  const electrodes = electrodeNames(knowledge);
   return {
     shell: shell(knowledge, "Method map", "method-map"),
     question: MAP_QUESTION,
@@ -66,7 +72,7 @@ export function methodMapView({ knowledge }: WebServices, names: Names, map: Met
       name: ion.name,
       cells: ion.modes.map((mode) => ({
         status: statusView(mode.status),
-        detail: cellDetail(mode, names),
+        detail: cellDetail(mode, names, electrodes),
         more: moreTitrants(mode),
       })),
     })),
@@ -75,7 +81,7 @@ export function methodMapView({ knowledge }: WebServices, names: Names, map: Met
   };
 }
 
-function cellDetail(mode: MappedMode, names: Names): Markup {
+function cellDetail(mode: MappedMode, names: Names, electrodes: ElectrodeNames): Markup {
   const best = mode.methods[0];
   if (!best) return joinMarkup([mode.reasons[0] ? SHORT_REASON[mode.reasons[0].kind] : ""]);
   return joinMarkup([
@@ -83,7 +89,7 @@ function cellDetail(mode: MappedMode, names: Names): Markup {
     ...(best.through === null ? [] : [" through ", names.name(best.through)]),
     ...(best.backTitrant ? [", back with ", names.name(best.backTitrant.id)] : []),
     `, pH ${fixed(best.pH, 1)}, `,
-    seenBy(best, names),
+    seenBy(best, names, electrodes),
     `: ${percent(best.relativeExpandedUncertaintyPercent)}`,
   ]);
 }
@@ -91,11 +97,11 @@ function cellDetail(mode: MappedMode, names: Names): Markup {
 const moreTitrants = (mode: MappedMode): string =>
   mode.methods.length < 2 ? "" : `also ${listing(mode.methods.slice(1).map((m) => m.titrant.id))}`;
 
-const seenBy = (method: MappedMethod, names: Names): Markup =>
-  joinMarkup([
-    method.indicator === null ? wordsOf({}, method.electrode ?? method.detection) : names.name(method.indicator),
-    ...(method.detection === "photometric" ? [", photometric"] : []),
-  ]);
+const seenBy = (method: MappedMethod, names: Names, electrodes: ElectrodeNames): Markup => {
+  if (method.electrode !== null) return names.set(electrodes.get(method.electrode) ?? method.electrode);
+  const dye = method.indicator === null ? "own colour" : names.name(method.indicator);
+  return joinMarkup([dye, ...(method.detection === "photometric" ? [", photometer"] : [])]);
+};
 
 const capital = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
 
@@ -108,6 +114,7 @@ export function ionMapView(
   [before, after]: readonly [IonMap | undefined, IonMap | undefined],
 ): object {
   const component = [...knowledge.components.values()].find((c) => c.ion === ion.ion);
+  const electrodes = electrodeNames(knowledge);
   const link = (to: IonMap | undefined): object | null =>
     to ? { href: mapHref(to.ion), formula: names.name(to.ion) } : null;
   return {
@@ -119,7 +126,7 @@ export function ionMapView(
     constantsHref: constantsHref(component?.id ?? ion.ion),
     answerHref: `/recommendation?brief=${encodeBrief(ion.brief)}`,
     briefHref: `/?brief=${encodeBrief(ion.brief)}`,
-    modes: ion.modes.map((mode) => modeView(mode, names, catalogue)),
+    modes: ion.modes.map((mode) => modeView(mode, names, catalogue, electrodes)),
     log10K: ion.log10K.map((k) => ({
       titrant: k.titrant,
       best: fixed(k.best, 1),
@@ -132,13 +139,18 @@ export function ionMapView(
   };
 }
 
-function modeView(mode: MappedMode, names: Names, catalogue: ReadonlyMap<string, FactListing>): object {
+function modeView(
+  mode: MappedMode,
+  names: Names,
+  catalogue: ReadonlyMap<string, FactListing>,
+  electrodes: ElectrodeNames,
+): object {
   return {
     id: mode.mode,
     title: capital(MODE_WORDS[mode.mode] ?? mode.mode),
     status: statusView(mode.status),
     effort: `${mode.tried} worked out, ${mode.judged} judged`,
-    methods: mode.methods.map((method) => methodView(method, names)),
+    methods: mode.methods.map((method) => methodView(method, names, electrodes)),
     cautions: [...new Set(mode.methods.flatMap((m) => m.cautions))].map((c) => names.set(c)),
     nearest: mode.nearest === null ? null : names.set(mode.nearest),
     reasons: mode.reasons.map((reason) => ({
@@ -153,14 +165,14 @@ function modeView(mode: MappedMode, names: Names, catalogue: ReadonlyMap<string,
   };
 }
 
-function methodView(method: MappedMethod, names: Names): object {
+function methodView(method: MappedMethod, names: Names, electrodes: ElectrodeNames): object {
   const brief = encodeBrief(method.brief);
   return {
     summary: names.set(method.summary),
     titrant: method.titrant.id,
     back: method.backTitrant ? names.name(method.backTitrant.id) : joinMarkup(["–"]),
     pH: fixed(method.pH, 1),
-    seen: seenBy(method, names),
+    seen: seenBy(method, names, electrodes),
     steps: method.preparation.map((p) => wordsOf(PREPARATION_WORDS, p)).join("; ") || "–",
     log10K: fixed(method.log10ConditionalK, 1),
     bias: signedPercent(method.biasPercent),
