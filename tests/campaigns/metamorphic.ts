@@ -24,12 +24,16 @@ interface Held {
   readonly broken: readonly Broken[];
 }
 
-/** Holds every relation against every brief; an answer that throws breaks the relation that asked for it. */
+/**
+ * Holds every relation against every brief; an answer that throws breaks the relation that asked for it.
+ * @param answerer who answers; null: the engine
+ */
 export async function runMetamorphic(
   items: readonly WorkItem[],
   options: Pick<CampaignOptions, "out" | "print">,
+  answerer: Answer | null = null,
 ): Promise<CampaignReport> {
-  const { recommend } = await openEngine();
+  const recommend = answerer ?? (await openEngine()).recommend;
   const print = (item: WorkItem, { broken }: Held): void => {
     for (const { relation, faults, margin } of broken)
       options.print(
