@@ -25,7 +25,17 @@ export const SAMPLE_KINDS = JSON.parse(
 const TRACES = ["Cu2+", "Fe3+", "Zn2+", "Al3+", "Mn2+", "Ni2+", "Co2+", "Pb2+", "Ca2+", "Mg2+"];
 const TRACE_RANGE: LevelRange = [1e-4, 0.02];
 /** What laboratories refuse, and shelves that small ones have. */
-const REFUSED = ["cyanide", "fluoride", "sulfide", "perchloric-acid", "dithizone", "formaldehyde", "Th4+", "thiourea"];
+const REFUSED = [
+  "nitric-acid",
+  "cyanide",
+  "fluoride",
+  "sulfide",
+  "perchloric-acid",
+  "dithizone",
+  "formaldehyde",
+  "Th4+",
+  "thiourea",
+];
 const SHELF_DYES = [
   "mordant-black-11",
   "calmagite",
@@ -35,7 +45,8 @@ const SHELF_DYES = [
   "PAN",
   "sulfosalicylic-acid",
 ];
-const SHELF_BASE = ["EDTA", "ammonia", "hexamine", "acetate", "sodium-hydroxide", "nitric-acid"];
+const SHELF_BASE = ["ammonia", "hexamine", "acetate", "sodium-hydroxide"];
+const SHELF_ACIDS = ["nitric-acid", "hydrochloric-acid", "perchloric-acid"];
 const SHELF_MORE = [
   "Zn2+",
   "Mg2+",
@@ -114,7 +125,9 @@ function laboratoryOf(random: SeededRandom): NonNullable<LooseBrief["laboratory"
   if (draw < 0.15) out.avoid = [...new Set([oneOf(random, REFUSED), oneOf(random, REFUSED)])];
   else if (draw < 0.25)
     out.available = [
-      ...SHELF_BASE,
+      "EDTA",
+      oneOf(random, SHELF_ACIDS),
+      ...SHELF_BASE.filter(() => random.uniform() < 0.8),
       ...SHELF_DYES.filter(() => random.uniform() < 0.6),
       ...SHELF_MORE.filter(() => random.uniform() < 0.6),
     ];
