@@ -23,8 +23,6 @@ export interface ReadingSeries {
 }
 
 const ML_PER_L = 1000;
-/** How far a branch is drawn past the point where the two meet, as a share of the change of colour. */
-const OVERDRAWN = 0.15;
 
 /** The curve that the electrode or the photometer of a titration shows; null for one that is seen by eye. */
 export function readingSeries(
@@ -64,9 +62,9 @@ export function readingSeries(
     mL,
     branch.intercept + (branch.slopePerL * mL) / ML_PER_L,
   ];
-  // The steep branch leads to the full colour on one side and a little past the meeting on the other.
   const end = evaluation.endPointML;
-  const reach = (share: number): number => end + (ML_PER_L * share) / steep.slopePerL;
+  /** Where the steep branch has this share of the colour. */
+  const reach = (share: number): number => (ML_PER_L * (share - steep.intercept)) / steep.slopePerL;
   return {
     kind: "absorbance",
     name: wavelengthNm ? `absorbance at ${wavelengthNm[0]} to ${wavelengthNm[1]} nm` : "absorbance",
@@ -74,7 +72,7 @@ export function readingSeries(
     values: drawn(colour, volumeML),
     endPoint: endPoint(along(level, end)[1]),
     branches: [
-      [along(steep, Math.max(0, reach(1 - along(level, end)[1]))), along(steep, reach(-OVERDRAWN))],
+      [along(steep, reach(1)), along(steep, reach(0))],
       plan.backTitrant === null && plan.indicator !== null
         ? [along(level, 0.85 * end), along(level, last)]
         : [

@@ -1,10 +1,11 @@
 import { describe, expect, test } from "vitest";
 import { curveDescription, curveFigure } from "../../src/web/figures/curve-figure.ts";
-import { curveCsv, logKCsv } from "../../src/web/figures/figure-csv.ts";
+import { curveCsv, logKCsv, readingCsv } from "../../src/web/figures/figure-csv.ts";
 import { NARROW, spreadLabels, WIDE } from "../../src/web/figures/frame.ts";
 import { logKDescription, logKFigure } from "../../src/web/figures/log-k-figure.ts";
 import { formulaMarkup } from "../../src/web/format/typeset.ts";
-import { SERIES } from "./fixture/figures.ts";
+import { readingDescription, readingFigure } from "../../src/web/figures/reading-figure.ts";
+import { ABSORBANCE, POTENTIAL, SERIES } from "./fixture/figures.ts";
 
 const set = (text: string) => formulaMarkup(text, true);
 
@@ -14,9 +15,11 @@ describe.each([
 ])("the %s figures", (_, size) => {
   const logK = logKFigure("a", SERIES.logK, size, set).html;
   const curve = curveFigure("b", SERIES.curve, size, set).html;
+  const potential = readingFigure("c", POTENTIAL, size).html;
+  const absorbance = readingFigure("d", ABSORBANCE, size).html;
 
   test("stay inside their own frame", () => {
-    for (const svg of [logK, curve]) {
+    for (const svg of [logK, curve, potential, absorbance]) {
       for (const path of svg.matchAll(/<path class="line[^"]*" d="([^"]+)"/g)) {
         const numbers = [...(path[1] ?? "").matchAll(/(-?[\d.]+),(-?[\d.]+)/g)];
         for (const [, x, y] of numbers) {
@@ -81,4 +84,18 @@ test("CSV has one row for each point, empty where there is no value, and no cell
   expect(lines[1]).toBe("0,4,4,");
   expect(curveCsv({ ...SERIES.curve, label: '=x","' })).toContain('"p(=x"","")"');
   expect(logKCsv({ ...SERIES.logK, lines: [] }).split("\r\n")[1]).toBe("0");
+});
+
+test("the curve of an instrument marks where it is read, in the figure, in words and in its CSV", () => {
+  const potential = readingFigure("a", POTENTIAL, WIDE).html;
+  expect(potential).toContain("inflection 16.02 mL");
+  expect(readingDescription(POTENTIAL)).toContain("It is steepest at 16.02 mL");
+  const absorbance = readingFigure("b", ABSORBANCE, WIDE).html;
+  expect(absorbance.match(/stroke-dasharray="7 4"/g)).toHaveLength(2);
+  expect(readingDescription(ABSORBANCE)).toContain("branches meet at 18.00 mL");
+  const lines = readingCsv(ABSORBANCE).trim().split("\r\n");
+  expect(lines[0]).toBe("titrant added / mL,A / A of full colour");
+  expect(lines[1]).toBe("0,");
+  expect(lines).toHaveLength(ABSORBANCE.volumeML.length + 1);
+  expect(readingFigure("c", { ...POTENTIAL, values: [], endPoint: null }, WIDE).html).not.toMatch(/NaN|undefined/);
 });

@@ -65,6 +65,7 @@ function knowledgeView(knowledge: Knowledge, ruleCount: number, names: Names): o
       ["Masking records", knowledge.masking.length],
       ["Kinetic records", knowledge.kinetics.length],
       ["Electrodes", knowledge.electrodes.length],
+      ["Photometric records", knowledge.photometric.length],
       ["Rules", ruleCount],
     ].map(([what, count]) => ({ what: String(what), count: String(count) })),
     basis: [
