@@ -1,7 +1,7 @@
 import { describe, expect, it } from "vitest";
 import { evaluate } from "../../src/methods/develop.ts";
 import { singleMethod } from "../../src/methods/methods.ts";
-import { toleranceLimits } from "../../src/methods/tolerance.ts";
+import { bearsRicherMatrix, toleranceLimits } from "../../src/methods/tolerance.ts";
 import type { StagePlan, Task } from "../../src/methods/types.ts";
 import { stageBudget } from "../../src/methods/uncertainty.ts";
 import { workingRange } from "../../src/methods/working-range.ts";
@@ -98,5 +98,22 @@ describe("workingRange", () => {
     const { range } = at(magnesium, inventedTask({ "Mg2+": 0.008 }, {}, { requirementPercent: 3 }));
     expect(range.high).toBeGreaterThan(10);
     expect(range.low).toBeGreaterThanOrEqual(9.5);
+  });
+});
+
+describe("bearsRicherMatrix", () => {
+  const bears = (matrix: Readonly<Record<string, number>>): boolean | null => {
+    const task = inventedTask({ "Zn2+": 0.008 }, matrix);
+    return bearsRicherMatrix(task, singleMethod(task, developed(task, inventedPlan()), KNOWLEDGE), KNOWLEDGE);
+  };
+  it("asks whether one and a half times the metals of the matrix are still within the limit of tolerance", () => {
+    const task = inventedTask({ "Zn2+": 0.008 }, { "Cd2+": 0.00001 });
+    const { limitMolPerL } = limits(task, inventedPlan()).find((row) => row.component === "Cd2+")!;
+    expect(bears({ "Cd2+": limitMolPerL / 1.6 })).toBe(true);
+    expect(bears({ "Cd2+": limitMolPerL / 1.4 })).toBe(false);
+  });
+  it("says nothing where no metal is beside the analyte, or the method misses as it is", () => {
+    expect(bears({ nitrate: 0.1, "Na+": 0.1 })).toBe(null);
+    expect(bears({ "Cd2+": 0.004 })).toBe(null);
   });
 });
