@@ -45,7 +45,7 @@ export function reasonsAgainst(
   const nearest = judged[0] ?? null;
   const slow = general.some((r) => r.kind === "reacts-slowly");
   const particular = nearest
-    ? [...tooWeak(task, found), ...againstNearest(task, nearest)]
+    ? [...(mode === "direct" || mode === "back" ? tooWeak(task, found) : []), ...againstNearest(task, nearest)]
     : whyNone(task, mode, knowledge);
   const reasons = [...general, ...(slow ? [] : particular)];
   return { status: "closed", nearest: nearest && summaryOf(task, nearest, knowledge), reasons };

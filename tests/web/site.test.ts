@@ -1,4 +1,5 @@
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { loadContractIds } from "../../src/constants/index.ts";
 import { encodeBrief } from "../../src/web/form/brief-link.ts";
 import { SCENARIOS } from "../../src/web/form/scenarios.ts";
 import { methodMapSchema } from "../../src/recommendation/contract.ts";
@@ -328,6 +329,27 @@ describe("failures", () => {
     }
     expect((await get("/calculators/curve.csv?pH=x")).status).toBe(422);
   });
+});
+
+test("the knowledge page counts every id of the vocabulary, and names an id whose data are gone", async () => {
+  const rows = (body: string): number[] =>
+    [
+      ...(body.split('id="vocabulary"')[1] ?? "")
+        .split("</table>")[0]!
+        .matchAll(/<td class="number">(\d+)<\/td><td class="number">\d+<\/td><td class="number">\d+</g),
+    ].map((m) => Number(m[1]));
+  const ids = Object.values<readonly string[]>({ ...loadContractIds() }).reduce((sum, list) => sum + list.length, 0);
+  const body = await (await get("/knowledge")).text();
+  expect(rows(body).reduce((a, b) => a + b, 0)).toBe(ids);
+  expect(body).not.toMatch(/<td>zincon<\/td>/);
+  const indicators = new Map(site.knowledge.indicators);
+  indicators.delete("zincon");
+  const poorer = await startSite({ knowledge: { ...site.knowledge, indicators } });
+  try {
+    expect(await (await fetch(`${poorer.url}/knowledge`)).text()).toMatch(/<td>zincon<\/td>/);
+  } finally {
+    await poorer.stop();
+  }
 });
 
 describe("the method map", () => {

@@ -1,4 +1,5 @@
 import { Router } from "express";
+import { type ContractIds, type Coverage, loadContractIds, vocabularyCoverage } from "../../constants/index.ts";
 import type { Knowledge, Provenance } from "../../constants/knowledge.ts";
 import { anchor, type Names } from "../format/names.ts";
 import { renderView } from "../render/render-view.ts";
@@ -26,6 +27,43 @@ export function knowledgePage({ knowledge, rules }: WebServices, names: Names): 
 const notices = (knowledge: Knowledge): readonly string[] => [
   ...new Set([...knowledge.sources.values()].flatMap((s) => (s.notice === undefined ? [] : [s.notice]))),
 ];
+
+const VOCABULARY: Readonly<Record<keyof ContractIds, string>> = {
+  titrants: "Titrants",
+  metalTitrants: "Metal solutions",
+  indicators: "Indicators",
+  buffers: "Buffers, acids and alkalis",
+  agents: "Masking and demasking agents",
+  indicatorClasses: "Classes of indicators",
+  preparation: "Preparation steps",
+};
+
+/** Every id that briefs and answers use: how many have usable data, and by name which have none and what each lacks. */
+function vocabularyView(coverage: readonly Coverage[]): object {
+  const kinds = Object.keys(VOCABULARY) as (keyof ContractIds)[];
+  return {
+    rows: kinds.map((kind) => {
+      const ids = coverage.filter((c) => c.kind === kind);
+      const bare = ids.filter((c) => c.status === "no-usable-data");
+      return {
+        what: VOCABULARY[kind],
+        total: String(ids.length),
+        held: String(ids.length - bare.length),
+        none: String(bare.length),
+        names: bare.length === 0 ? "–" : bare.map((c) => c.id).join(", "),
+      };
+    }),
+    lacking: coverage
+      .filter((c) => c.missing.length > 0)
+      .map((c) => ({
+        id: c.id,
+        kind: VOCABULARY[c.kind],
+        rests: c.rests.length === 0 ? "no usable data" : c.rests.join(", "),
+        missing: c.missing.join(", "),
+      })),
+    count: String(coverage.filter((c) => c.missing.length > 0).length),
+  };
+}
 
 function knowledgeView(knowledge: Knowledge, ruleCount: number, names: Names): object {
   const ofKind = (kind: string): number => [...knowledge.components.values()].filter((c) => c.kind === kind).length;
@@ -106,6 +144,7 @@ function knowledgeView(knowledge: Knowledge, ruleCount: number, names: Names): o
         knowledge.standards.map((s) => s.provenance),
       ),
     ],
+    vocabulary: vocabularyView(vocabularyCoverage(knowledge, loadContractIds())),
     remarks: kinds.map((kind) => ({
       title: titles[kind],
       id: kind,
