@@ -128,8 +128,8 @@ export function stageModel(
   const maskedSolids = new Set(plan.masking.filter((m) => m.via === "precipitation").flatMap((m) => m.masks));
   const ofDetour = solidsOfDetour(plan, knowledge);
   const wantsSolid = (solid: SolidDefinition): boolean =>
-    (formsInTitration(solid, "at-once") && !ofDetour.dissolved.has(solid.id)) ||
-    ofDetour.dissolving.has(solid.id) ||
+    formsInTitration(solid, "at-once") ||
+    ofDetour.has(solid.id) ||
     Object.keys(solid.components).some((c) => maskedSolids.has(c));
 
   const prepare = (ionicStrengthMolPerL: number, withSolids: (s: SolidDefinition) => boolean): PreparedSystem =>
@@ -170,10 +170,7 @@ export function stageModel(
     const amount = first.solidsMolPerL[i] ?? 0;
     if (amount <= 0) return;
     // A precipitate that was collected to be dissolved goes on dissolving while its metal is taken up.
-    if (
-      ofDetour.dissolving.has(solid.id) ||
-      knowledge.solids.find((s) => s.id === solid.id)?.redissolvesWhileTitrated
-    ) {
+    if (ofDetour.has(solid.id) || knowledge.solids.find((s) => s.id === solid.id)?.redissolvesWhileTitrated) {
       stays.add(solid.id);
       return;
     }

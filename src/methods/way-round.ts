@@ -41,21 +41,10 @@ export function detourRecord(detour: Detour, knowledge: Knowledge): DetourRecord
   return record;
 }
 
-const NO_SOLIDS: ReadonlySet<string> = new Set();
-
-/**
- * Solids that a way round brings into the vessel: to be dissolved there, by equilibrium; or dissolved as practice reports it, and
- * then not to come back. None where the precipitate stays out.
- */
-export function solidsOfDetour(
-  plan: Pick<StagePlan, "detour">,
-  knowledge: Knowledge,
-): { readonly dissolving: ReadonlySet<string>; readonly dissolved: ReadonlySet<string> } {
+/** Solids that a way round brings into the vessel to be dissolved there; none where the precipitate stays out, or dissolves as its record says. */
+export function solidsOfDetour(plan: Pick<StagePlan, "detour">, knowledge: Knowledge): ReadonlySet<string> {
   const record = plan.detour ? detourRecord(plan.detour, knowledge) : null;
-  const solids = record && record.kind !== "surplus" ? new Set(record.solids) : NO_SOLIDS;
-  return record?.rests === "composition"
-    ? { dissolving: NO_SOLIDS, dissolved: solids }
-    : { dissolving: solids, dissolved: NO_SOLIDS };
+  return new Set(record && record.kind !== "surplus" && record.rests === "equilibrium" ? record.solids : []);
 }
 
 /** What holds the counted metal as long as the way round keeps it from the titrant: the analyte, or the ligand it is exchanged from. */
@@ -122,7 +111,10 @@ export function wayRound(
     filteredAway: new Map<ComponentId, number>(),
     expectedMolPerL: record.kind === "surplus" ? (reagent.get(detour.metal) ?? 0) - ideal : ideal,
   };
-  if (record.precipitation === null) return { ...base, sample, reagent };
+  if (record.precipitation === null)
+    return record.kind === "exchange" && record.rests === "composition"
+      ? { ...base, ...exchanged(record, detour, sample, analyte, reagent) }
+      : { ...base, sample, reagent };
   const precipitating = record.precipitant
     ? amountsOf(record.precipitant.components, detour.precipitant?.molPerL ?? 0)
     : reagent;
@@ -147,13 +139,30 @@ export function wayRound(
       filteredAway: dissolved,
     };
   }
-  return {
-    ...base,
-    sample: inDeposits,
-    reagent: record.kind === "exchange" ? reagent : new Map(),
-    collected: deposits,
-    filteredAway: dissolved,
-  };
+  const held = { collected: deposits, filteredAway: dissolved };
+  if (record.kind === "exchange" && record.rests === "composition") {
+    const asAnalyte = companyOf({ ...base, ...held, sample, reagent }).reduce((sum, c) => sum + c.asAnalyteMolPerL, 0);
+    const brought = (inDeposits.get(record.analyte) ?? 0) + asAnalyte;
+    return { ...base, ...held, ...exchanged(record, detour, new Map(), brought, reagent) };
+  }
+  return { ...base, ...held, sample: inDeposits, reagent: record.kind === "exchange" ? reagent : new Map() };
+}
+
+/** An exchange that is complete as its record says: what took the ligand is gone with it, the metal is free. */
+function exchanged(
+  record: DetourRecord,
+  detour: Detour,
+  sample: ReadonlyMap<ComponentId, number>,
+  analyteMolPerL: number,
+  reagent: ReadonlyMap<ComponentId, number>,
+): Pick<WayRound, "sample" | "reagent"> {
+  const left: Amounts = new Map(reagent);
+  const freed = analyteMolPerL / detour.analytePerMetal;
+  for (const [id, n] of Object.entries(record.reagent.components))
+    if (id !== detour.metal) left.set(id, Math.max(0, (left.get(id) ?? 0) - n * freed));
+  const others: Amounts = new Map(sample);
+  others.delete(record.analyte);
+  return { sample: others, reagent: left };
 }
 
 function amountsOf(components: Readonly<Record<ComponentId, number>>, molPerL: number): Amounts {

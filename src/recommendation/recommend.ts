@@ -52,7 +52,11 @@ export async function recommend(task: Task, knowledge: Knowledge, rules: RuleRun
     notes: [
       ...task.notes,
       ...(search.specialOpened ? ["Nothing from the usual shelf served; special reagents were considered too."] : []),
-      ...(methods.length === 0 ? whyNothing(task, search.methods.length, knowledge) : []),
+      ...(methods.length === 0
+        ? whyNothing(task, search.methods.length, knowledge)
+        : methods[0]!.meetsRequirement
+          ? []
+          : notByThisTechnique(task, knowledge)),
     ],
     constants: first ? constantsUsed(first.method.stages, knowledge) : [],
   };
