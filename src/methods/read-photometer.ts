@@ -3,6 +3,7 @@ import type { Criterion } from "./criterion.ts";
 import { firstCrossing, nearCrossing } from "./end-point-search.ts";
 import { dyeComponentOf } from "./solution.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
+import { detourRecord } from "./way-round.ts";
 import { countedIn } from "./types.ts";
 
 /** A straight line, signal against volume in L. */
@@ -122,7 +123,7 @@ export function readWithPhotometer(
       wavelengthNm: wavelength(model, knowledge),
       steep,
       level,
-      turbidMolPerL: turbidity(model, end),
+      turbidMolPerL: turbidity(model, end, knowledge),
     },
     why: null,
     volumeL,
@@ -183,8 +184,11 @@ function wavelength(model: StageModel, knowledge: Knowledge): PhotometricReading
 }
 
 /** Solids that stand in equilibrium in this state, and what has precipitated for good. */
-function turbidity(model: StageModel, state: VesselState): number {
+function turbidity(model: StageModel, state: VesselState, knowledge: Knowledge): number {
   const lying = model.system.solids.reduce((sum, _, i) => sum + (state.result.solidsMolPerL[i] ?? 0), 0);
+  // What a way round throws down and filters off is not in the cell.
+  const { detour } = model.plan;
+  if (detour !== null && detourRecord(detour, knowledge).filtered) return lying;
   return lying + model.held.filter((h) => h.why === "precipitated").reduce((sum, h) => sum + h.molPerL, 0);
 }
 

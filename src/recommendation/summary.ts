@@ -30,9 +30,13 @@ function seenBy(plan: StagePlan, knowledge: Knowledge): string {
     return `the inflection of the ${name}`;
   }
   const dye = plan.indicator && (knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id);
+  const chelate =
+    plan.chelate && plan.indicator?.id !== "Cu-PAN"
+      ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}`
+      : "";
   if (plan.detection === "photometric")
-    return dye ? `${dye}, read with a photometer` : "the break of its own absorbance, read with a photometer";
-  return dye ?? "the end point";
+    return dye ? `${dye}${chelate}, read with a photometer` : "the break of its own absorbance, read with a photometer";
+  return `${dye ?? "the end point"}${chelate}`;
 }
 
 /** The agents that go in after the first end point of a release. */
@@ -69,7 +73,7 @@ function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): st
     ? `add ${plan.titrant.id} in excess to ${what}${heat}, titrate the excess with ${plan.backTitrant!.molPerL} mol/L ${plan.backTitrant!.id} at pH ${plan.pH} (${buffer}) to ${dye} and discard that reading, add ${list(releaseAgents(plan).map(nameOf))}, and titrate on what ${releaseAgents(plan).length > 1 ? "they set" : "it sets"} free`
     : plan.backTitrant
       ? `add ${plan.titrant.id} in excess to ${what}${heat}, and titrate the excess back with ${plan.backTitrant.molPerL} mol/L ${plan.backTitrant.id} at pH ${plan.pH} (${buffer}) to ${dye}`
-      : `titrate ${what} with ${plan.titrant.molPerL} mol/L ${plan.titrant.id} at pH ${plan.pH} (${buffer})${plan.preparation.includes("boil") ? " at the boil" : plan.preparation.includes("heat") ? " hot" : ""} to ${dye}${plan.chelate && plan.electrode === null && plan.indicator?.id !== "Cu-PAN" ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}` : ""}`;
+      : `titrate ${what} with ${plan.titrant.molPerL} mol/L ${plan.titrant.id} at pH ${plan.pH} (${buffer})${plan.preparation.includes("boil") ? " at the boil" : plan.preparation.includes("heat") ? " hot" : ""} to ${dye}`;
   const sentence = `${separated}${core}${masks}${helped}`;
   return sentence.charAt(0).toUpperCase() + sentence.slice(1);
 }
@@ -106,10 +110,7 @@ function detourWords(task: Task, stage: DevelopedStage, detour: Detour, knowledg
     plan.masking.length > 0
       ? `, with ${list(plan.masking.map((m) => `${nameOf(m.agent)} against ${list(m.masks.map(ion))}`))}`
       : "";
-  const chelate = plan.chelate
-    ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}`
-    : "";
   const separated = plan.removed.length > 0 ? `after separation of ${list(plan.removed.map(ion))}, ` : "";
-  const sentence = `${separated}${taken} ${how} at pH ${plan.pH} (${nameOf(plan.buffer.id)}) to ${dye}${chelate}${masks}: ${stoichiometryOf(plan, detour, ion)}`;
+  const sentence = `${separated}${taken} ${how} at pH ${plan.pH} (${nameOf(plan.buffer.id)}) to ${dye}${masks}: ${stoichiometryOf(plan, detour, ion)}`;
   return sentence.charAt(0).toUpperCase() + sentence.slice(1);
 }
