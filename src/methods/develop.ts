@@ -1,5 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { declared, withoutFlocs } from "./alkali-masks.ts";
+import { declared, lyingAsHydroxide, withoutFlocs } from "./alkali-masks.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { frozenComplexes } from "./frozen.ts";
 import { benchAmount, maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
@@ -95,11 +95,15 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
   const { plan, threats } = start;
   const finished = (variants: readonly DevelopedStage[]): DevelopedStage[] =>
     variants.flatMap((v) => {
-      const clear = v.remaining.length === 0 ? withoutFlocs(v, knowledge, shelf) : null;
-      if (clear === null) return [declared(v, knowledge)];
-      const evaluation = evaluate(task, clear, knowledge);
-      const remaining = threatsOf(task, evaluation, knowledge);
-      return [v, { ...v, plan: clear, evaluation, remaining }].map((each) => declared(each, knowledge));
+      const plans =
+        v.remaining.length === 0
+          ? [withoutFlocs(v, knowledge, shelf), flocsSeparated(task, v, knowledge)].filter((p) => p !== null)
+          : [];
+      const others = plans.map((other) => {
+        const evaluation = evaluate(task, other, knowledge);
+        return { ...v, plan: other, evaluation, remaining: threatsOf(task, evaluation, knowledge) };
+      });
+      return [v, ...others].map((each) => declared(each, knowledge));
     });
   if (threats.length === 0) return finished([{ ...start, evaluation: start.bare, remaining: [] }]);
   const out: DevelopedStage[] = [];
@@ -140,6 +144,23 @@ const CLEAN_SETS_KEPT = 2;
 const BULK_RATIO = 0.5;
 /** How many sets are evaluated before the matrix is called unmaskable. */
 const SETS_TRIED = 8;
+
+/** The same direct titration after metals that would lie in it as hydroxides in bulk have been taken out; null where none do. */
+function flocsSeparated(task: Task, v: Settled, knowledge: Knowledge): StagePlan | null {
+  if (v.plan.backTitrant !== null) return null;
+  const present = v.evaluation.presentMol / v.evaluation.model.volumeL;
+  const inVessel = new Map(vesselSample(task, v.plan).map((c) => [c.component, c.inVesselMolPerL]));
+  const flocs = lyingAsHydroxide(v, knowledge).filter(
+    (ion) => ion !== "Mg2+" && (inVessel.get(ion) ?? 0) > BULK_RATIO * present,
+  );
+  if (flocs.length === 0) return null;
+  const { preparation } = v.plan;
+  return {
+    ...v.plan,
+    removed: [...v.plan.removed, ...flocs],
+    preparation: preparation.includes("separate") ? preparation : ["separate", ...preparation],
+  };
+}
 
 type Settled = Pick<DevelopedStage, "plan" | "evaluation" | "remaining">;
 

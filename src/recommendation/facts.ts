@@ -250,7 +250,13 @@ function alsoShown(task: Task, stage: DevelopedStage): ComponentId[] {
   if (plan.release !== null) return [];
   const analyteMolPerL = evaluation.presentMol / evaluation.model.volumeL;
   const used = (evaluation.model.indicator?.uses ?? [])
-    .filter((u) => u.mode === "direct" && plan.pH >= u.pH[0] - 0.5 && plan.pH <= u.pH[1] + 0.5)
+    // With a chelate in the vessel the dye answers whatever sets the chelate's metal free.
+    .filter(
+      (u) =>
+        (u.mode === "direct" || (u.mode === "displacement" && plan.chelate !== null)) &&
+        plan.pH >= u.pH[0] - 0.5 &&
+        plan.pH <= u.pH[1] + 0.5,
+    )
     .flatMap((u) => u.ions);
   return vesselSample(task, plan)
     .filter((c) => !plan.determines.includes(c.component) && !plan.removed.includes(c.component))
