@@ -1,6 +1,6 @@
 import { prepareSystem } from "../chemistry/prepare-system.ts";
 import { solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
-import type { ComponentId, Knowledge, SolidPace } from "../constants/knowledge.ts";
+import type { ComponentId, Knowledge, SolidDefinition, SolidPace } from "../constants/knowledge.ts";
 import { stageSolution } from "./solution.ts";
 import type { StagePlan, Task } from "./types.ts";
 
@@ -12,6 +12,16 @@ export interface Supersaturation {
   readonly components: readonly ComponentId[];
 }
 
+/**
+ * Whether a solid is the hydroxide of metals that an earlier titration of the same solution has bound: a chelate does not turn
+ * into hydroxide in the time of the next titration, whatever the equilibrium would have of it.
+ */
+export function staysBound(solid: Pick<SolidDefinition, "components">, plan: StagePlan): boolean {
+  const carried = plan.carried?.metals ?? [];
+  if (carried.length === 0 || (solid.components["H+"] ?? 0) >= 0) return false;
+  return Object.keys(solid.components).every((c) => c === "H+" || carried.includes(c));
+}
+
 /** Saturation of every solid of the vessel before titration, nothing allowed to form; those above saturation, worst first. */
 export function supersaturations(
   task: Task,
@@ -21,8 +31,8 @@ export function supersaturations(
 ): Supersaturation[] {
   const totals = new Map(stageSolution(task, plan, knowledge).totals);
   // Titrant that goes in before the pH is raised keeps dissolved what it binds.
-  if (plan.excessTitrantMolPerL > 0)
-    totals.set(plan.titrant.id, (totals.get(plan.titrant.id) ?? 0) + plan.excessTitrantMolPerL);
+  const inVessel = plan.excessTitrantMolPerL + (plan.carried?.titrantMolPerL ?? 0);
+  if (inVessel > 0) totals.set(plan.titrant.id, (totals.get(plan.titrant.id) ?? 0) + inVessel);
   const components = [...totals.keys()].filter((c) => {
     const kind = knowledge.components.get(c)?.kind;
     return kind === "metal" || kind === "ligand" || kind === "dye";
@@ -42,6 +52,6 @@ export function supersaturations(
       saturationIndex: result.saturationIndex[i]!,
       components: Object.keys(solid.components).filter((c) => c !== "H+"),
     }))
-    .filter((s) => s.saturationIndex > 0)
+    .filter((s, i) => s.saturationIndex > 0 && !staysBound(system.solids[i]!, plan))
     .sort((a, b) => b.saturationIndex - a.saturationIndex);
 }

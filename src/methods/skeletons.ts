@@ -237,7 +237,10 @@ export function directSkeletons(make: Make): Skeleton[] {
       continue;
     for (const { window, use, basis } of usesFor(indicator, determines, ["direct", "displacement"])) {
       // A use that names its titrant belongs to the first round: EGTA with zincon is not a variant of EDTA.
-      const titrants = use.titrant ? (field.titrants.includes("EDTA") ? [use.titrant] : []) : field.titrants;
+      const named = use.titrant ? (field.titrants.includes("EDTA") ? [use.titrant] : []) : field.titrants;
+      // A chelate lends its metal to the dye because the titrant takes it back: it is the chelate of the titrant itself.
+      const lent = use.chelate ?? (indicator.id === "Cu-PAN" ? "Cu-EDTA" : null);
+      const titrants = named.filter((t) => lent === null || lent.endsWith(`-${t}`));
       for (const titrant of titrants) {
         if (!shelf(titrant)) continue;
         const pH = benchPH(window);

@@ -14,6 +14,7 @@ import { protonFixed, vesselSolver, type VesselSolution } from "./vessel-solver.
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
 import { inertIonsOf } from "./inert-ions.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
+import { staysBound } from "./saturation.ts";
 import { agentComponents, classifyRows } from "./stage-rows.ts";
 import { heldByWay, solidsOfDetour } from "./way-round.ts";
 import { countedIn, type StagePlan, type Task } from "./types.ts";
@@ -128,7 +129,7 @@ export function stageModel(
   const maskedSolids = new Set(plan.masking.filter((m) => m.via === "precipitation").flatMap((m) => m.masks));
   const ofDetour = solidsOfDetour(plan, knowledge);
   const wantsSolid = (solid: SolidDefinition): boolean =>
-    formsInTitration(solid, "at-once") ||
+    (formsInTitration(solid, "at-once") && !staysBound(solid, plan)) ||
     ofDetour.has(solid.id) ||
     Object.keys(solid.components).some((c) => maskedSolids.has(c));
 

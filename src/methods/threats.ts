@@ -63,7 +63,7 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
           ? shareOf(equivalence, component)
           : Math.min(1, Math.max(0, evaluation.titrated.get(component) ?? 0));
     const biasFraction = (share * inVesselMolPerL * (plan.detour?.analytePerMetal ?? 1)) / present;
-    const titrates = biasFraction > allowed;
+    const titrates = biasFraction > allowed || liesAsFlocs(model, component, inVesselMolPerL, present, knowledge);
     const blocks =
       evaluation.blockedBy.includes(component) ||
       spoilsElectrode(evaluation, component) ||
@@ -72,6 +72,38 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
       threats.push({ component, titrates, blocks, holdsAnalyte: false, biasFraction, molPerL: inVesselMolPerL });
   }
   return threats;
+}
+
+/** From this ratio to the analyte the flocs of a hydroxide of the matrix take dye and analyte with them. */
+const FLOCS_RATIO = 0.02;
+/** From here on the alkali is itself the mask, and what it throws down is meant to lie. */
+const ALKALI_FROM_PH = 11.5;
+
+/** Whether a metal of the matrix falls out as hydroxide at the pH of a direct titration: filter it off first, or keep it dissolved. */
+function liesAsFlocs(
+  model: StageModel,
+  metal: ComponentId,
+  inVesselMolPerL: number,
+  analyteMolPerL: number,
+  knowledge: Knowledge,
+): boolean {
+  const { plan } = model;
+  if (plan.backTitrant !== null || plan.pH >= ALKALI_FROM_PH || metal === "Mg2+") return false;
+  if (!(inVesselMolPerL > FLOCS_RATIO * analyteMolPerL)) return false;
+  const hydroxide = (id: string): boolean =>
+    knowledge.solids.some(
+      (s) => s.id === id && (s.components["H+"] ?? 0) < 0 && Object.keys(s.components).length === 2,
+    );
+  const held = model.held
+    .filter((h) => h.component === metal && h.why === "precipitated" && hydroxide(h.by))
+    .reduce((sum, h) => sum + h.molPerL, 0);
+  const start = model.at(0);
+  const deposited = model.system.solids.reduce(
+    (sum, solid, i) =>
+      sum + (hydroxide(solid.id) ? (solid.components[metal] ?? 0) * (start.result.solidsMolPerL[i] ?? 0) : 0),
+    0,
+  );
+  return held + deposited > 0.5 * inVesselMolPerL;
 }
 
 /** Metals with which EDTA has a constant: what another titrant lacks a constant for among them is a gap, not an absence. */
