@@ -186,7 +186,9 @@ function follow(
     knowledge,
   ).filter((s) => s.plan.removed.length === 0);
   const sameDye = (s: DevelopedStage): number => Number(seenWith(s.plan) !== seenWith(last.plan));
-  developed.sort((a, b) => sameDye(a) - sameDye(b));
+  // A continuation that leaves something undone is no use, whatever its dye.
+  const undone = (s: DevelopedStage): number => Number(s.remaining.length > 0);
+  developed.sort((a, b) => undone(a) - undone(b) || sameDye(a) - sameDye(b));
   return developed.slice(0, FOLLOWED).flatMap((s) => follow(task, [...done, s], todo.slice(1), knowledge, shelf));
 }
 

@@ -1,6 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { declared, lyingAsHydroxide, withoutFlocs } from "./alkali-masks.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
+import { boundAtBackEndPoint } from "./excess.ts";
 import { frozenComplexes } from "./frozen.ts";
 import { benchAmount, maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
 import { evaluateRelease } from "./release.ts";
@@ -273,7 +274,7 @@ function separations(
   });
 }
 
-/** Titrant in excess for a back titration: a good third above everything in the vessel that binds. */
+/** Titrant in excess for a back titration: a good third above everything in the vessel that still binds it at the end point. */
 function withExcess(task: Task, plan: StagePlan, knowledge: Knowledge): StagePlan {
   if (plan.backTitrant === null) return plan;
   if (plan.detour) return withExcessForWay(task, plan, knowledge);
@@ -281,9 +282,8 @@ function withExcess(task: Task, plan: StagePlan, knowledge: Knowledge): StagePla
   const everything = vesselSample(task, plan)
     .filter((c) => knowledge.components.get(c.component)?.kind === "metal" && !plan.removed.includes(c.component))
     .reduce((s, c) => s + c.inVesselMolPerL, 0);
-  const model = stageModel(task, { ...plan, excessTitrantMolPerL: 2 * everything }, knowledge);
-  const state = model.at(0);
-  const bound = model.metals.reduce((s, m) => s + state.boundToTitrant(m), 0);
+  // Titrant that an earlier titration left is bound to its own metals already.
+  const bound = boundAtBackEndPoint(task, plan, knowledge) - (plan.carried?.titrantMolPerL ?? 0);
   return { ...plan, excessTitrantMolPerL: excessFor(Math.max(bound, everything * 1e-6)) };
 }
 

@@ -3,6 +3,7 @@ import { accountOf, type StageAccount } from "./account.ts";
 import { blockersOf } from "./blocking.ts";
 import { holderOf, type EndPointBasis } from "./criterion.ts";
 import { detourAccount } from "./detour-account.ts";
+import { backEndPointL } from "./excess.ts";
 import { inertMetals } from "./kinetics.ts";
 import { readEndPoint, type EndPointFault, type EndPointRead } from "./read-end-point.ts";
 import { alphaOfAnalyte, conditionalConstants } from "./stage-measures.ts";
@@ -69,8 +70,12 @@ export function evaluateStage(
   const back = plan.backTitrant !== null;
   const titrantBefore = model.at(0);
   const expectedMol = back ? Math.max(titrantBefore.titrantUnbound * model.volumeL, 1e-9) : metalMol(model, presentMol);
-  const equivalenceL = expectedMol / model.burette.molPerL;
-  const read = readEndPoint(model, determined, equivalenceL, knowledge);
+  let equivalenceL = expectedMol / model.burette.molPerL;
+  let read = readEndPoint(model, determined, equivalenceL, knowledge);
+  if (back && read.why === "no-end-point" && titrantBefore.ok) {
+    equivalenceL = backEndPointL(model);
+    read = readEndPoint(model, determined, equivalenceL, knowledge);
+  }
   const base = {
     model,
     basis: read.basis,

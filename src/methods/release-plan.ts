@@ -1,4 +1,5 @@
 import type { AgentRecord, BufferRecord, ComponentId, Knowledge, ReleaseRecord } from "../constants/knowledge.ts";
+import { boundAtBackEndPoint } from "./excess.ts";
 import { benchAmount } from "./masks.ts";
 import { evaluateRelease } from "./release.ts";
 import { beforeRelease, boundByRecord, releaseRecordOf } from "./release-vessels.ts";
@@ -105,11 +106,15 @@ export function releaseExcess(task: Task, plan: StagePlan, knowledge: Knowledge)
     .reduce((s, c) => s + c.inVesselMolPerL, 0);
   const early = beforeRelease(plan, releaseRecordOf(plan, knowledge));
   const model = stageModel(task, { ...early, excessTitrantMolPerL: 2 * everything }, knowledge);
-  const state = model.at(0);
   const whole = boundByRecord(task, plan, model, knowledge);
+  const rest = { ...task, matrix: task.matrix.filter((c) => !whole.has(c.component)) };
+  const others = { ...early, determines: early.determines.filter((ion) => !whole.has(ion)) };
   const bound =
-    model.metals.reduce((s, m) => s + (whole.has(m) ? 0 : state.boundToTitrant(m)), 0) +
-    [...whole.values()].reduce((s, v) => s + v, 0);
+    boundAtBackEndPoint(
+      { ...rest, analytes: task.analytes.filter((c) => !whole.has(c.component)) },
+      others,
+      knowledge,
+    ) + [...whole.values()].reduce((s, v) => s + v, 0);
   // Titrant that an earlier titration left is bound to its own metals already.
   const there = plan.carried?.titrantMolPerL ?? 0;
   return Number(Math.max(0, bound * (1 + EXCESS_OVER_ALL) + EXCESS_OVER_ANALYTE * analyte - there).toPrecision(3));

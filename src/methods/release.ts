@@ -1,6 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { blockersOf } from "./blocking.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
+import { backEndPointL } from "./excess.ts";
 import { readEndPoint, type EndPointRead } from "./read-end-point.ts";
 import { releaseAccount } from "./release-account.ts";
 import { releaseVessels, type ReleaseVessels } from "./release-vessels.ts";
@@ -19,7 +20,8 @@ interface Reading extends EndPointRead {
 /** An end point of the metal that is run in. */
 function readingOf(model: StageModel, determined: ReadonlySet<ComponentId>, knowledge: Knowledge): Reading | null {
   if (!model.at(0).ok) return null;
-  const read = readEndPoint(model, determined, equivalenceL(model), knowledge);
+  let read = readEndPoint(model, determined, equivalenceL(model), knowledge);
+  if (read.why === "no-end-point") read = readEndPoint(model, determined, backEndPointL(model), knowledge);
   const state = model.at(read.volumeL);
   return state.ok ? { ...read, model, state } : null;
 }

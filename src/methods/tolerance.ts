@@ -1,6 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { evaluate } from "./develop.ts";
 import type { EvaluatedMethod } from "./methods.ts";
+import { releaseExcess } from "./release-plan.ts";
 import type { MethodMode, StagePlan, Task } from "./types.ts";
 import { combineDifference, stageBudget } from "./uncertainty.ts";
 
@@ -21,9 +22,13 @@ function withLevel(task: Task, component: ComponentId, molPerL: number): Task {
   return { ...task, matrix: task.matrix.map((c) => (c.component === component ? { ...c, molPerL } : c)) };
 }
 
+/** The excess of a release is not counted: more of it goes in until the first reading shows some. */
+const enoughFor = (task: Task, plan: StagePlan, knowledge: Knowledge): StagePlan =>
+  plan.release === null ? plan : { ...plan, excessTitrantMolPerL: releaseExcess(task, plan, knowledge) };
+
 /** Whether every result of the method still meets the requirement; a difference is judged as the difference it is. */
 function holds(task: Task, mode: MethodMode, plans: readonly StagePlan[], knowledge: Knowledge): boolean {
-  const evaluations = plans.map((plan) => evaluate(task, plan, knowledge));
+  const evaluations = plans.map((plan) => evaluate(task, enoughFor(task, plan, knowledge), knowledge));
   if (evaluations.some((e) => e.status === "failed" || e.blockedBy.length > 0)) return false;
   const [whole, part] = evaluations;
   const expanded =
