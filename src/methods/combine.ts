@@ -1,5 +1,6 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop, type DevelopedStage } from "./develop.ts";
+import { demasked, holdsForGood } from "./demask.ts";
 import { skeletonsOf } from "./detection-skeletons.ts";
 import {
   dyeBreadth,
@@ -29,10 +30,11 @@ export function combinedMethods(
   knowledge: Knowledge,
   shelf: Shelf,
 ): EvaluatedMethod[] {
-  const byGroup = groups.map((group) => best(task, stagesFor(task, group, knowledge, shelf, false), knowledge));
+  const found = groups.map((group) => stagesFor(task, group, knowledge, shelf, false));
+  const byGroup = found.map((stages) => best(task, stages, knowledge));
   return [
     ...portions(task, byGroup, knowledge),
-    ...successive(task, groups, byGroup, knowledge, shelf),
+    ...successive(task, groups, found, knowledge, shelf),
     ...(groups.length === 2 ? differences(task, groups, byGroup, knowledge, shelf) : []),
   ];
 }
@@ -90,23 +92,27 @@ function orders(n: number): number[][] {
 function successive(
   task: Task,
   groups: readonly (readonly ComponentId[])[],
-  byGroup: readonly (readonly DevelopedStage[])[],
+  found: readonly (readonly DevelopedStage[])[],
   knowledge: Knowledge,
   shelf: Shelf,
 ): EvaluatedMethod[] {
   return orders(groups.length).flatMap((order) => {
-    const starts = (byGroup[order[0]!] ?? []).filter(
+    // What can start is chosen before the best are: a separation or a back titration is no rival here.
+    const able = (found[order[0]!] ?? []).filter(
       (s) =>
         s.plan.backTitrant === null &&
         // A way round changes the whole portion: nothing else is titrated in it after.
         s.plan.detour === null &&
         s.plan.removed.length === 0 &&
         s.remaining.length === 0 &&
-        !holdsLater(
-          s,
+        !holdsForGood(
+          s.plan.masking,
           order.slice(1).flatMap((i) => groups[i]!),
+          knowledge,
+          shelf,
         ),
     );
+    const starts = best(task, able, knowledge);
     const later = order.slice(1).map((i) => groups[i]!);
     // A dye that serves the next titration too is worth more than a shade of uncertainty.
     const serves = (s: DevelopedStage): number => Number(!later.every((group) => dyeServes(s, group, knowledge)));
@@ -124,10 +130,6 @@ const dyeServes = (stage: DevelopedStage, group: readonly ComponentId[], knowled
         group.every((ion) => u.ions.includes(ion)) &&
         u.pH[1] >= stage.plan.pH,
     ) ?? false;
-
-/** A mask on something that is to be titrated later would have to be undone first. */
-const holdsLater = (stage: DevelopedStage, later: readonly ComponentId[]): boolean =>
-  stage.plan.masking.some((m) => m.masks.some((c) => later.includes(c)));
 
 function follow(
   task: Task,
@@ -148,14 +150,17 @@ function follow(
       },
     ];
   const last = done.at(-1)!;
+  // After a back titration or a release the vessel holds two standard solutions: nothing is titrated on.
+  if (last.plan.backTitrant !== null) return [];
   // The vessel as the last titration left it: fuller by its titre, its titrant bound to what it determined.
   const addedML = done.reduce((ml, s) => ml + s.evaluation.endPointML, 0);
   const grown = task.portion.titrationVolumeML + addedML;
   const metals = done.flatMap((s) => [...s.plan.determines]);
   const titrantMolPerL = done.reduce((s, d) => s + (d.plan.titrant.molPerL * d.evaluation.endPointML) / grown, 0);
-  const kept: MaskingStep[] = done.flatMap((s) =>
-    s.plan.masking.map((m) => ({ ...m, molPerL: m.molPerL * (task.portion.titrationVolumeML / grown) })),
-  );
+  // Masks and auxiliaries of the last titration are those of all before it, thinner by its titre.
+  const thinner = (task.portion.titrationVolumeML + (last.plan.carried?.addedML ?? 0)) / grown;
+  const kept: MaskingStep[] = last.plan.masking.map((m) => ({ ...m, molPerL: m.molPerL * thinner }));
+  const helped = last.plan.auxiliary.map((a) => ({ ...a, molPerL: a.molPerL * thinner }));
   const make = { task, knowledge, shelf, determines: next, field: USUAL_FIELD };
   // The dye that is in the vessel already comes first, then those in wide use.
   const preference = (s: Skeleton): number =>
@@ -167,14 +172,18 @@ function follow(
     .filter((s) => kept.every((m) => s.plan.pH >= (knowledge.agents.get(m.agent)?.pH[0] ?? 0)))
     .sort((a, b) => preference(a) - preference(b))
     .slice(0, NEXT_TRIED)
-    .map((skeleton) => ({
-      ...skeleton,
-      plan: {
+    .flatMap((skeleton): Skeleton[] => {
+      const there = helped.filter((a) => skeleton.plan.auxiliary.every((own) => own.id !== a.id));
+      const carriedOn = {
         ...skeleton.plan,
         carried: { metals, titrantMolPerL, addedML },
         masking: [...kept, ...skeleton.plan.masking],
-      },
-    }));
+        auxiliary: [...there, ...skeleton.plan.auxiliary],
+        demasked: last.plan.demasked,
+      };
+      const plan = demasked(carriedOn, knowledge, shelf);
+      return plan === null ? [] : [{ ...skeleton, plan }];
+    });
   const starts = promising(
     task,
     options.map((s) => bareStage(task, s, knowledge, shelf)),

@@ -71,6 +71,8 @@ export function stageSolution(task: Task, plan: StagePlan, knowledge: Knowledge)
   const amounts = new Map<string, number>();
   for (const { agent, molPerL } of plan.masking) amounts.set(agent, Math.max(amounts.get(agent) ?? 0, molPerL));
   for (const { id, molPerL } of plan.auxiliary) amounts.set(id, Math.max(amounts.get(id) ?? 0, molPerL));
+  // What a demasking agent has used up is no ligand any more.
+  if (plan.demasked) amounts.delete(plan.demasked.agent);
   for (const [id, molPerL] of amounts) {
     const component = knowledge.agents.get(id)?.component;
     if (component) add(totals, component, molPerL);

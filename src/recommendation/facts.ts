@@ -258,10 +258,14 @@ function alsoShown(task: Task, stage: DevelopedStage): ComponentId[] {
         plan.pH <= u.pH[1] + 0.5,
     )
     .flatMap((u) => u.ions);
-  return vesselSample(task, plan)
-    .filter((c) => !plan.determines.includes(c.component) && !plan.removed.includes(c.component))
-    .filter((c) => used.includes(c.component) && c.inVesselMolPerL > NOTICEABLE_RATIO * analyteMolPerL)
-    .map((c) => c.component);
+  return (
+    vesselSample(task, plan)
+      .filter((c) => !plan.determines.includes(c.component) && !plan.removed.includes(c.component))
+      // What an earlier titration of the same vessel has bound is no mask's business.
+      .filter((c) => !(plan.carried?.metals.includes(c.component) ?? false))
+      .filter((c) => used.includes(c.component) && c.inVesselMolPerL > NOTICEABLE_RATIO * analyteMolPerL)
+      .map((c) => c.component)
+  );
 }
 
 /** The contrast of the dye at the pH of the titration; a dye without colour records at this pH counts as good only in its published window. */
