@@ -26,10 +26,12 @@ const NEXT_TRIED = 12;
 /** Methods that give several results: separate portions, one portion in turn, or a difference of two titrations. */
 export function combinedMethods(
   task: Task,
-  groups: readonly (readonly ComponentId[])[],
+  asked: readonly (readonly ComponentId[])[],
   knowledge: Knowledge,
   shelf: Shelf,
 ): EvaluatedMethod[] {
+  // The order of the rows in a brief says nothing: portions stand in an order of their own.
+  const groups = [...asked].sort((a, b) => a.join().localeCompare(b.join()));
   const found = groups.map((group) => stagesFor(task, group, knowledge, shelf, false));
   const byGroup = found.map((stages) => best(task, stages, knowledge));
   return [
