@@ -123,21 +123,34 @@ function bindsEdta(knowledge: Knowledge, metal: ComponentId): boolean {
 const shareOf = (state: VesselState, metal: ComponentId): number =>
   Math.min(1, Math.max(0, state.boundToTitrant(metal) / Math.max(state.total(metal), Number.MIN_VALUE)));
 
+/** Bound share of the analyte at which its titration counts as over. */
+const OVER_SHARE = 0.999;
+const HALVINGS = 9;
+
 /**
- * The vessel when the titrant is enough for the analyte and for whatever binds beside it: the amount is raised until it covers
- * the shares it finds. Tells what each metal would take where no end point was found.
+ * The vessel when the analyte is bound, whatever has to be bound with it: the least titrant, between the analyte alone and every
+ * metal together, at which one thousandth of the analyte is left. Tells what each metal takes where no end point was found.
  */
 export function atCommonEquivalence(model: StageModel, presentMol: number): VesselState {
   const { plan } = model;
   if (plan.backTitrant !== null) return model.at(0);
   const ownMol = model.solution.way ? model.solution.way.expectedMolPerL * model.volumeL : presentMol;
   const counted = countedIn(plan);
-  let state = model.at(ownMol / model.burette.molPerL);
-  for (let round = 0; round < 6; round++) {
-    const others = model.metals
-      .filter((m) => !counted.includes(m) && m !== plan.chelate?.metal)
-      .reduce((sum, m) => sum + shareOf(state, m) * (model.solution.fromSample.get(m) ?? 0) * model.volumeL, 0);
-    state = model.at((ownMol + others) / model.burette.molPerL);
+  const others = model.metals
+    .filter((m) => !counted.includes(m) && m !== plan.chelate?.metal)
+    .reduce((sum, m) => sum + (model.solution.fromSample.get(m) ?? 0) * model.volumeL, 0);
+  const isOver = (state: VesselState): boolean => counted.every((metal) => shareOf(state, metal) >= OVER_SHARE);
+  let low = ownMol;
+  let high = 1.01 * (ownMol + others);
+  let state = model.at(high / model.burette.molPerL);
+  if (!isOver(state)) return model.at((ownMol + others) / model.burette.molPerL);
+  for (let step = 0; step < HALVINGS; step++) {
+    const middle = (low + high) / 2;
+    const there = model.at(middle / model.burette.molPerL);
+    if (isOver(there)) {
+      high = middle;
+      state = there;
+    } else low = middle;
   }
   return state;
 }

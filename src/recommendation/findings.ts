@@ -17,6 +17,13 @@ const REPORTED_PART_OF_REQUIREMENT = 0.1;
 /** log10 alpha of the analyte from one ligand of the sample, from which its binding is reported. */
 const REPORTED_LOG10_ALPHA = 0.3;
 
+/** Supersaturation, log10, that solubility products are sure of. */
+const REPORTED_SATURATION = 0.2;
+/** Part of the titrant put in at first that a metal has to take before it is told. */
+const REPORTED_PART_OF_TITRANT = 0.05;
+/** A metal that stands in the result with more of itself than this is told as titrated, not as taking titrant. */
+const COUNTED_SHARE = 0.5;
+
 const percentText = (fraction: number): string => {
   const p = 100 * fraction;
   return `${Math.abs(p) >= 10 ? p.toFixed(0) : Math.abs(p) >= 0.1 ? p.toPrecision(2) : p.toFixed(2)} %`;
@@ -44,8 +51,11 @@ export function findingsOf(
     titration(task, stage, put, knowledge);
     deposits(task, stage, put, knowledge);
     company(task, stage, put);
+    consumption(task, stage, put);
   }
   for (const analyte of task.analytes) slowness(analyte.component, first, put, knowledge);
+  for (const row of task.matrix)
+    if (knowledge.components.get(row.component)?.kind === "metal") slowness(row.component, first, put, knowledge);
   for (const row of task.matrix)
     if (OXIDANTS.has(row.component))
       put(row.component, "oxidises-indicator", "oxidises metallochromic dyes: reduce it before the dye goes in", {});
@@ -144,7 +154,7 @@ function bindings(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowle
 function deposits(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowledge): void {
   const { plan } = stage.bare.model;
   for (const solid of supersaturations(task, plan, knowledge, stage.bare.model.ionicStrengthMolPerL)) {
-    if (solid.pace === "no") continue;
+    if (solid.pace === "no" || solid.saturationIndex < REPORTED_SATURATION) continue;
     const fromSample = vesselSample(task, plan)
       .map((c) => c.component)
       .filter((c) => solid.components.includes(c))
@@ -160,6 +170,29 @@ function deposits(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowle
         `can deposit ${solid.solid} at pH ${plan.pH}: supersaturated by ${solid.saturationIndex.toFixed(1)} in log10 (${PACE_WORDS[solid.pace]})`,
         { saturationIndex: solid.saturationIndex, pH: plan.pH, solid: solid.solid },
       );
+  }
+}
+
+/** Metals that take titrant from the excess without standing in the result: they ask for more of it. */
+function consumption(task: Task, stage: DevelopedStage, put: Put): void {
+  const { bare } = stage;
+  const { model } = bare;
+  const { plan } = model;
+  if (plan.backTitrant === null || plan.excessTitrantMolPerL <= 0) return;
+  const start = model.at(0);
+  for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
+    if (!model.metals.includes(component) || plan.determines.includes(component)) continue;
+    const total = start.total(component);
+    if (total <= 0 || Math.abs(bare.titrated.get(component) ?? 0) > COUNTED_SHARE) continue;
+    const bound = Math.min(1, start.boundToTitrant(component) / total);
+    const ofTitrant = (bound * inVesselMolPerL) / plan.excessTitrantMolPerL;
+    if (ofTitrant < REPORTED_PART_OF_TITRANT) continue;
+    put(
+      component,
+      "consumes-titrant",
+      `takes ${percentText(ofTitrant)} of the ${plan.titrant.id} put in at pH ${plan.pH} before ${plan.backTitrant.id} takes it back`,
+      { boundFraction: bound, ofTitrantFraction: ofTitrant, pH: plan.pH },
+    );
   }
 }
 

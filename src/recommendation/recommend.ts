@@ -64,7 +64,7 @@ export async function recommend(task: Task, knowledge: Knowledge, rules: RuleRun
 
 /** The direct titrations of the analyte that an analyst would think of first: EDTA, published dye, nothing separated. */
 function simplestOf(task: Task, methods: readonly EvaluatedMethod[], knowledge: Knowledge): DevelopedStage[] {
-  const direct = methods
+  const all = methods
     .flatMap((m) => m.stages)
     .filter(
       (s) =>
@@ -72,8 +72,12 @@ function simplestOf(task: Task, methods: readonly EvaluatedMethod[], knowledge: 
         s.plan.detour === null &&
         s.plan.titrant.id === "EDTA" &&
         s.skeleton.use === "published" &&
+        s.skeleton.useConfidence !== "low" &&
         s.plan.removed.length === 0,
     );
+  // Where a dye serves without a further ligand that keeps the analyte dissolved, the titrations that need one are not the simplest.
+  const unaided = all.filter((s) => s.plan.auxiliary.length === 0 && !s.analytePrecipitates);
+  const direct = unaided.length > 0 ? unaided : all;
   // The usual dyes are those in use for many metals; the best stage of each stands for it.
   const usual = (dye: string): number => new Set(knowledge.indicators.get(dye)?.uses.flatMap((u) => u.ions)).size;
   const byDye = new Map<string, DevelopedStage>();
