@@ -91,9 +91,10 @@ async function methodMap(ion: string | null, { knowledge, rules }: Engine): Prom
   };
 }
 
-/** What the pages need, over the real knowledge: briefs and the method map are worked out in threads of their own, so that the server goes on answering. */
+/** What the pages need, over the real knowledge: briefs and the method map are worked out in threads of their own, so that the server goes on answering. `mapOnly`: the ions of the method map, where not all. */
 export async function openServices(
   log: (line: string) => void,
+  options: { readonly mapOnly?: readonly string[] } = {},
 ): Promise<{ readonly services: WebServices; readonly close: () => Promise<void> }> {
   const [engine, { FACT_CATALOGUE, OPERATORS }, { figureSeries }, { readBrief }, pools, maps] = await Promise.all([
     openEngine(),
@@ -114,7 +115,7 @@ export async function openServices(
       // A faulty brief is answered here; only a task that can be worked out goes to a thread.
       recommend: async (brief) => pool.ask("recommend", readBrief(brief, knowledge)),
       figureSeries: (document, methodId) => figureSeries(document, methodId, knowledge),
-      methodMap: maps.createMethodMap(knowledge, (ion) => pool.ask("mapIon", ion), log),
+      methodMap: maps.createMethodMap(knowledge, (ion) => pool.ask("mapIon", ion), log, options.mapOnly),
       log,
     },
     close: pool.close,

@@ -12,13 +12,14 @@ const STAND_BACK_MS = 2000;
  * server runs with this knowledge. One ion at a time is under way, so that briefs find a thread free.
  * @param ask answers for one ion
  * @param log takes one line for each ion that failed
+ * @param wanted the ions to map; all metal ions of the knowledge where nothing is said
  */
 export function createMethodMap(
   knowledge: Knowledge,
   ask: (ion: string) => Promise<IonMap>,
   log: (line: string) => void,
+  wanted: readonly string[] = mapIons(knowledge),
 ): () => MethodMap {
-  const wanted = mapIons(knowledge);
   const ions: IonMap[] = [];
   const failed: { ion: string; message: string }[] = [];
   let started = false;

@@ -42,10 +42,10 @@ describe("the stoichiometry of ways round", () => {
   });
 
   it.each([
-    ["Ag+", "silver-tetracyanonickelate", 12.5],
-    ["chloride", "chloride-silver-tetracyanonickelate", 12.5],
-    ["bromide", "bromide-silver-tetracyanonickelate", 12.5],
-    ["thiocyanate", "thiocyanate-silver-tetracyanonickelate", 12.5],
+    ["Ag+", "silver-nickel-cyanide-exchange", 12.5],
+    ["chloride", "chloride-silver-nickel-cyanide-exchange", 12.5],
+    ["bromide", "bromide-silver-nickel-cyanide-exchange", 12.5],
+    ["thiocyanate", "thiocyanate-silver-nickel-cyanide-exchange", 12.5],
   ])("counts 2 %s a nickel: 0.25 mmol are 12.5 mL of 0.01 mol/L EDTA", (analyte, id, byHand) => {
     const e = evaluated(inventedTask({ [analyte]: 0.01 }), id, "murexide");
     expect(e.model.plan.titrant.molPerL).toBe(0.01);
@@ -126,7 +126,7 @@ describe("the account of ways round", () => {
     [
       "chloride",
       inventedTask({ chloride: 0.01 }, { bromide: 5e-4 }),
-      "chloride-silver-tetracyanonickelate",
+      "chloride-silver-nickel-cyanide-exchange",
       "murexide",
     ],
     ["cyanide", inventedTask({ cyanide: 0.02 }, { "Ca2+": 1e-3 }), "cyanide-nickel-surplus", "murexide"],
@@ -156,7 +156,7 @@ describe("the account of ways round", () => {
   it("counts bromide as chloride, one for one", () => {
     const e = evaluated(
       inventedTask({ chloride: 0.01 }, { bromide: 5e-4 }),
-      "chloride-silver-tetracyanonickelate",
+      "chloride-silver-nickel-cyanide-exchange",
       "murexide",
     );
     expectRelative(line(e, "also precipitated"), 0.05, 0.01);
