@@ -1,5 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { hazardBurden } from "./masks.ts";
+import { hazardBurden } from "./hazard-burden.ts";
 import type { Shelf } from "./shelf.ts";
 import type { MaskingStep, StagePlan } from "./types.ts";
 

@@ -4,18 +4,10 @@ import { pairHasComplex } from "./masks.ts";
 import { PHOTOMETRIC_DYE_PART } from "./read-photometer.ts";
 import { releaseSkeletons } from "./release-plan.ts";
 import { stepAllowed } from "./shelf.ts";
-import {
-  backPlan,
-  backSkeletons,
-  basePlan,
-  benchPH,
-  buffersFor,
-  calculable,
-  directSkeletons,
-  forbidden,
-  type Make,
-  type Skeleton,
-} from "./skeletons.ts";
+import { backPlan, backSkeletons, calculable } from "./back-skeletons.ts";
+import { basePlan, directSkeletons, forbidden, type Make, type Skeleton } from "./skeletons.ts";
+import { benchPH } from "./dye-uses.ts";
+import { buffersFor } from "./buffers.ts";
 import type { StagePlan } from "./types.ts";
 
 /** Every titration worth a look with the detections that the laboratory has. */

@@ -1,22 +1,10 @@
 import type { ComponentId, DetourRecord, IndicatorRecord, IndicatorUse, Knowledge } from "../constants/knowledge.ts";
 import { skeletonsOf } from "./detection-skeletons.ts";
 import { bottleOnShelf, type Shelf } from "./shelf.ts";
-import {
-  backPlan,
-  basePlan,
-  benchPH,
-  buffersFor,
-  forbidden,
-  overlap,
-  standingOf,
-  usesFor,
-  USUAL_FIELD,
-  withAuxiliary,
-  type Make,
-  type Skeleton,
-  type UseStanding,
-  type Window,
-} from "./skeletons.ts";
+import { backPlan } from "./back-skeletons.ts";
+import { basePlan, forbidden, USUAL_FIELD, withAuxiliary, type Make, type Skeleton } from "./skeletons.ts";
+import { benchPH, overlap, standingOf, usesFor, type UseStanding, type Window } from "./dye-uses.ts";
+import { buffersFor } from "./buffers.ts";
 import { stageSolution, vesselSample } from "./solution.ts";
 import type { AddedReagent, Detour, StagePlan, Task } from "./types.ts";
 

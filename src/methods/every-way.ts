@@ -2,15 +2,8 @@ import type { Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop } from "./develop.ts";
 import { promising, singleMethod, type EvaluatedMethod } from "./methods.ts";
 import { searchMethods, type MethodSearch } from "./search.ts";
-import {
-  backSkeletons,
-  directSkeletons,
-  LAST_TITRANTS,
-  OTHER_TITRANTS,
-  USUAL_FIELD,
-  type Field,
-  type Skeleton,
-} from "./skeletons.ts";
+import { backSkeletons } from "./back-skeletons.ts";
+import { directSkeletons, LAST_TITRANTS, OTHER_TITRANTS, USUAL_FIELD, type Field, type Skeleton } from "./skeletons.ts";
 import type { Task } from "./types.ts";
 
 /**

@@ -1,4 +1,5 @@
 import type { AgentRecord, ComponentId, Knowledge, MaskingRecord } from "../constants/knowledge.ts";
+import { hazardBurden } from "./hazard-burden.ts";
 import type { Shelf } from "./shelf.ts";
 import type { Threat } from "./threats.ts";
 import { countedIn, type MaskingStep, type StagePlan } from "./types.ts";
@@ -13,30 +14,6 @@ const PH_SLACK = 0.3; // printed ranges are round figures
 /** Sets handed on; `develop` skips what has been seen to fail and stops as soon as enough of them work. */
 const SETS_KEPT = 120;
 const COMBINATIONS_LIMIT = 400;
-
-/**
- * Burden of an agent for choosing which sets are worth evaluating (the rules weigh the evaluated ones): hazard first,
- * then one more bottle. Same order as the weights in rules/, which decide.
- */
-const HAZARD_BURDEN: Readonly<Record<string, number>> = {
-  cyanide: 18,
-  mercury: 20,
-  sulfide: 10,
-  carcinogen: 6,
-  stench: 6,
-  toxic: 3,
-  fluoride: 2,
-  formaldehyde: 3,
-  "thorium-uranium": 20,
-  lead: 3,
-  cadmium: 5,
-};
-
-/** Hazard burden of a reagent by its tags, in the points of the rules. */
-export function hazardBurden(id: string, knowledge: Knowledge): number {
-  const tags = knowledge.reagents.get(id)?.hazardTags ?? [];
-  return Math.max(0, ...tags.map((t) => HAZARD_BURDEN[t] ?? 0));
-}
 
 const burdenOf = (agent: AgentRecord, knowledge: Knowledge): number =>
   3 + (agent.special ? 15 : 0) + hazardBurden(agent.id, knowledge);

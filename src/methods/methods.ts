@@ -1,7 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop, type BareStage, type DevelopedStage } from "./develop.ts";
 import { detourSkeletons } from "./detours.ts";
-import { hazardBurden } from "./masks.ts";
+import { hazardBurden } from "./hazard-burden.ts";
 import { supersaturations } from "./saturation.ts";
 import type { Shelf } from "./shelf.ts";
 import { skeletonsOf } from "./detection-skeletons.ts";

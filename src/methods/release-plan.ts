@@ -4,16 +4,9 @@ import { benchAmount } from "./masks.ts";
 import { evaluateRelease } from "./release.ts";
 import { beforeRelease, boundByRecord, releaseRecordOf } from "./release-vessels.ts";
 import type { Shelf } from "./shelf.ts";
-import {
-  basePlan,
-  benchPH,
-  bufferAmount,
-  buffersFor,
-  forbidden,
-  strengthFor,
-  type Make,
-  type Skeleton,
-} from "./skeletons.ts";
+import { basePlan, forbidden, type Make, type Skeleton } from "./skeletons.ts";
+import { benchPH } from "./dye-uses.ts";
+import { bufferAmount, buffersFor, strengthFor } from "./buffers.ts";
 import { vesselSample } from "./solution.ts";
 import { stageModel } from "./stage-model.ts";
 import type { StagePlan, Task } from "./types.ts";

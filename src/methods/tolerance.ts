@@ -1,5 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { evaluate } from "./develop.ts";
+import { evaluate } from "./evaluate.ts";
 import type { EvaluatedMethod } from "./methods.ts";
 import { releaseExcess } from "./release-plan.ts";
 import type { MethodMode, StagePlan, Task } from "./types.ts";

@@ -1,6 +1,7 @@
 import type { Knowledge } from "../constants/knowledge.ts";
-import { evaluate, type DevelopedStage } from "./develop.ts";
-import { benchPH } from "./skeletons.ts";
+import { evaluate } from "./evaluate.ts";
+import { type DevelopedStage } from "./develop.ts";
+import { benchPH } from "./dye-uses.ts";
 import { threatsOf } from "./threats.ts";
 import type { Task } from "./types.ts";
 import { stageBudget } from "./uncertainty.ts";

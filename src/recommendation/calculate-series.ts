@@ -1,5 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { evaluate } from "../methods/develop.ts";
+import { evaluate } from "../methods/evaluate.ts";
 import { stageModel, type StageModel } from "../methods/stage-model.ts";
 import { countedIn, type StagePlan, type Task } from "../methods/types.ts";
 import { readBrief } from "./brief.ts";

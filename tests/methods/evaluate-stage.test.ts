@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { evaluate } from "../../src/methods/develop.ts";
+import { evaluate } from "../../src/methods/evaluate.ts";
 import { evaluateStage, type StageEvaluation } from "../../src/methods/evaluate-stage.ts";
 import type { StagePlan } from "../../src/methods/types.ts";
 import { expectRelative } from "../expect-relative.ts";

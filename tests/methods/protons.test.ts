@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { evaluate } from "../../src/methods/develop.ts";
+import { evaluate } from "../../src/methods/evaluate.ts";
 import { bufferStrain, leastBuffer, protonsFreed } from "../../src/methods/protons.ts";
 import { expectRelative } from "../expect-relative.ts";
 import { backPlan, calciumPlan, inventedPlan, inventedTask, KNOWLEDGE, magnesiumPlan } from "./invented.ts";

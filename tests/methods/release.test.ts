@@ -1,5 +1,6 @@
 import { describe, expect, it } from "vitest";
-import { bareStage, evaluate } from "../../src/methods/develop.ts";
+import { bareStage } from "../../src/methods/develop.ts";
+import { evaluate } from "../../src/methods/evaluate.ts";
 import { releaseExcess, releaseSkeletons, withReleaseAmount } from "../../src/methods/release-plan.ts";
 import { shelfOf } from "../../src/methods/shelf.ts";
 import { USUAL_FIELD } from "../../src/methods/skeletons.ts";

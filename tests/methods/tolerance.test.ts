@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { evaluate } from "../../src/methods/develop.ts";
+import { evaluate } from "../../src/methods/evaluate.ts";
 import { singleMethod } from "../../src/methods/methods.ts";
 import { bearsRicherMatrix, toleranceLimits } from "../../src/methods/tolerance.ts";
 import type { StagePlan, Task } from "../../src/methods/types.ts";

@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { evaluate } from "../../src/methods/develop.ts";
+import { evaluate } from "../../src/methods/evaluate.ts";
 import { combineDifference, stageBudget, type Budget } from "../../src/methods/uncertainty.ts";
 import { expectRelative } from "../expect-relative.ts";
 import { backPlan, inventedPlan, inventedTask, KNOWLEDGE } from "./invented.ts";

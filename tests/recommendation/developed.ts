@@ -1,4 +1,5 @@
-import { evaluate, type DevelopedStage } from "../../src/methods/develop.ts";
+import { evaluate } from "../../src/methods/evaluate.ts";
+import { type DevelopedStage } from "../../src/methods/develop.ts";
 import { singleMethod } from "../../src/methods/methods.ts";
 import { threatsOf } from "../../src/methods/threats.ts";
 import type { StagePlan, Task } from "../../src/methods/types.ts";

@@ -1,0 +1,55 @@
+import type { Knowledge } from "../constants/knowledge.ts";
+import { lyingAsHydroxide } from "./alkali-masks.ts";
+import { evaluate } from "./evaluate.ts";
+import { maskSets } from "./masks.ts";
+import { withExcess } from "./plan-excess.ts";
+import { settle, type Settled } from "./settle.ts";
+import type { Shelf } from "./shelf.ts";
+import { vesselSample } from "./solution.ts";
+import { threatsOf, type Threat } from "./threats.ts";
+import type { StagePlan, Task } from "./types.ts";
+
+/** A component above this ratio to the analyte may be better taken out than masked, even where a mask holds. */
+export const BULK_RATIO = 0.5;
+
+/** The same direct titration after metals that would lie in it as hydroxides in bulk have been taken out; null where none do. */
+export function flocsSeparated(task: Task, v: Settled, knowledge: Knowledge): StagePlan | null {
+  if (v.plan.backTitrant !== null) return null;
+  const present = v.evaluation.presentMol / v.evaluation.model.volumeL;
+  const inVessel = new Map(vesselSample(task, v.plan).map((c) => [c.component, c.inVesselMolPerL]));
+  const flocs = lyingAsHydroxide(v, knowledge).filter(
+    (ion) => ion !== "Mg2+" && (inVessel.get(ion) ?? 0) > BULK_RATIO * present,
+  );
+  if (flocs.length === 0) return null;
+  const { preparation } = v.plan;
+  return {
+    ...v.plan,
+    removed: [...v.plan.removed, ...flocs],
+    preparation: preparation.includes("separate") ? preparation : ["separate", ...preparation],
+  };
+}
+
+/** Variants in which what cannot be masked is taken out first, the rest masked; and one in which everything is taken out. */
+export function separations(
+  task: Task,
+  plan: StagePlan,
+  threats: readonly Threat[],
+  failed: readonly Threat[],
+  knowledge: Knowledge,
+  shelf: Shelf,
+): Settled[] {
+  const hopeless = new Set(failed.map((t) => t.component));
+  const metals = threats.filter((t) => !t.holdsAnalyte);
+  const choices = [threats.filter((t) => hopeless.has(t.component)), metals, threats].filter((c) => c.length > 0);
+  const seen = new Set<string>();
+  return choices.flatMap((out) => {
+    const removed = out.map((t) => t.component);
+    const key = removed.join();
+    if (seen.has(key)) return [];
+    seen.add(key);
+    const base = withExcess(task, { ...plan, removed, preparation: ["separate", ...plan.preparation] }, knowledge);
+    const left = threatsOf(task, evaluate(task, base, knowledge), knowledge);
+    const set = maskSets(left, base, knowledge, shelf)[0];
+    return set ? [settle(task, base, set, knowledge)] : [];
+  });
+}

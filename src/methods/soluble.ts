@@ -1,0 +1,56 @@
+import type { Knowledge } from "../constants/knowledge.ts";
+import { evaluate } from "./evaluate.ts";
+import type { StageEvaluation } from "./evaluate-stage.ts";
+import type { Shelf } from "./shelf.ts";
+import { withAuxiliary } from "./skeletons.ts";
+import { stageModel, type StageModel } from "./stage-model.ts";
+import type { StagePlan, Task } from "./types.ts";
+
+/** Share of the analyte that may lie as a redissolving deposit when the titration starts. */
+const DEPOSIT_BORNE_FRACTION = 0.3;
+
+/** Adds what keeps the analyte dissolved where it would precipitate before the titrant reaches it. */
+export function soluble(
+  task: Task,
+  plan: StagePlan,
+  knowledge: Knowledge,
+  shelf: Shelf,
+): { plan: StagePlan; bare: StageEvaluation; precipitates: boolean } {
+  // A deposit that redissolves as the titrant takes the rest is no loss while it is the smaller part.
+  const lost = (model: StageModel): boolean => {
+    const start = model.at(0);
+    const deposited = model.system.solids.reduce((sum, solid, i) => {
+      const ions = plan.determines.reduce((n, ion) => n + (solid.components[ion] ?? 0), 0);
+      return sum + ions * (start.result.solidsMolPerL[i] ?? 0);
+    }, 0);
+    const gone = model.held
+      .filter((h) => h.why === "precipitated" && plan.determines.includes(h.component))
+      .reduce((s, h) => s + h.molPerL, 0);
+    const present = plan.determines.reduce((s, ion) => s + (model.solution.fromSample.get(ion) ?? 0), 0);
+    return gone > 1e-3 * present || deposited > DEPOSIT_BORNE_FRACTION * present;
+  };
+  const bare = evaluate(task, plan, knowledge);
+  // Whether the metal of a way round stays dissolved, the way itself has settled.
+  if (plan.detour) return { plan, bare, precipitates: false };
+  // In a back titration the titrant goes in first; what would precipitate without it does not.
+  if (plan.backTitrant !== null)
+    return { plan, bare, precipitates: lost(stageModel(task, { ...plan, excessTitrantMolPerL: 0 }, knowledge)) };
+  if (!lost(bare.model)) return { plan, bare, precipitates: false };
+  for (const agent of knowledge.agents.values()) {
+    if (!shelf(agent.id)) continue;
+    const keeps = knowledge.masking.some(
+      (r) =>
+        r.agent === agent.id &&
+        r.effect === "auxiliary" &&
+        r.via === "complexation" &&
+        plan.determines.includes(r.ion) &&
+        plan.pH >= r.pH[0] - 0.3 &&
+        plan.pH <= r.pH[1] + 0.3,
+    );
+    if (!keeps) continue;
+    const kept = withAuxiliary(plan, knowledge, agent.id, `keeps ${plan.determines.join(", ")} dissolved`);
+    const evaluation = evaluate(task, kept, knowledge);
+    if (!lost(evaluation.model)) return { plan: kept, bare: evaluation, precipitates: true };
+  }
+  return { plan, bare, precipitates: true };
+}
