@@ -2,20 +2,12 @@ import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop, type DevelopedStage } from "./develop.ts";
 import { demasked, holdsForGood } from "./demask.ts";
 import { skeletonsOf } from "./detection-skeletons.ts";
-import {
-  dyeBreadth,
-  promising,
-  roughCost,
-  seenWith,
-  stageKey,
-  stagesFor,
-  type EvaluatedMethod,
-  type MethodResult,
-} from "./methods.ts";
+import { dyeBreadth, promising, roughCost, seenWith, stageKey, stagesFor, type EvaluatedMethod } from "./methods.ts";
+import { portions, resultOf } from "./portions.ts";
 import type { Shelf } from "./shelf.ts";
 import { USUAL_FIELD, type Skeleton } from "./skeletons.ts";
 import type { MaskingStep, Task } from "./types.ts";
-import { combineDifference, stageBudget } from "./uncertainty.ts";
+import { combineDifference } from "./uncertainty.ts";
 
 /** How many titrations of a group are carried on into combinations. */
 const CARRIED_ON = 4;
@@ -35,7 +27,7 @@ export function combinedMethods(
   const found = groups.map((group) => stagesFor(task, group, knowledge, shelf, false));
   const byGroup = found.map((stages) => best(task, stages, knowledge));
   return [
-    ...portions(task, byGroup, knowledge),
+    ...portions(task, found, byGroup, knowledge),
     ...successive(task, groups, found, knowledge, shelf),
     ...(groups.length === 2 ? differences(task, groups, byGroup, knowledge, shelf) : []),
   ];
@@ -55,31 +47,6 @@ function best(task: Task, stages: readonly DevelopedStage[], knowledge: Knowledg
       return n < 1;
     })
     .slice(0, 12);
-}
-
-const result = (task: Task, stage: DevelopedStage, knowledge: Knowledge): MethodResult => ({
-  determines: stage.plan.determines,
-  biasFraction: stage.evaluation.biasFraction,
-  budget: stageBudget(task, stage.evaluation, knowledge),
-});
-
-function portions(
-  task: Task,
-  byGroup: readonly (readonly DevelopedStage[])[],
-  knowledge: Knowledge,
-): EvaluatedMethod[] {
-  if (byGroup.some((stages) => stages.length === 0)) return [];
-  const width = Math.min(CARRIED_ON, Math.max(...byGroup.map((s) => s.length)));
-  return Array.from({ length: width }, (_, i) => {
-    const stages = byGroup.map((list) => list[Math.min(i, list.length - 1)]!);
-    return {
-      id: `portions: ${stages.map(stageKey).join(" ; ")}`,
-      mode: "portions" as const,
-      stages,
-      results: stages.map((s) => result(task, s, knowledge)),
-      portions: stages.length,
-    };
-  });
 }
 
 /** Order in which groups may be titrated in one portion: every order of up to three groups. */
@@ -147,7 +114,7 @@ function follow(
         id: `successive: ${done.map(stageKey).join(" ; ")}`,
         mode: "successive",
         stages: done,
-        results: done.map((s) => result(task, s, knowledge)),
+        results: done.map((s) => resultOf(task, s, knowledge)),
         portions: 1,
       },
     ];
@@ -228,7 +195,7 @@ function differences(
           mode: "difference" as const,
           stages: [whole, single],
           results: [
-            result(task, single, knowledge),
+            resultOf(task, single, knowledge),
             { determines: other, ...combineDifference(task, whole.evaluation, single.evaluation, knowledge) },
           ],
           portions: 2,

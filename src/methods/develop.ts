@@ -1,9 +1,10 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import { declared, withoutFlocs } from "./alkali-masks.ts";
 import { bufferAmount } from "./buffers.ts";
+import { holdsForGood } from "./demask.ts";
 import { evaluate } from "./evaluate.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
-import { maskSets, pairHasComplex } from "./masks.ts";
+import { maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
 import { withExcess } from "./plan-excess.ts";
 import { leastBuffer } from "./protons.ts";
 import { withReleaseAmount } from "./release-plan.ts";
@@ -13,7 +14,7 @@ import type { Shelf } from "./shelf.ts";
 import type { Skeleton } from "./skeletons.ts";
 import { soluble } from "./soluble.ts";
 import { threatsOf, type Threat } from "./threats.ts";
-import type { StagePlan, Task } from "./types.ts";
+import type { MaskingStep, StagePlan, Task } from "./types.ts";
 import { stageBudget } from "./uncertainty.ts";
 
 /** A titration worked out against the matrix: plan, evaluation, and what it faced. */
@@ -106,39 +107,71 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
       return [v, ...others].map((each) => declared(each, knowledge));
     });
   if (threats.length === 0) return finished([{ ...start, evaluation: start.bare, remaining: [] }]);
+  const { out, failed } = masked(task, start, knowledge, shelf);
+  const anyClean = out.some((variant) => isClean(task, variant, knowledge));
+  // Of the sets that did not work the best is kept, to show what was tried.
+  const kept = anyClean ? out.filter((variant) => isClean(task, variant, knowledge)) : out.slice(0, 1);
+  const present = start.bare.presentMol / start.bare.model.volumeL;
+  const bulk = threats.some((t) => t.molPerL > BULK_RATIO * present);
+  if (!anyClean || bulk)
+    kept.push(...separations(task, plan, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
+  return finished(kept);
+}
+
+const isClean = (task: Task, v: DevelopedStage, knowledge: Knowledge): boolean =>
+  v.remaining.length === 0 &&
+  v.evaluation.status !== "failed" &&
+  v.evaluation.blockedBy.length === 0 &&
+  100 * stageBudget(task, v.evaluation, knowledge).expanded <= task.requirementPercent;
+
+/** The variants with masks that were tried, and what some of them failed to hold. */
+function masked(
+  task: Task,
+  start: BareStage,
+  knowledge: Knowledge,
+  shelf: Shelf,
+): { readonly out: DevelopedStage[]; readonly failed: readonly Threat[] } {
+  const { plan, threats } = start;
   const out: DevelopedStage[] = [];
   const failed: Threat[] = [];
-  const clean = (v: DevelopedStage): boolean =>
-    v.remaining.length === 0 &&
-    v.evaluation.status !== "failed" &&
-    v.evaluation.blockedBy.length === 0 &&
-    100 * stageBudget(task, v.evaluation, knowledge).expanded <= task.requirementPercent;
   // The sets come least burden first. An agent that was seen not to hold a component is not tried on it again.
   const useless = new Set<string>();
-  let tried = 0;
-  for (const set of maskSets(threats, plan, knowledge, shelf)) {
-    if (set.steps.some((s) => s.masks.some((ion) => useless.has(`${s.agent} ${ion}`)))) continue;
+  const hopeless = (set: MaskSet): boolean =>
+    set.steps.some((s) => s.masks.some((ion) => useless.has(`${s.agent} ${ion}`)));
+  const attempt = (set: MaskSet): DevelopedStage => {
     const settled = settle(task, plan, set, knowledge);
-    const variant = { ...start, ...settled };
-    out.push(variant);
     failed.push(...settled.remaining);
     for (const step of set.steps)
       for (const ion of step.masks)
         if (settled.remaining.some((t) => t.component === ion)) useless.add(`${step.agent} ${ion}`);
-    if (out.filter(clean).length >= CLEAN_SETS_KEPT || ++tried >= SETS_TRIED) break;
+    return { ...start, ...settled };
+  };
+  const sets = maskSets(threats, plan, knowledge, shelf);
+  let working = 0;
+  for (const set of sets) {
+    if (hopeless(set)) continue;
+    const variant = attempt(set);
+    out.push(variant);
+    if (isClean(task, variant, knowledge)) working++;
+    if (working >= CLEAN_SETS_KEPT || out.length >= SETS_TRIED) break;
   }
-  const anyClean = out.some(clean);
-  // Of the sets that did not work the best is kept, to show what was tried.
-  if (anyClean) out.splice(0, out.length, ...out.filter(clean));
-  else out.splice(1);
-  const present = start.bare.presentMol / start.bare.model.volumeL;
-  const bulk = threats.some((t) => t.molPerL > BULK_RATIO * present);
-  if (!anyClean || bulk)
-    out.push(...separations(task, plan, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
-  return finished(out);
+  // What another titration of the vessel is to find may be masked for a while: a set that gives it back is a rival of any burden.
+  const later = threats.map((t) => t.component).filter((ion) => task.analytes.some((a) => a.component === ion));
+  const givesBack = (masking: readonly MaskingStep[]): boolean => !holdsForGood(masking, later, knowledge, shelf);
+  if (later.length === 0 || out.some((v) => isClean(task, v, knowledge) && givesBack(v.plan.masking)))
+    return { out, failed };
+  for (const set of sets.filter((s) => givesBack(s.steps)).slice(0, SETS_GIVING_BACK)) {
+    if (hopeless(set)) continue;
+    const variant = attempt(set);
+    out.push(variant);
+    if (isClean(task, variant, knowledge)) break;
+  }
+  return { out, failed };
 }
 
 /** How many working sets of masks of one titration go on to judgement. */
 const CLEAN_SETS_KEPT = 2;
 /** How many sets are evaluated before the matrix is called unmaskable. */
 const SETS_TRIED = 8;
+/** How many sets that give the other analytes back are evaluated where the least burdensome ones do not. */
+const SETS_GIVING_BACK = 3;

@@ -29,7 +29,7 @@ export function flocsSeparated(task: Task, v: Settled, knowledge: Knowledge): St
   };
 }
 
-/** Variants in which what cannot be masked is taken out first, the rest masked; and one in which everything is taken out. */
+/** Variants in which what cannot be masked, or is determined by itself, is taken out first, the rest masked; and one in which everything is taken out. */
 export function separations(
   task: Task,
   plan: StagePlan,
@@ -40,7 +40,14 @@ export function separations(
 ): Settled[] {
   const hopeless = new Set(failed.map((t) => t.component));
   const metals = threats.filter((t) => !t.holdsAnalyte);
-  const choices = [threats.filter((t) => hopeless.has(t.component)), metals, threats].filter((c) => c.length > 0);
+  // What is asked for by itself is parted anyway; the rest may be masked then.
+  const asked = new Set(task.analytes.map((a) => a.component));
+  const choices = [
+    threats.filter((t) => hopeless.has(t.component)),
+    threats.filter((t) => asked.has(t.component)),
+    metals,
+    threats,
+  ].filter((c) => c.length > 0);
   const seen = new Set<string>();
   return choices.flatMap((out) => {
     const removed = out.map((t) => t.component);

@@ -14,33 +14,52 @@ export interface Separation {
   readonly unknown: readonly ComponentId[];
 }
 
-/**
- * The fewest steps on record that part the ions `removed` from those that are determined: greedily, the step that parts most first.
- * A step serves when it takes an interferent and leaves every analyte, or takes every analyte and leaves the interferent.
- */
-export function separationOf(
+/** Ions to be parted from those that one titration determines. */
+export interface Parting {
+  readonly removed: readonly ComponentId[];
+  readonly determines: readonly ComponentId[];
+}
+
+/** What one record does for one parting: a step serves when it takes an interferent and leaves every analyte, or takes every analyte and leaves the interferent. */
+function stepOf(record: SeparationRecord, { removed, determines }: Parting): SeparationStep | null {
+  const goes = (ion: ComponentId): boolean => record.removes.includes(ion);
+  const mayGo = (ion: ComponentId): boolean => goes(ion) || record.takesAlong.includes(ion);
+  if (!determines.some(mayGo)) return { record, takes: "interferents", ions: removed.filter(goes) };
+  if (determines.every(goes)) return { record, takes: "analyte", ions: removed.filter((ion) => !mayGo(ion)) };
+  return null;
+}
+
+/** Whether one step on record parts everything that is to go. */
+export const parts = (record: SeparationRecord, parting: Parting): boolean =>
+  stepOf(record, parting)?.ions.length === parting.removed.length;
+
+/** The fewest steps on record that part the ions `removed` from those that are determined: greedily, the step that parts most first. */
+export const separationOf = (
   removed: readonly ComponentId[],
   determines: readonly ComponentId[],
   knowledge: Knowledge,
-): Separation {
-  const candidates = knowledge.separations.flatMap((record): SeparationStep[] => {
-    const goes = (ion: ComponentId): boolean => record.removes.includes(ion);
-    const mayGo = (ion: ComponentId): boolean => goes(ion) || record.takesAlong.includes(ion);
-    if (!determines.some(mayGo)) return [{ record, takes: "interferents", ions: removed.filter(goes) }];
-    if (determines.every(goes)) return [{ record, takes: "analyte", ions: removed.filter((ion) => !mayGo(ion)) }];
-    return [];
-  });
-  const steps: SeparationStep[] = [];
-  let left = [...removed];
+): Separation => separationsOf([{ removed, determines }], knowledge)[0]!;
+
+/**
+ * The same for the titrations of one method, in their order: a step that parts the ions of several of them (one in the precipitate,
+ * the other in the filtrate) is one step, and is preferred to one for each.
+ */
+export function separationsOf(partings: readonly Parting[], knowledge: Knowledge): Separation[] {
+  const candidates = knowledge.separations.map((record) => partings.map((parting) => stepOf(record, parting)));
+  const found = partings.map(({ removed }) => ({ steps: [] as SeparationStep[], unknown: [...removed] }));
+  const partsOf = (step: SeparationStep | null, i: number): ComponentId[] =>
+    (step?.ions ?? []).filter((ion) => found[i]!.unknown.includes(ion));
   for (;;) {
-    const gain = (step: SeparationStep): number => step.ions.filter((ion) => left.includes(ion)).length;
-    const best = candidates.reduce<SeparationStep | null>(
-      (most, step) => (gain(step) > (most === null ? 0 : gain(most)) ? step : most),
-      null,
-    );
-    if (best === null) return { steps, unknown: left };
-    const ions = best.ions.filter((ion) => left.includes(ion));
-    steps.push({ ...best, ions });
-    left = left.filter((ion) => !ions.includes(ion));
+    const gain = (row: readonly (SeparationStep | null)[]): number =>
+      row.reduce((n, step, i) => n + partsOf(step, i).length, 0);
+    let best: readonly (SeparationStep | null)[] = [];
+    for (const row of candidates) if (gain(row) > gain(best)) best = row;
+    if (best.length === 0) return found;
+    best.forEach((step, i) => {
+      const ions = partsOf(step, i);
+      if (step === null || ions.length === 0) return;
+      found[i]!.steps.push({ ...step, ions });
+      found[i]!.unknown = found[i]!.unknown.filter((ion) => !ions.includes(ion));
+    });
   }
 }

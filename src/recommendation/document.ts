@@ -2,9 +2,8 @@ import type { Knowledge } from "../constants/knowledge.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
 import type { ToleranceLimit } from "../methods/tolerance.ts";
 import { vesselSample } from "../methods/solution.ts";
-import { separationOf } from "../methods/separation.ts";
-import type { StagePlan, Task } from "../methods/types.ts";
-import type { WorkingRange } from "../methods/working-range.ts";
+import { separationsOf, type Separation } from "../methods/separation.ts";
+import type { Task } from "../methods/types.ts";
 import type { Because, ConstantUsed, RecommendedMethod, StageDocument } from "./contract.ts";
 import type { JudgedMethod, Verdict } from "./judge.ts";
 import { maskingDocument } from "./masking-document.ts";
@@ -53,15 +52,16 @@ export function colourChangeOf(stage: DevelopedStage): readonly [string, string]
   return stage.plan.backTitrant ? [free, bound] : [bound, free];
 }
 
-function stageDocument(
-  task: Task,
-  stage: DevelopedStage,
-  range: WorkingRange | null,
-  method: JudgedMethod,
-  knowledge: Knowledge,
-): StageDocument {
+function stageDocument(task: Task, method: JudgedMethod, index: number, knowledge: Knowledge): StageDocument {
+  const { stages } = method.method;
+  const stage = stages[index]!;
+  const range = method.ranges[index] ?? null;
+  const separation = separationsOf(
+    stages.map((s) => s.plan),
+    knowledge,
+  )[index]!;
   const { plan, evaluation } = stage;
-  const head = method.method.stages[0]!.plan;
+  const head = stages[0]!.plan;
   const ion = (id: string): string => shownIon(task, id, knowledge);
   const added = [
     ...plan.added.map((a) => ({ ...a })),
@@ -106,7 +106,7 @@ function stageDocument(
     preparation: [...plan.preparation] as Preparation[],
     vessel: {
       removed: [...plan.removed],
-      ...separationDocument(plan, knowledge, ion),
+      ...separationDocument(separation, knowledge, ion),
       chelate: plan.chelate && { ...plan.chelate },
       excessTitrantMolPerL: plan.excessTitrantMolPerL,
       carried: plan.carried && {
@@ -161,11 +161,10 @@ function stageDocument(
 
 /** How what is removed is parted from the analyte, as far as a step is on record. */
 function separationDocument(
-  plan: StagePlan,
+  { steps, unknown }: Separation,
   knowledge: Knowledge,
   ion: (id: string) => string,
 ): Pick<StageDocument["vessel"], "separation" | "separationUnknown"> {
-  const { steps, unknown } = separationOf(plan.removed, plan.determines, knowledge);
   return {
     separation: steps.map(({ record, takes, ions }) => ({
       kind: record.kind,
@@ -205,7 +204,7 @@ export function methodDocument(
     mode: method.mode,
     titrant: { ...head.plan.titrant },
     backTitrant: method.stages.find((s) => s.plan.backTitrant)?.plan.backTitrant ?? null,
-    stages: method.stages.map((stage, i) => stageDocument(task, stage, judged.ranges[i] ?? null, judged, knowledge)),
+    stages: method.stages.map((_, i) => stageDocument(task, judged, i, knowledge)),
     predicted: {
       biasPercent: percentOf(worst.biasFraction),
       relativeExpandedUncertaintyPercent: signif(100 * worst.budget.expanded, 4),

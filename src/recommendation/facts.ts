@@ -6,7 +6,7 @@ import { bufferStrain } from "../methods/protons.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
 import { detectionFacts } from "./detection-facts.ts";
 import type { EvaluatedMethod } from "../methods/methods.ts";
-import { separationOf } from "../methods/separation.ts";
+import { separationsOf } from "../methods/separation.ts";
 import { supersaturations, type Supersaturation } from "../methods/saturation.ts";
 import { countedIn, type Task } from "../methods/types.ts";
 import { stageBudget } from "../methods/uncertainty.ts";
@@ -54,7 +54,10 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
   const reagents = [...new Set(stages.flatMap((s) => reagentsOf(s.plan)))];
   const masking = stages.flatMap((s) => s.plan.masking);
   const titres = stages.map((s) => s.evaluation.endPointML);
-  const separations = stages.map((s) => separationOf(s.plan.removed, s.plan.determines, knowledge));
+  const separations = separationsOf(
+    stages.map((s) => s.plan),
+    knowledge,
+  );
   return finite({
     mode: method.mode,
     titrant: stages[0]?.plan.titrant.id ?? "none",

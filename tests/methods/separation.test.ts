@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { separationOf } from "../../src/methods/separation.ts";
+import { separationOf, separationsOf } from "../../src/methods/separation.ts";
 import { KNOWLEDGE } from "./invented.ts";
 
 const ids = (removed: string[], determines: string[]): string[] =>
@@ -24,6 +24,27 @@ describe("separationOf", () => {
   it("does not call a step a separation when the analyte goes along", () => {
     for (const { record } of separationOf(["Fe3+"], ["Ga3+"], KNOWLEDGE).steps)
       expect([...record.removes, ...record.takesAlong].includes("Ga3+") && record.removes.includes("Fe3+")).toBe(false);
+  });
+});
+
+describe("separationsOf", () => {
+  const both = (...partings: { removed: string[]; determines: string[] }[]): string[][] =>
+    separationsOf(partings, KNOWLEDGE).map((s) => s.steps.map((step) => `${step.takes} ${step.record.id}`));
+
+  // Hillebrand & Lundell 1953: lead goes as its sulfate, zinc and copper stay in the filtrate, where they are determined.
+  it("is one step where one metal is determined in the precipitate and the other in the filtrate", () => {
+    expect(
+      both({ removed: ["Zn2+", "Cu2+"], determines: ["Pb2+"] }, { removed: ["Pb2+"], determines: ["Zn2+"] }),
+    ).toEqual([["analyte lead-sulfate"], ["interferents lead-sulfate"]]);
+  });
+
+  it("names no step for a titration that needs none", () => {
+    expect(both({ removed: [], determines: ["Mg2+"] }, { removed: ["Fe3+"], determines: ["Al3+"] })[0]).toEqual([]);
+  });
+
+  it("gives each what it would have alone where nothing is shared", () => {
+    const pair = both({ removed: ["Fe3+"], determines: ["Al3+"] }, { removed: ["Mn2+"], determines: ["Ni2+"] });
+    expect(pair).toEqual([["interferents iron-ketone-extraction"], ["analyte nickel-dimethylglyoxime"]]);
   });
 });
 
