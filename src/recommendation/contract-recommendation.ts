@@ -105,6 +105,8 @@ export const stageSchema = z.strictObject({
   ),
   auxiliary: z.array(addedSchema),
   preparation: z.array(z.enum(PREPARATION_STEPS)),
+  // what the titration takes of each reagent but the titrants, and g of the bottle where it is weighed
+  amounts: z.array(z.strictObject({ id: text, mmol: level, grams: level.nullable(), bottle: text.nullable() })),
   // What the calculation put into the vessel beside the reagents above: enough, with them, to compute the titration again.
   vessel: z.strictObject({
     removed: z.array(text), // ions taken out by a separation
@@ -179,6 +181,7 @@ export const methodSchema = z.strictObject({
   titrant: reagentSchema,
   backTitrant: reagentSchema.nullable(),
   stages: z.array(stageSchema).min(1),
+  calculation: z.array(text), // how each result is calculated from the volumes read
   predicted: predictedSchema,
   meetsRequirement: z.boolean(),
   verdict: z.enum(VERDICTS),

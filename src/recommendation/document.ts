@@ -4,10 +4,12 @@ import type { ToleranceLimit } from "../methods/tolerance.ts";
 import { vesselSample } from "../methods/solution.ts";
 import { separationsOf, type Separation } from "../methods/separation.ts";
 import type { Task } from "../methods/types.ts";
-import type { Because, ConstantUsed, RecommendedMethod, StageDocument } from "./contract.ts";
+import { amountsOf } from "./bench-amounts.ts";
+import type { Because, RecommendedMethod, StageDocument } from "./contract.ts";
 import type { JudgedMethod, Verdict } from "./judge.ts";
 import { maskingDocument } from "./masking-document.ts";
 import { precedentsOf } from "./precedents.ts";
+import { resultFormulas } from "./result-formula.ts";
 import { cautionTexts } from "./reagents.ts";
 import { shownIon } from "./spelling.ts";
 import { detourDocument } from "./detour-words.ts";
@@ -38,6 +40,13 @@ export function becauseOf({ finding, stage }: Verdict): Because {
 /** The colour alone, without the species and remarks that the record puts in brackets. */
 const plainColour = (text: string): string => text.replace(/\s*\([^)]*\)/g, "").trim() || text;
 
+/** One metal's part of a text that names several: "Ni yellow, Ca orange-red" is "yellow" for nickel. */
+function colourOfMetal(text: string, metal: string | null): string {
+  const symbol = metal?.replace(/\d*\+$/, "");
+  const own = text.split(", ").find((part) => symbol && part.startsWith(`${symbol} `));
+  return own === undefined ? text : own.slice(symbol!.length + 1);
+}
+
 /** Colours of a dye at a pH as [before, after] the end point. */
 export function colourChangeOf(stage: DevelopedStage): readonly [string, string] {
   const indicator = stage.evaluation.model.indicator;
@@ -48,7 +57,7 @@ export function colourChangeOf(stage: DevelopedStage): readonly [string, string]
   const nearest = [...indicator.colours].sort((a, b) => distance(a.pH) - distance(b.pH))[0];
   if (!nearest) return ["not stated", "not stated"];
   const free = plainColour(nearest.free);
-  const bound = plainColour(nearest.bound);
+  const bound = colourOfMetal(plainColour(nearest.bound), stage.evaluation.indicatorMetal);
   return stage.plan.backTitrant ? [free, bound] : [bound, free];
 }
 
@@ -104,6 +113,7 @@ function stageDocument(task: Task, method: JudgedMethod, index: number, knowledg
     masking: maskingDocument(stage, knowledge, ion),
     auxiliary: plan.auxiliary.map((a) => ({ ...a })),
     preparation: [...plan.preparation] as Preparation[],
+    amounts: amountsOf(task, plan, knowledge),
     vessel: {
       removed: [...plan.removed],
       ...separationDocument(separation, knowledge, ion),
@@ -205,6 +215,7 @@ export function methodDocument(
     titrant: { ...head.plan.titrant },
     backTitrant: method.stages.find((s) => s.plan.backTitrant)?.plan.backTitrant ?? null,
     stages: method.stages.map((_, i) => stageDocument(task, judged, i, knowledge)),
+    calculation: resultFormulas(task, method, knowledge),
     predicted: {
       biasPercent: percentOf(worst.biasFraction),
       relativeExpandedUncertaintyPercent: signif(100 * worst.budget.expanded, 4),
@@ -256,43 +267,4 @@ function sampleReagents(task: Task, knowledge: Knowledge): string[] {
     .filter((c) => c.molPerL > HAZARDOUS_FROM_MOL_PER_L)
     .map((c) => HAZARD_OF_COMPONENT[c.component] ?? c.component)
     .filter((id) => knowledge.reagents.has(id));
-}
-
-/** Part of a component from which a species counts as taking part. */
-const TAKES_PART = 1e-4;
-
-/** The constants that decide the evaluation of these titrations: species that hold a noticeable part of some component. */
-export function constantsUsed(stages: readonly DevelopedStage[], knowledge: Knowledge): ConstantUsed[] {
-  const out = new Map<string, ConstantUsed>();
-  for (const { evaluation } of stages) {
-    const { model } = evaluation;
-    const states = [model.at(0), model.at(evaluation.endPointML / 1000)].filter((s) => s.ok);
-    model.system.species.forEach((species, row) => {
-      if (species.evidence.length === 0 || out.has(species.id)) return;
-      const matters = states.some((state) =>
-        Object.entries(species.components).some(
-          ([c, n]) => c !== "H+" && n > 0 && n * state.result.speciesMolPerL[row]! > TAKES_PART * state.total(c),
-        ),
-      );
-      if (!matters) return;
-      out.set(species.id, {
-        species: species.id,
-        log10Beta: signif(species.log10Beta, 5),
-        uncertainty: signif(species.uncertainty, 2),
-        evidence: species.evidence.map((use) => ({
-          reaction: use.reaction,
-          text: knowledge.reactions.get(use.reaction)?.text ?? use.reaction,
-          record: use.record.provenance.record ?? null,
-          source: use.record.provenance.source,
-          basis: use.record.provenance.basis,
-          log10KFound: use.record.log10K,
-          ionicStrengthMolPerL: use.record.ionicStrengthMolPerL,
-          temperatureC: use.record.temperatureC,
-          log10KUsed: signif(use.log10KUsed, 5),
-          passedOver: use.passedOver,
-        })),
-      });
-    });
-  }
-  return [...out.values()];
 }

@@ -1,4 +1,5 @@
 import type { StageDocument } from "./contract.ts";
+import { amount } from "./text-amounts.ts";
 import { figures, listed, reagentWords } from "./text-words.ts";
 
 /** What the order of an ordinary titration gives to that of a way round. */
@@ -6,6 +7,10 @@ export interface CommonSteps {
   readonly opening: string;
   readonly agents: readonly string[];
   readonly preparation: (step: StageDocument["preparation"][number]) => string;
+  readonly buffer: string;
+  /** What is looked at again after these steps. */
+  readonly checked: (done: readonly string[]) => readonly string[];
+  readonly excess: (added: { readonly molPerL: number; readonly purpose: string }) => string;
   readonly endPoint: readonly string[];
 }
 
@@ -29,26 +34,23 @@ export function detourSteps(stage: StageDocument, common: CommonSteps): readonly
     precipitates && stage.mode !== "back"
       ? [rest.filter((s) => s !== "alcohol"), rest.filter((s) => s === "alcohol")]
       : [[], rest];
-  const buffer = `Bring to pH ${figures(stage.pH.target)} with ${said(stage.buffer)} as buffer; it must stay between pH ${figures(stage.pH.low)} and ${figures(stage.pH.high)}.`;
   return [
     common.opening,
     ...before.map(common.preparation),
     ...(precipitates ? precipitation(stage, analyte) : []),
     ...early.map(common.preparation),
     ...common.agents,
-    ...(detour.kind === "precipitate" && stage.mode === "back" ? [dissolving(stage)] : []),
-    buffer,
+    ...(detour.kind === "precipitate" && stage.mode === "back" ? [dissolving(stage, common)] : []),
+    common.buffer,
     ...(precipitates ? [] : [addReagent(stage)]),
     ...(detour.kind === "exchange" && precipitates ? [addReagent(stage)] : []),
-    ...chelates.map((a) => `Add ${said(a)}: ${a.purpose}.`),
+    ...chelates.map((a) => `Add ${amount(stage, a.id, a.molPerL)}: ${a.purpose}.`),
     ...late.map(common.preparation),
+    ...common.checked(late),
     ...common.endPoint,
     result(stage, analyte),
   ];
 }
-
-const said = ({ id, molPerL }: { readonly id: string; readonly molPerL: number }): string =>
-  molPerL > 0 ? `${reagentWords(id)} to ${figures(molPerL)} mol/L` : reagentWords(id);
 
 function addReagent(stage: StageDocument): string {
   const { reagent, kind, metal } = stage.vessel.detour!;
@@ -56,11 +58,12 @@ function addReagent(stage: StageDocument): string {
     kind === "exchange"
       ? `the analyte sets ${metal} free`
       : `it binds the analyte; measure it exactly, by itself titrated the same way`;
-  return `Add ${said(reagent)}: ${purpose}.`;
+  return `Add ${amount(stage, reagent.id, reagent.molPerL)}: ${purpose}.`;
 }
 
 function precipitation(stage: StageDocument, analyte: string): readonly string[] {
   const { reagent, precipitant, precipitationPH, precipitationWords, kind, filtered } = stage.vessel.detour!;
+  const poured = precipitant ?? reagent;
   const further = stage.added.filter((a) => a.molPerL === 0);
   const measured = kind === "surplus" ? ", measured exactly" : "";
   const keep = !filtered
@@ -69,14 +72,14 @@ function precipitation(stage: StageDocument, analyte: string): readonly string[]
       ? "Go on with filtrate and washings."
       : "Go on with the precipitate.";
   return [
-    `Precipitate ${analyte} at pH ${figures(precipitationPH!)} with ${said(precipitant ?? reagent)} (in the solution as made up)${measured}: ${precipitationWords!}. ${keep}`,
+    `Precipitate ${analyte} at pH ${figures(precipitationPH!)} with ${amount(stage, poured.id, poured.molPerL)}${measured}: ${precipitationWords!}. ${keep}`,
     ...further.map((a) => `Use with it ${reagentWords(a.id)}: ${a.purpose}.`),
   ];
 }
 
-function dissolving(stage: StageDocument): string {
-  const titrant = stage.added.at(-1)!;
-  return `Dissolve the precipitate with ${said(titrant)}: ${titrant.purpose}.`;
+function dissolving(stage: StageDocument, common: CommonSteps): string {
+  const dissolved = common.excess(stage.added.at(-1)!);
+  return `Dissolve the precipitate: ${dissolved.charAt(0).toLowerCase()}${dissolved.slice(1)} Make up to the volume again.`;
 }
 
 /** How the titre is turned into the analyte. */

@@ -1,4 +1,5 @@
 import type { Brief, RecommendedMethod, StageDocument } from "./contract.ts";
+import { amount, changeWords, excessStep, thereAlready } from "./text-amounts.ts";
 import { detourSteps } from "./text-detour.ts";
 import { backTitrantOf } from "./text-method.ts";
 import { AFTER_FIRST_END_POINT } from "../methods/release-plan.ts";
@@ -18,6 +19,10 @@ const FLASK_FIRST = new Set([
   "reduce",
   "air-oxidise",
 ]);
+
+/** Buffers that do not stand boiling: hexamine splits in acid, ammonia escapes. */
+const SPLITS_HOT = "hexamine";
+const ESCAPES_HOT = "ammonia";
 
 /** The steps of a method at the bench, in order: one sentence each. */
 export function stepsOf(method: RecommendedMethod, brief: Brief): readonly string[] {
@@ -48,8 +53,11 @@ function releaseSteps(stage: StageDocument, index: number, method: RecommendedMe
   const titre = stage.titreML === null ? "" : `: about ${figures(stage.titreML)} mL more`;
   return [
     ...plainSteps(before, index, method, brief),
-    ...late.map((a) => `Add ${amount(a.id, a.molPerL)}, which sets free the titrant of ${listed(stage.determines)}.`),
+    ...late.map(
+      (a) => `Add ${amount(stage, a.id, a.molPerL)}, which sets free the titrant of ${listed(stage.determines)}.`,
+    ),
     ...stage.preparation.slice(split + 1).map((step) => PREPARATION_WORDS[step]),
+    ...pHCheck(stage, stage.preparation.slice(split + 1), [SPLITS_HOT, ESCAPES_HOT]),
     `Titrate on with ${figures(back.molPerL)} mol/L ${back.id} to the same shade${titre}. This volume alone gives ${listed(stage.determines)}.`,
   ];
 }
@@ -57,51 +65,98 @@ function releaseSteps(stage: StageDocument, index: number, method: RecommendedMe
 function plainSteps(stage: StageDocument, index: number, method: RecommendedMethod, brief: Brief): readonly string[] {
   const titrant = stage.titrant ?? method.titrant;
   const backTitrant = backTitrantOf(stage, method);
-  const agents = [
-    ...bottles(stage).map(({ agent, molPerL, masks }) => ({
-      id: agent,
-      words: `${amount(agent, molPerL)}, which masks ${listed(masks)}`,
-    })),
-    ...stage.auxiliary.map((added) => ({
-      id: added.id,
-      words: `${amount(added.id, added.molPerL)} (${added.purpose})`,
-    })),
-  ];
+  const agents = agentsOf(stage, index > 0 && method.mode === "successive" ? method.stages[index - 1]! : null);
   const early = agents.filter((agent) => !AFTER_THE_BUFFER.has(agent.id));
   const late = agents.filter((agent) => AFTER_THE_BUFFER.has(agent.id));
   const before = stage.preparation.filter((step) => FLASK_FIRST.has(step));
   const after = stage.preparation.filter((step) => !FLASK_FIRST.has(step));
   const titrantFirst = after.includes("excess-titrant-first");
+  const steps = after
+    .filter((step) => step !== "excess-titrant-first" && !isAddition(step, stage))
+    .map((step) => PREPARATION_WORDS[step]);
   const { detour } = stage.vessel;
   if (detour)
     return detourSteps(stage, {
-      opening: opening(index, method, brief),
+      opening: opening(index, method, brief, stage),
       agents: agents.map((agent) => `Add ${agent.words}.`),
       preparation: (step) => preparationStep(step, stage),
+      buffer: bufferStep(stage),
+      checked: (done) => pHCheck(stage, done, [ESCAPES_HOT]),
+      excess: ({ molPerL, purpose }) => excessStep(stage, method, brief, molPerL, purpose),
       endPoint: endPoint(stage, backTitrant ?? titrant),
     });
+  const titrantSteps = addTitrant(stage, method, brief);
+  const lateSteps = late.map((agent) => `Now that the pH is set, add ${agent.words}.`);
+  // Where the buffer does not stand the heat it goes in after cooling, and what needs its pH after it.
+  const cooled = stage.buffer.id === SPLITS_HOT && isHeated(after) ? steps.indexOf(PREPARATION_WORDS.cool) + 1 : 0;
+  const middle =
+    cooled > 0
+      ? [
+          `Bring near pH ${figures(Math.floor(stage.pH.target))} with dilute ammonia or alkali; the hexamine waits until the solution is cool.`,
+          ...(titrantFirst ? [] : titrantSteps),
+          ...steps.slice(0, cooled),
+          bufferStep(stage),
+          ...lateSteps,
+          ...steps.slice(cooled),
+        ]
+      : [
+          bufferStep(stage),
+          ...lateSteps,
+          ...(titrantFirst ? [] : titrantSteps),
+          ...steps,
+          ...pHCheck(stage, after, [ESCAPES_HOT]),
+        ];
   return [
-    opening(index, method, brief),
+    opening(index, method, brief, stage),
     ...before.map((step) => preparationStep(step, stage)),
     ...early.map((agent) => `Add ${agent.words}.`),
-    ...(titrantFirst ? addTitrant(stage) : []),
-    `Bring to pH ${figures(stage.pH.target)} with ${amount(stage.buffer.id, stage.buffer.molPerL)} as buffer; it must stay between pH ${figures(stage.pH.low)} and ${figures(stage.pH.high)}.`,
-    ...late.map((agent) => `Now that the pH is set, add ${agent.words}.`),
-    ...(titrantFirst ? [] : addTitrant(stage)),
-    ...after
-      .filter((step) => step !== "excess-titrant-first" && !isAddition(step, stage))
-      .map((step) => PREPARATION_WORDS[step]),
+    ...(titrantFirst ? titrantSteps : []),
+    ...middle,
     ...endPoint(stage, backTitrant ?? titrant),
   ];
 }
 
-function opening(index: number, method: RecommendedMethod, brief: Brief): string {
+/** Agents as they are poured, without those that an earlier titration left in the same vessel. */
+function agentsOf(stage: StageDocument, before: StageDocument | null): readonly { id: string; words: string }[] {
+  return [
+    ...bottles(stage)
+      .filter(({ agent, molPerL }) => !thereAlready(before, agent, molPerL))
+      .map(({ agent, molPerL, masks }) => ({
+        id: agent,
+        words: `${amount(stage, agent, molPerL)}, which masks ${listed(masks)}`,
+      })),
+    ...stage.auxiliary
+      .filter(({ id, molPerL }) => !thereAlready(before, id, molPerL))
+      .map((added) => ({ id: added.id, words: `${amount(stage, added.id, added.molPerL)} (${added.purpose})` })),
+  ];
+}
+
+const bufferStep = (stage: StageDocument): string =>
+  `Bring to pH ${figures(stage.pH.target)} with ${amount(stage, stage.buffer.id, stage.buffer.molPerL)} as buffer; it must stay between pH ${figures(stage.pH.low)} and ${figures(stage.pH.high)}.`;
+
+const isHeated = (steps: readonly string[]): boolean =>
+  steps.includes("cool") && (steps.includes("boil") || steps.includes("heat"));
+
+/** A buffer that suffers from heat is looked at again when the solution is cool. */
+const pHCheck = (stage: StageDocument, done: readonly string[], buffers: readonly string[]): readonly string[] =>
+  buffers.includes(stage.buffer.id) && isHeated(done)
+    ? [`Check the pH again, and bring it back to ${figures(stage.pH.target)} where it has moved.`]
+    : [];
+
+function opening(index: number, method: RecommendedMethod, brief: Brief, stage: StageDocument): string {
   const { volumeML, titrationVolumeML } = brief.portion;
-  const take = `${figures(volumeML)} mL of the sample and make up to about ${figures(titrationVolumeML)} mL`;
+  // Where titrant in excess goes in, or the sample is not diluted, there is nothing to make up to.
+  const room =
+    titrationVolumeML <= volumeML
+      ? ""
+      : stage.vessel.excessTitrantMolPerL > 0 && !stage.vessel.detour?.filtered
+        ? `, and water so that the flask holds about ${figures(titrationVolumeML)} mL when the titration starts`
+        : ` and make up to about ${figures(titrationVolumeML)} mL`;
+  const take = `${figures(volumeML)} mL of the sample${room}`;
   if (index === 0) return `Take ${take}.`;
   return method.mode === "difference" || method.mode === "portions"
     ? `Take another portion: ${take}.`
-    : "Go on with the same solution.";
+    : "Go on with the same solution; the volume is counted from the last end point.";
 }
 
 /** A separation says what it has to take away. */
@@ -126,8 +181,13 @@ function separationWords({ vessel, determines }: StageDocument): string {
   return `${[...known, ...unknown].join(". ")}.`;
 }
 
-function addTitrant(stage: StageDocument): readonly string[] {
-  return stage.added.map((added) => `Add ${amount(added.id, added.molPerL)}: ${added.purpose}.`);
+function addTitrant(stage: StageDocument, method: RecommendedMethod, brief: Brief): readonly string[] {
+  const titrant = (stage.titrant ?? method.titrant).id;
+  return stage.added.map((added) =>
+    added.id === titrant && stage.vessel.excessTitrantMolPerL > 0
+      ? excessStep(stage, method, brief, added.molPerL, added.purpose)
+      : `Add ${amount(stage, added.id, added.molPerL)}: ${added.purpose}.`,
+  );
 }
 
 const isAddition = (step: string, stage: StageDocument): boolean =>
@@ -144,7 +204,7 @@ function endPoint(stage: StageDocument, last: { readonly id: string; readonly mo
     const { electrode } = stage.endPoint;
     const step = electrode ? ` (about ${figures(electrode.jumpMV)} mV from 99 to 101 % of the volume)` : "";
     return [
-      `Put in the ${electrode?.name ?? "electrode"} and a reference electrode.`,
+      `Put in the ${(electrode?.name ?? "electrode").replace(/ with a little .*/, "")} and a reference electrode.`,
       `${withWhat}, in equal small portions near the end and waiting for the reading each time; the end is where the potential changes fastest${step}${gives}`,
     ];
   }
@@ -161,15 +221,11 @@ function endPoint(stage: StageDocument, last: { readonly id: string; readonly mo
     ];
   }
   if (stage.indicator === null) return [`${withWhat}${gives}`];
-  const [from, to] = stage.indicator.colourChange;
   return [
-    `Add ${reagentWords(stage.indicator.id)} (about ${figures(stage.indicator.molPerL)} mol/L).`,
-    `${withWhat} until the colour has changed, ${from} → ${to}${gives}`,
+    `Add ${reagentWords(stage.indicator.id)}, enough for a clear colour (about ${figures(stage.indicator.molPerL)} mol/L).`,
+    `${withWhat} until the colour has changed ${changeWords(stage.indicator.colourChange)}${gives}`,
   ];
 }
-
-export const amount = (id: string, molPerL: number): string =>
-  molPerL > 0 ? `${reagentWords(id)} to ${figures(molPerL)} mol/L` : reagentWords(id);
 
 interface Bottle {
   readonly agent: string;

@@ -66,6 +66,15 @@ function firstMethod(document: Recommendation, method: RecommendedMethod): reado
       "Steps",
       stepsOf(method, document.brief).map((step, index) => wrap(step, `  ${String(index + 1).padStart(2)}. `)),
     ),
+    section(
+      "Result",
+      method.calculation.length === 0
+        ? []
+        : [
+            ...method.calculation.map((formula) => bullet(formula)),
+            wrap("V: volume read, in mL, less its blank; c: strength found when standardised, in mol/L.", "    "),
+          ],
+    ),
     section("Error of one determination", error(method)),
     section("Masking and limits", masking(method)),
     section("Why", reasons(method)),

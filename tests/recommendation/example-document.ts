@@ -29,6 +29,7 @@ export const STAGE: StageDocument = {
     },
   ],
   auxiliary: [],
+  amounts: [],
   preparation: [],
   vessel: {
     removed: [],
@@ -68,6 +69,7 @@ export const METHOD: RecommendedMethod = {
   titrant: { id: "EDTA", molPerL: 0.01 },
   backTitrant: null,
   stages: [STAGE],
+  calculation: [],
   predicted: {
     biasPercent: 0.04,
     biasBySource: [

@@ -96,10 +96,47 @@ describe("stepsOf", () => {
     const late = steps(withStages({ ...STAGE, added }));
     expect(position(late, "Add EDTA")).toBeGreaterThan(position(late, "Bring to pH"));
   });
+  it("lets hexamine wait until what was boiled is cool, and looks at ammonia again", () => {
+    const heated = { ...STAGE, preparation: ["boil", "cool"] } as const;
+    const list = steps(withStages(heated));
+    const order = ["Bring near pH 5", "Boil", "Cool", "with hexamine", "Add xylenol orange"];
+    expect(order.map((words) => position(list, words))).toEqual(
+      [...order.map((words) => position(list, words))].sort((a, b) => a - b),
+    );
+    expect(position(list, "with hexamine")).toBeGreaterThan(position(list, "Cool"));
+    const ammonia = steps(withStages({ ...heated, buffer: { id: "ammonia", molPerL: 0.1 } }));
+    expect(position(ammonia, "with ammonia")).toBeLessThan(position(ammonia, "Boil"));
+    expect(position(ammonia, "Check the pH again")).toBeGreaterThan(position(ammonia, "Cool"));
+  });
+  it("measures an excess in mL: exactly for a back titration, roughly and stronger before a release", () => {
+    // 0.003 mol/L in 100 mL is 0.3 mmol: 30 mL of 0.01 mol/L.
+    const added = [{ id: "EDTA", molPerL: 0.003, purpose: "titrant in excess" }];
+    const vessel = { ...STAGE.vessel, excessTitrantMolPerL: 0.003 };
+    const back = steps({ ...withStages({ ...STAGE, mode: "back", added, vessel }) });
+    expect(back).toContain("Add 30 mL of 0.01 mol/L EDTA, measured exactly: titrant in excess (0.003 mol/L).");
+    const much = {
+      ...STAGE,
+      mode: "displacement",
+      added: [{ ...added[0]!, molPerL: 0.02 }],
+      vessel: { ...vessel, release: { agent: "fluoride", molPerL: 0.1 } },
+    } as const;
+    expect(steps(withStages(much)).join(" ")).toContain("Add about 40 mL of 0.05 mol/L EDTA");
+  });
+  it("says what an agent takes in mmol and g, and pours nothing that is in the vessel already", () => {
+    const amounts = [{ id: "fluoride", mmol: 10, grams: 0.37, bottle: "ammonium fluoride" }];
+    const first = { ...STAGE, amounts };
+    expect(steps(withStages(first)).join(" ")).toContain(
+      "add fluoride to 0.1 mol/L (10 mmol, 0.37 g of ammonium fluoride)",
+    );
+    const thinned = { ...first, masking: [{ ...STAGE.masking[0]!, molPerL: 0.083 }] };
+    const turns = (mode: "successive" | "portions"): number =>
+      steps({ ...withStages(first, thinned), mode }).filter((step) => step.includes("fluoride")).length;
+    expect([turns("successive"), turns("portions")]).toEqual([1, 2]);
+  });
   it("titrates back with the back titrant", () => {
     const back = { ...withStages({ ...STAGE, mode: "back" }), backTitrant: { id: "Zn2+", molPerL: 0.01 } };
     expect(steps(back).at(-1)).toMatch(
-      /^Titrate back with 0\.01 mol\/L Zn2\+ until the colour has changed, red-violet → yellow/,
+      /^Titrate back with 0\.01 mol\/L Zn2\+ until the colour has changed from red-violet to yellow/,
     );
   });
   it("titrates a direct stage with the titrant, whatever another stage is titrated back with", () => {
