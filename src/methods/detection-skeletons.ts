@@ -14,7 +14,9 @@ import type { StagePlan } from "./types.ts";
 export function skeletonsOf(make: Make): Skeleton[] {
   const { detection } = make.task.laboratory;
   const eye = detection.includes("visual") || detection.includes("photometric");
-  const withDye = eye ? [...directSkeletons(make), ...backSkeletons(make), ...releaseSkeletons(make)] : [];
+  // A release tells the analyte from other metals; where it stands alone there is nothing to tell (but see `stagesFor`).
+  const releases = besideOthers(make) ? releaseSkeletons(make) : [];
+  const withDye = eye ? [...directSkeletons(make), ...backSkeletons(make), ...releases] : [];
   return [
     ...(detection.includes("visual") ? withDye : []),
     ...(detection.includes("photometric") ? [...photometricSkeletons(make, withDye), ...selfColoured(make)] : []),
@@ -22,6 +24,13 @@ export function skeletonsOf(make: Make): Skeleton[] {
     ...(detection.includes("electrode") && !make.field.analogous ? electrodeSkeletons(make) : []),
   ];
 }
+
+/** Whether the sample holds a metal beside those determined that a complexone could bind. */
+export const besideOthers = ({ task, knowledge, determines }: Make): boolean =>
+  [...task.analytes, ...task.matrix].some(({ component }) => {
+    const record = knowledge.components.get(component);
+    return record?.kind === "metal" && record.charge > 1 && !determines.includes(component);
+  });
 
 /** The titrations with a dye, read with a photometer: for dyes whose colour can be calculated, with less of the dye. */
 function photometricSkeletons({ knowledge }: Make, withDye: readonly Skeleton[]): Skeleton[] {

@@ -1,6 +1,7 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import { bareStage, develop } from "./develop.ts";
 import { promising, singleMethod, type EvaluatedMethod } from "./methods.ts";
+import { releaseSkeletons } from "./release-plan.ts";
 import { searchMethods, type MethodSearch } from "./search.ts";
 import { backSkeletons } from "./back-skeletons.ts";
 import { directSkeletons, LAST_TITRANTS, OTHER_TITRANTS, USUAL_FIELD, type Field, type Skeleton } from "./skeletons.ts";
@@ -8,7 +9,7 @@ import type { Task } from "./types.ts";
 
 /**
  * Every titration of a task with one analyte that can be thought of: what the search for a recommendation works out, and
- * what it leaves out once it has enough: all titrants, all dyes, and back titrations by analogy.
+ * what it leaves out once it has enough: all titrants, all dyes, back titrations by analogy, and releases with nothing beside.
  */
 export function everyWay(task: Task, knowledge: Knowledge): MethodSearch {
   const search = searchMethods(task, knowledge);
@@ -17,12 +18,13 @@ export function everyWay(task: Task, knowledge: Knowledge): MethodSearch {
   const known = new Map<string, EvaluatedMethod>(search.methods.map((m) => [m.id, m]));
   const titrants = [...OTHER_TITRANTS, ...LAST_TITRANTS].filter((id) => search.shelf(id));
   const fields: readonly Field[] = [
+    USUAL_FIELD,
     { ...USUAL_FIELD, analogous: true },
     { titrants, dyes: null, analogous: false },
   ];
   for (const field of fields) {
     const make = { task, knowledge, shelf: search.shelf, determines: [analyte], field };
-    const skeletons: Skeleton[] = [...directSkeletons(make), ...backSkeletons(make)];
+    const skeletons: Skeleton[] = [...directSkeletons(make), ...backSkeletons(make), ...releaseSkeletons(make)];
     const bare = skeletons.map((skeleton) => bareStage(task, skeleton, knowledge, search.shelf));
     for (const stage of promising(task, bare, knowledge).flatMap((b) => develop(task, b, knowledge, search.shelf))) {
       const method = singleMethod(task, stage, knowledge);

@@ -3,8 +3,9 @@ import { bareStage, develop, type BareStage, type DevelopedStage } from "./devel
 import { detourSkeletons } from "./detours.ts";
 import { hazardBurden } from "./hazard-burden.ts";
 import { supersaturations } from "./saturation.ts";
+import { releaseSkeletons } from "./release-plan.ts";
 import type { Shelf } from "./shelf.ts";
-import { skeletonsOf } from "./detection-skeletons.ts";
+import { besideOthers, skeletonsOf } from "./detection-skeletons.ts";
 import { LAST_TITRANTS, OTHER_TITRANTS, USUAL_FIELD, type Field, type Skeleton } from "./skeletons.ts";
 import { countedIn, type MethodMode, type Task } from "./types.ts";
 import { stageBudget, type Budget } from "./uncertainty.ts";
@@ -109,6 +110,8 @@ function directly(
   const clean = usual.filter((s) => meetsCleanly(task, s, knowledge));
   const others = (shelf("EDTA") ? OTHER_TITRANTS : [...OTHER_TITRANTS, ...LAST_TITRANTS]).filter((t) => shelf(t));
   if (clean.length < ENOUGH) {
+    const make = { task, knowledge, shelf, determines, field: USUAL_FIELD };
+    const alone = task.laboratory.detection.includes("visual") && !besideOthers(make) ? releaseSkeletons(make) : [];
     const likely = new Set(
       [...usual]
         .sort((a, b) => roughCost(task, a, knowledge) - roughCost(task, b, knowledge))
@@ -117,6 +120,7 @@ function directly(
     const dyes = usual.length > 0 ? new Set([...likely].slice(0, DYES_WHEN_SHORT)) : null;
     return [
       ...usual,
+      ...developed(task, alone, knowledge, shelf),
       ...search({ titrants: others, dyes, analogous: false }),
       ...search({ titrants: ["EDTA"], dyes: null, analogous: true }),
     ];
