@@ -1,4 +1,5 @@
 import { ELECTRODE_ROWS, END_POINT_FAULTS, PHOTOMETER_ROWS } from "./detection-facts.ts";
+import { TITRANT_ROWS } from "./titrant-facts.ts";
 import type { FactDefinition, RuleScope } from "./types.ts";
 
 // Known from the record of the masking, not from the solved solution.
@@ -257,6 +258,7 @@ const COMPONENT_FACTS = facts("component", "solutionStatus", [
 
 const ALL_STAGE_FACTS: readonly FactDefinition[] = [
   ...STAGE_FACTS,
+  ...facts("stage", "solutionStatus", TITRANT_ROWS),
   ...facts("stage", "electrodeStatus", ELECTRODE_ROWS),
   ...facts("stage", "photometerStatus", PHOTOMETER_ROWS),
 ];

@@ -13,6 +13,7 @@ import { stageBudget } from "../methods/uncertainty.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import { detourFacts } from "./detour-facts.ts";
 import { releaseFacts } from "./release-facts.ts";
+import { titrantFacts } from "./titrant-facts.ts";
 import { hazardTagsOf, reagentsOf } from "./reagents.ts";
 
 /** A method on its way to judgement, with what the facts need besides its evaluation. */
@@ -230,6 +231,7 @@ export function stageFacts(
     ...detectionFacts(stage, knowledge),
     solutionStatus: ok ? "converged" : "failed",
     ...releaseFacts(task, stage, knowledge),
+    ...titrantFacts(task, stage, knowledge),
   });
 }
 

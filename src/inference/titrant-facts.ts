@@ -1,0 +1,33 @@
+type Row = readonly [
+  name: string,
+  type: "number" | "string" | "boolean" | "strings",
+  unit: string | null,
+  optional: "always" | "may be absent",
+  meaning: string,
+];
+
+/** What a titrant other than EDTA solves, and how much of a chelate is added; stage facts. */
+export const TITRANT_ROWS: readonly Row[] = [
+  [
+    "sparesHeat",
+    "boolean",
+    null,
+    "always",
+    "the analyte would need heat or boiling with EDTA, and needs none with this titrant",
+  ],
+  [
+    "toldApart",
+    "strings",
+    null,
+    "always",
+    "metals of the matrix, unmasked, that this titrant leaves and that EDTA would take with the analyte",
+  ],
+  ["toldApartCount", "number", null, "always", "how many those are"],
+  [
+    "chelateToAnalyteRatio",
+    "number",
+    null,
+    "always",
+    "chelate added over what is determined, by amount; 0 where there is none",
+  ],
+];
