@@ -34,7 +34,7 @@ export function combinedMethods(
 }
 
 /** The most promising titrations of one group, different dyes and preparations before shades of the same. */
-function best(task: Task, stages: readonly DevelopedStage[], knowledge: Knowledge): DevelopedStage[] {
+export function best(task: Task, stages: readonly DevelopedStage[], knowledge: Knowledge): DevelopedStage[] {
   const cost = new Map(stages.map((s) => [s, roughCost(task, s, knowledge)]));
   const seen = new Map<string, number>();
   return [...stages]

@@ -1,5 +1,6 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import { combinedMethods } from "./combine.ts";
+import { differencesBeside } from "./difference-beside.ts";
 import { groupsOf, singleMethod, stagesFor, type EvaluatedMethod } from "./methods.ts";
 import { shelfOf, type Shelf } from "./shelf.ts";
 import type { Task } from "./types.ts";
@@ -36,7 +37,12 @@ const hasSpecialWay = (task: Task, knowledge: Knowledge): boolean =>
 
 function methodsOn(task: Task, knowledge: Knowledge, shelf: Shelf): EvaluatedMethod[] {
   const groups = groupsOf(task);
-  if (groups.length === 1)
-    return stagesFor(task, groups[0]!, knowledge, shelf).map((stage) => singleMethod(task, stage, knowledge));
+  if (groups.length === 1) {
+    const stages = stagesFor(task, groups[0]!, knowledge, shelf);
+    return [
+      ...stages.map((stage) => singleMethod(task, stage, knowledge)),
+      ...differencesBeside(task, groups[0]!, stages, knowledge, shelf),
+    ];
+  }
   return combinedMethods(task, groups, knowledge, shelf);
 }
