@@ -235,6 +235,8 @@ export interface AgentRecord {
     readonly via: "reduction" | "oxidation";
     readonly pH: readonly [number, number];
     readonly conditions: string;
+    /** True where the agent converts the ion by itself: a sample that is said to hold both holds the product. */
+    readonly unaided?: true | undefined;
     readonly provenance: Provenance;
   }[];
   readonly provenance: Provenance;

@@ -155,6 +155,7 @@ export const agentSchema = z
         via: z.enum(["reduction", "oxidation"]),
         pH: range,
         conditions: z.string(),
+        unaided: z.literal(true).optional(), // the two cannot stand in one sample
         provenance: provenanceSchema,
       }),
     ),

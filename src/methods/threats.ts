@@ -2,7 +2,7 @@ import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import { vesselSample } from "./solution.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
-import { countedIn, type Task } from "./types.ts";
+import { countedIn, type StagePlan, type Task } from "./types.ts";
 import { stageBudget } from "./uncertainty.ts";
 
 /** A component of the sample that the titration cannot leave alone. */
@@ -20,8 +20,10 @@ export interface Threat {
 const IGNORED_PART_OF_REQUIREMENT = 0.12;
 /** and up to this part where the requirement is met with it: no mask without need. */
 const BORNE_PART_OF_REQUIREMENT = 0.4;
-/** log alpha of the analyte from one ligand of the sample beyond which a titration suffers noticeably. */
+/** log alpha of the analyte from one ligand of the sample beyond which a titration suffers noticeably, */
 const HELD_LOG10_ALPHA = 3;
+/** unless the titrant takes it all the same: a constant, with that ligand counted in, at which a hundredth of a mole a litre is bound to 1 in 1000. */
+const BOUND_ALL_THE_SAME_LOG10_K = 8;
 
 /** What must be masked, removed or freed before this titration can be trusted, judged from its evaluation as it stands. */
 export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): Threat[] {
@@ -40,7 +42,10 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
     // The counted metal in the sample itself is no less a part of the titre.
     if (determined.has(component) || inVesselMolPerL <= 0 || plan.removed.includes(component)) continue;
     if (!model.metals.includes(component)) {
-      const held = knowledge.components.get(component)?.kind === "ligand" && holds(evaluation, component, knowledge);
+      const held =
+        knowledge.components.get(component)?.kind === "ligand" &&
+        (turns(plan, component, knowledge) ||
+          (holds(evaluation, component, knowledge) && !(meets && boundAllTheSame(evaluation))));
       if (held)
         threats.push({
           component,
@@ -167,6 +172,16 @@ function heldDye(evaluation: StageEvaluation, metal: ComponentId): boolean {
   const ratio = state.dyeRatioOf(metal);
   return ratio / (1 + ratio) >= 0.1;
 }
+
+/** Whether a ligand of the sample has made another ion of what is determined, which no mask undoes (cyanide and copper). */
+export const turns = (plan: StagePlan, ligand: ComponentId, knowledge: Knowledge): boolean =>
+  [...knowledge.agents.values()].some(
+    (agent) =>
+      agent.component === ligand && agent.converts.some((c) => c.unaided === true && plan.determines.includes(c.from)),
+  );
+
+const boundAllTheSame = ({ model, log10ConditionalK }: StageEvaluation): boolean =>
+  countedIn(model.plan).every((metal) => (log10ConditionalK.get(metal) ?? 0) >= BOUND_ALL_THE_SAME_LOG10_K);
 
 function holds(evaluation: StageEvaluation, ligand: ComponentId, knowledge: Knowledge): boolean {
   const { model } = evaluation;

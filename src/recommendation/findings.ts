@@ -5,7 +5,7 @@ import type { EvaluatedMethod } from "../methods/methods.ts";
 import { metalKinetics } from "../methods/kinetics.ts";
 import { supersaturations } from "../methods/saturation.ts";
 import { vesselSample } from "../methods/solution.ts";
-import { atCommonEquivalence } from "../methods/threats.ts";
+import { atCommonEquivalence, turns } from "../methods/threats.ts";
 import { companyOf } from "../methods/way-round.ts";
 import { countedIn, type Task } from "../methods/types.ts";
 import type { Finding } from "./contract.ts";
@@ -132,6 +132,13 @@ function bindings(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowle
   if (!start.ok) return;
   for (const { component } of task.matrix) {
     if (knowledge.components.get(component)?.kind !== "ligand") continue;
+    if (turns(model.plan, component, knowledge))
+      put(
+        component,
+        "complexes-analyte",
+        `makes of ${metal} another ion, and holds that: it has to be destroyed first`,
+        {},
+      );
     const held = model.system.species.reduce((sum, s, row) => {
       const takes = (s.components[metal] ?? 0) > 0 && (s.components[component] ?? 0) > 0;
       return takes ? sum + start.result.speciesMolPerL[row]! : sum;
