@@ -208,7 +208,7 @@ export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledg
   if (evaluation.status === "failed") return 1000;
   const budget = stageBudget(task, evaluation, knowledge);
   const ratio = (100 * budget.expanded) / task.requirementPercent;
-  return (
+  const cost =
     Math.min(ratio, 20) * 4 +
     stage.remaining.length * 40 +
     evaluation.blockedBy.length * 60 +
@@ -223,8 +223,9 @@ export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledg
     (evaluation.basis === "empirical" ? 5 : 0) +
     (plan.indicator && dyeBreadth(plan.indicator.id, knowledge) < COMMON_DYE_IONS ? 4 : 0) +
     COST_OF_DETECTION[plan.detection] +
-    (plan.preparation.includes("boil") || plan.preparation.includes("heat") ? 3 : 0)
-  );
+    (plan.preparation.includes("boil") || plan.preparation.includes("heat") ? 3 : 0);
+  // In tenths: what the last digits of a solved equilibrium say must not order candidates.
+  return Math.round(10 * cost) / 10;
 }
 
 /** Mode of a method of one titration: its stage's own, or that of the way round. */

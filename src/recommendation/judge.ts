@@ -95,10 +95,13 @@ export function rank(a: JudgedMethod, b: JudgedMethod): number {
     // Methods that miss are ordered by how far they miss: the nearest is shown.
     (a.meets ? 0 : missOrder(a.expandedPercent) - missOrder(b.expandedPercent)) ||
     b.points - a.points ||
-    a.expandedPercent - b.expandedPercent ||
+    asPrinted(a.expandedPercent) - asPrinted(b.expandedPercent) ||
     a.method.id.localeCompare(b.method.id)
   );
 }
+
+/** Three figures of an uncertainty are meant; the fourth must not decide between methods. */
+const asPrinted = (percent: number): number => (Number.isFinite(percent) ? Number(percent.toPrecision(3)) : 1e9);
 
 /** Misses are compared in steps of a factor 1.5: smaller differences do not outweigh what the rules say. */
 const missOrder = (percent: number): number =>
