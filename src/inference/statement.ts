@@ -33,6 +33,9 @@ function joined(words: readonly string[], last: string): string {
   return words.length < 2 ? (words[0] ?? "none") : `${words.slice(0, -1).join(", ")} ${last} ${words.at(-1) ?? ""}`;
 }
 
+/** A reagent id as words: "mordant-black-11" reads "mordant black 11"; ions, names and abbreviations stay. */
+const worded = (text: string): string => (/^[a-z0-9]+(-[a-z0-9]+)+$/.test(text) ? text.replaceAll("-", " ") : text);
+
 /** The placeholders of a statement template, in order: fact name and format ("" where none is given). */
 export function placeholdersOf(template: string): readonly { readonly fact: string; readonly format: string }[] {
   return [...template.matchAll(PLACEHOLDER)].map((match) => ({ fact: match[1] ?? "", format: match[2] ?? "" }));
@@ -54,6 +57,6 @@ export function fillStatement(template: string, facts: Facts): string {
     const chosen = format === undefined ? undefined : STATEMENT_FORMATS.get(format);
     if (chosen !== undefined) return chosen.write(value as never);
     if (typeof value === "number") return significant(value);
-    return typeof value === "object" ? joined(value, "and") : String(value);
+    return typeof value === "object" ? joined(value.map(worded), "and") : worded(String(value));
   });
 }

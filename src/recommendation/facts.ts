@@ -266,6 +266,8 @@ function alsoShown(task: Task, stage: DevelopedStage): ComponentId[] {
   return (
     vesselSample(task, plan)
       .filter((c) => !plan.determines.includes(c.component) && !plan.removed.includes(c.component))
+      // What a way round leaves in its filtrate is not in the vessel.
+      .filter((c) => (evaluation.model.solution.totals.get(c.component) ?? 0) > 0)
       // What an earlier titration of the same vessel has bound is no mask's business.
       .filter((c) => !(plan.carried?.metals.includes(c.component) ?? false))
       .filter((c) => used.includes(c.component) && c.inVesselMolPerL > NOTICEABLE_RATIO * analyteMolPerL)

@@ -111,7 +111,7 @@ function titration(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowl
       put(
         component,
         "blocks-indicator",
-        `spoils ${dye} at pH ${plan.pH}: ${row?.detail ?? "the dye stays bound past equivalence"}`,
+        `spoils ${dye} at pH ${plan.pH}: ${row ? plainDetail(row.detail) : "the dye stays bound past equivalence"}`,
         {
           presentMolPerL: inVesselMolPerL,
           pH: plan.pH,
@@ -122,6 +122,13 @@ function titration(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowl
   }
   bindings(task, stage, put, knowledge);
 }
+
+/** What a record says of a blocker, without the remarks on where it is from. */
+const plainDetail = (detail: string): string =>
+  detail
+    .replace(/; (measured with|acid limit|published for) .*$/, "")
+    .replace(/ \((memory|inference)\)/g, "")
+    .replace(/remedy: as ([a-z-]+)/, (_, dye: string) => `remedy: as with ${dye.replaceAll("-", " ")}`);
 
 /** Ligands of the sample that hold the analyte before the titrant comes. */
 function bindings(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowledge): void {
@@ -148,7 +155,7 @@ function bindings(task: Task, stage: DevelopedStage, put: Put, knowledge: Knowle
       put(
         component,
         "complexes-analyte",
-        `binds ${metal}: log alpha ${log10Alpha.toFixed(1)} at pH ${model.plan.pH} before the titrant`,
+        `binds ${shownIon(task, metal, knowledge)}: log alpha ${log10Alpha.toFixed(1)} at pH ${model.plan.pH} before the titrant`,
         {
           log10Alpha,
           pH: model.plan.pH,
@@ -187,6 +194,10 @@ function consumption(task: Task, stage: DevelopedStage, put: Put): void {
   const { plan } = model;
   if (plan.backTitrant === null || plan.excessTitrantMolPerL <= 0) return;
   const start = model.at(0);
+  const end = model.at(bare.endPointML / 1000);
+  const keeps = (component: ComponentId): boolean =>
+    component === plan.backTitrant?.id ||
+    (end.ok && end.boundToTitrant(component) / end.dilution > 0.5 * start.boundToTitrant(component));
   for (const { component, inVesselMolPerL } of vesselSample(task, plan)) {
     if (!model.metals.includes(component) || plan.determines.includes(component)) continue;
     const total = start.total(component);
@@ -197,7 +208,8 @@ function consumption(task: Task, stage: DevelopedStage, put: Put): void {
     put(
       component,
       "consumes-titrant",
-      `takes ${percentText(ofTitrant)} of the ${plan.titrant.id} put in at pH ${plan.pH} before ${plan.backTitrant.id} takes it back`,
+      // A metal that the back titrant also is, or holds as firmly, keeps what it took.
+      `takes ${percentText(ofTitrant)} of the ${plan.titrant.id} put in at pH ${plan.pH}${keeps(component) ? "" : `, until ${plan.backTitrant.id} takes it back`}: more of it is needed`,
       { boundFraction: bound, ofTitrantFraction: ofTitrant, pH: plan.pH },
     );
   }

@@ -2,6 +2,7 @@ import type { Knowledge } from "../constants/knowledge.ts";
 import type { RuleRunner } from "../inference/index.ts";
 import type { Facts, RuleFinding } from "../inference/types.ts";
 import type { Task } from "../methods/types.ts";
+import { mergedStatements } from "./merge-statements.ts";
 import { componentFacts, methodFacts, stageContext, stageFacts, type MethodUnderJudgement } from "./facts.ts";
 
 /** A rule's word on a method, and which stage it was about (null: the whole method). */
@@ -82,7 +83,11 @@ export function weighed(
     expandedPercent,
     meets: expandedPercent <= task.requirementPercent,
     reservations: [
-      ...new Set(verdicts.filter(({ finding }) => finding.reservation).map(({ finding }) => finding.statement)),
+      ...new Set(
+        mergedStatements(verdicts.filter(({ finding }) => finding.reservation).map(({ finding }) => finding)).map(
+          ({ statement }) => statement,
+        ),
+      ),
     ],
   };
 }

@@ -43,10 +43,18 @@ export function precedentWords(record: PrecedentRecord): string {
   return `${record.ion} ${record.mode} with ${record.titrant}${back}, pH ${record.pH[0]} to ${record.pH[1]}${dyes}${scope}`;
 }
 
+/** The place in a source, without the title and year that its citation says already. */
+function placeWithin(where: string, citation: string): string {
+  const [, named, rest] = /^(.{20,}?\b(?:19|20)\d\d)(?:, |$)(.*)$/.exec(where) ?? [];
+  const year = named?.slice(-4);
+  return rest !== undefined && year !== undefined && citation.includes(year) ? rest : where;
+}
+
 function sourceWords(provenance: Provenance, knowledge: Knowledge): { cite: string; basis: Provenance["basis"] } {
   const citation = knowledge.sources.get(provenance.source)?.citation ?? provenance.source;
+  const where = placeWithin(provenance.where ?? "", citation);
   return {
-    cite: provenance.where === undefined ? citation : `${citation}, ${provenance.where}`,
+    cite: where === "" ? citation : `${citation}, ${where}`,
     basis: provenance.basis,
   };
 }

@@ -1,4 +1,4 @@
-import { cautionsFor, type Knowledge } from "../constants/index.ts";
+import { cautionsFor, type HazardName, type Knowledge } from "../constants/index.ts";
 import type { StagePlan } from "../methods/types.ts";
 
 const EXCHANGE = "tetracyanonickelate-exchange";
@@ -41,21 +41,44 @@ export function hazardTagsOf(plans: readonly StagePlan[], knowledge: Knowledge):
   ];
 }
 
-/** Caution sentences for these titrations, each once. */
+/** A general hazard is not said of a reagent whose own caution says it. */
+export const SAID_BY: Readonly<Partial<Record<HazardName, readonly HazardName[]>>> = {
+  toxic: ["cyanide", "fluoride", "mercury", "lead", "cadmium", "thorium-uranium", "formaldehyde"],
+  carcinogen: ["cadmium", "formaldehyde"],
+  corrosive: ["strong-acid", "strong-alkali"],
+};
+/** Hazards of a bottle that a dilute sample does not have. */
+const OF_THE_BOTTLE: ReadonlySet<HazardName> = new Set(["oxidiser", "corrosive", "flammable", "heat-sensitive"]);
+
+/** Caution sentences for these titrations, each once with all it is about. */
 export function cautionTexts(
   plans: readonly StagePlan[],
   sampleIds: readonly string[],
   knowledge: Knowledge,
 ): string[] {
-  return [
-    ...new Set(
-      plans.flatMap((plan) =>
-        cautionsFor(hazardousIds(plan, sampleIds), { pH: plan.pH, hot: isHot(plan) }, knowledge).map((c) =>
-          c.reagents.length > 0 ? `${c.reagents.map((id) => nameOf(id, knowledge)).join(", ")}: ${c.text}` : c.text,
-        ),
-      ),
-    ),
-  ];
+  const all = plans.flatMap((plan) => {
+    const used = reagentsOf(plan);
+    const own = cautionsFor(hazardousIds(plan, sampleIds), { pH: plan.pH, hot: isHot(plan) }, knowledge);
+    return own.map((caution) => ({
+      ...caution,
+      general: caution.reagents.length === 0,
+      reagents: caution.reagents.filter((id) => used.includes(id) || !OF_THE_BOTTLE.has(caution.tag)),
+    }));
+  });
+  const told = (id: string, tag: HazardName): boolean =>
+    (SAID_BY[tag] ?? []).some((by) => all.some((c) => c.tag === by && c.reagents.includes(id)));
+  const about = new Map<string, { general: boolean; reagents: Set<string> }>();
+  for (const { text, tag, reagents, general } of all) {
+    const row = about.get(text) ?? { general: false, reagents: new Set<string>() };
+    for (const id of reagents) if (!told(id, tag)) row.reagents.add(nameOf(id, knowledge));
+    about.set(text, { ...row, general: row.general || general });
+  }
+  return [...about]
+    .filter(([, { general, reagents }]) => general || reagents.size > 0)
+    .map(([text, { reagents }]) => {
+      const names = [...reagents].join(", ");
+      return names === "" || text.toLowerCase().startsWith(names.toLowerCase()) ? text : `${names}: ${text}`;
+    });
 }
 
 const nameOf = (id: string, knowledge: Knowledge): string =>

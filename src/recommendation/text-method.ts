@@ -1,5 +1,7 @@
 import type { Because, RecommendedMethod, StageDocument } from "./contract.ts";
 import { bullet, row, wrap } from "./text-layout.ts";
+import { mergedStatements } from "./merge-statements.ts";
+import { changeWords } from "./text-amounts.ts";
 import { figures, listed, percent, reagentWords, signedPercent } from "./text-words.ts";
 
 const END_POINT_BASIS = {
@@ -14,6 +16,14 @@ const MASKING_BASIS = {
   empirical: "an empirical record",
   conversion: "a complete conversion",
 } as const;
+
+/** Below this a metal takes no titrant worth a word. */
+const LEAST_LOG10_K = 2;
+/** Parts of a bias and of an uncertainty below these, %, change no figure that is shown. */
+const LEAST_BIAS_PERCENT = 0.005;
+const LEAST_UNCERTAINTY_PERCENT = 0.01;
+/** Limits this many times above what is there are no limits to mind. */
+const FAR_ABOVE = 100;
 
 /** Where the method is carried out: titrant, pH, end point, titre and what stands behind them, titration by titration. */
 export function conditions(method: RecommendedMethod): readonly (readonly string[])[] {
@@ -33,10 +43,12 @@ function stageConditions(stage: StageDocument, method: RecommendedMethod): reado
   const range = `works from ${figures(pH.low)} to ${figures(pH.high)}`;
   const seen =
     stage.detection === "visual" && indicator !== null
-      ? `${reagentWords(indicator.id)}, ${indicator.colourChange.join(" → ")}`
+      ? `${reagentWords(indicator.id)}, ${changeWords(indicator.colourChange)}`
       : instrumentWords(stage);
-  const bound = stage.conditional.filter((entry) => entry.log10ConditionalK >= 0); // the rest is not bound at all
+  const bound = stage.conditional.filter((entry) => entry.log10ConditionalK >= LEAST_LOG10_K);
   const constants = bound.map((entry) => `${entry.metal} ${entry.log10ConditionalK.toFixed(1)}`).join(", ");
+  const followed =
+    back?.id ?? stage.vessel.detour?.metal ?? (stage.determines.length === 1 ? stage.determines[0]! : null);
   const rows: readonly (readonly [string, string | null])[] = [
     ["Titrant", `${titrant.id} ${figures(titrant.molPerL)} mol/L`],
     ["Back titrant", back && `${back.id} ${figures(back.molPerL)} mol/L`],
@@ -48,7 +60,7 @@ function stageConditions(stage: StageDocument, method: RecommendedMethod): reado
         `${figures(endPoint.electrode.jumpMV)} mV from 99 to 101 % of the volume, read to ${figures(endPoint.electrode.readingMV)} mV; slope ${figures(endPoint.electrode.slopeMVPerDecade)} mV a decade`,
     ],
     [
-      "pM",
+      followed === null ? "pM" : `pM of ${followed}`,
       endPoint.pM === null || endPoint.pMEquivalence === null
         ? null
         : `${figures(endPoint.pM)} at the end point, ${figures(endPoint.pMEquivalence)} at equivalence`,
@@ -76,25 +88,53 @@ export function backTitrantOf(stage: StageDocument, method: RecommendedMethod): 
   return stage.mode === "direct" ? null : (stage.backTitrant ?? method.backTitrant);
 }
 
-/** Bias with its causes, expanded uncertainty with its parts, and both for each result where there are several. */
+/** Causes of a bias as a reader would name them; what the standardisation takes back stands beside it. */
+const CAUSE_WORDS: Readonly<Record<string, string>> = {
+  "end-point": "end point beside equivalence",
+  "standardised alike": "the same shift in the standardisation, which takes it back",
+};
+const BUDGET_WORDS: Readonly<Record<string, string>> = {
+  "standardised alike": "shift of the standardisation",
+};
+
+/** Bias with its causes, titration by titration, expanded uncertainty with its parts, and both for each result where there are several. */
 export function error(method: RecommendedMethod): readonly (readonly string[])[] {
   const { predicted, uncertaintyBudget } = method;
-  const causes = predicted.biasBySource.map((part) => `${part.source} ${signedPercent(part.percent)}`);
-  const parts = uncertaintyBudget.map((part) => `${part.source} ${percent(part.percent)}`);
-  const because = causes.length > 0 ? `: ${causes.join(", ")}` : "";
+  const several = predicted.perAnalyte.length > 1;
+  const parts = uncertaintyBudget
+    .filter((part) => part.percent >= LEAST_UNCERTAINTY_PERCENT)
+    .map((part) => `${BUDGET_WORDS[part.source] ?? part.source} ${percent(part.percent)}`);
   const budget = parts.length > 0 ? ` (standard uncertainties: ${parts.join(", ")})` : "";
   const expanded = percent(predicted.relativeExpandedUncertaintyPercent);
+  const worst = several ? " of the worst result" : "";
+  const causes = causesOf(method);
+  const single = method.stages.length === 1 && causes.length > 0 ? `: ${causes[0]!.words}` : "";
   return [
-    wrap(`Bias ${signedPercent(predicted.biasPercent)}${because}.`, "  "),
-    wrap(`Expanded uncertainty, bias included: ${expanded}${budget}.`, "  "),
-    ...(predicted.perAnalyte.length < 2
+    wrap(`Bias${worst} ${signedPercent(predicted.biasPercent)}${single}.`, "  "),
+    ...(method.stages.length === 1
       ? []
-      : predicted.perAnalyte.map((result) =>
+      : causes.map(({ titration, words }) => bullet(`in titration ${titration}, of what it finds: ${words}`))),
+    wrap(`Expanded uncertainty${worst}, bias included: ${expanded}${budget}.`, "  "),
+    ...(several
+      ? predicted.perAnalyte.map((result) =>
           bullet(
             `${listed(result.determines)}: bias ${signedPercent(result.biasPercent)}, expanded uncertainty ${percent(result.relativeExpandedUncertaintyPercent)}`,
           ),
-        )),
+        )
+      : []),
   ];
+}
+
+/** What shifts each titration, largest first, without what changes no figure. */
+function causesOf(method: RecommendedMethod): readonly { titration: number; words: string }[] {
+  const of = new Map<number, string[]>();
+  for (const { source, percent: value } of method.predicted.biasBySource) {
+    if (Math.abs(value) < LEAST_BIAS_PERCENT) continue;
+    const [, plain = source, number = "1"] = /^(.*?)(?: \(titration (\d+)\))?$/.exec(source) ?? [];
+    const words = `${CAUSE_WORDS[plain] ?? plain} ${signedPercent(value)}`;
+    of.set(Number(number), [...(of.get(Number(number)) ?? []), words]);
+  }
+  return [...of].sort(([a], [b]) => a - b).map(([titration, words]) => ({ titration, words: words.join("; ") }));
 }
 
 /** What is masked by what, on what knowledge, and up to which level each component is borne. */
@@ -102,7 +142,7 @@ export function masking(method: RecommendedMethod): readonly (readonly string[])
   const steps = method.stages.flatMap((stage) => stage.masking);
   const masked = steps.map((step) =>
     [
-      `${listed(step.masks)} by ${reagentWords(step.agent)} (${step.via}; rests on ${MASKING_BASIS[step.basis]})`,
+      `${listed(step.masks)} by ${step.agent === "hydroxide" ? "the alkali" : reagentWords(step.agent)} (${step.via}; rests on ${MASKING_BASIS[step.basis]})`,
       ...maskWords(step),
     ].join("; "),
   );
@@ -110,10 +150,21 @@ export function masking(method: RecommendedMethod): readonly (readonly string[])
     ...[...new Set(masked)].map(bullet),
     ...method.tolerance.map((limit) =>
       bullet(
-        `${limit.component}: ${figures(limit.presentMolPerL)} mol/L is there, up to ${figures(limit.limitMolPerL)} mol/L is borne${steps.length === 0 ? "" : limit.withMasking ? " with the masking" : " without it"}`,
+        `${limit.component}: ${limitWords(limit.presentMolPerL, limit.limitMolPerL)}${steps.length === 0 ? "" : limit.withMasking ? " with the masking" : " without it"}`,
       ),
     ),
   ];
+}
+
+/** What is there and what is borne, in the unit in which the first reads well. */
+function limitWords(presentMolPerL: number, limitMolPerL: number): string {
+  const [times, unit] =
+    presentMolPerL >= 0.1 ? [1, "mol/L"] : presentMolPerL >= 1e-4 ? [1e3, "mmol/L"] : [1e6, "µmol/L"];
+  const borne =
+    limitMolPerL > FAR_ABOVE * presentMolPerL
+      ? "more than a hundred times as much"
+      : `up to ${figures(times * limitMolPerL)} ${unit}`;
+  return `${figures(times * presentMolPerL)} ${unit} is there, ${borne} is borne`;
 }
 
 /** What the equilibrium and the record say of one mask: how firmly, at what cost to the analyte, what frees the ion again. */
@@ -129,15 +180,36 @@ function maskWords({ chemistry, practice }: StageDocument["masking"][number]): r
   const freed = [...new Set(practice.flatMap((p) => p.freedBy))];
   return [
     ...(held.length > 0 ? [listed(held)] : []),
-    ...(cost !== null && cost >= 0.05 ? [`takes log alpha ${cost.toFixed(1)} from the analyte`] : []),
+    ...(cost !== null && cost >= 0.05 ? [`it holds the analyte too: log alpha ${cost.toFixed(1)}`] : []),
     ...(usedFraction !== null && usedFraction > 0.01 ? [`${percent(100 * usedFraction)} of the agent is used`] : []),
     ...(freed.length > 0 ? [`freed again by ${freed.join(" or ")}`] : []),
   ];
 }
 
-/** The rules that spoke of the method, each with its id and source. */
+/** The source of a claim; common practice is known by that name. */
+const sourceWords = (source: string): string =>
+  source.startsWith("Common practice of laboratories") ? "common practice" : source;
+
+const said = (because: Because): string => `${because.statement} [${because.rule}; ${sourceWords(because.source)}]`;
+
+/** What speaks for and against the method by the rules, each with its id and source. */
 export function reasons(method: RecommendedMethod): readonly (readonly string[])[] {
-  const said = (because: Because): string =>
-    `${because.effect}: ${because.statement} [${because.rule}; ${because.source}]`;
-  return [...new Set(method.because.map(said))].map(bullet);
+  const weighed = method.because.filter((because) => because.effect !== "cautions");
+  return [...new Set(mergedStatements(weighed).map((because) => `${because.effect}: ${said(because)}`))].map(bullet);
 }
+
+/** What the rules ask to mind at the bench, without the hazards and reservations that are told above. */
+export function minded(method: RecommendedMethod): readonly (readonly string[])[] {
+  const cautions = method.because.filter(({ effect, rule }) => effect === "cautions" && !TOLD_AS_HAZARD.test(rule));
+  const told = new Set(method.reservations);
+  return [
+    ...new Set(
+      mergedStatements(cautions)
+        .filter(({ statement }) => !told.has(statement))
+        .map(said),
+    ),
+  ].map(bullet);
+}
+
+/** Rules whose cautions the cautions of the reagents say in full. */
+const TOLD_AS_HAZARD = /^safety\/|^release\/fluoride-in-hot-acid$/;

@@ -4,7 +4,7 @@ import type { PREPARATION_STEPS } from "./contract-vocabulary.ts";
 export const PREPARATION_WORDS: Readonly<Record<(typeof PREPARATION_STEPS)[number], string>> = {
   warm: "Warm to 40 to 60 °C.",
   heat: "Heat to 60 to 90 °C.",
-  boil: "Boil.",
+  boil: "Boil for a few minutes.",
   cool: "Cool to room temperature.",
   wait: "Wait until the reaction is complete.",
   "excess-titrant-first": "Add the titrant in excess before the pH is raised.",

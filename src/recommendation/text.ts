@@ -1,6 +1,6 @@
 import type { Recommendation, RecommendedMethod } from "./contract.ts";
 import { bullet, LINE_CHARACTERS, section, wrap } from "./text-layout.ts";
-import { conditions, error, masking, reasons } from "./text-method.ts";
+import { conditions, error, masking, minded, reasons } from "./text-method.ts";
 import { stepsOf } from "./text-steps.ts";
 import {
   FINDING_WORDS,
@@ -14,6 +14,7 @@ import {
 
 const RIVALS_SHOWN = 4;
 const REJECTED_SHOWN = 8;
+const DIFFERENCES_SHOWN = 3;
 
 /** The recommendation as a chemist reads it aloud: verdict, method, cautions, conditions, steps, error, masking, rivals, what was rejected. Ends with a newline. */
 export function recommendationText(document: Recommendation): string {
@@ -66,6 +67,7 @@ function firstMethod(document: Recommendation, method: RecommendedMethod): reado
       "Steps",
       stepsOf(method, document.brief).map((step, index) => wrap(step, `  ${String(index + 1).padStart(2)}. `)),
     ),
+    section("To mind", minded(method)),
     section(
       "Result",
       method.calculation.length === 0
@@ -91,8 +93,18 @@ function precedents(method: RecommendedMethod): readonly (readonly string[])[] {
 }
 
 function findings(document: Recommendation): readonly (readonly string[])[] {
-  return document.findings.map((finding) =>
-    bullet(`${finding.component} ${FINDING_WORDS[finding.as]}: ${finding.statement}`),
+  // Sentences of one component stand together.
+  const order = [...new Set(document.findings.map((finding) => finding.component))];
+  return order.flatMap((component) =>
+    document.findings
+      .filter((finding) => finding.component === component)
+      .map((finding) =>
+        bullet(
+          finding.statement.startsWith(`${component} `)
+            ? finding.statement
+            : `${component} ${FINDING_WORDS[finding.as]}: ${finding.statement}`,
+        ),
+      ),
   );
 }
 
@@ -107,19 +119,38 @@ function rivals(document: Recommendation): readonly (readonly string[])[] {
       ),
     ),
     ...(others.length > shown.length ? [wrap(`and ${others.length - shown.length} more in --json.`, "      ")] : []),
-    ...(document.decidedBy === null ? [] : [wrap(`First against second: ${document.decidedBy.statement}`, "  ")]),
+    ...decided(document),
   ];
 }
 
-function rejected(document: Recommendation): readonly (readonly string[])[] {
-  const shown = document.rejected.slice(0, REJECTED_SHOWN);
-  const more = document.rejected.length - shown.length;
+/** What put the first before the second, with the rules that told most. */
+function decided({ decidedBy }: Recommendation): readonly (readonly string[])[] {
+  if (decidedBy === null) return [];
   return [
-    ...shown.map((entry) =>
-      bullet(
-        `${MODE_WORDS[entry.mode]} with ${entry.titrant}${entry.backTitrant === null ? "" : ` and ${entry.backTitrant}`}${entry.indicator === null ? "" : `, ${reagentWords(entry.indicator)}`}${entry.pH === null ? "" : `, pH ${figures(entry.pH)}`}: ${entry.because.map((because) => because.statement).join(" ")}`,
-      ),
-    ),
+    wrap(`First against second: ${decidedBy.statement}`, "  "),
+    ...decidedBy.differences
+      .slice(0, DIFFERENCES_SHOWN)
+      .map(({ first, second, statement }) => bullet(`${first} against ${second}: ${statement}`)),
+  ];
+}
+
+/** Methods of several titrations: dye and pH of their first one do not tell them apart. */
+const OF_SEVERAL = new Set(["successive", "difference", "portions"]);
+
+function rejected(document: Recommendation): readonly (readonly string[])[] {
+  const lines = document.rejected.map((entry) => {
+    const back = entry.backTitrant === null ? "" : ` and ${entry.backTitrant}`;
+    const seen =
+      OF_SEVERAL.has(entry.mode) || entry.indicator === null
+        ? ""
+        : `, ${reagentWords(entry.indicator)}${entry.pH === null ? "" : `, pH ${figures(entry.pH)}`}`;
+    const why = [...new Set(entry.because.map((because) => because.statement))].join(" ");
+    return `${MODE_WORDS[entry.mode]} with ${entry.titrant}${back}${seen}: ${why}`;
+  });
+  const distinct = [...new Set(lines)];
+  const more = distinct.length - REJECTED_SHOWN;
+  return [
+    ...distinct.slice(0, REJECTED_SHOWN).map(bullet),
     ...(more > 0 ? [wrap(`and ${more} more in --json.`, "    ")] : []),
   ];
 }

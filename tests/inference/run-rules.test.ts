@@ -19,7 +19,7 @@ describe("createRuleRunner", () => {
         weight: -4,
         reservation: false,
         requires: null,
-        statement: "The end point with xylenol-orange is read to 0.6 %.",
+        statement: "The end point with xylenol orange is read to 0.6 %.",
         facts: { ...SHARP, detection: "visual", indicator: "xylenol-orange" },
         rationale: SOUND_RULE.rationale,
         source: "Invented for the tests",

@@ -1,7 +1,7 @@
 import { describe, expect, it } from "vitest";
 import { hazardTagsOf as tagsInBottle } from "../../src/constants/index.ts";
 import type { StagePlan } from "../../src/methods/types.ts";
-import { cautionTexts, hazardTagsOf, reagentsOf } from "../../src/recommendation/reagents.ts";
+import { cautionTexts, hazardTagsOf, reagentsOf, SAID_BY } from "../../src/recommendation/reagents.ts";
 import { backPlan, inventedPlan, KNOWLEDGE } from "../methods/invented.ts";
 
 /** Ways in which a reagent can stand in a plan: as mask, as auxiliary, as buffer, as titrant, as back titrant, as chelate. */
@@ -44,7 +44,10 @@ describe("cautionTexts over the whole shelf", () => {
       const always = KNOWLEDGE.cautions.filter((c) => c.when === "always" && tags.includes(c.tag));
       expect(always.map((c) => c.tag).sort()).toEqual([...tags].sort());
       const texts = cautionTexts([plan], [], KNOWLEDGE);
-      for (const caution of always)
+      // "Toxic" is not said once more of a bottle whose own caution says how it kills.
+      const own = always.filter((c) => !(SAID_BY[c.tag] ?? []).some((by) => always.some((other) => other.tag === by)));
+      expect(own.length === 0).toBe(always.length === 0);
+      for (const caution of own)
         expect(
           texts.filter((text) => text.endsWith(caution.text)),
           caution.tag,
@@ -58,6 +61,26 @@ describe("cautionTexts over the whole shelf", () => {
     const told = new Set(HAZARDOUS.flatMap(([id]) => [...tagsInBottle(id, KNOWLEDGE)]));
     for (const tag of ["cyanide", "sulfide", "fluoride", "mercury", "perchlorate", "strong-acid"] as const)
       expect(told).toContain(tag);
+  });
+});
+
+describe("cautionTexts, each once", () => {
+  it("says a general hazard only where no own caution says it, in words that carry it", () => {
+    const words = { toxic: /toxic|fatal|lethal/i, carcinogen: /carcinogenic/i, corrosive: /corrosive|eye damage/i };
+    for (const [tag, by] of Object.entries(SAID_BY))
+      for (const other of by) {
+        const text = KNOWLEDGE.cautions.find((c) => c.tag === other && c.when === "always")?.text;
+        expect(text, other).toMatch(words[tag as keyof typeof words]);
+      }
+  });
+  it("names a reagent of two titrations once, and no bottle's fire hazard for a dilute sample", () => {
+    const two = cautionTexts([buffered("hexamine", 5.5), buffered("hexamine", 6)], ["Cd2+", "Ag+"], KNOWLEDGE);
+    expect(two.filter((text) => text.includes("Flammable"))).toHaveLength(1);
+    expect(two.filter((text) => text.includes("Cadmium"))).toHaveLength(1);
+    expect(two.join()).not.toContain("Oxidiser");
+    expect(cautionTexts([backPlan({ backTitrant: { id: "Ag+", molPerL: 0.01 } })], [], KNOWLEDGE).join()).toContain(
+      "Oxidiser",
+    );
   });
 });
 

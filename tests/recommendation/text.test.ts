@@ -69,6 +69,40 @@ describe("recommendationText", () => {
       /FIT, WITH RESERVATIONS: .*\n {2}- The end point rests/s,
     );
   });
+  it("tells weighed reasons under Why, cautions under To mind, and neither hazards nor reservations twice", () => {
+    const spoken = (rule: string, statement: string) =>
+      ({ ...METHOD.because[0]!, rule, effect: "cautions", statement }) as const;
+    const because = [
+      ...METHOD.because,
+      spoken("indicator/fades", "The dye fades."),
+      spoken("safety/acid", "Mind the acid."),
+      spoken("masking/record", "The mask is reported only."),
+    ];
+    const text = textWith({ methods: [{ ...METHOD, because, reservations: ["The mask is reported only."] }] });
+    const mind = text.slice(text.indexOf("To mind"), text.indexOf("Error of one"));
+    expect(mind).toContain("The dye fades.");
+    expect(text).not.toContain("Mind the acid.");
+    expect(text.match(/The mask is reported only/g)).toHaveLength(1);
+    expect(text.slice(text.indexOf("\nWhy"))).not.toContain("The dye fades.");
+  });
+  it("leaves out parts of bias and uncertainty that change no figure, and limits that are far away", () => {
+    const predicted = {
+      ...METHOD.predicted,
+      biasBySource: [
+        { source: "Na+", percent: 0.0002 },
+        { source: "Cd2+", percent: 0.02 },
+      ],
+    };
+    const tolerance = [{ component: "Na+", limitMolPerL: 0.5, presentMolPerL: 0.001, withMasking: true }];
+    const flat = textWith({ methods: [{ ...METHOD, predicted, tolerance }] }).replace(/\s+/g, " ");
+    expect(flat).toContain("Bias +0.04 %: Cd2+ +0.02 %.");
+    expect(flat).toContain("Na+: 1 mmol/L is there, more than a hundred times as much is borne");
+  });
+  it("says a rejected reason once, and what told most between the first two", () => {
+    const text = textWith({ rejected: [...DOCUMENT.rejected, ...DOCUMENT.rejected] });
+    expect(text.match(/Aluminium blocks mordant black 11/g)).toHaveLength(1);
+    expect(text).toContain("  - 3 against 0: A direct titration has the fewest steps.");
+  });
   it("says where ionic strength leaves the model", () => {
     const stage = { ...STAGE, ionicStrength: { molPerL: 0.8, outOfModelRange: true } };
     expect(textWith({ methods: [withStages(stage)] })).toContain("0.8 mol/L, beyond the range of the model");
