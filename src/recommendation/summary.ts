@@ -16,7 +16,7 @@ export function summaryOf(task: Task, judged: JudgedMethod, knowledge: Knowledge
   const sentences = method.stages.map((stage) => stageWords(task, stage, knowledge));
   if (sentences.length === 1) return `${sentences[0]!}.`;
   const lead: Record<string, string> = {
-    difference: "In separate portions, the second result by difference",
+    difference: "In separate portions, one result as their difference",
     portions: "In separate portions",
     successive: "In one portion, one after the other",
   };
@@ -37,6 +37,16 @@ function seenBy(plan: StagePlan, knowledge: Knowledge): string {
   if (plan.detection === "photometric")
     return dye ? `${dye}${chelate}, read with a photometer` : "the break of its own absorbance, read with a photometer";
   return `${dye ?? "the end point"}${chelate}`;
+}
+
+/** "with cyanide against Zn2+ and Cu2+": each agent once, whatever it masks. */
+function maskWords(plan: StagePlan, nameOf: (id: string) => string, ion: (id: string) => string): string {
+  const masked = new Map<string, string[]>();
+  for (const { agent, masks } of plan.masking) masked.set(agent, [...(masked.get(agent) ?? []), ...masks.map(ion)]);
+  const words = [...masked].map(
+    ([agent, ions]) => `${agent === "hydroxide" ? "the alkali" : nameOf(agent)} against ${list([...new Set(ions)])}`,
+  );
+  return words.length > 0 ? `, with ${list(words)}` : "";
 }
 
 /** The agents that go in after the first end point of a release. */
@@ -62,10 +72,7 @@ function stageWords(task: Task, stage: DevelopedStage, knowledge: Knowledge): st
         ? ", let it react"
         : "";
   const separated = plan.removed.length > 0 ? `after separation of ${list(plan.removed.map(ion))}, ` : "";
-  const masks =
-    plan.masking.length > 0
-      ? `, with ${list(plan.masking.map((m) => `${m.agent === "hydroxide" ? "the alkali" : nameOf(m.agent)} against ${list(m.masks.map(ion))}`))}`
-      : "";
+  const masks = maskWords(plan, nameOf, ion);
   const present = plan.auxiliary.filter((a) => !releaseAgents(plan).includes(a.id));
   const helped = present.length > 0 ? ` and ${list(present.map((a) => nameOf(a.id)))} present` : "";
   const buffer = nameOf(plan.buffer.id);
@@ -106,10 +113,7 @@ function detourWords(task: Task, stage: DevelopedStage, detour: Detour, knowledg
       : back
         ? `by ${plan.titrant.id} in excess and ${back.molPerL} mol/L ${back.id} back`
         : `with ${plan.titrant.molPerL} mol/L ${plan.titrant.id}`;
-  const masks =
-    plan.masking.length > 0
-      ? `, with ${list(plan.masking.map((m) => `${nameOf(m.agent)} against ${list(m.masks.map(ion))}`))}`
-      : "";
+  const masks = maskWords(plan, nameOf, ion);
   const separated = plan.removed.length > 0 ? `after separation of ${list(plan.removed.map(ion))}, ` : "";
   const sentence = `${separated}${taken} ${how} at pH ${plan.pH} (${nameOf(plan.buffer.id)}) to ${dye}${masks}: ${stoichiometryOf(plan, detour, ion)}`;
   return sentence.charAt(0).toUpperCase() + sentence.slice(1);

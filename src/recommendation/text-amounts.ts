@@ -35,7 +35,7 @@ export function excessStep(
 
 /** Colours before and after the end point: "from wine-red or violet to blue". */
 export function changeWords([from, to]: readonly [string, string]): string {
-  const either = (colour: string): string => colour.replaceAll(" to ", " or ");
+  const either = (colour: string): string => colour.replaceAll(/ (?:to|\/) /g, " or ");
   return `from ${either(from)} to ${either(to)}`;
 }
 

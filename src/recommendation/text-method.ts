@@ -47,8 +47,7 @@ function stageConditions(stage: StageDocument, method: RecommendedMethod): reado
       : instrumentWords(stage);
   const bound = stage.conditional.filter((entry) => entry.log10ConditionalK >= LEAST_LOG10_K);
   const constants = bound.map((entry) => `${entry.metal} ${entry.log10ConditionalK.toFixed(1)}`).join(", ");
-  const followed =
-    back?.id ?? stage.vessel.detour?.metal ?? (stage.determines.length === 1 ? stage.determines[0]! : null);
+  const followed = back?.id ?? stage.vessel.detour?.metal ?? stage.determines[0] ?? null;
   const rows: readonly (readonly [string, string | null])[] = [
     ["Titrant", `${titrant.id} ${figures(titrant.molPerL)} mol/L`],
     ["Back titrant", back && `${back.id} ${figures(back.molPerL)} mol/L`],
@@ -140,7 +139,11 @@ function causesOf(method: RecommendedMethod): readonly { titration: number; word
 /** What is masked by what, on what knowledge, and up to which level each component is borne. */
 export function masking(method: RecommendedMethod): readonly (readonly string[])[] {
   const steps = method.stages.flatMap((stage) => stage.masking);
-  const masked = steps.map((step) =>
+  // A mask carried on into a later titration is told with the first.
+  const first = steps.filter(
+    (step, i) => steps.findIndex((s) => s.agent === step.agent && s.masks.join() === step.masks.join()) === i,
+  );
+  const masked = first.map((step) =>
     [
       `${listed(step.masks)} by ${step.agent === "hydroxide" ? "the alkali" : reagentWords(step.agent)} (${step.via}; rests on ${MASKING_BASIS[step.basis]})`,
       ...maskWords(step),
@@ -167,13 +170,16 @@ function limitWords(presentMolPerL: number, limitMolPerL: number): string {
   return `${figures(times * presentMolPerL)} ${unit} is there, ${borne} is borne`;
 }
 
+/** A share that is practically nothing is said as such. */
+const shareWords = (fraction: number): string => (fraction < 1e-4 ? "under 0.01 %" : percent(100 * fraction));
+
 /** What the equilibrium and the record say of one mask: how firmly, at what cost to the analyte, what frees the ion again. */
 function maskWords({ chemistry, practice }: StageDocument["masking"][number]): readonly string[] {
   const held = chemistry.masked
     .filter((m) => m.log10Alpha !== null || m.titratedFraction !== null)
     .map((m) => {
       const alpha = m.log10Alpha === null ? "" : `log alpha ${m.log10Alpha.toFixed(1)}, `;
-      const share = m.titratedFraction === null ? "" : `${percent(100 * Math.max(0, m.titratedFraction))} titrated`;
+      const share = m.titratedFraction === null ? "" : `${shareWords(m.titratedFraction)} titrated`;
       return `${m.ion} ${alpha}${share}`.replace(/, $/, "");
     });
   const { onAnalyteLog10Alpha: cost, usedFraction } = chemistry;
@@ -182,7 +188,7 @@ function maskWords({ chemistry, practice }: StageDocument["masking"][number]): r
     ...(held.length > 0 ? [listed(held)] : []),
     ...(cost !== null && cost >= 0.05 ? [`it holds the analyte too: log alpha ${cost.toFixed(1)}`] : []),
     ...(usedFraction !== null && usedFraction > 0.01 ? [`${percent(100 * usedFraction)} of the agent is used`] : []),
-    ...(freed.length > 0 ? [`freed again by ${freed.join(" or ")}`] : []),
+    ...(freed.length > 0 ? [`freed again by ${freed.map(reagentWords).join(" or ")}`] : []),
   ];
 }
 
@@ -200,7 +206,9 @@ export function reasons(method: RecommendedMethod): readonly (readonly string[])
 
 /** What the rules ask to mind at the bench, without the hazards and reservations that are told above. */
 export function minded(method: RecommendedMethod): readonly (readonly string[])[] {
-  const cautions = method.because.filter(({ effect, rule }) => effect === "cautions" && !TOLD_AS_HAZARD.test(rule));
+  const cautions = method.because.filter(
+    ({ effect, rule }) => effect === "cautions" && !TOLD_AS_HAZARD.test(rule) && !TOLD_IN_STEPS.has(rule),
+  );
   const told = new Set(method.reservations);
   return [
     ...new Set(
@@ -213,3 +221,9 @@ export function minded(method: RecommendedMethod): readonly (readonly string[])[
 
 /** Rules whose cautions the cautions of the reagents say in full. */
 const TOLD_AS_HAZARD = /^safety\/|^release\/fluoride-in-hot-acid$/;
+/** Rules that the order and the words of the steps follow to the letter. */
+const TOLD_IN_STEPS = new Set([
+  "practicability/hexamine-hot",
+  "release/agent-after-first-end-point",
+  "detection/wavelength",
+]);

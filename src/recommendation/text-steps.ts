@@ -23,6 +23,8 @@ const FLASK_FIRST = new Set([
 /** Buffers that do not stand boiling: hexamine splits in acid, ammonia escapes. */
 const SPLITS_HOT = "hexamine";
 const ESCAPES_HOT = "ammonia";
+/** pH of two titrations of one vessel that count as the same. */
+const SAME_PH = 0.1;
 
 /** The steps of a method at the bench, in order: one sentence each. */
 export function stepsOf(method: RecommendedMethod, brief: Brief): readonly string[] {
@@ -65,7 +67,8 @@ function releaseSteps(stage: StageDocument, index: number, method: RecommendedMe
 function plainSteps(stage: StageDocument, index: number, method: RecommendedMethod, brief: Brief): readonly string[] {
   const titrant = stage.titrant ?? method.titrant;
   const backTitrant = backTitrantOf(stage, method);
-  const agents = agentsOf(stage, index > 0 && method.mode === "successive" ? method.stages[index - 1]! : null);
+  const earlier = index > 0 && method.mode === "successive" ? method.stages[index - 1]! : null;
+  const agents = agentsOf(stage, earlier);
   const early = agents.filter((agent) => !AFTER_THE_BUFFER.has(agent.id));
   const late = agents.filter((agent) => AFTER_THE_BUFFER.has(agent.id));
   const before = stage.preparation.filter((step) => FLASK_FIRST.has(step));
@@ -83,7 +86,7 @@ function plainSteps(stage: StageDocument, index: number, method: RecommendedMeth
       buffer: bufferStep(stage),
       checked: (done) => pHCheck(stage, done, [ESCAPES_HOT]),
       excess: ({ molPerL, purpose }) => excessStep(stage, method, brief, molPerL, purpose),
-      endPoint: endPoint(stage, backTitrant ?? titrant),
+      endPoint: endPoint(stage, backTitrant ?? titrant, earlier),
     });
   const titrantSteps = addTitrant(stage, method, brief);
   const lateSteps = late.map((agent) => `Now that the pH is set, add ${agent.words}.`);
@@ -100,7 +103,7 @@ function plainSteps(stage: StageDocument, index: number, method: RecommendedMeth
           ...steps.slice(cooled),
         ]
       : [
-          bufferStep(stage),
+          bufferStep(stage, earlier),
           ...lateSteps,
           ...(titrantFirst ? [] : titrantSteps),
           ...steps,
@@ -112,7 +115,7 @@ function plainSteps(stage: StageDocument, index: number, method: RecommendedMeth
     ...early.map((agent) => `Add ${agent.words}.`),
     ...(titrantFirst ? titrantSteps : []),
     ...middle,
-    ...endPoint(stage, backTitrant ?? titrant),
+    ...endPoint(stage, backTitrant ?? titrant, earlier),
   ];
 }
 
@@ -131,8 +134,14 @@ function agentsOf(stage: StageDocument, before: StageDocument | null): readonly 
   ];
 }
 
-const bufferStep = (stage: StageDocument): string =>
-  `Bring to pH ${figures(stage.pH.target)} with ${amount(stage, stage.buffer.id, stage.buffer.molPerL)} as buffer; it must stay between pH ${figures(stage.pH.low)} and ${figures(stage.pH.high)}.`;
+/** Sets the pH; in a vessel that an earlier titration has buffered alike there is only the pH to look at. */
+function bufferStep(stage: StageDocument, earlier: StageDocument | null = null): string {
+  const { pH, buffer } = stage;
+  const range = `it must stay between pH ${figures(pH.low)} and ${figures(pH.high)}`;
+  return earlier !== null && earlier.buffer.id === buffer.id && Math.abs(earlier.pH.target - pH.target) <= SAME_PH
+    ? `Check that the pH is still ${figures(pH.target)}, and add ${reagentWords(buffer.id)} where it is not; ${range}.`
+    : `Bring to pH ${figures(pH.target)} with ${amount(stage, buffer.id, buffer.molPerL)} as buffer; ${range}.`;
+}
 
 const isHeated = (steps: readonly string[]): boolean =>
   steps.includes("cool") && (steps.includes("boil") || steps.includes("heat"));
@@ -193,12 +202,16 @@ function addTitrant(stage: StageDocument, method: RecommendedMethod, brief: Brie
 const isAddition = (step: string, stage: StageDocument): boolean =>
   stage.added.some((added) => step === `add-${added.id}`);
 
-function endPoint(stage: StageDocument, last: { readonly id: string; readonly molPerL: number }): readonly string[] {
+function endPoint(
+  stage: StageDocument,
+  last: { readonly id: string; readonly molPerL: number },
+  earlier: StageDocument | null,
+): readonly string[] {
   const titre = stage.titreML === null ? "" : `; about ${figures(stage.titreML)} mL`;
   const withWhat = `Titrate${stage.mode === "back" ? " back" : ""} with ${figures(last.molPerL)} mol/L ${last.id}`;
   const gives =
     stage.determines.length > 0
-      ? `${titre}. This gives ${listed(stage.determines)}.`
+      ? `${titre}. This gives ${stage.determines.length > 1 ? "the sum of " : ""}${listed(stage.determines)}.`
       : `${titre}. Discard this reading.`;
   if (stage.detection === "electrode") {
     const { electrode } = stage.endPoint;
@@ -221,8 +234,11 @@ function endPoint(stage: StageDocument, last: { readonly id: string; readonly mo
     ];
   }
   if (stage.indicator === null) return [`${withWhat}${gives}`];
+  const dye = reagentWords(stage.indicator.id);
   return [
-    `Add ${reagentWords(stage.indicator.id)}, enough for a clear colour (about ${figures(stage.indicator.molPerL)} mol/L).`,
+    earlier?.indicator?.id === stage.indicator.id
+      ? `The ${dye} is there already; add a little where the colour is weak.`
+      : `Add ${dye}, enough for a clear colour (about ${figures(stage.indicator.molPerL)} mol/L).`,
     `${withWhat} until the colour has changed ${changeWords(stage.indicator.colourChange)}${gives}`,
   ];
 }

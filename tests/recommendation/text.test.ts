@@ -191,6 +191,15 @@ describe("stepsOf", () => {
     const release = { ...withStages({ ...STAGE, mode: "displacement" }), backTitrant: { id: "Zn2+", molPerL: 0.01 } };
     expect(steps(release).at(-1)).toMatch(/^Titrate with 0\.01 mol\/L Zn2\+/);
   });
+  it("looks at pH and dye again where a titration of the same vessel goes on alike, and makes them anew in another portion", () => {
+    const pair = withStages(STAGE, STAGE);
+    const going = steps({ ...pair, mode: "successive" });
+    expect(position(going, "Check that the pH is still 5.5")).toBeGreaterThan(position(going, "Go on with the same"));
+    expect(going.filter((step) => step.startsWith("Add xylenol orange"))).toHaveLength(1);
+    const apart = steps({ ...pair, mode: "portions" });
+    expect(apart.filter((step) => step.startsWith("Bring to pH 5.5"))).toHaveLength(2);
+    expect(apart.filter((step) => step.startsWith("Add xylenol orange"))).toHaveLength(2);
+  });
   it("discards a reading that determines nothing, goes on with one solution, and takes a second portion", () => {
     const twice = [{ ...STAGE, determines: [] }, STAGE];
     const successive = steps({ ...withStages(...twice), mode: "successive" });
