@@ -34,7 +34,10 @@ function joined(words: readonly string[], last: string): string {
 }
 
 /** A reagent id as words: "mordant-black-11" reads "mordant black 11"; ions, names and abbreviations stay. */
-const worded = (text: string): string => (/^[a-z0-9]+(-[a-z0-9]+)+$/.test(text) ? text.replaceAll("-", " ") : text);
+const worded = (text: string): string =>
+  /^[a-z0-9]+(-[a-z0-9]+)+$/.test(text)
+    ? text.replaceAll("-", " ").replace(/ [a-z]$/, (letter) => letter.toUpperCase())
+    : text;
 
 /** The placeholders of a statement template, in order: fact name and format ("" where none is given). */
 export function placeholdersOf(template: string): readonly { readonly fact: string; readonly format: string }[] {

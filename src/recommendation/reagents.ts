@@ -2,6 +2,7 @@ import { cautionsFor, type HazardName, type Knowledge } from "../constants/index
 import type { StagePlan } from "../methods/types.ts";
 
 const EXCHANGE = "tetracyanonickelate-exchange";
+const EXCHANGE_REAGENT = "tetracyanonickelate";
 
 /** Every reagent id that a titration uses, once each. */
 export function reagentsOf(plan: StagePlan): string[] {
@@ -82,4 +83,7 @@ export function cautionTexts(
 }
 
 const nameOf = (id: string, knowledge: Knowledge): string =>
-  knowledge.agents.get(id)?.name ?? knowledge.buffers.get(id)?.name ?? knowledge.indicators.get(id)?.name ?? id;
+  knowledge.agents.get(id)?.name ??
+  knowledge.buffers.get(id)?.name ??
+  knowledge.indicators.get(id)?.name ??
+  (id === EXCHANGE ? EXCHANGE_REAGENT : id);

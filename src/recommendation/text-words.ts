@@ -56,7 +56,8 @@ export const FINDING_WORDS = {
 } as const;
 
 /** A reagent id as words: "xylenol-orange" -> "xylenol orange"; ions, chelates and abbreviations stay as they are ("Mg-EDTA", "PAN"). */
-export const reagentWords = (id: string): string => (/^[a-z0-9-]+$/.test(id) ? id.replaceAll("-", " ") : id);
+export const reagentWords = (id: string): string =>
+  /^[a-z0-9-]+$/.test(id) ? id.replaceAll("-", " ").replace(/ [a-z]$/, (letter) => letter.toUpperCase()) : id;
 
 /** A number at three significant figures, without an exponent where it reads well without one; "0" stays "0". */
 export function figures(value: number, digits = 3): string {
