@@ -30,4 +30,11 @@ export const TITRANT_ROWS: readonly Row[] = [
     "always",
     "chelate added over what is determined, by amount; 0 where there is none",
   ],
+  [
+    "chelateLead",
+    "number",
+    "log10",
+    "always",
+    "log K' of the metal of an added chelate minus that of what is determined; 0 without a chelate or where not known",
+  ],
 ];

@@ -70,6 +70,8 @@ function successive(
     const able = (found[order[0]!] ?? []).filter(
       (s) =>
         s.plan.backTitrant === null &&
+        // A chelate in bulk leaves its metal in the vessel.
+        s.plan.mode !== "displacement" &&
         // A way round changes the whole portion: nothing else is titrated in it after.
         s.plan.detour === null &&
         s.plan.removed.length === 0 &&

@@ -1,4 +1,4 @@
-import type { Knowledge } from "../constants/knowledge.ts";
+import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { declared, withoutFlocs } from "./alkali-masks.ts";
 import { bufferAmount } from "./buffers.ts";
 import { holdsForGood } from "./demask.ts";
@@ -93,7 +93,7 @@ function otherConditions(task: Task, skeleton: Skeleton, knowledge: Knowledge): 
 
 /** Works a titration out into the variants worth judging: masked in a few ways, or with the unmaskable separated. */
 export function develop(task: Task, start: BareStage, knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
-  const { plan, threats } = start;
+  const { threats } = start;
   const finished = (variants: readonly DevelopedStage[]): DevelopedStage[] =>
     variants.flatMap((v) => {
       const plans =
@@ -111,10 +111,15 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
   const anyClean = out.some((variant) => isClean(task, variant, knowledge));
   // Of the sets that did not work the best is kept, to show what was tried.
   const kept = anyClean ? out.filter((variant) => isClean(task, variant, knowledge)) : out.slice(0, 1);
+  const without = (removed: readonly ComponentId[]): BareStage => {
+    const bottom = start.skeleton.plan;
+    const cleared = { ...bottom, removed, preparation: ["separate", ...bottom.preparation] };
+    return bareStage(task, { ...start.skeleton, plan: cleared }, knowledge, shelf);
+  };
   const present = start.bare.presentMol / start.bare.model.volumeL;
   const bulk = threats.some((t) => t.molPerL > BULK_RATIO * present);
   if (!anyClean || bulk)
-    kept.push(...separations(task, plan, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
+    kept.push(...separations(task, without, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
   return finished(kept);
 }
 

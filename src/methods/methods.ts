@@ -201,6 +201,8 @@ export const dyeBreadth = (dye: string | undefined, knowledge: Knowledge): numbe
 const COST_OF_DETECTION = { visual: 0, photometric: 3, electrode: 4 } as const;
 /** A release reads twice and heats twice. */
 const RELEASE_COST = 6;
+/** A chelate in bulk is a third standard solution, whose balance counts. */
+const BULK_CHELATE_COST = 4;
 
 /** A stage's promise, smaller is better: bias and band against the requirement, what is left undone, steps. */
 export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledge): number {
@@ -217,6 +219,7 @@ export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledg
     plan.auxiliary.length * 2 +
     (plan.backTitrant ? 8 : 0) +
     (plan.release ? RELEASE_COST : 0) +
+    (plan.mode === "displacement" && plan.chelate ? BULK_CHELATE_COST : 0) +
     (plan.removed.length > 0 ? 25 : 0) +
     (plan.titrant.id === "EDTA" ? 0 : 5) +
     (stage.skeleton.use === "published" ? 0 : plan.backTitrant ? 4 : 12) +

@@ -11,7 +11,7 @@ type Combination = readonly DevelopedStage[];
 /** Combinations handed on to judgement. */
 const COMBINATIONS_KEPT = 8;
 /** How many of them are the i-th best of every group, so that different dyes and preparations are seen. */
-const SIDE_BY_SIDE = 4;
+const SIDE_BY_SIDE = 2;
 /** Titrations of one group that are paired with each of the others. */
 const PAIRED = 4;
 /** Groups beyond this are not paired in every way. */
@@ -56,13 +56,20 @@ export function portions(
   const methods = new Map<string, EvaluatedMethod>();
   for (const stages of [...sideBySide, ...others]) {
     if (methods.size >= COMBINATIONS_KEPT) break;
-    const id = `portions: ${stages.map(stageKey).join(" ; ")}`;
-    if (methods.has(id)) continue;
-    const results = stages.map((s) => resultOf(task, s, knowledge));
-    methods.set(id, { id, mode: "portions", stages, results, portions: stages.length });
+    const method = portionsMethod(task, stages, knowledge);
+    if (!methods.has(method.id)) methods.set(method.id, method);
   }
   return [...methods.values()];
 }
+
+/** A method of independent titrations, one portion each. */
+export const portionsMethod = (task: Task, stages: Combination, knowledge: Knowledge): EvaluatedMethod => ({
+  id: `portions: ${stages.map(stageKey).join(" ; ")}`,
+  mode: "portions",
+  stages,
+  results: stages.map((s) => resultOf(task, s, knowledge)),
+  portions: stages.length,
+});
 
 /** What a combination costs, smaller is better: each titration by itself, and once what they share. */
 function costTogether(task: Task, stages: Combination, knowledge: Knowledge): number {

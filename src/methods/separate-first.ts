@@ -1,12 +1,10 @@
-import type { Knowledge } from "../constants/knowledge.ts";
+import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { lyingAsHydroxide } from "./alkali-masks.ts";
-import { evaluate } from "./evaluate.ts";
 import { maskSets } from "./masks.ts";
-import { withExcess } from "./plan-excess.ts";
 import { settle, type Settled } from "./settle.ts";
 import type { Shelf } from "./shelf.ts";
 import { vesselSample } from "./solution.ts";
-import { threatsOf, type Threat } from "./threats.ts";
+import type { Threat } from "./threats.ts";
 import type { StagePlan, Task } from "./types.ts";
 
 /** A component above this ratio to the analyte may be better taken out than masked, even where a mask holds. */
@@ -29,10 +27,19 @@ export function flocsSeparated(task: Task, v: Settled, knowledge: Knowledge): St
   };
 }
 
-/** Variants in which what cannot be masked, or is determined by itself, is taken out first, the rest masked; and one in which everything is taken out. */
+/** A titration as it stands after a separation, before anything is masked. */
+interface Bare {
+  readonly plan: StagePlan;
+  readonly threats: readonly Threat[];
+}
+
+/**
+ * Variants in which what cannot be masked, or is determined by itself, is taken out first, the rest masked; and one in which everything is taken out.
+ * @param settledBare chooses the conditions afresh: what is gone no longer decides the pH
+ */
 export function separations(
   task: Task,
-  plan: StagePlan,
+  settledBare: (removed: readonly ComponentId[]) => Bare,
   threats: readonly Threat[],
   failed: readonly Threat[],
   knowledge: Knowledge,
@@ -54,9 +61,8 @@ export function separations(
     const key = removed.join();
     if (seen.has(key)) return [];
     seen.add(key);
-    const base = withExcess(task, { ...plan, removed, preparation: ["separate", ...plan.preparation] }, knowledge);
-    const left = threatsOf(task, evaluate(task, base, knowledge), knowledge);
-    const set = maskSets(left, base, knowledge, shelf)[0];
-    return set ? [settle(task, base, set, knowledge)] : [];
+    const { plan, threats: left } = settledBare(removed);
+    const set = maskSets(left, plan, knowledge, shelf)[0];
+    return set ? [settle(task, plan, set, knowledge)] : [];
   });
 }

@@ -100,6 +100,18 @@ function chelateOf(
   return { metal: `${metal}2+`, ligand, molPerL: Number(molPerL.toPrecision(1)) };
 }
 
+/** Chelate over the analyte, by amount, where the analyte is to set its metal free: a fifth more than it can take (common practice). */
+const CHELATE_IN_BULK = 1.2;
+
+/** The same titration with the chelate in bulk: the analyte takes the titrant from it, and the end point is that of the chelate's metal. */
+function displacing({ task, determines }: Make, plan: StagePlan): StagePlan {
+  const analyteMolPerL = vesselSample(task)
+    .filter((c) => determines.includes(c.component))
+    .reduce((sum, c) => sum + c.inVesselMolPerL, 0);
+  const molPerL = Number((CHELATE_IN_BULK * analyteMolPerL).toPrecision(2));
+  return { ...plan, mode: "displacement", chelate: plan.chelate && { ...plan.chelate, molPerL } };
+}
+
 /** Whether a step asks for what the laboratory cannot or will not give: heat, a chelate, alcohol. */
 export const forbidden = (task: Task, preparation: readonly string[]): boolean =>
   preparation.some((p) => !stepAllowed(task, p)) ||
@@ -141,13 +153,14 @@ export function directSkeletons(make: Make): Skeleton[] {
             const agent = use.auxiliaryAnyOf.find((a) => shelf(a) && knowledge.agents.has(a));
             if (agent) plan = withAuxiliary(plan, knowledge, agent, `asked for by the use of ${indicator.name}`);
           }
-          out.push({
-            plan,
+          const standing = {
             use: standingOf(use),
             useBasis: basis,
             useConfidence: use.provenance.confidence,
             window,
-          });
+          };
+          out.push({ plan, ...standing });
+          if (use.chelate && use.chelate !== "Cu-EDTA") out.push({ plan: displacing(make, plan), ...standing });
         }
       }
     }

@@ -23,6 +23,8 @@ const READING_ML = 0.01;
 const TEMPERATURE_RELATIVE = (3 * 2.0e-4) / RECTANGULAR;
 /** Titrant strength: purity of the standard and its own titration in triplicate, standard uncertainty, relative. */
 const TITRANT_STRENGTH_RELATIVE = 1.0e-3;
+/** How well metal and ligand of a prepared chelate are balanced, as limits, relative to its amount (common practice: tested with the dye). */
+const CHELATE_BALANCE_RELATIVE = 1.0e-3;
 /** Smallest end-point uncertainty by eye: half a drop of 0.03 mL, rectangular. */
 const DROP_ML = 0.03;
 /** Relative standard uncertainty of an excess pipetted by a class A pipette of 25 mL (0.03 mL). */
@@ -74,6 +76,9 @@ export function stageBudget(task: Task, evaluation: StageEvaluation, knowledge: 
   add("blank", DROP_ML / 2 / RECTANGULAR / resultML);
   // The observer does not stop at quite the same tint twice: a tenth of what cancels stays as uncertainty.
   add("standardised alike", 0.1 * Math.abs(evaluation.uncancelledBiasFraction - evaluation.biasFraction));
+  // A surplus of either partner of the chelate goes whole into the titre.
+  const chelateMol = (plan.chelate?.molPerL ?? 0) * evaluation.model.volumeL;
+  add("balance of the chelate", (CHELATE_BALANCE_RELATIVE / RECTANGULAR) * (chelateMol / metalMol));
   const { way } = evaluation.model.solution;
   if (way?.record.kind === "surplus" && detour) {
     // The reagent is measured by its own titration: the same burette and eye once more, and a pipette.

@@ -3,7 +3,7 @@ import type { DevelopedStage } from "../methods/develop.ts";
 import type { ToleranceLimit } from "../methods/tolerance.ts";
 import { vesselSample } from "../methods/solution.ts";
 import { separationsOf, type Separation } from "../methods/separation.ts";
-import type { Task } from "../methods/types.ts";
+import type { StagePlan, Task } from "../methods/types.ts";
 import { amountsOf } from "./bench-amounts.ts";
 import type { Because, RecommendedMethod, StageDocument } from "./contract.ts";
 import type { JudgedMethod, Verdict } from "./judge.ts";
@@ -61,6 +61,12 @@ export function colourChangeOf(stage: DevelopedStage): readonly [string, string]
   return stage.plan.backTitrant ? [free, bound] : [bound, free];
 }
 
+/** What a chelate is added for. */
+function chelatePurpose({ mode, electrode }: StagePlan): string {
+  if (mode === "displacement") return "gives up its metal to the analyte, in bulk";
+  return electrode === null ? "lends the indicator its metal" : "lends the electrode its ion";
+}
+
 function stageDocument(task: Task, method: JudgedMethod, index: number, knowledge: Knowledge): StageDocument {
   const { stages } = method.method;
   const stage = stages[index]!;
@@ -79,7 +85,7 @@ function stageDocument(task: Task, method: JudgedMethod, index: number, knowledg
           {
             id: `${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}`,
             molPerL: plan.chelate.molPerL,
-            purpose: plan.electrode === null ? "lends the indicator its metal" : "lends the electrode its ion",
+            purpose: chelatePurpose(plan),
           },
         ]
       : []),

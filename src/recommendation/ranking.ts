@@ -3,6 +3,7 @@ import type { RuleRunner } from "../inference/index.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
 import { roughCost, seenWith, singleMethod, type EvaluatedMethod } from "../methods/methods.ts";
 import { bearsRicherMatrix } from "../methods/tolerance.ts";
+import { portionsMethod } from "../methods/portions.ts";
 import type { Task } from "../methods/types.ts";
 import { centred, workingRange, type WorkingRange } from "../methods/working-range.ts";
 import type { MethodUnderJudgement } from "./facts.ts";
@@ -78,16 +79,22 @@ function shortlist(task: Task, methods: readonly EvaluatedMethod[], knowledge: K
 export function ranged(task: Task, method: EvaluatedMethod, knowledge: Knowledge): MethodUnderJudgement {
   const ranges: WorkingRange[] = [];
   const stages: DevelopedStage[] = [];
+  const independent = method.stages.length === 1 || method.mode === "portions";
   for (const stage of method.stages) {
     const range = workingRange(task, stage, knowledge);
-    const moved = method.stages.length === 1 ? centred(task, stage, range, knowledge) : stage;
+    // What follows in the same vessel, or is subtracted, hangs on how it was: only independent titrations are moved.
+    const moved = independent ? centred(task, stage, range, knowledge) : stage;
     stages.push(moved);
     ranges.push(
       moved === stage ? range : { low: Math.min(range.low, moved.plan.pH), high: Math.max(range.high, moved.plan.pH) },
     );
   }
   const same = stages.every((s, i) => s === method.stages[i]);
-  const moved = same ? method : stages.length === 1 ? singleMethod(task, stages[0]!, knowledge) : method;
+  const moved = same
+    ? method
+    : method.mode === "portions"
+      ? portionsMethod(task, stages, knowledge)
+      : singleMethod(task, stages[0]!, knowledge);
   return { method: moved, ranges, bearsRicherMatrix: bearsRicherMatrix(task, moved, knowledge) };
 }
 

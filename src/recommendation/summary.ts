@@ -32,7 +32,7 @@ function seenBy(plan: StagePlan, knowledge: Knowledge): string {
   const dye = plan.indicator && (knowledge.indicators.get(plan.indicator.id)?.name ?? plan.indicator.id);
   const chelate =
     plan.chelate && plan.indicator?.id !== "Cu-PAN"
-      ? ` with a little ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}`
+      ? ` with ${plan.mode === "displacement" ? "an excess of" : "a little"} ${plan.chelate.metal.replace(/\d?\+$/, "")}-${plan.chelate.ligand}`
       : "";
   if (plan.detection === "photometric")
     return dye ? `${dye}${chelate}, read with a photometer` : "the break of its own absorbance, read with a photometer";

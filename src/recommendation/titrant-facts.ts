@@ -29,7 +29,16 @@ export function titrantFacts(
     toldApart: apart,
     toldApartCount: apart.length,
     chelateToAnalyteRatio: plan.chelate && analyteMolPerL > 0 ? plan.chelate.molPerL / analyteMolPerL : 0,
+    chelateLead: chelateLead(stage),
   };
+}
+
+/** By how much the titrant holds the metal of the chelate firmer than the analyte: the end point in bulk is that much surer. */
+function chelateLead({ plan, evaluation }: DevelopedStage): number {
+  const ofChelate = evaluation.log10ConditionalK.get(plan.chelate?.metal ?? "");
+  const own = countedIn(plan).map((ion) => evaluation.log10ConditionalK.get(ion) ?? Number.NaN);
+  const lead = (ofChelate ?? Number.NaN) - Math.min(...own);
+  return Number.isFinite(lead) ? lead : 0;
 }
 
 function sparesHeat({ plan }: DevelopedStage, knowledge: Knowledge): boolean {
