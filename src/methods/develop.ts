@@ -112,6 +112,8 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
   // Of the sets that did not work the best is kept, to show what was tried.
   const kept = anyClean ? out.filter((variant) => isClean(task, variant, knowledge)) : out.slice(0, 1);
   const without = (removed: readonly ComponentId[]): BareStage => {
+    // A single titration keeps its conditions: they are moved within its working range when it is judged.
+    if (task.analytes.length === 1) return removing(task, start, removed, knowledge);
     const bottom = start.skeleton.plan;
     const cleared = { ...bottom, removed, preparation: ["separate", ...bottom.preparation] };
     return bareStage(task, { ...start.skeleton, plan: cleared }, knowledge, shelf);
@@ -121,6 +123,14 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
   if (!anyClean || bulk)
     kept.push(...separations(task, without, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
   return finished(kept);
+}
+
+/** The same titration after a separation, at the conditions it has. */
+function removing(task: Task, start: BareStage, removed: readonly ComponentId[], knowledge: Knowledge): BareStage {
+  const cleared = { ...start.plan, removed, preparation: ["separate", ...start.plan.preparation] };
+  const plan = withExcess(task, cleared, knowledge);
+  const bare = evaluate(task, plan, knowledge);
+  return { ...start, plan, bare, threats: threatsOf(task, bare, knowledge) };
 }
 
 const isClean = (task: Task, v: DevelopedStage, knowledge: Knowledge): boolean =>

@@ -35,7 +35,7 @@ interface Bare {
 
 /**
  * Variants in which what cannot be masked, or is determined by itself, is taken out first, the rest masked; and one in which everything is taken out.
- * @param settledBare chooses the conditions afresh: what is gone no longer decides the pH
+ * @param settledBare the titration with these ions gone, before anything is masked
  */
 export function separations(
   task: Task,
