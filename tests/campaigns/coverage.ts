@@ -70,7 +70,7 @@ type Kind = "decides" | "only says" | "weighs only" | "unseen" | "idle";
 /** What a rule does at all: decides something, is shown without deciding, weighs without ever tipping, fires on what nobody sees, nothing. */
 function kindOf(rule: Rule, counts: EffectCounts | undefined): Kind {
   if (counts === undefined || counts.fired === 0) return "idle";
-  if (counts.first + counts.order + counts.rejected + counts.verdict > 0) return "decides";
+  if (counts.first + counts.order + counts.rejected + counts.reasons + counts.verdict > 0) return "decides";
   if (counts.shown === 0) return "unseen";
   return rule.effect === "cautions" ? "only says" : "weighs only";
 }

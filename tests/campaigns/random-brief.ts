@@ -14,6 +14,8 @@ interface SampleKind {
   readonly matrix: Readonly<Record<string, LevelRange>>;
   readonly portions: readonly (readonly [volumeML: number, titrationVolumeML: number])[];
   readonly percent: readonly [number, number];
+  /** What this laboratory always is like, whatever else is drawn. */
+  readonly laboratory?: NonNullable<LooseBrief["laboratory"]>;
 }
 
 /** Every kind of sample; one record a line in `sample-kinds.json`. */
@@ -98,7 +100,7 @@ export function randomBrief(seed: number, index: number): LooseBrief {
     matrix.push({ component: trace, concentration: row(trace, TRACE_RANGE) });
   }
   const [volumeML, titrationVolumeML] = oneOf(random, kind.portions);
-  const laboratory = laboratoryOf(random);
+  const laboratory = { ...laboratoryOf(random), ...kind.laboratory };
   const elsewhere = random.uniform() < 0.08 ? { temperatureC: 5 + 5 * random.integerBelow(8) } : {};
   return {
     title: `Invented: ${kind.what} (${kind.family}, ${index} of seed ${seed})`,

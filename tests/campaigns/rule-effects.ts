@@ -7,8 +7,11 @@ import { readBrief } from "../../src/recommendation/brief.ts";
 import { judge, type JudgedMethod, weighed } from "../../src/recommendation/judge.ts";
 import { judgedMethods, ranged, type Ranking, ranking } from "../../src/recommendation/ranking.ts";
 
+/** How many rejected methods an answer shows. */
+const REJECTED_SHOWN = 16;
+
 /** What a rule did for a brief, each 0 or 1; from "first" on: what changes when the rule is taken away. */
-export const EFFECTS = ["fired", "shown", "first", "order", "rejected", "verdict"] as const;
+export const EFFECTS = ["fired", "shown", "first", "order", "rejected", "reasons", "verdict"] as const;
 export type EffectCounts = Readonly<Record<(typeof EFFECTS)[number], number>>;
 /** By rule id; rules that did not fire are left out. */
 export type RuleEffects = Readonly<Record<string, EffectCounts>>;
@@ -60,6 +63,13 @@ function differences(a: Ranking, b: Ranking): Omit<EffectCounts, "fired" | "show
         .filter(({ excludedBy }) => excludedBy.length > 0)
         .map(({ method }) => method.id)
         .sort(),
+    ),
+    // The reasons that an answer gives for what it rejected.
+    reasons: differ(({ judged }) =>
+      judged
+        .filter(({ excludedBy }) => excludedBy.length > 0)
+        .slice(0, REJECTED_SHOWN)
+        .map(({ method, excludedBy }) => [method.id, ...excludedBy.map(({ finding }) => finding.rule)]),
     ),
     verdict: differ(({ shown }) => shown[0] && [shown[0].meets, shown[0].reservations.length > 0]),
   };
