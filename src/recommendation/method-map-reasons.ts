@@ -111,7 +111,7 @@ const WHY_NO_END_POINT: Readonly<Record<string, string>> = {
 };
 
 /** What a rule says when the calculation gave nothing; the evaluation's own word is more exact. */
-const NO_FIGURE = ["precision/not-computed", "precision/solution-not-computed"];
+const NO_FIGURE = ["precision/not-computed"];
 
 function againstNearest(task: Task, nearest: JudgedMethod): MapReason[] {
   const why = nearest.method.stages.map((s) => s.evaluation.why).find((w) => w !== null);
