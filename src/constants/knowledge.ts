@@ -524,6 +524,8 @@ export interface SeparationRecord {
   readonly takesAlong: readonly ComponentId[];
   readonly kind: "extraction" | "ion exchange" | "precipitation" | "electrolysis" | "volatilisation" | "destruction";
   readonly step: string;
+  /** Reagents or products of the step whose cautions must be shown with it, by reagent id. */
+  readonly hazards: readonly string[];
   readonly provenance: Provenance;
 }
 

@@ -208,6 +208,7 @@ export const separationSchema = z.strictObject({
   takesAlong: z.array(text),
   kind: z.enum(["extraction", "ion exchange", "precipitation", "electrolysis", "volatilisation", "destruction"]),
   step: text,
+  hazards: z.array(text),
   provenance: provenanceSchema,
 });
 

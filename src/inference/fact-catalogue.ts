@@ -176,6 +176,7 @@ const STAGE_FACTS = facts("stage", "solutionStatus", [
   ["maskAgents", "strings", null, "always", "ids of the masking agents"],
   ["preparation", "strings", null, "always", "ids of the preparation steps"],
   ["reductants", "strings", null, "always", "ids of the reducing agents"],
+  ["reducedByIodide", "boolean", null, "always", "iodide stands against a metal that sets iodine free from it"],
   ["temperatureRegime", "string", null, "always", "cold, ambient, warm or hot"],
   [
     "backTitrantStealsFraction",

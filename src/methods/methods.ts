@@ -224,6 +224,7 @@ export function roughCost(task: Task, stage: DevelopedStage, knowledge: Knowledg
     (plan.titrant.id === "EDTA" ? 0 : 5) +
     (stage.skeleton.use === "published" ? 0 : plan.backTitrant ? 4 : 12) +
     (evaluation.basis === "empirical" ? 5 : 0) +
+    (evaluation.status === "outOfModelRange" ? 5 : 0) +
     (plan.indicator && dyeBreadth(plan.indicator.id, knowledge) < COMMON_DYE_IONS ? 4 : 0) +
     COST_OF_DETECTION[plan.detection] +
     (plan.preparation.includes("boil") || plan.preparation.includes("heat") ? 3 : 0);

@@ -10,6 +10,9 @@ import type { StagePlan, Task } from "./types.ts";
 /** A component above this ratio to the analyte may be better taken out than masked, even where a mask holds. */
 export const BULK_RATIO = 0.5;
 
+/** Sets of masks tried on what a separation leaves: two, for equal burdens say little of the chemistry. */
+const SETS_AFTER_SEPARATION = 2;
+
 /** The same direct titration after metals that would lie in it as hydroxides in bulk have been taken out; null where none do. */
 export function flocsSeparated(task: Task, v: Settled, knowledge: Knowledge): StagePlan | null {
   if (v.plan.backTitrant !== null) return null;
@@ -62,7 +65,8 @@ export function separations(
     if (seen.has(key)) return [];
     seen.add(key);
     const { plan, threats: left } = settledBare(removed);
-    const set = maskSets(left, plan, knowledge, shelf)[0];
-    return set ? [settle(task, plan, set, knowledge)] : [];
+    return maskSets(left, plan, knowledge, shelf)
+      .slice(0, SETS_AFTER_SEPARATION)
+      .map((set) => settle(task, plan, set, knowledge));
   });
 }

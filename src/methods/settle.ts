@@ -72,6 +72,8 @@ function reportedToHold(threat: Threat, plan: StagePlan, knowledge: Knowledge): 
           r.agent === step.agent &&
           r.ion === threat.component &&
           (r.effect === "masks" || r.effect === "partial") &&
+          // Against constants a level must have been read; one that is recalled does not outweigh them.
+          [r.provenance, ...r.otherSources].some((p) => p.basis === "read") &&
           r.upToMolPerL !== null &&
           threat.molPerL <= r.upToMolPerL,
       ),

@@ -255,7 +255,15 @@ export function methodDocument(
     precedents: precedentsOf(method, knowledge),
     cautions: cautionTexts(
       method.stages.map((s) => s.plan),
-      sampleReagents(task, knowledge),
+      [
+        ...sampleReagents(task, knowledge),
+        ...separationsOf(
+          method.stages.map((s) => s.plan),
+          knowledge,
+        )
+          .flatMap(({ steps }) => steps)
+          .flatMap((step) => step.record.hazards),
+      ],
       knowledge,
     ),
   };

@@ -81,10 +81,17 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
     detections: [...new Set(stages.map((s) => s.plan.detection))],
     buffers: [...new Set(stages.map((s) => s.plan.buffer.id))],
     reagents,
-    hazards: hazardTagsOf(
-      stages.map((s) => s.plan),
-      knowledge,
-    ),
+    hazards: [
+      ...new Set([
+        ...hazardTagsOf(
+          stages.map((s) => s.plan),
+          knowledge,
+        ),
+        ...separations
+          .flatMap((s) => s.steps.flatMap((step) => step.record.hazards))
+          .flatMap((id) => knowledge.reagents.get(id)?.hazardTags ?? []),
+      ]),
+    ],
     reagentCount: new Set([
       ...masking.filter((m) => m.agent !== "hydroxide").map((m) => m.agent),
       ...stages.flatMap((s) => [
@@ -224,6 +231,9 @@ export function stageFacts(
     auxiliaries: plan.auxiliary.map((a) => a.id),
     maskAgents: [...new Set(plan.masking.map((m) => m.agent))],
     preparation: plan.preparation,
+    reducedByIodide: plan.masking.some(
+      (m) => m.agent === "iodide" && m.masks.some((ion) => ion === "Cu2+" || ion === "Fe3+" || ion === "Tl3+"),
+    ),
     reductants: [...new Set(plan.masking.filter((m) => m.via === "reduction").map((m) => m.agent))],
     temperatureRegime: regimeOf(task, stage),
     backTitrantStealsFraction: ok && plan.backTitrant ? evaluation.backTitrantStealsFraction : null,
