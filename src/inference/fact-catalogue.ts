@@ -56,6 +56,7 @@ const METHOD_FACTS = facts("method", "evaluationStatus", [
   ["boils", "boolean", null, "always", "some step is done at the boil"],
   ["separates", "boolean", null, "always", "something is removed before the titration"],
   ["separationStepCount", "number", null, "always", "separation steps on record that the method needs"],
+  ["separationHazards", "strings", null, "always", "hazardous reagents or products of the separation"],
   ["separationUnknown", "strings", null, "always", "ions to be removed that no step on record parts from the analyte"],
   ["separationUnknownCount", "number", null, "always", "how many those are"],
   ["preparation", "strings", null, "always", "ids of the preparation steps of all stages"],

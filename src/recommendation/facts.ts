@@ -105,6 +105,7 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
     heats: stages.some(heats),
     boils: stages.some((s) => has(s, "boil")),
     separates: stages.some((s) => s.plan.removed.length > 0),
+    separationHazards: [...new Set(separations.flatMap((s) => s.steps.flatMap((step) => step.record.hazards)))],
     separationStepCount: new Set(separations.flatMap((s) => s.steps.map((step) => step.record.id))).size,
     separationUnknownCount: new Set(separations.flatMap((s) => s.unknown)).size,
     separationUnknown: [...new Set(separations.flatMap((s) => s.unknown))],
