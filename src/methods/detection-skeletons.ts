@@ -26,11 +26,18 @@ export function skeletonsOf(make: Make): Skeleton[] {
 }
 
 /** Whether the sample holds a metal beside those determined that a complexone could bind. */
-export const besideOthers = ({ task, knowledge, determines }: Make): boolean =>
-  [...task.analytes, ...task.matrix].some(({ component }) => {
+export function besideOthers({ task, knowledge, determines }: Make): boolean {
+  const rows = [...task.analytes, ...task.matrix];
+  const own = rows.filter(({ component }) => determines.includes(component)).reduce((sum, row) => sum + row.molPerL, 0);
+  return rows.some(({ component, molPerL }) => {
     const record = knowledge.components.get(component);
-    return record?.kind === "metal" && record.charge > 1 && !determines.includes(component);
+    const binds = record?.kind === "metal" && record.charge > 1;
+    return binds && !determines.includes(component) && molPerL > LEAST_COMPANY * own;
   });
+}
+
+/** Part of the analyte below which another metal is as good as absent. */
+const LEAST_COMPANY = 1e-5;
 
 /** The titrations with a dye, read with a photometer: for dyes whose colour can be calculated, with less of the dye. */
 function photometricSkeletons({ knowledge }: Make, withDye: readonly Skeleton[]): Skeleton[] {
