@@ -46,9 +46,14 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
       .map((agent) => knowledge.agents.get(agent)?.component)
       .filter((c): c is ComponentId => c !== null && c !== undefined),
   );
-  const published = new Set(
-    indicator.uses
-      .filter((u) => u.mode === "direct" && plan.pH >= u.pH[0] - 0.05 && plan.pH <= u.pH[1] + 0.05)
+  const here = indicator.uses.filter(
+    (u) => u.mode === "direct" && plan.pH >= u.pH[0] - 0.05 && plan.pH <= u.pH[1] + 0.05,
+  );
+  const published = new Set(here.flatMap((u) => u.ions));
+  // In use for it cold and with nothing added: the titrant takes it from the dye, whatever else is determined.
+  const answering = new Set(
+    here
+      .filter((u) => u.temperature === undefined && u.auxiliaryAnyOf === undefined && u.provenance.confidence !== "low")
       .flatMap((u) => u.ions),
   );
   // What an earlier titration has bound is the titrant's again with the first drop: its remainder does not block.
@@ -65,6 +70,7 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
     if (level === null) return false;
     // A dye that is in use for the very metal at this pH is not blocked by it (hot, or with a catalyst: its use says so).
     if (countedIn(plan).includes(metal) && published.has(metal)) return false;
+    if (answering.has(metal)) return false;
     const unmasked = model.system.species.reduce((sum, species, row) => {
       const n = species.components[metal] ?? 0;
       if (n <= 0 || (species.components[plan.titrant.id] ?? 0) > 0) return sum;
