@@ -120,6 +120,7 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
   };
   const present = start.bare.presentMol / start.bare.model.volumeL;
   const bulk = threats.some((t) => t.molPerL > BULK_RATIO * present);
+  if (!anyClean && countedWhole(task, start, knowledge)) kept.push({ ...start, evaluation: start.bare, remaining: [] });
   if (!anyClean || bulk)
     kept.push(...separations(task, without, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
   return finished(kept);
@@ -132,6 +133,21 @@ function removing(task: Task, start: BareStage, removed: readonly ComponentId[],
   const bare = evaluate(task, plan, knowledge);
   return { ...start, plan, bare, threats: threatsOf(task, bare, knowledge) };
 }
+
+/** What no mask holds may be titrated along where it neither minds the dye nor breaks the requirement: its bias stands in the result. */
+const countedWhole = (task: Task, { bare, threats }: BareStage, knowledge: Knowledge): boolean => {
+  const ofRequirement = (t: Threat): number => (100 * t.biasFraction) / task.requirementPercent;
+  return (
+    bare.status !== "failed" &&
+    bare.blockedBy.length === 0 &&
+    threats.every((t) => t.titrates && !t.blocks && ofRequirement(t) > WHOLE_PART_OF_REQUIREMENT) &&
+    threats.reduce((sum, t) => sum + ofRequirement(t), 0) < 1 &&
+    100 * stageBudget(task, bare, knowledge).expanded <= task.requirementPercent
+  );
+};
+
+/** A threat by less than this part of the requirement is one for another reason (it lies as flocs). */
+const WHOLE_PART_OF_REQUIREMENT = 0.12;
 
 const isClean = (task: Task, v: DevelopedStage, knowledge: Knowledge): boolean =>
   v.remaining.length === 0 &&

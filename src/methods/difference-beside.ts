@@ -9,7 +9,7 @@ import { combineDifference } from "./uncertainty.ts";
 /** Below this part of the analyte a metal is a trace to be masked, not a partner to be titrated for itself. */
 const PARTNER_RATIO = 0.05;
 /** How many metals of the matrix are looked at as the partner. */
-const PARTNERS_TRIED = 2;
+const PARTNERS_TRIED = 1;
 /** A titration is hardly better than this, % of its titre: what of it a difference multiplies tells whether the requirement is out of reach. */
 const LEAST_PERCENT = 0.25;
 /** How many sums and how many titrations of the partner are combined. */

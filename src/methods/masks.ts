@@ -208,7 +208,11 @@ function setBurden(combination: readonly MaskOption[], knowledge: Knowledge): nu
   const agents = new Map(combination.map((o) => [o.agent.id, o.agent]));
   let burden = 0;
   for (const agent of agents.values()) burden += burdenOf(agent, knowledge);
-  for (const option of combination) if (option.record.effect === "partial") burden += 4;
+  for (const option of combination) {
+    if (option.record.effect === "partial") burden += 4;
+    // Of equals the one that more sources know comes first.
+    burden += 1 / (1 + option.record.otherSources.length);
+  }
   return burden;
 }
 
