@@ -45,7 +45,8 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
       const held =
         knowledge.components.get(component)?.kind === "ligand" &&
         (turns(plan, component, knowledge) ||
-          (holds(evaluation, component, knowledge) && !(meets && boundAllTheSame(evaluation))));
+          (holds(evaluation, component, knowledge) &&
+            (masks(plan, component, knowledge) || !(meets && boundAllTheSame(evaluation)))));
       if (held)
         threats.push({
           component,
@@ -178,6 +179,17 @@ export const turns = (plan: StagePlan, ligand: ComponentId, knowledge: Knowledge
   [...knowledge.agents.values()].some(
     (agent) =>
       agent.component === ligand && agent.converts.some((c) => c.unaided === true && plan.determines.includes(c.from)),
+  );
+
+/** Whether practice uses the ligand to keep what is determined from the titrant. */
+const masks = (plan: StagePlan, ligand: ComponentId, knowledge: Knowledge): boolean =>
+  knowledge.masking.some(
+    (r) =>
+      r.effect === "masks" &&
+      plan.determines.includes(r.ion) &&
+      plan.pH >= r.pH[0] &&
+      plan.pH <= r.pH[1] &&
+      knowledge.agents.get(r.agent)?.component === ligand,
   );
 
 const boundAllTheSame = ({ model, log10ConditionalK }: StageEvaluation): boolean =>
