@@ -1,4 +1,5 @@
 import type { ComponentId, IndicatorBlocker, IndicatorRecord, Knowledge } from "../constants/knowledge.ts";
+import { lyingAsHydroxideMolPerL } from "./hydroxide-lying.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
 import { countedIn } from "./types.ts";
 
@@ -58,12 +59,6 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
   );
   // What an earlier titration has bound is the titrant's again with the first drop: its remainder does not block.
   const carried = new Set(plan.carried?.metals ?? []);
-  // Only hydroxides: what a mask has thrown down (a sulfide, a fluoride) is masked.
-  const hydroxides = new Set(
-    knowledge.solids
-      .filter((s) => (s.components["H+"] ?? 0) < 0 && Object.keys(s.components).length === 2)
-      .map((s) => s.id),
-  );
   return model.metals.filter((metal) => {
     if (carried.has(metal)) return false;
     const level = blockingLevel(indicator, metal, plan.pH, plan.indicator!.molPerL);
@@ -79,15 +74,8 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
         : sum + n * start.result.speciesMolPerL[row]!;
     }, 0);
     // A hydroxide that nobody asked for blocks like the ion it came from: hydrolysed iron(III) still takes the dye.
-    const hydrolysed = model.held
-      .filter((h) => h.component === metal && h.why === "precipitated" && hydroxides.has(h.by))
-      .reduce((sum, h) => sum + h.molPerL, 0);
-    const deposited = model.system.solids.reduce(
-      (sum, solid, i) =>
-        sum + (hydroxides.has(solid.id) ? (solid.components[metal] ?? 0) * (start.result.solidsMolPerL[i] ?? 0) : 0),
-      0,
-    );
-    const lying = hydrolysed + deposited;
+    // What a mask has thrown down (a sulfide, a fluoride) is masked.
+    const lying = lyingAsHydroxideMolPerL(model, start, metal, knowledge);
     const borne =
       plan.pH < ALKALI_MASKS_FROM_PH
         ? 0

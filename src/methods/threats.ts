@@ -1,5 +1,6 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
+import { lyingAsHydroxideMolPerL } from "./hydroxide-lying.ts";
 import { vesselSample } from "./solution.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
 import { countedIn, type StagePlan, type Task } from "./types.ts";
@@ -96,20 +97,7 @@ function liesAsFlocs(
   const { plan } = model;
   if (plan.backTitrant !== null || plan.pH >= ALKALI_FROM_PH || metal === "Mg2+") return false;
   if (!(inVesselMolPerL > FLOCS_RATIO * analyteMolPerL)) return false;
-  const hydroxide = (id: string): boolean =>
-    knowledge.solids.some(
-      (s) => s.id === id && (s.components["H+"] ?? 0) < 0 && Object.keys(s.components).length === 2,
-    );
-  const held = model.held
-    .filter((h) => h.component === metal && h.why === "precipitated" && hydroxide(h.by))
-    .reduce((sum, h) => sum + h.molPerL, 0);
-  const start = model.at(0);
-  const deposited = model.system.solids.reduce(
-    (sum, solid, i) =>
-      sum + (hydroxide(solid.id) ? (solid.components[metal] ?? 0) * (start.result.solidsMolPerL[i] ?? 0) : 0),
-    0,
-  );
-  return held + deposited > 0.5 * inVesselMolPerL;
+  return lyingAsHydroxideMolPerL(model, model.at(0), metal, knowledge) > 0.5 * inVesselMolPerL;
 }
 
 /** Metals with which EDTA has a constant: what another titrant lacks a constant for among them is a gap, not an absence. */
