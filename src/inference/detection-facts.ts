@@ -1,13 +1,7 @@
-type Row = readonly [
-  name: string,
-  type: "number" | "string" | "boolean" | "strings",
-  unit: string | null,
-  optional: "always" | "may be absent",
-  meaning: string,
-];
+import type { FactRow } from "./types.ts";
 
 /** What an electrode shows of a titration; the numbers exist where electrodeStatus is "read". */
-export const ELECTRODE_ROWS: readonly Row[] = [
+export const ELECTRODE_ROWS: readonly FactRow[] = [
   ["electrode", "string", null, "always", 'id of the electrode, "none" where there is none'],
   ["electrodeName", "string", null, "always", "the electrode in words"],
   ["electrodeStatus", "string", null, "always", "read where a potential curve was computed, else none"],
@@ -67,7 +61,7 @@ export const ELECTRODE_ROWS: readonly Row[] = [
 ];
 
 /** What a photometer shows of a titration; the numbers exist where photometerStatus is "read". */
-export const PHOTOMETER_ROWS: readonly Row[] = [
+export const PHOTOMETER_ROWS: readonly FactRow[] = [
   ["photometerStatus", "string", null, "always", "read where the break of an absorbance was computed, else none"],
   [
     "wavelengths",

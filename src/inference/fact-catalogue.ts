@@ -1,23 +1,11 @@
 import { ELECTRODE_ROWS, END_POINT_FAULTS, PHOTOMETER_ROWS } from "./detection-facts.ts";
 import { TITRANT_ROWS } from "./titrant-facts.ts";
-import type { FactDefinition, RuleScope } from "./types.ts";
+import type { FactDefinition, FactRow, RuleScope } from "./types.ts";
 
 // Known from the record of the masking, not from the solved solution.
 const EMPIRICAL: readonly string[] = ["empiricalLimitMolPerL", "ratioToEmpiricalLimit"];
 
-type FactType = FactDefinition["type"];
-
-function facts(
-  scope: RuleScope,
-  guard: string,
-  rows: readonly (readonly [
-    name: string,
-    type: FactType,
-    unit: string | null,
-    optional: "always" | "may be absent",
-    meaning: string,
-  ])[],
-): readonly FactDefinition[] {
+function facts(scope: RuleScope, guard: string, rows: readonly FactRow[]): readonly FactDefinition[] {
   return rows.map(([name, type, unit, presence, meaning]) => {
     const optional = presence === "may be absent";
     return { name, scope, type, unit, meaning, optional, guard: optional ? guard : null };

@@ -1,13 +1,7 @@
-type Row = readonly [
-  name: string,
-  type: "number" | "string" | "boolean" | "strings",
-  unit: string | null,
-  optional: "always" | "may be absent",
-  meaning: string,
-];
+import type { FactRow } from "./types.ts";
 
 /** What a titrant other than EDTA solves, and how much of a chelate is added; stage facts. */
-export const TITRANT_ROWS: readonly Row[] = [
+export const TITRANT_ROWS: readonly FactRow[] = [
   [
     "sparesHeat",
     "boolean",

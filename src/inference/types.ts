@@ -17,6 +17,15 @@ export interface FactDefinition {
   readonly guard: string | null;
 }
 
+/** A fact as a line of the catalogue: name, type, unit, whether it may be absent, meaning. */
+export type FactRow = readonly [
+  name: string,
+  type: FactDefinition["type"],
+  unit: string | null,
+  presence: "always" | "may be absent",
+  meaning: string,
+];
+
 /** A rule that fired, or a decisive near miss, with the values it saw. */
 export interface RuleFinding {
   readonly rule: string;
