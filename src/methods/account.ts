@@ -22,6 +22,31 @@ export interface StageAccount {
   readonly backTitrantStealsFraction: number;
 }
 
+/** The account of a titration that gave nothing. */
+export const NO_ACCOUNT: StageAccount = {
+  foundMol: 0,
+  biasFraction: 0,
+  uncancelledBiasFraction: 0,
+  ledger: [],
+  titrated: new Map(),
+  biasOf: new Map(),
+  backTitrantStealsFraction: 0,
+};
+
+/** Below this part of the result a cause is not worth a line. */
+const LEAST_LINE = 1e-7;
+
+/** Closes an account: what was found against what is present, and the lines that say something. */
+export const closed = (
+  presentMol: number,
+  account: Omit<StageAccount, "biasFraction" | "uncancelledBiasFraction">,
+): StageAccount => ({
+  ...account,
+  biasFraction: (account.foundMol - presentMol) / presentMol,
+  uncancelledBiasFraction: (account.foundMol - presentMol) / presentMol,
+  ledger: account.ledger.filter((line) => Math.abs(line.fraction) > LEAST_LINE),
+});
+
 /** Where the titre went: an exact balance of the titrant at the end point, line by line. */
 export function accountOf(
   task: Task,
@@ -91,13 +116,11 @@ export function accountOf(
   endPoint += analyteMissing;
   ledger.unshift({ source: "end-point", fraction: endPoint / presentMol });
   const analyteUnbound = [...determined].reduce((s, m) => s + end.unbound(m), 0) * vessel;
-  return {
+  return closed(presentMol, {
     foundMol,
-    biasFraction: (foundMol - presentMol) / presentMol,
-    uncancelledBiasFraction: (foundMol - presentMol) / presentMol,
-    ledger: ledger.filter((line) => Math.abs(line.fraction) > 1e-7),
+    ledger,
     titrated,
     biasOf,
     backTitrantStealsFraction: back ? analyteUnbound / presentMol : 0,
-  };
+  });
 }

@@ -1,4 +1,4 @@
-import type { LedgerLine, StageAccount } from "./account.ts";
+import { closed, type LedgerLine, type StageAccount } from "./account.ts";
 import type { ComponentId } from "../constants/knowledge.ts";
 import { vesselSample } from "./solution.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
@@ -58,16 +58,14 @@ export function detourAccount(
   const bias = (foundMol - presentMol) / presentMol;
   const endPoint = bias - ledger.reduce((sum, line) => sum + line.fraction, 0);
   ledger.unshift({ source: "end-point", fraction: endPoint });
-  return {
+  return closed(presentMol, {
     foundMol,
-    biasFraction: bias,
-    uncancelledBiasFraction: bias,
-    ledger: ledger.filter((line) => Math.abs(line.fraction) > 1e-7),
+    ledger,
     titrated,
     biasOf,
     backTitrantStealsFraction:
       plan.backTitrant && way.record.kind !== "conversion" ? part(end.unbound(metal) * vessel) : 0,
-  };
+  });
 }
 
 /** The counted metal that the analyst finds, mol: from the burette, or as the difference of a back titration. */

@@ -1,5 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { accountOf, type StageAccount } from "./account.ts";
+import { accountOf, NO_ACCOUNT, type StageAccount } from "./account.ts";
 import { blockersOf } from "./blocking.ts";
 import { holderOf, type EndPointBasis } from "./criterion.ts";
 import { detourAccount } from "./detour-account.ts";
@@ -40,6 +40,18 @@ export interface FirstReading {
   readonly volumeML: number;
   readonly bandML: readonly [number, number];
 }
+
+/** What stands in an evaluation whose end point was not found. */
+export const NOT_READ = {
+  ...NO_ACCOUNT,
+  endPointML: 0,
+  bandML: [0, 0],
+  firstReading: null,
+  indicatorMetal: null,
+  pM: null,
+  pMEquivalence: null,
+  sharpnessFraction: 0,
+} as const satisfies Partial<StageEvaluation>;
 
 const ML = 1000;
 
@@ -91,21 +103,9 @@ export function evaluateStage(
     ...base,
     status: "failed",
     why,
-    endPointML: 0,
-    bandML: [0, 0],
-    foundMol: 0,
-    biasFraction: 0,
-    uncancelledBiasFraction: 0,
-    ledger: [],
-    titrated: new Map(),
-    biasOf: new Map(),
-    indicatorMetal: null,
-    pM: null,
-    pMEquivalence: null,
-    sharpnessFraction: 0,
+    ...NOT_READ,
     log10ConditionalK: conditionalConstants(model, titrantBefore),
     log10AlphaOfAnalyte: alphaOfAnalyte(model, titrantBefore, plan),
-    backTitrantStealsFraction: 0,
   });
   if (!titrantBefore.ok) return failed("not-converged");
   if (read.why !== null) return failed(read.why);

@@ -4,7 +4,15 @@ import { promising, singleMethod, type EvaluatedMethod } from "./methods.ts";
 import { releaseSkeletons } from "./release-plan.ts";
 import { searchMethods, type MethodSearch } from "./search.ts";
 import { backSkeletons } from "./back-skeletons.ts";
-import { directSkeletons, LAST_TITRANTS, OTHER_TITRANTS, USUAL_FIELD, type Field, type Skeleton } from "./skeletons.ts";
+import {
+  directSkeletons,
+  LAST_TITRANTS,
+  OTHER_TITRANTS,
+  USUAL_FIELD,
+  type Field,
+  type Make,
+  type Skeleton,
+} from "./skeletons.ts";
 import type { Task } from "./types.ts";
 
 /**
@@ -18,18 +26,18 @@ export function everyWay(task: Task, knowledge: Knowledge): MethodSearch {
   const known = new Map<string, EvaluatedMethod>(search.methods.map((m) => [m.id, m]));
   const titrants = [...OTHER_TITRANTS, ...LAST_TITRANTS].filter((id) => search.shelf(id));
   const fields: readonly Field[] = [
-    USUAL_FIELD,
     { ...USUAL_FIELD, analogous: true },
     { titrants, dyes: null, analogous: false },
   ];
-  for (const field of fields) {
-    const make = { task, knowledge, shelf: search.shelf, determines: [analyte], field };
-    const skeletons: Skeleton[] = [...directSkeletons(make), ...backSkeletons(make), ...releaseSkeletons(make)];
-    const bare = skeletons.map((skeleton) => bareStage(task, skeleton, knowledge, search.shelf));
-    for (const stage of promising(task, bare, knowledge).flatMap((b) => develop(task, b, knowledge, search.shelf))) {
-      const method = singleMethod(task, stage, knowledge);
-      if (!known.has(method.id)) known.set(method.id, method);
-    }
+  const makeOf = (field: Field): Make => ({ task, knowledge, shelf: search.shelf, determines: [analyte], field });
+  const skeletons: Skeleton[] = [
+    ...releaseSkeletons(makeOf(USUAL_FIELD)),
+    ...fields.map(makeOf).flatMap((make) => [...directSkeletons(make), ...backSkeletons(make)]),
+  ];
+  const bare = skeletons.map((skeleton) => bareStage(task, skeleton, knowledge, search.shelf));
+  for (const stage of promising(task, bare, knowledge).flatMap((b) => develop(task, b, knowledge, search.shelf))) {
+    const method = singleMethod(task, stage, knowledge);
+    if (!known.has(method.id)) known.set(method.id, method);
   }
   return { ...search, methods: [...known.values()] };
 }

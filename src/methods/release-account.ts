@@ -1,5 +1,5 @@
 import type { ComponentId } from "../constants/knowledge.ts";
-import type { LedgerLine, StageAccount } from "./account.ts";
+import { closed, type LedgerLine, type StageAccount } from "./account.ts";
 import type { ReleaseVessels } from "./release-vessels.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
 
@@ -51,13 +51,11 @@ export function releaseAccount(vessels: ReleaseVessels, first: Reading, second: 
   }
   ledger.unshift({ source: "end-point", fraction: (foundMol - counted) / presentMol });
   const unbound = vessels.determines.reduce((s, m) => s + first.state.unbound(m), 0);
-  return {
+  return closed(presentMol, {
     foundMol,
-    biasFraction: (foundMol - presentMol) / presentMol,
-    uncancelledBiasFraction: (foundMol - presentMol) / presentMol,
-    ledger: ledger.filter((line) => Math.abs(line.fraction) > 1e-7),
+    ledger,
     titrated,
     biasOf,
     backTitrantStealsFraction: (unbound * (first.model.volumeL + first.volumeL)) / presentMol,
-  };
+  });
 }

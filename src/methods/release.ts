@@ -1,6 +1,6 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { blockersOf } from "./blocking.ts";
-import type { StageEvaluation } from "./evaluate-stage.ts";
+import { NOT_READ, type StageEvaluation } from "./evaluate-stage.ts";
 import { backEndPointL } from "./excess.ts";
 import { readEndPoint, type EndPointRead } from "./read-end-point.ts";
 import { releaseAccount } from "./release-account.ts";
@@ -106,19 +106,6 @@ function failed(
     ...common(plan, vessels, knowledge),
     status: "failed",
     why,
-    endPointML: 0,
-    bandML: [0, 0],
-    firstReading: null,
-    foundMol: 0,
-    biasFraction: 0,
-    uncancelledBiasFraction: 0,
-    ledger: [],
-    titrated: new Map(),
-    biasOf: new Map(),
-    indicatorMetal: null,
-    pM: null,
-    pMEquivalence: null,
-    sharpnessFraction: 0,
-    backTitrantStealsFraction: 0,
+    ...NOT_READ,
   };
 }
