@@ -17,8 +17,8 @@ const ALKALI_FROM_PH = 11.5;
 /** Titrated share below which a metal counts as kept out. */
 const QUIET = 0.5;
 
-/** Metals of the matrix that lie as hydroxide while the analyte is titrated. */
-export function lyingAsHydroxide(stage: Worked, knowledge: Knowledge): ComponentId[] {
+/** Metals of the matrix that lie as hydroxide while the analyte is titrated, for which the alkali is on record as a mask. */
+function heldByAlkali(stage: Worked, knowledge: Knowledge): ComponentId[] {
   const { model } = stage.evaluation;
   const hydroxides = knowledge.solids.filter(
     (s) => (s.components["H+"] ?? 0) < 0 && (model.solids.includes(s.id) || model.held.some((h) => h.by === s.id)),
@@ -29,15 +29,10 @@ export function lyingAsHydroxide(stage: Worked, knowledge: Knowledge): Component
       !named.has(ion) &&
       !stage.plan.determines.includes(ion) &&
       hydroxides.some((s) => (s.components[ion] ?? 0) > 0) &&
+      knowledge.masking.some((r) => r.agent === "hydroxide" && r.ion === ion && stage.plan.pH >= r.pH[0] - PH_SLACK) &&
       (stage.evaluation.titrated.get(ion) ?? 1) < 1 - PRECIPITATED_FRACTION,
   );
 }
-
-/** Of those, the ones for which the alkali is on record as a mask. */
-const heldByAlkali = (stage: Worked, knowledge: Knowledge): ComponentId[] =>
-  lyingAsHydroxide(stage, knowledge).filter((ion) =>
-    knowledge.masking.some((r) => r.agent === "hydroxide" && r.ion === ion && stage.plan.pH >= r.pH[0] - PH_SLACK),
-  );
 
 /**
  * Says by name what the alkali keeps out, and what an agent that is in the solution anyway holds before the alkali comes

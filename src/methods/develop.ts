@@ -8,7 +8,7 @@ import { maskSets, pairHasComplex, type MaskSet } from "./masks.ts";
 import { withExcess } from "./plan-excess.ts";
 import { leastBuffer } from "./protons.ts";
 import { withReleaseAmount } from "./release-plan.ts";
-import { BULK_RATIO, flocsSeparated, separations } from "./separate-first.ts";
+import { BULK_RATIO, separations } from "./separate-first.ts";
 import { settle } from "./settle.ts";
 import type { Shelf } from "./shelf.ts";
 import type { Skeleton } from "./skeletons.ts";
@@ -96,15 +96,11 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
   const { threats } = start;
   const finished = (variants: readonly DevelopedStage[]): DevelopedStage[] =>
     variants.flatMap((v) => {
-      const plans =
-        v.remaining.length === 0
-          ? [withoutFlocs(v, knowledge, shelf), flocsSeparated(task, v, knowledge)].filter((p) => p !== null)
-          : [];
-      const others = plans.map((other) => {
-        const evaluation = evaluate(task, other, knowledge);
-        return { ...v, plan: other, evaluation, remaining: threatsOf(task, evaluation, knowledge) };
-      });
-      return [v, ...others].map((each) => declared(each, knowledge));
+      const clear = v.remaining.length === 0 ? withoutFlocs(v, knowledge, shelf) : null;
+      if (clear === null) return [declared(v, knowledge)];
+      const evaluation = evaluate(task, clear, knowledge);
+      const remaining = threatsOf(task, evaluation, knowledge);
+      return [v, { ...v, plan: clear, evaluation, remaining }].map((each) => declared(each, knowledge));
     });
   if (threats.length === 0) return finished([{ ...start, evaluation: start.bare, remaining: [] }]);
   const { out, failed } = masked(task, start, knowledge, shelf);

@@ -1,9 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { lyingAsHydroxide } from "./alkali-masks.ts";
 import { maskSets } from "./masks.ts";
 import { settle, type Settled } from "./settle.ts";
 import type { Shelf } from "./shelf.ts";
-import { vesselSample } from "./solution.ts";
 import type { Threat } from "./threats.ts";
 import type { StagePlan, Task } from "./types.ts";
 
@@ -12,23 +10,6 @@ export const BULK_RATIO = 0.5;
 
 /** Sets of masks tried on what a separation leaves: two, for equal burdens say little of the chemistry. */
 const SETS_AFTER_SEPARATION = 2;
-
-/** The same direct titration after metals that would lie in it as hydroxides in bulk have been taken out; null where none do. */
-export function flocsSeparated(task: Task, v: Settled, knowledge: Knowledge): StagePlan | null {
-  if (v.plan.backTitrant !== null) return null;
-  const present = v.evaluation.presentMol / v.evaluation.model.volumeL;
-  const inVessel = new Map(vesselSample(task, v.plan).map((c) => [c.component, c.inVesselMolPerL]));
-  const flocs = lyingAsHydroxide(v, knowledge).filter(
-    (ion) => ion !== "Mg2+" && (inVessel.get(ion) ?? 0) > BULK_RATIO * present,
-  );
-  if (flocs.length === 0) return null;
-  const { preparation } = v.plan;
-  return {
-    ...v.plan,
-    removed: [...v.plan.removed, ...flocs],
-    preparation: preparation.includes("separate") ? preparation : ["separate", ...preparation],
-  };
-}
 
 /** A titration as it stands after a separation, before anything is masked. */
 interface Bare {
