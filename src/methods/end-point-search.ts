@@ -6,8 +6,8 @@ export interface EndPointSearch {
   readonly evaluations: number;
 }
 
-/** Relative precision of an end-point volume: a hundredth of what any burette reads. */
-const VOLUME_TOLERANCE = 2e-6;
+/** Relative precision of an end-point volume: a thousandth of what any burette reads, so that no figure shown is the search's. */
+const VOLUME_TOLERANCE = 2e-7;
 const MAX_STEPS = 60;
 
 /** Burette volumes, in parts of the expected one, at which the criterion is first looked at. */

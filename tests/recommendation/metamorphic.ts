@@ -19,7 +19,7 @@ export interface Relation {
 /** Another way to write the same numbers may move the last digit shown, no more. */
 const SAME = { biasPoints: 1e-3 };
 /** What one inert millimole may move by its ionic strength. */
-const INERT = { biasPoints: 0.05, pHMayMove: true };
+const INERT = { biasPoints: 0.05 };
 
 /** Whether the brief names this ion already. */
 const names = (document: Recommendation, ion: string): boolean =>

@@ -4,18 +4,13 @@ import type { Recommendation, RecommendedMethod } from "../../src/recommendation
 export interface Allowance {
   readonly biasPoints: number;
   readonly leaveOut?: readonly string[];
-  /** Whether the pH that is aimed at may move within its range: it follows the edges of the range in steps, and a ranking it is not. */
-  readonly pHMayMove?: boolean;
 }
-
-/** A titre is shown to five figures: a difference of one in the last says nothing, relative. */
-const LAST_DIGIT = 1e-4;
 
 /** In what two answers differ, in words: verdict, ranking, figures, reservations, cautions, findings, tolerance. Empty where they say the same. */
 export function differencesOf(
   a: Recommendation,
   b: Recommendation,
-  { biasPoints, leaveOut = [], pHMayMove = false }: Allowance,
+  { biasPoints, leaveOut = [] }: Allowance,
 ): string[] {
   const out: string[] = [];
   const compare = (what: string, x: unknown, y: unknown): void => {
@@ -23,8 +18,7 @@ export function differencesOf(
     if (left !== right) out.push(`${what}: ${left} against ${right}`);
   };
   compare("verdict", a.verdict, b.verdict);
-  const key = (method: RecommendedMethod): string => (pHMayMove ? withoutPH(idOf(method)) : idOf(method));
-  compare("ranking", a.methods.map(key), b.methods.map(key));
+  compare("ranking", a.methods.map(idOf), b.methods.map(idOf));
   if (out.length > 0) return out;
   const findings = (d: Recommendation): string[] =>
     d.findings
@@ -55,7 +49,7 @@ export function differencesOf(
         "titre",
         method.predicted.titreML,
         other.predicted.titreML,
-        (LAST_DIGIT + 0.01 * biasPoints) * method.predicted.titreML,
+        1e-6 + 0.01 * biasPoints * method.predicted.titreML,
       );
   });
   return out;
@@ -71,13 +65,6 @@ export const idOf = (method: RecommendedMethod): string =>
         .sort()
         .join("+"),
     ) // ions end in a plus of their own
-    .join("|");
-
-/** The key without the pH of its titrations: the parts that are numbers. */
-const withoutPH = (id: string): string =>
-  id
-    .split("|")
-    .filter((part) => !/^\d+(\.\d+)?$/.test(part))
     .join("|");
 
 /** Ids of the rules that spoke of a method, those about one of the components left out apart. */
