@@ -227,6 +227,11 @@ describe("the answer", () => {
     expect((await get(`/figures/curve.csv?brief=${encodeBrief(BRIEF)}&method=back-two`)).status).toBe(200);
     expect((await get(`/figures/other.csv?brief=${encodeBrief(BRIEF)}`)).status).toBe(404);
   });
+  test("says on its page how the result is calculated", async () => {
+    const html = await (await get(`/recommendation?brief=${encodeBrief(BRIEF)}`)).text();
+    expect(html).toContain("How the result is calculated");
+    expect(html).toContain("V × c(EDTA)");
+  });
   test("to a faulty brief in the address is the form with its faults", async () => {
     const response = await get(
       `/recommendation?brief=${encodeBrief({ ...BRIEF, analytes: [{ ion: "unobtanium", concentration: { value: 1, unit: "g/L" } }] })}`,

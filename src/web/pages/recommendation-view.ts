@@ -118,6 +118,7 @@ function methodView(
     reservations: method.reservations.map((r) => names.set(r)),
     cautions: method.cautions.map((c) => names.set(c)),
     stages: stageViews(method, recommendation.brief, names),
+    calculation: method.calculation.map((c) => names.set(c)),
     perAnalyte:
       method.predicted.perAnalyte.length < 2
         ? []
