@@ -38,6 +38,22 @@ export interface FactListing {
 /** The numbers behind the figures of one method. */
 export type FigureSeries = StageSeries;
 
+/** A long calculation as it stands, as the engine hands it over. */
+export interface JobState<Result> {
+  readonly id: string;
+  readonly state: "running" | "done" | "stopped" | "failed";
+  readonly progress: { readonly done: number; readonly total: number };
+  readonly result: Result | null; // as far as there is one
+  readonly message: string | null; // why it failed
+}
+
+/** Long calculations of one kind: the same question has the same id. */
+export interface Jobs<Asks, Result> {
+  readonly start: (asks: Asks) => string;
+  readonly look: (id: string) => JobState<Result> | null;
+  readonly stop: (id: string) => boolean;
+}
+
 /** Everything the pages need from the layers below; the composition root supplies it. */
 export interface WebServices {
   readonly knowledge: Knowledge;
