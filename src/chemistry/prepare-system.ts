@@ -7,6 +7,8 @@ import type { Conditions, ConstantUse, PreparedSpecies, PreparedSystem } from ".
 
 /** Which solids and species a system is made with. */
 export interface PrepareOptions {
+  /** Names the choice that `solids` and `exclude` make: calls with the same components and key choose the same, and ask them once. */
+  readonly key?: string;
   readonly solids?: (solid: SolidDefinition) => boolean; // default: every solid of the components
   readonly exclude?: (species: SpeciesDefinition) => boolean; // default: none
 }
@@ -18,6 +20,7 @@ interface CachedTemplate {
 interface KnowledgeCache {
   readonly full: Map<string, SystemTemplate>;
   readonly filtered: Map<string, CachedTemplate>;
+  readonly named: Map<string, CachedTemplate>; // those of `filtered` by the key of the caller
   readonly definitions: Map<string, SpeciesDefinition>;
   readonly solids: Map<string, SolidDefinition>;
 }
@@ -48,6 +51,7 @@ function cacheOf(knowledge: Knowledge): KnowledgeCache {
     cache = {
       full: new Map(),
       filtered: new Map(),
+      named: new Map(),
       definitions: new Map(knowledge.species.map((species) => [species.id, species])),
       solids: new Map(knowledge.solids.map((solid) => [solid.id, solid])),
     };
@@ -73,6 +77,16 @@ function templateOf(knowledge: Knowledge, ids: readonly ComponentId[], options: 
   if (solids === undefined && exclude === undefined) {
     return remember(cache.filtered, key, () => ({ template: full, chosen: new Map() }));
   }
+  if (options.key === undefined) return filteredTemplate(cache, key, full, options);
+  return remember(cache.named, `${key}\u0001${options.key}`, () => filteredTemplate(cache, key, full, options));
+}
+
+function filteredTemplate(
+  cache: KnowledgeCache,
+  key: string,
+  full: SystemTemplate,
+  { solids, exclude }: PrepareOptions,
+): CachedTemplate {
   const keepSpecies = full.species.map(({ id }) => {
     const known = cache.definitions.get(id);
     return exclude === undefined || known === undefined || !exclude(known);
@@ -91,24 +105,33 @@ function chosenOf(cached: CachedTemplate, conditions: Conditions): ChosenConstan
   return remember(cached.chosen, key, () => chooseConstants(cached.template, conditions));
 }
 
-/** A prepared species; its evidence is put together only when it is asked for, for a search asks for it seldom. */
+/** A prepared species; uncertainty and evidence are put together only when they are asked for, for a search asks for them seldom. */
 class PreparedRow implements PreparedSpecies {
   readonly id: string;
   readonly components: Readonly<Record<ComponentId, number>>;
   readonly charge: number;
   readonly log10Beta: number;
-  readonly uncertainty: number;
   readonly #row: TemplateRow;
   readonly #basis: EvidenceBasis;
 
-  constructor(row: TemplateRow, log10Beta: number, uncertainty: number, basis: EvidenceBasis) {
+  constructor(row: TemplateRow, log10Beta: number, basis: EvidenceBasis) {
     this.id = row.id;
     this.components = row.components;
     this.charge = row.charge;
     this.log10Beta = log10Beta;
-    this.uncertainty = uncertainty;
     this.#row = row;
     this.#basis = basis;
+  }
+
+  get uncertainty(): number {
+    const { template, chosen, conditions } = this.#basis;
+    const term = daviesTerm(conditions.ionicStrengthMolPerL);
+    let sum = 0;
+    for (const { reaction, factor } of this.#row.chain) {
+      const own = uncertaintyAt(chosen.movable[reaction]!, template.reactions[reaction]!.deltaZ2, term);
+      sum += factor * factor * own ** 2;
+    }
+    return Math.sqrt(sum);
   }
 
   get evidence(): readonly ConstantUse[] {
@@ -136,45 +159,50 @@ function assemble(template: SystemTemplate, chosen: ChosenConstants, conditions:
   const term = daviesTerm(conditions.ionicStrengthMolPerL);
   const { reactions } = template;
   const log10K = new Float64Array(reactions.length);
-  const variance = new Float64Array(reactions.length);
-  for (let i = 0; i < reactions.length; i++) {
-    const constant = chosen.movable[i]!;
-    log10K[i] = log10KAt(constant, term);
-    variance[i] = uncertaintyAt(constant, reactions[i]!.deltaZ2, term) ** 2;
-  }
+  for (let i = 0; i < reactions.length; i++) log10K[i] = log10KAt(chosen.movable[i]!, term);
   const basis = { template, chosen, conditions };
-  const prepare = (rows: readonly TemplateRow[], lnBeta: Float64Array): PreparedRow[] =>
-    rows.map((row, i) => {
-      let log10Beta = 0;
+  const log10Betas = (rows: readonly TemplateRow[]): Float64Array => {
+    const out = new Float64Array(rows.length);
+    for (let i = 0; i < rows.length; i++) {
+      const { chain } = rows[i]!;
       let sum = 0;
-      for (const { reaction, factor } of row.chain) {
-        log10Beta += factor * log10K[reaction]!;
-        sum += factor * factor * variance[reaction]!;
-      }
-      lnBeta[i] = log10Beta * Math.LN10;
-      return new PreparedRow(row, log10Beta, Math.sqrt(sum), basis);
-    });
-  const lnBeta = new Float64Array(template.species.length);
-  const lnBetaOfSolids = new Float64Array(template.solids.length);
-  const species = prepare(template.species, lnBeta);
-  const solids = prepare(template.solids, lnBetaOfSolids);
+      for (let p = 0; p < chain.length; p++) sum += chain[p]!.factor * log10K[chain[p]!.reaction]!;
+      out[i] = sum;
+    }
+    return out;
+  };
+  const ofSpecies = log10Betas(template.species);
+  const ofSolids = log10Betas(template.solids);
+  const prepared = (rows: readonly TemplateRow[], log10Beta: Float64Array): PreparedRow[] =>
+    rows.map((row, i) => new PreparedRow(row, log10Beta[i]!, basis));
+  let species: readonly PreparedSpecies[] | null = null;
+  let solids: readonly PreparedSpecies[] | null = null;
   return {
     conditions,
     outOfModelRange: beyondDaviesRange(conditions.ionicStrengthMolPerL),
     components: template.components,
     index: template.index,
-    species,
-    solids,
+    // A search makes some systems only to find an ionic strength: their rows are never looked at.
+    get species() {
+      return (species ??= prepared(template.species, ofSpecies));
+    },
+    get solids() {
+      return (solids ??= prepared(template.solids, ofSolids));
+    },
     charges: template.charges,
     problem: {
       nComponents: template.components.length,
-      nSpecies: species.length,
+      nSpecies: template.species.length,
       stoichiometry: template.stoichiometry,
-      lnBeta,
-      solids: { stoichiometry: template.solidStoichiometry, lnBeta: lnBetaOfSolids, n: solids.length },
+      lnBeta: ofSpecies.map((value) => value * Math.LN10),
+      solids: {
+        stoichiometry: template.solidStoichiometry,
+        lnBeta: ofSolids.map((value) => value * Math.LN10),
+        n: template.solids.length,
+      },
     },
     log10GammaH: log10ActivityCoefficient(1, conditions.ionicStrengthMolPerL, conditions.temperatureC),
-    log10Kw: template.waterRow < 0 ? LOG10_KW_25C : species[template.waterRow]!.log10Beta,
+    log10Kw: template.waterRow < 0 ? LOG10_KW_25C : ofSpecies[template.waterRow]!,
   };
 }
 

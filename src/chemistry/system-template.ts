@@ -84,12 +84,36 @@ export function buildTemplate(knowledge: Knowledge, componentIds: readonly Compo
 /** Chooses a record for every reaction of `template` (on the selection grid of `conditions`) and prepares it for moving. */
 export function chooseConstants(template: SystemTemplate, conditions: Conditions): ChosenConstants {
   const selection = selectionConditions(conditions);
-  const chosen = template.reactions.map((reaction) => selectRecord(reaction, selection));
+  const key = `${selection.temperatureC} ${selection.ionicStrengthMolPerL}`;
+  const chosen = template.reactions.map((reaction) => chosenFor(reaction, selection, key));
   return {
     records: chosen.map((c) => c.record),
-    passedOver: chosen.map((c) => c.passedOver.length),
-    movable: chosen.map((c, i) => movableConstant(template.reactions[i]!, c.record, selection)),
+    passedOver: chosen.map((c) => c.passedOver),
+    movable: chosen.map((c) => c.movable),
   };
+}
+
+interface ChosenConstant {
+  readonly record: ConstantRecord;
+  readonly passedOver: number;
+  readonly movable: MovableConstant;
+}
+
+/** Selection strengths and temperatures kept per reaction; the oldest goes first. */
+const CHOICES_KEPT = 100;
+/** Many templates hold the same reaction: its record is chosen once for each point of the selection grid. */
+const choices = new WeakMap<Reaction, Map<string, ChosenConstant>>();
+
+function chosenFor(reaction: Reaction, selection: Conditions, key: string): ChosenConstant {
+  let own = choices.get(reaction);
+  if (own === undefined) choices.set(reaction, (own = new Map<string, ChosenConstant>()));
+  const known = own.get(key);
+  if (known !== undefined) return known;
+  const { record, passedOver } = selectRecord(reaction, selection);
+  const made = { record, passedOver: passedOver.length, movable: movableConstant(reaction, record, selection) };
+  if (own.size >= CHOICES_KEPT) own.delete(own.keys().next().value!);
+  own.set(key, made);
+  return made;
 }
 
 /** The template with only the species and solids that the masks keep; the free components always stay. */
