@@ -1,5 +1,5 @@
 import { EliminatedNewton } from "./solve-eliminated-newton.ts";
-import { compileEliminated, type EliminatedTerms } from "./solve-eliminated-terms.ts";
+import { compileEliminated, refillEliminated, type EliminatedTerms } from "./solve-eliminated-terms.ts";
 import { solveEquilibrium } from "./solve-equilibrium.ts";
 import type { MassBalanceProblem, SolveResult } from "./types.ts";
 
@@ -26,6 +26,11 @@ export interface EliminatedSolver {
    * `ABSENT_LN_FREE`. Allocates nothing while the eliminated form applies.
    */
   readonly solve: (totals: ArrayLike<number>, lnFree: Float64Array) => EliminatedEvidence;
+  /**
+   * Takes the constants of the problem (its `lnBeta`, which its owner may have changed) and other free concentrations of the same fixed
+   * components. Allocates nothing. False where the form does not apply any more (a constant beyond e^600): the solver is then of no use.
+   */
+  readonly refill: (fixedLnFree: ArrayLike<number>) => boolean;
 }
 
 /**
@@ -46,7 +51,8 @@ export function eliminatedSolver(
   fixedLnFree: ArrayLike<number>,
   eliminate: readonly number[],
 ): EliminatedSolver | null {
-  const terms = compileEliminated(problem, fixedLnFree, eliminate);
+  const fixed = Float64Array.from(fixedLnFree);
+  const terms = compileEliminated(problem, fixed, eliminate);
   if (terms === null) return null;
   const { kept, gone, k } = terms;
   const keptTotal = new Float64Array(k);
@@ -62,7 +68,7 @@ export function eliminatedSolver(
     polynuclearShare: 0,
   };
   const general = (totals: ArrayLike<number>, lnFree: Float64Array): EliminatedEvidence => {
-    const result = solveEquilibrium(problem, totals, { fixedLnFree, start: lnFree, solids: "saturation-only" });
+    const result = solveEquilibrium(problem, totals, { fixedLnFree: fixed, start: lnFree, solids: "saturation-only" });
     lnFree.set(result.lnFree);
     evidence.method = "general";
     evidence.status = result.status;
@@ -111,7 +117,11 @@ export function eliminatedSolver(
     evidence.worstComponent = work.worst < 0 ? (gone[0] ?? -1) : kept[work.worst]!;
     return evidence;
   };
-  return { solve };
+  const refill = (to: ArrayLike<number>): boolean => {
+    fixed.set(to);
+    return refillEliminated(terms, problem.lnBeta, fixed);
+  };
+  return { solve, refill };
 }
 
 /** Amounts held in species of two eliminated components, mol/L per component. */

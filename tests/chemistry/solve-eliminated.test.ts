@@ -118,6 +118,26 @@ describe("eliminatedSolver", () => {
     expect(eliminatedSolver(mixed, held, [1, 2])).not.toBe(null);
   });
 
+  it("takes other constants and another acidity as if it had been made with them", () => {
+    let compared = 0;
+    for (let index = 0; index < 60; index++) {
+      const { problem: mixed, totals, fixedLnFree: held, metals } = randomSystem(77, index);
+      const moved = { ...mixed, lnBeta: mixed.lnBeta.slice() };
+      const solver = eliminatedSolver(moved, held, metals);
+      moved.lnBeta.forEach((value, i) => (moved.lnBeta[i] = i < mixed.nComponents ? value : value + Math.sin(i)));
+      const other = held.map((value) => value - 0.4);
+      const anew = eliminatedSolver(moved, other, metals);
+      if (!solver || !anew || !solver.refill(other)) continue;
+      const start = solveEquilibrium(moved, totals, { fixedLnFree: other }).lnFree;
+      const [a, b] = [start.slice(), start.slice()];
+      const method = solver.solve(totals, a).method;
+      expect(anew.solve(totals, b).method).toBe(method);
+      expect([...a]).toEqual([...b]);
+      if (method === "eliminated") compared++;
+    }
+    expect(compared).toBeGreaterThan(10);
+  });
+
   it("agrees with the general solver on 200 random systems from a disturbed start", () => {
     const figures = runEliminated(20261204, 200);
     expect(figures.notConverged).toBe(0);
