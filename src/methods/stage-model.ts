@@ -10,7 +10,8 @@ import type {
   SolidDefinition,
   SpeciesDefinition,
 } from "../constants/knowledge.ts";
-import { protonFixed, vesselSolver, type VesselSolution } from "./vessel-solver.ts";
+import { protonFixed, vesselSolver } from "./vessel-solver.ts";
+import { SolvedVessel, type VesselState } from "./vessel-state.ts";
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
 import { inertIonsOf } from "./inert-ions.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
@@ -18,6 +19,8 @@ import { staysBound } from "./saturation.ts";
 import { agentComponents, classifyRows } from "./stage-rows.ts";
 import { heldByWay, solidsOfDetour } from "./way-round.ts";
 import { countedIn, type StagePlan, type Task } from "./types.ts";
+
+export type { VesselState } from "./vessel-state.ts";
 
 /** What the burette delivers, and everything else that stays the same while it runs. */
 export interface StageModel {
@@ -38,25 +41,6 @@ export interface StageModel {
   readonly metals: readonly ComponentId[];
   /** Metals that do not react with the titrant in the time of the titration. */
   readonly inert: ReadonlySet<ComponentId>;
-}
-
-/** The vessel at one burette volume, amounts in mol per litre of the vessel as it then is. */
-export interface VesselState {
-  readonly volumeFromBuretteL: number;
-  readonly dilution: number; // V0 / (V0 + V)
-  readonly ok: boolean;
-  readonly residual: number;
-  readonly result: VesselSolution;
-  readonly boundToTitrant: (metal: ComponentId) => number;
-  readonly unbound: (metal: ComponentId) => number; // summed over species without titrant, so exact also when tiny
-  readonly onDye: (metal: ComponentId) => number; // held by the indicator
-  readonly titrantUnbound: number; // not bound to any metal of the sample, the burette or the chelate
-  readonly titrantTotal: number;
-  readonly free: (component: ComponentId) => number;
-  readonly total: (component: ComponentId) => number;
-  /** Bound over free dye summed over the metals; NaN-free, 0 where nothing binds. */
-  readonly dyeRatio: number;
-  readonly dyeRatioOf: (metal: ComponentId) => number;
 }
 
 const MIN_IONIC_STRENGTH_MOL_PER_L = 1e-4; // pure water never stands in a titration vessel
@@ -133,13 +117,19 @@ export function stageModel(
     ofDetour.has(solid.id) ||
     Object.keys(solid.components).some((c) => maskedSolids.has(c));
 
-  const prepare = (ionicStrengthMolPerL: number, withSolids: (s: SolidDefinition) => boolean): PreparedSystem =>
+  const speciesKey = [titrant, [...inert].sort(), dye ?? "", [...dyeBasis.byConstants].sort(), [...watched].sort()];
+  const prepare = (
+    ionicStrengthMolPerL: number,
+    solids: (s: SolidDefinition) => boolean,
+    solidsKey: readonly unknown[],
+  ): PreparedSystem =>
     prepareSystem(
       knowledge,
       components,
       { ionicStrengthMolPerL, temperatureC: task.temperatureC },
-      { solids: withSolids, exclude },
+      { solids, exclude, key: [...speciesKey, ...solidsKey].join(" ") },
     );
+  const wantedKey = ["wanted", [...maskedSolids].sort(), plan.detour?.id ?? "", plan.carried?.metals ?? ""];
   const volumeL = solution.volumeL;
   const columns = (system: PreparedSystem): Float64Array => {
     const t = new Float64Array(system.components.length);
@@ -154,7 +144,7 @@ export function stageModel(
 
   // Ionic strength of the vessel itself, half way: start from 0.1 mol/L and correct until it agrees.
   let ionicStrengthMolPerL = 0.1;
-  let system = prepare(ionicStrengthMolPerL, wantsSolid);
+  let system = prepare(ionicStrengthMolPerL, wantsSolid, wantedKey);
   let first = atStart(system, null);
   for (let round = 0; round < 4; round++) {
     const inert = inertIonsOf(totals, knowledge);
@@ -162,7 +152,7 @@ export function stageModel(
     const agrees = Math.abs(found - ionicStrengthMolPerL) <= IONIC_STRENGTH_AGREES * ionicStrengthMolPerL;
     if (agrees) break;
     ionicStrengthMolPerL = found;
-    system = prepare(ionicStrengthMolPerL, wantsSolid);
+    system = prepare(ionicStrengthMolPerL, wantsSolid, wantedKey);
     first = atStart(system, first);
   }
   // Solids that formed and do not redissolve in time are out of the game; those that do stay in equilibrium.
@@ -182,71 +172,38 @@ export function stageModel(
       if (metals.has(component)) held.push({ component, molPerL: lost, why: "precipitated", by: solid.id });
     }
   });
-  system = prepare(ionicStrengthMolPerL, (s) => stays.has(s.id));
+  const lying = system.solids.flatMap((solid, i) =>
+    stays.has(solid.id) && first.solidsMolPerL[i]! > 0 ? [solid.id] : [],
+  );
+  system = prepare(ionicStrengthMolPerL, (s) => stays.has(s.id), ["staying", [...stays].sort()]);
   const base = columns(system);
-  const rows = classifyRows(system, titrant, dye, metals, {
-    way: heldByWay(plan, knowledge),
-    agents: agentComponents(plan, knowledge),
-  });
-
-  const solve = vesselSolver(system, plan.pH, metals);
+  const kinds = { titrant, dye, metals, way: heldByWay(plan, knowledge), agents: agentComponents(plan, knowledge) };
+  const vessel = {
+    system,
+    rows: classifyRows(system, kinds, plan.detour ? `${plan.detour.id} ${plan.detour.metal}` : ""),
+    volumeL,
+    base,
+    titrant,
+    burette,
+    metals: [...metals],
+    dyeBasis,
+  };
+  const solve = vesselSolver(
+    system,
+    plan.pH,
+    metals,
+    first.status === "converged" ? { lnFree: first.lnFree, solids: lying } : null,
+  );
   const buretteColumn = system.index.get(burette.component)!;
+  let start: VesselState | null = null;
   const at = (fromBuretteL: number): VesselState => {
+    if (fromBuretteL === 0 && start !== null) return start;
     const dilution = volumeL / (volumeL + fromBuretteL);
     const t = base.map((v) => v * dilution);
     t[buretteColumn] = t[buretteColumn]! + (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL);
-    const result = solve(t);
-    const sum = (list: readonly (readonly [number, number])[] | undefined): number => {
-      let total = 0;
-      if (list) for (const [row, n] of list) total += n * result.species(row);
-      return total;
-    };
-    const boundToTitrant = (metal: ComponentId): number => sum(rows.titrantByMetal.get(metal));
-    const totalOf = (component: ComponentId): number => {
-      const column = system.index.get(component);
-      if (column === undefined) return 0;
-      const fromBurette =
-        component === burette.component ? (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL) : 0;
-      return base[column]! * dilution + fromBurette;
-    };
-    const free = (component: ComponentId): number => {
-      const column = system.index.get(component);
-      return column === undefined ? 0 : Math.exp(result.lnFree[column]!);
-    };
-    const titrantTotal = totalOf(titrant);
-    const unbound = (metal: ComponentId): number => sum(rows.unboundByMetal.get(metal));
-    const dyeRatioOf = (metal: ComponentId): number => {
-      const half = dyeBasis.byTable.get(metal);
-      if (half !== undefined) {
-        // A table that counts all that the titrant leaves knows nothing of masks: what an agent holds the dye does not see.
-        const concentration = half.counts === "free-ion" ? free(metal) : sum(rows.unheldByMetal.get(metal));
-        return (concentration * 10 ** half.pM) ** half.metalsPerDye;
-      }
-      const bound = rows.dyeByMetal.get(metal);
-      return bound ? sum(bound) / sum(rows.dyeFree) : 0;
-    };
-    return {
-      volumeFromBuretteL: fromBuretteL,
-      dilution,
-      ok: result.ok,
-      residual: result.residual,
-      result,
-      boundToTitrant,
-      unbound,
-      onDye: (metal) => sum(rows.metalOnDye.get(metal)),
-      get titrantUnbound(): number {
-        return sum(rows.titrantFree);
-      },
-      titrantTotal,
-      free,
-      total: totalOf,
-      dyeRatioOf,
-      get dyeRatio(): number {
-        let ratio = 0;
-        for (const metal of metals) ratio += dyeRatioOf(metal);
-        return ratio;
-      },
-    };
+    const state = new SolvedVessel(vessel, fromBuretteL, solve(t));
+    if (fromBuretteL === 0) start = state;
+    return state;
   };
   return {
     plan,

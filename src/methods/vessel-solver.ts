@@ -1,18 +1,76 @@
 import { eliminatedSolver } from "../chemistry/solve-eliminated.ts";
-import { solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
-import type { PreparedSystem, SolveResult } from "../chemistry/types.ts";
+import { ABSENT_LN_FREE, solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
+import type { MassBalanceProblem, PreparedSystem, SolveResult } from "../chemistry/types.ts";
 import type { ComponentId } from "../constants/knowledge.ts";
 
 /** A solved vessel: what the equilibrium gives, species counted only when asked for. */
-export interface VesselSolution {
+export class VesselSolution {
   readonly ok: boolean;
   readonly residual: number;
   readonly iterations: number;
   readonly lnFree: Float64Array;
-  /** Concentration of one species (row of the system), mol/L. */
-  readonly species: (row: number) => number;
-  readonly speciesMolPerL: Float64Array;
   readonly solidsMolPerL: Float64Array;
+  readonly #problem: MassBalanceProblem;
+  readonly #sparse: SparseRows;
+  #species: Float64Array | null;
+
+  constructor(
+    problem: MassBalanceProblem,
+    solved: Pick<SolveResult, "residual" | "iterations" | "lnFree" | "solidsMolPerL"> & { readonly ok: boolean },
+    speciesMolPerL: Float64Array | null,
+  ) {
+    this.ok = solved.ok;
+    this.residual = solved.residual;
+    this.iterations = solved.iterations;
+    this.lnFree = solved.lnFree;
+    this.solidsMolPerL = solved.solidsMolPerL;
+    this.#problem = problem;
+    this.#sparse = sparseRowsOf(problem);
+    this.#species = speciesMolPerL;
+  }
+
+  /** Concentration of one species (row of the system), mol/L. */
+  species(row: number): number {
+    if (this.#species !== null) return this.#species[row]!;
+    const { start, column, coefficient } = this.#sparse;
+    let sum = this.#problem.lnBeta[row]!;
+    const end = start[row + 1]!;
+    for (let p = start[row]!; p < end; p++) sum += coefficient[p]! * this.lnFree[column[p]!]!;
+    return Math.exp(sum);
+  }
+
+  get speciesMolPerL(): Float64Array {
+    return (this.#species ??= Float64Array.from({ length: this.#problem.nSpecies }, (_, row) => this.species(row)));
+  }
+}
+
+/** The stoichiometry of a problem without its zeros, row by row. */
+interface SparseRows {
+  readonly start: Int32Array;
+  readonly column: Int32Array;
+  readonly coefficient: Float64Array;
+}
+
+const sparse = new WeakMap<Int8Array, SparseRows>();
+
+function sparseRowsOf({ stoichiometry, nComponents, nSpecies }: MassBalanceProblem): SparseRows {
+  const known = sparse.get(stoichiometry);
+  if (known !== undefined) return known;
+  const start = new Int32Array(nSpecies + 1);
+  const column: number[] = [];
+  const coefficient: number[] = [];
+  for (let row = 0; row < nSpecies; row++) {
+    for (let j = 0; j < nComponents; j++) {
+      const n = stoichiometry[row * nComponents + j]!;
+      if (n === 0) continue;
+      column.push(j);
+      coefficient.push(n);
+    }
+    start[row + 1] = column.length;
+  }
+  const made = { start, column: Int32Array.from(column), coefficient: Float64Array.from(coefficient) };
+  sparse.set(stoichiometry, made);
+  return made;
 }
 
 /** ln of the free proton concentration held at this pH (activity scale). */
@@ -25,30 +83,42 @@ export function protonFixed(system: PreparedSystem, pH: number): Float64Array {
   return fixed;
 }
 
+/** Where a component that was not there before begins: nearly all of it bound, as of titrant. */
+const MOSTLY_BOUND_LN = 20;
+
 /**
  * Solves one vessel for many totals (mol/L per column of the system, H+ held at `pH`), each from the last answer. While no solid
  * is there the metals are eliminated exactly; else, and wherever that form does not hold, the general solver answers.
  * @param metals components to eliminate
+ * @param near an answer close to the first that will be asked for: ln free concentrations by column, and the solids that lie there
  */
 export function vesselSolver(
   system: PreparedSystem,
   pH: number,
   metals: ReadonlySet<ComponentId>,
+  near: { readonly lnFree: Float64Array; readonly solids: readonly string[] } | null = null,
 ): (totals: Float64Array) => VesselSolution {
   const { problem } = system;
   const fixedLnFree = protonFixed(system, pH);
   const columns = system.components.flatMap((c, i) => (metals.has(c) ? [i] : []));
   const fast = columns.length > 0 ? eliminatedSolver(problem, fixedLnFree, columns) : null;
-  const supersaturated = saturationCheck(system);
-  let warm: Float64Array | null = null;
-  let activeSolids: readonly number[] = [];
+  const nSolids = problem.solids.n;
+  const supersaturated = nSolids > 0 ? saturationCheck(system) : () => false;
+  const noSolids = new Float64Array(nSolids);
+  let warm: Float64Array | null = near ? near.lnFree : null;
+  let activeSolids: readonly number[] =
+    near === null || near.solids.length === 0
+      ? []
+      : system.solids.flatMap((s, i) => (near.solids.includes(s.id) ? [i] : []));
   return (totals) => {
     if (fast && warm && activeSolids.length === 0) {
       const lnFree = warm.slice();
-      const evidence = fast.solve(totals, lnFree);
-      if (evidence.status === "converged" && !supersaturated(lnFree)) {
+      for (let j = 1; j < lnFree.length; j++)
+        if (lnFree[j]! <= ABSENT_LN_FREE && totals[j]! > 0) lnFree[j] = Math.log(totals[j]!) - MOSTLY_BOUND_LN;
+      const { status, residual, iterations } = fast.solve(totals, lnFree);
+      if (status === "converged" && !supersaturated(lnFree)) {
         warm = lnFree;
-        return fromLogs(system, lnFree, evidence.residual, evidence.iterations);
+        return new VesselSolution(problem, { ok: true, residual, iterations, lnFree, solidsMolPerL: noSolids }, null);
       }
     }
     const result = solveEquilibrium(
@@ -56,11 +126,12 @@ export function vesselSolver(
       totals,
       warm ? { fixedLnFree, start: warm, activeSolids } : { fixedLnFree },
     );
-    if (result.status === "converged") {
+    const ok = result.status === "converged";
+    if (ok) {
       warm = result.lnFree;
-      activeSolids = system.solids.flatMap((_, i) => (result.solidsMolPerL[i]! > 0 ? [i] : []));
+      activeSolids = nSolids === 0 ? [] : system.solids.flatMap((_, i) => (result.solidsMolPerL[i]! > 0 ? [i] : []));
     }
-    return fromResult(result);
+    return new VesselSolution(problem, { ...result, ok }, result.speciesMolPerL);
   };
 }
 
@@ -76,42 +147,4 @@ function saturationCheck(system: PreparedSystem): (lnFree: Float64Array) => bool
       for (const { column, n } of parts) sum += column === undefined ? -Infinity : n * lnFree[column]!;
       return sum > 0;
     });
-}
-
-function fromResult(result: SolveResult): VesselSolution {
-  return {
-    ok: result.status === "converged",
-    residual: result.residual,
-    iterations: result.iterations,
-    lnFree: result.lnFree,
-    species: (row) => result.speciesMolPerL[row]!,
-    speciesMolPerL: result.speciesMolPerL,
-    solidsMolPerL: result.solidsMolPerL,
-  };
-}
-
-function fromLogs(system: PreparedSystem, lnFree: Float64Array, residual: number, iterations: number): VesselSolution {
-  const { stoichiometry, lnBeta, nComponents, nSpecies } = system.problem;
-  const species = (row: number): number => {
-    let sum = lnBeta[row]!;
-    const at = row * nComponents;
-    for (let j = 0; j < nComponents; j++) {
-      const n = stoichiometry[at + j]!;
-      if (n !== 0) sum += n * lnFree[j]!;
-    }
-    return Math.exp(sum);
-  };
-  let all: Float64Array | null = null;
-  return {
-    ok: true,
-    residual,
-    iterations,
-    lnFree,
-    species,
-    get speciesMolPerL() {
-      all ??= Float64Array.from({ length: nSpecies }, (_, row) => species(row));
-      return all;
-    },
-    solidsMolPerL: new Float64Array(system.solids.length),
-  };
 }
