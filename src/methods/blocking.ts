@@ -35,18 +35,19 @@ export function blockingLevel(
   return Math.max(row.fromMolPerL, EVERY_LEVEL_OF_DYE * dyeMolPerL);
 }
 
-/**
- * The metals that spoil the dye in this vessel before anything comes from the burette. In a back titration the titrant
- * is there first, so only what it leaves unbound can block; a masked metal blocks only by what the mask leaves.
- */
-export function blockersOf(model: StageModel, start: VesselState, knowledge: Knowledge): ComponentId[] {
-  const { indicator, plan } = model;
+/** A metal that would spoil the dye of a titration, and from which level, mol/L of the vessel and free of masks. */
+interface MindedMetal {
+  readonly metal: ComponentId;
+  readonly level: number;
+}
+
+/** The metals of a vessel that its dye minds at the pH of the plan, whatever there is of them. */
+export function mindedMetals({
+  indicator,
+  plan,
+  metals,
+}: Pick<StageModel, "indicator" | "plan" | "metals">): MindedMetal[] {
   if (!indicator || !plan.indicator) return [];
-  const masks = new Set(
-    [...plan.masking.map((m) => m.agent), ...plan.auxiliary.map((a) => a.id)]
-      .map((agent) => knowledge.agents.get(agent)?.component)
-      .filter((c): c is ComponentId => c !== null && c !== undefined),
-  );
   const here = indicator.uses.filter(
     (u) => u.mode === "direct" && plan.pH >= u.pH[0] - 0.05 && plan.pH <= u.pH[1] + 0.05,
   );
@@ -59,32 +60,49 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
   );
   // What an earlier titration has bound is the titrant's again with the first drop: its remainder does not block.
   const carried = new Set(plan.carried?.metals ?? []);
-  return model.metals.filter((metal) => {
-    if (carried.has(metal)) return false;
+  return metals.flatMap((metal) => {
+    if (carried.has(metal)) return [];
     const level = blockingLevel(indicator, metal, plan.pH, plan.indicator!.molPerL);
-    if (level === null) return false;
+    if (level === null) return [];
     // A dye that is in use for the very metal at this pH is not blocked by it (hot, or with a catalyst: its use says so).
-    if (countedIn(plan).includes(metal) && published.has(metal)) return false;
-    if (answering.has(metal)) return false;
-    const unmasked = model.system.species.reduce((sum, species, row) => {
-      const n = species.components[metal] ?? 0;
-      if (n <= 0 || (species.components[plan.titrant.id] ?? 0) > 0) return sum;
-      return Object.keys(species.components).some((c) => masks.has(c))
-        ? sum
-        : sum + n * start.result.speciesMolPerL[row]!;
-    }, 0);
-    // A hydroxide that nobody asked for blocks like the ion it came from: hydrolysed iron(III) still takes the dye.
-    // What a mask has thrown down (a sulfide, a fluoride) is masked.
-    const lying = lyingAsHydroxideMolPerL(model, start, metal, knowledge);
-    const borne =
-      plan.pH < ALKALI_MASKS_FROM_PH
-        ? 0
-        : Math.max(
-            0,
-            ...knowledge.masking
-              .filter((r) => r.agent === "hydroxide" && r.ion === metal)
-              .map((r) => r.upToMolPerL ?? Infinity),
-          );
-    return unmasked + (lying > borne ? lying : 0) > level;
+    if (countedIn(plan).includes(metal) && published.has(metal)) return [];
+    return answering.has(metal) ? [] : [{ metal, level }];
   });
+}
+
+/**
+ * The metals that spoil the dye in this vessel before anything comes from the burette. In a back titration the titrant
+ * is there first, so only what it leaves unbound can block; a masked metal blocks only by what the mask leaves.
+ */
+export function blockersOf(model: StageModel, start: VesselState, knowledge: Knowledge): ComponentId[] {
+  const { plan } = model;
+  const masks = new Set(
+    [...plan.masking.map((m) => m.agent), ...plan.auxiliary.map((a) => a.id)]
+      .map((agent) => knowledge.agents.get(agent)?.component)
+      .filter((c): c is ComponentId => c !== null && c !== undefined),
+  );
+  return mindedMetals(model)
+    .filter(({ metal, level }) => {
+      const unmasked = model.system.species.reduce((sum, species, row) => {
+        const n = species.components[metal] ?? 0;
+        if (n <= 0 || (species.components[plan.titrant.id] ?? 0) > 0) return sum;
+        return Object.keys(species.components).some((c) => masks.has(c))
+          ? sum
+          : sum + n * start.result.speciesMolPerL[row]!;
+      }, 0);
+      // A hydroxide that nobody asked for blocks like the ion it came from: hydrolysed iron(III) still takes the dye.
+      // What a mask has thrown down (a sulfide, a fluoride) is masked.
+      const lying = lyingAsHydroxideMolPerL(model, start, metal, knowledge);
+      const borne =
+        plan.pH < ALKALI_MASKS_FROM_PH
+          ? 0
+          : Math.max(
+              0,
+              ...knowledge.masking
+                .filter((r) => r.agent === "hydroxide" && r.ion === metal)
+                .map((r) => r.upToMolPerL ?? Infinity),
+            );
+      return unmasked + (lying > borne ? lying : 0) > level;
+    })
+    .map(({ metal }) => metal);
 }

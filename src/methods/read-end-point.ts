@@ -21,6 +21,14 @@ export interface EndPointRead {
   readonly photometric: PhotometricReading | null;
 }
 
+/** How an end point seen by eye is looked for. */
+export interface EyeOptions {
+  /** Finds where the criterion turns; who knows a near answer needs fewer looks than the default, which looks everywhere. */
+  readonly search?: typeof firstCrossing;
+  /** Whether the observer's band is wanted (default true). */
+  readonly band?: boolean;
+}
+
 /**
  * Finds the end of a titration by the detection of its plan.
  * @param equivalenceL where the end is expected, L, > 0
@@ -30,6 +38,7 @@ export function readEndPoint(
   determined: ReadonlySet<ComponentId>,
   equivalenceL: number,
   knowledge: Knowledge,
+  options: EyeOptions = {},
 ): EndPointRead {
   const { plan } = model;
   const back = plan.backTitrant !== null;
@@ -44,10 +53,16 @@ export function readEndPoint(
     const basis = plan.indicator === null ? "constants" : criterion.basis;
     return { ...rest, basis, electrode: null, photometric: reading };
   }
-  return readByEye(model, criterion, back, equivalenceL);
+  return readByEye(model, criterion, back, equivalenceL, options);
 }
 
-function readByEye(model: StageModel, criterion: Criterion, back: boolean, equivalenceL: number): EndPointRead {
+function readByEye(
+  model: StageModel,
+  criterion: Criterion,
+  back: boolean,
+  equivalenceL: number,
+  { search: find = firstCrossing, band = true }: EyeOptions,
+): EndPointRead {
   const base = { basis: criterion.basis, bandPM: criterion.bandPM, electrode: null, photometric: null };
   const failed = (why: EndPointFault): EndPointRead => ({ ...base, why, volumeL: 0, bandL: [0, 0] });
   if (criterion.basis !== "empirical") {
@@ -56,7 +71,7 @@ function readByEye(model: StageModel, criterion: Criterion, back: boolean, equiv
     if (back && criterion.ratio(early) / (1 + criterion.ratio(early)) > BLOCKED_BOUND_FRACTION)
       return failed("dye-held");
   }
-  const search = firstCrossing((v) => criterion.of(model.at(v)), equivalenceL);
+  const search = find((v) => criterion.of(model.at(v)), equivalenceL);
   if (!search.found) return failed("no-end-point");
   const shifted = (by: number): number =>
     nearCrossing((v) => criterion.of(model.at(v)) + by, search.volumeL, by > 0 ? -1 : 1, equivalenceL) ??
@@ -65,6 +80,6 @@ function readByEye(model: StageModel, criterion: Criterion, back: boolean, equiv
     ...base,
     why: null,
     volumeL: search.volumeL,
-    bandL: [shifted(criterion.bandLog10), shifted(-criterion.bandLog10)],
+    bandL: band ? [shifted(criterion.bandLog10), shifted(-criterion.bandLog10)] : [search.volumeL, search.volumeL],
   };
 }

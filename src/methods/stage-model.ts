@@ -11,7 +11,7 @@ import type {
   SpeciesDefinition,
 } from "../constants/knowledge.ts";
 import { protonFixed, vesselSolver } from "./vessel-solver.ts";
-import { SolvedVessel, type VesselState } from "./vessel-state.ts";
+import { SolvedVessel, type Vessel, type VesselState } from "./vessel-state.ts";
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
 import { inertIonsOf } from "./inert-ions.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
@@ -41,6 +41,10 @@ export interface StageModel {
   readonly metals: readonly ComponentId[];
   /** Metals that do not react with the titrant in the time of the titration. */
   readonly inert: ReadonlySet<ComponentId>;
+  /** What the states of the vessel share, for who wants to solve it with other constants and amounts. */
+  readonly vessel: Vessel;
+  /** The same species with every solid that could have formed before the titration. */
+  readonly forming: PreparedSystem;
 }
 
 const MIN_IONIC_STRENGTH_MOL_PER_L = 1e-4; // pure water never stands in a titration vessel
@@ -175,6 +179,7 @@ export function stageModel(
   const lying = system.solids.flatMap((solid, i) =>
     stays.has(solid.id) && first.solidsMolPerL[i]! > 0 ? [solid.id] : [],
   );
+  const forming = system;
   system = prepare(ionicStrengthMolPerL, (s) => stays.has(s.id), ["staying", [...stays].sort()]);
   const base = columns(system);
   const kinds = { titrant, dye, metals, way: heldByWay(plan, knowledge), agents: agentComponents(plan, knowledge) };
@@ -219,6 +224,8 @@ export function stageModel(
     at,
     metals: [...metals],
     inert,
+    vessel,
+    forming,
   };
 }
 

@@ -1,4 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
+import type { EndPointBasis } from "./criterion.ts";
 import { evaluateStage, type StageEvaluation } from "./evaluate-stage.ts";
 import { remembered } from "./remembered.ts";
 import { evaluateRelease } from "./release.ts";
@@ -13,19 +14,42 @@ import type { StagePlan, Task } from "./types.ts";
  */
 export function standardisedAlike(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): StageEvaluation {
   const { plan } = evaluation.model;
-  if (evaluation.status === "failed" || evaluation.basis === "empirical") return evaluation;
-  if (plan.detour) return blankOfDetour(task, evaluation, knowledge);
-  const blankServes = plan.backTitrant !== null && plan.release === null;
-  if (!blankServes && !plan.determines.every((ion) => knowledge.standards.some((s) => s.forIon === ion)))
-    return evaluation;
-  const standard = standardPlan(task, plan);
-  const alone = remembered("standard", task, standard, knowledge, () =>
-    standardEvaluation(standardTask(task, plan), standard, knowledge),
+  if (evaluation.status === "failed") return evaluation;
+  if (plan.detour && evaluation.basis !== "empirical") return blankOfDetour(task, evaluation, knowledge);
+  const standard = standardOf(task, plan, evaluation.basis, knowledge);
+  if (standard === null) return evaluation;
+  const alone = remembered("standard", task, standard.plan, knowledge, () =>
+    standardEvaluation(standard.task, standard.plan, knowledge),
   );
-  // An end point that is wrong by more than this is not one to standardise with: the method itself is wrong.
-  if (alone.status === "failed" || Math.abs(alone.biasFraction) > CANCELS_UP_TO) return evaluation;
-  return corrected(evaluation, (1 + evaluation.biasFraction) / (1 + alone.biasFraction) - 1);
+  return alone.status === "failed" || !cancels(alone.biasFraction)
+    ? evaluation
+    : corrected(evaluation, standardisedBias(evaluation.biasFraction, alone.biasFraction));
 }
+
+/** The titration with which the titrant of this one is standardised; null where its end point does not allow it or nothing serves. */
+export function standardOf(
+  task: Task,
+  plan: StagePlan,
+  basis: EndPointBasis,
+  knowledge: Knowledge,
+): { readonly task: Task; readonly plan: StagePlan } | null {
+  if (basis === "empirical" || plan.detour) return null;
+  const blankServes = plan.backTitrant !== null && plan.release === null;
+  if (!blankServes && !plan.determines.every((ion) => knowledge.standards.some((s) => s.forIon === ion))) return null;
+  return standardTitration(task, plan);
+}
+
+/** The same titration of what it determines alone, at the same level. */
+export const standardTitration = (task: Task, plan: StagePlan): { readonly task: Task; readonly plan: StagePlan } => ({
+  task: standardTask(task, plan),
+  plan: standardPlan(task, plan),
+});
+
+/** Whether an analyst would standardise with an end point that is wrong by so much; beyond, the method itself is wrong. */
+export const cancels = (biasOfStandard: number): boolean => Math.abs(biasOfStandard) <= CANCELS_UP_TO;
+
+/** What is left of a bias when the titrant was standardised with a titration of this bias; fractions. */
+export const standardisedBias = (bias: number, biasOfStandard: number): number => (1 + bias) / (1 + biasOfStandard) - 1;
 
 const corrected = (evaluation: StageEvaluation, biasFraction: number): StageEvaluation => ({
   ...evaluation,
@@ -49,8 +73,8 @@ function blankOfDetour(task: Task, evaluation: StageEvaluation, knowledge: Knowl
     metalPlan(plan, detour.metal, molPerL),
     knowledge,
   );
-  if (alone.status === "failed" || Math.abs(alone.biasFraction) > CANCELS_UP_TO) return evaluation;
-  if (!surplus) return corrected(evaluation, (1 + evaluation.biasFraction) / (1 + alone.biasFraction) - 1);
+  if (alone.status === "failed" || !cancels(alone.biasFraction)) return evaluation;
+  if (!surplus) return corrected(evaluation, standardisedBias(evaluation.biasFraction, alone.biasFraction));
   const blankMol = alone.foundMol - alone.presentMol;
   return corrected(evaluation, evaluation.biasFraction + (detour.analytePerMetal * blankMol) / evaluation.presentMol);
 }
