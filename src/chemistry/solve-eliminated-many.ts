@@ -1,100 +1,130 @@
 import type { EliminatedTerms } from "./solve-eliminated-terms.ts";
 
-const ROOT_TOLERANCE = 1e-15; // ln units
+const NOTHING = 1e-17; // share of every total below which species with several atoms change no digit
+const LAST_STEP = 1e-9; // relative; Newton squares it
 const ITERATIONS = 60;
 
 /** Blocks whose eliminated component also stands in species with several of its atoms, with scratch arrays. */
 export class ManyAtoms {
+  readonly inBlock: Uint8Array; // per block: 1 where it has such species
+  readonly holdKept: boolean; // whether any such species holds a kept component
+  inverseCurvature = 0; // of the balance last solved by `free`: 1 / (second derivative towards ln of the eliminated component)
   private readonly terms: EliminatedTerms;
-  private readonly value: Float64Array; // per homonuclear term: beta times powers of the kept components
-  private readonly cross: Float64Array; // per segment: second derivative towards ln of the eliminated component
+  private readonly value: Float64Array; // per term: beta times powers of the kept components
+  private readonly concentration: Float64Array; // per term, mol/L
+  private readonly atoms: Int32Array;
 
   constructor(terms: EliminatedTerms) {
+    const { beta, blockStart, atoms, segment } = terms.homonuclear;
     this.terms = terms;
-    this.value = new Float64Array(terms.homonuclear.beta.length);
-    this.cross = new Float64Array(terms.ligand.length);
+    this.inBlock = Uint8Array.from(terms.constant, (_, block) => (blockStart[block + 1]! > blockStart[block]! ? 1 : 0));
+    this.holdKept = segment.length > 0;
+    this.value = this.holdKept ? new Float64Array(beta.length) : beta;
+    this.concentration = new Float64Array(beta.length);
+    this.atoms = Int32Array.from(atoms);
+  }
+
+  /** Takes in the powers of the kept components, where these species hold any. */
+  values(power: Float64Array): void {
+    const { homonuclear, ligand, powerStart } = this.terms;
+    const { beta, start, segment, exponent } = homonuclear;
+    for (let i = 0; i < beta.length; i++) {
+      let w = beta[i]!;
+      for (let p = start[i]!; p < start[i + 1]!; p++) w *= power[powerStart[ligand[segment[p]!]!]! + exponent[p]! - 1]!;
+      this.value[i] = w;
+    }
   }
 
   /**
-   * Adds what a block holds to the balances and, its component eliminated, to the matrix.
-   * `m`: free concentration of the component; `sumOfSingle`: total over free of its species with one atom; `from`, `to`: its segments.
+   * Free concentration m of the component of a block: the root of total = m sum + (atoms times value times m^atoms, summed). The sum of the
+   * right side is convex and rising in m, so Newton from above comes down to the root without passing it.
    */
-  add(
-    block: number,
-    m: number,
-    sumOfSingle: number,
-    from: number,
-    to: number,
-    first: Float64Array,
-    second: Float64Array,
-    gradient: Float64Array,
-    hessian: Float64Array,
-  ): void {
-    const { cross, value } = this;
+  free(block: number, sumOfSingle: number, total: number, least: number): number {
+    let m = total / sumOfSingle;
+    this.inverseCurvature = 0;
+    if (!(m > 0)) {
+      this.clear(block);
+      return m === 0 ? 0 : m;
+    }
+    let several = this.hold(block, m);
+    if (several <= NOTHING * least) {
+      this.inverseCurvature = 1 / total;
+      return m;
+    }
+    if (several > total) {
+      m = this.upperBound(block, m, total);
+      several = this.hold(block, m);
+    }
+    for (let iteration = 0; iteration < ITERATIONS; iteration++) {
+      const step = (m * sumOfSingle + several - total) / (m * sumOfSingle + this.slope(block));
+      m -= step * m;
+      several = this.hold(block, m);
+      if (Math.abs(step) <= LAST_STEP) break;
+    }
+    this.inverseCurvature = 1 / (m * sumOfSingle + this.slope(block));
+    return m;
+  }
+
+  /** Adds what the species of a block with several atoms hold of the kept components to balances, cross derivatives and matrix. */
+  add(block: number, gradient: Float64Array, cross: Float64Array, hessian: Float64Array, withMatrix: boolean): void {
+    if (!this.holdKept) return;
+    const { concentration } = this;
     const { k, homonuclear, ligand } = this.terms;
     const { start, segment, exponent, atoms } = homonuclear;
-    const begin = homonuclear.blockStart[block]!;
-    const end = homonuclear.blockStart[block + 1]!;
-    let curvature = m * sumOfSingle;
-    for (let r = from; r < to; r++) {
-      const l = ligand[r]!;
-      cross[r] = m * first[r]!;
-      gradient[l] = gradient[l]! + cross[r]!;
-      hessian[l * k + l] = hessian[l * k + l]! + m * second[r]!;
-    }
-    for (let i = begin; i < end; i++) {
-      const n = atoms[i]!;
-      const c = value[i]! * m ** n;
-      curvature += n * n * c;
+    for (let i = homonuclear.blockStart[block]!; i < homonuclear.blockStart[block + 1]!; i++)
       for (let p = start[i]!; p < start[i + 1]!; p++) {
         const l = ligand[segment[p]!]!;
-        const bound = exponent[p]! * c;
-        cross[segment[p]!] = cross[segment[p]!]! + n * bound;
+        const bound = exponent[p]! * concentration[i]!;
+        cross[segment[p]!] = cross[segment[p]!]! + atoms[i]! * bound;
         gradient[l] = gradient[l]! + bound;
+        if (!withMatrix) continue;
         for (let q = start[i]!; q <= p; q++) {
           const cell = l * k + ligand[segment[q]!]!;
           hessian[cell] = hessian[cell]! + bound * exponent[q]!;
         }
       }
-    }
-    if (!(curvature > 0)) return; // nothing of it is there
-    for (let r = from; r < to; r++)
-      for (let c = from; c <= r; c++) {
-        const cell = ligand[r]! * k + ligand[c]!;
-        hessian[cell] = hessian[cell]! - (cross[r]! * cross[c]!) / curvature;
-      }
   }
 
-  /**
-   * Free concentration m of the component of a block: the root of total = m sum + (atoms times value times m^atoms, summed),
-   * found in ln m, where the balance is convex and rising.
-   */
-  free(block: number, sumOfSingle: number, total: number, power: Float64Array): number {
-    const { value } = this;
-    const { homonuclear, ligand, powerStart } = this.terms;
-    const { beta, start, segment, exponent, atoms } = homonuclear;
-    const begin = homonuclear.blockStart[block]!;
-    const end = homonuclear.blockStart[block + 1]!;
-    for (let i = begin; i < end; i++) {
-      let w = beta[i]!;
-      for (let p = start[i]!; p < start[i + 1]!; p++) w *= power[powerStart[ligand[segment[p]!]!]! + exponent[p]! - 1]!;
-      value[i] = w;
+  /** Amount of the component in species with several atoms at free concentration m, mol/L; leaves the concentration of each. */
+  private hold(block: number, m: number): number {
+    const { value, concentration, atoms } = this;
+    const { blockStart } = this.terms.homonuclear;
+    let held = 0;
+    const end = blockStart[block + 1]!;
+    for (let i = blockStart[block]!; i < end; i++) {
+      const n = atoms[i]!;
+      let c = value[i]! * m * m;
+      for (let a = 2; a < n; a++) c *= m;
+      concentration[i] = c;
+      held += n * c;
     }
-    let m = total / sumOfSingle; // an upper bound: Newton in ln m comes down to the root without passing it
-    if (!(m > 0)) return 0;
-    for (let iteration = 0; iteration < ITERATIONS; iteration++) {
-      let held = m * sumOfSingle;
-      let slope = held;
-      for (let i = begin; i < end; i++) {
-        const n = atoms[i]!;
-        const c = n * value[i]! * m ** n;
-        held += c;
-        slope += n * c;
-      }
-      const step = (Math.log(held / total) * held) / slope;
-      m *= Math.exp(-step);
-      if (Math.abs(step) <= ROOT_TOLERANCE) break;
+    return held;
+  }
+
+  /** Their part of the slope towards ln m. */
+  private slope(block: number): number {
+    const { concentration, atoms } = this;
+    const { blockStart } = this.terms.homonuclear;
+    let slope = 0;
+    const end = blockStart[block + 1]!;
+    for (let i = blockStart[block]!; i < end; i++) slope += atoms[i]! * atoms[i]! * concentration[i]!;
+    return slope;
+  }
+
+  /** The least free concentration at which one of the species alone would hold the total. */
+  private upperBound(block: number, m: number, total: number): number {
+    const { value, atoms } = this;
+    const { blockStart } = this.terms.homonuclear;
+    let bound = m;
+    for (let i = blockStart[block]!; i < blockStart[block + 1]!; i++) {
+      const n = atoms[i]!;
+      if (value[i]! > 0) bound = Math.min(bound, (total / (n * value[i]!)) ** (1 / n));
     }
-    return m;
+    return bound;
+  }
+
+  private clear(block: number): void {
+    const { blockStart } = this.terms.homonuclear;
+    this.concentration.fill(0, blockStart[block], blockStart[block + 1]);
   }
 }

@@ -55,9 +55,10 @@ export interface EliminatedTerms {
   readonly gone: Int32Array; // eliminated components
   readonly fixed: readonly { readonly component: number; lnFree: number }[];
   readonly constant: Float64Array; // per block
-  /** Per block: number of segments, 1 if it has mixed terms; then per segment: kept component, first power in the table, number of powers (1 or more). */
+  /** Per block: number of segments; then per segment: first power in the table, number of powers (1 or more). */
   readonly plan: Int32Array;
-  readonly ligand: Int32Array; // per segment: the kept component
+  readonly segmentStart: Int32Array; // per block: its first segment
+  readonly ligand: Int32Array; // per segment: the kept component, rising within a block
   readonly polynomial: Float64Array; // per segment: coefficients of powers 1, 2, ... ; gaps are 0
   readonly mixed: MixedTerms;
   readonly homonuclear: HomonuclearTerms;
@@ -245,9 +246,13 @@ function flatten(
   blocks: readonly Block[],
   k: number,
   sources: Sources,
-): Pick<EliminatedTerms, "constant" | "plan" | "ligand" | "polynomial" | "mixed" | "homonuclear" | "powerStart"> {
+): Pick<
+  EliminatedTerms,
+  "constant" | "plan" | "segmentStart" | "ligand" | "polynomial" | "mixed" | "homonuclear" | "powerStart"
+> {
   const highest = new Int32Array(k);
   const ligand: number[] = [];
+  const segmentStart: number[] = [0];
   let coefficients = 0;
   const mixed = emptyRows();
   const homonuclear = emptyRows();
@@ -268,6 +273,7 @@ function flatten(
       for (const species of powers) goesTo(species, POLYNOMIAL, coefficients++);
       highest[l] = Math.max(highest[l]!, powers.length);
     }
+    segmentStart.push(ligand.length);
     for (const term of [...block.mixed.values(), ...block.homonuclear])
       term.exponents.forEach((value, l) => (highest[l] = Math.max(highest[l]!, value)));
     for (const term of block.mixed.values()) goesTo(term.species, MIXED, addRow(mixed, term.exponents, place));
@@ -282,12 +288,12 @@ function flatten(
   for (let l = 0; l < k; l++) powerStart[l + 1] = powerStart[l]! + highest[l]!;
   const plan = blocks.flatMap((block) => [
     block.segments.size,
-    block.mixed.size > 0 ? 1 : 0,
-    ...[...block.segments].sort(([a], [b]) => a - b).flatMap(([l, powers]) => [l, powerStart[l]!, powers.length]),
+    ...[...block.segments].sort(([a], [b]) => a - b).flatMap(([l, powers]) => [powerStart[l]!, powers.length]),
   ]);
   return {
     constant: new Float64Array(blocks.length),
     plan: Int32Array.from(plan),
+    segmentStart: Int32Array.from(segmentStart),
     ligand: Int32Array.from(ligand),
     polynomial: new Float64Array(coefficients),
     mixed: packed(mixed),

@@ -119,6 +119,7 @@ export function eliminatedSolver(
   };
   const refill = (to: ArrayLike<number>): boolean => {
     fixed.set(to);
+    work.forget();
     return refillEliminated(terms, problem.lnBeta, fixed);
   };
   return { solve, refill };
