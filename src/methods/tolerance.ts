@@ -1,90 +1,150 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
+import { findBreak, type Probe } from "../numerics/find-break.ts";
 import { evaluate } from "./evaluate.ts";
+import type { StageEvaluation } from "./evaluate-stage.ts";
 import type { EvaluatedMethod } from "./methods.ts";
 import { releaseExcess } from "./release-plan.ts";
+import {
+  empiricalCeiling,
+  liesAsFlocs,
+  maskCeiling,
+  likelyJumps,
+  whatBreaks,
+  type LimitEnd,
+} from "./tolerance-ends.ts";
 import type { MethodMode, StagePlan, Task } from "./types.ts";
 import { combineDifference, stageBudget } from "./uncertainty.ts";
 
-/** The level of one component at which the requirement breaks, mol/L in the sample. */
+/** The level of one component up to which the method still meets the requirement, mol/L in the sample, and what ends it. */
 export interface ToleranceLimit {
   readonly component: ComponentId;
+  /** 0 where the method misses even with a trace of it; `HIGHEST_MOL_PER_L` where nothing ends the room up to there. */
   readonly limitMolPerL: number;
   readonly presentMolPerL: number;
   readonly withMasking: boolean;
+  readonly endsBy: LimitEnd;
 }
 
-const HIGHEST_MOL_PER_L = 2; // beyond this it is no longer a matrix component
-const LOWEST_MOL_PER_L = 1e-9;
-const HALVINGS = 9; // to about 2 % on the decade it lies in
+/** What a method has to bring for its limits: its mode and the plans of its titrations. */
+export interface LimitedMethod {
+  readonly mode: MethodMode;
+  readonly stages: readonly { readonly plan: StagePlan }[];
+}
 
-/** The task with one component of the matrix at another level. */
-function withLevel(task: Task, component: ComponentId, molPerL: number): Task {
-  return { ...task, matrix: task.matrix.map((c) => (c.component === component ? { ...c, molPerL } : c)) };
+/** Beyond this it is no longer a matrix component. */
+export const HIGHEST_MOL_PER_L = 2;
+const LOWEST_MOL_PER_L = 1e-9;
+/** How near the level that holds and the level that breaks are brought: the printed limit is confirmed 1 % on either side. */
+const RELATIVE = 0.004;
+
+/** The task with one component of the matrix at another level, or with it where the brief does not name it. */
+export function withLevel(task: Task, component: ComponentId, molPerL: number): Task {
+  const named = task.matrix.some((c) => c.component === component);
+  const matrix = named
+    ? task.matrix.map((c) => (c.component === component ? { ...c, molPerL } : c))
+    : [...task.matrix, { component, shown: component, molPerL, protonsPerComponent: 0 }];
+  return { ...task, matrix };
 }
 
 /** The excess of a release is not counted: more of it goes in until the first reading shows some. */
 const enoughFor = (task: Task, plan: StagePlan, knowledge: Knowledge): StagePlan =>
   plan.release === null ? plan : { ...plan, excessTitrantMolPerL: releaseExcess(task, plan, knowledge) };
 
-/** Whether every result of the method still meets the requirement; a difference is judged as the difference it is. */
-function holds(task: Task, mode: MethodMode, plans: readonly StagePlan[], knowledge: Knowledge): boolean {
+/** Every titration of a method evaluated for one sample, and by how much the worst result exceeds the requirement, in %. */
+interface Standing {
+  readonly evaluations: readonly StageEvaluation[];
+  readonly excess: number; // Infinity where no result can be trusted
+}
+
+function standing(task: Task, mode: MethodMode, plans: readonly StagePlan[], knowledge: Knowledge): Standing {
   const evaluations = plans.map((plan) => evaluate(task, enoughFor(task, plan, knowledge), knowledge));
-  if (evaluations.some((e) => e.status === "failed" || e.blockedBy.length > 0)) return false;
+  if (evaluations.some((e) => e.status === "failed" || e.blockedBy.length > 0))
+    return { evaluations, excess: Number.POSITIVE_INFINITY };
   const [whole, part] = evaluations;
+  // A difference is judged as the difference it is.
   const expanded =
     mode === "difference" && whole && part
       ? [stageBudget(task, part, knowledge).expanded, combineDifference(task, whole, part, knowledge).budget.expanded]
       : evaluations.map((e) => stageBudget(task, e, knowledge).expanded);
-  return expanded.every((u) => 100 * u <= task.requirementPercent);
+  return { evaluations, excess: Math.max(...expanded.map((u) => 100 * u - task.requirementPercent)) };
 }
 
-/** Up to where an empirical mask is reported to hold, and not used up, mol/L in the sample; Infinity where the equilibrium decides. */
-function empiricalCeiling(
-  task: Task,
-  plans: readonly StagePlan[],
-  component: ComponentId,
-  knowledge: Knowledge,
-): number {
-  const dilution = task.portion.volumeML / task.portion.titrationVolumeML;
-  const steps = plans.flatMap((p) => p.masking.filter((m) => m.basis === "empirical" && m.masks.includes(component)));
-  const limits = steps.flatMap((step) => [
-    step.molPerL / 2, // two ligands a metal ion at the least
-    ...knowledge.masking
-      .filter((r) => r.agent === step.agent && r.ion === component && r.upToMolPerL !== null)
-      .map((r) => r.upToMolPerL!),
-  ]);
-  return Math.min(Number.POSITIVE_INFINITY, ...limits) / dilution;
+interface Limit {
+  readonly molPerL: number;
+  readonly endsBy: LimitEnd;
 }
 
+/** The titrations whose room is asked for; `asProposed` where they are those of the method and not the same without a mask. */
+interface Asked {
+  readonly mode: MethodMode;
+  readonly plans: readonly StagePlan[];
+  readonly asProposed: boolean;
+}
+
+/** The level up to which a component is borne by these plans, everything else in the sample staying as it is. */
 function limitOf(
   task: Task,
-  mode: MethodMode,
-  plans: readonly StagePlan[],
+  { mode, plans, asProposed }: Asked,
   component: ComponentId,
-  present: number,
+  presentMolPerL: number,
   knowledge: Knowledge,
-): number | null {
-  const at = (molPerL: number): boolean => holds(withLevel(task, component, molPerL), mode, plans, knowledge);
-  const good = at(present);
-  let low = good ? present : LOWEST_MOL_PER_L;
-  let high = good ? HIGHEST_MOL_PER_L : present;
-  if (good && at(high)) return Number.POSITIVE_INFINITY; // no limit up to here
-  if (!good && !at(low)) return null;
-  // First by decades, then by halving the logarithm: the criterion may jump where a dye blocks.
-  while (high / low > 10) {
-    const middle = low * 10;
-    if (at(middle)) low = middle;
-    else {
-      high = middle;
-      break;
-    }
+): Limit {
+  const seen = new Map<number, Standing>();
+  const standingAt = (molPerL: number): Standing => {
+    const known = seen.get(molPerL);
+    const found = known ?? standing(withLevel(task, component, molPerL), mode, plans, knowledge);
+    seen.set(molPerL, found);
+    return found;
+  };
+  const flocsIn = ({ evaluations }: Standing): boolean => evaluations.some((e) => liesAsFlocs(e, component, knowledge));
+  const from = Math.max(presentMolPerL, LOWEST_MOL_PER_L);
+  const here = standingAt(from);
+  // Flocs that the method as proposed puts up with are no news.
+  const flocsBorne = asProposed && here.excess <= 0 && flocsIn(here);
+  const at = (x: number): Probe => {
+    const found = standingAt(x);
+    return { x, excess: !flocsBorne && flocsIn(found) ? Number.POSITIVE_INFINITY : found.excess };
+  };
+  const why = (molPerL: number): LimitEnd => whatBreaks(standingAt(molPerL).evaluations, component, knowledge);
+  const guesses = [
+    ...linearGuesses(task, here, component, from, knowledge),
+    ...likelyJumps(task, here.evaluations, component, knowledge),
+  ].filter((g) => g < HIGHEST_MOL_PER_L);
+  const start = at(from);
+  let other: Probe;
+  if (start.excess <= 0) {
+    const near = Math.min(...guesses.filter((g) => g > from)) * (1 + RELATIVE / 3);
+    other = at(Math.min(near, HIGHEST_MOL_PER_L));
+    if (other.excess <= 0) other = at(HIGHEST_MOL_PER_L);
+    if (other.excess <= 0) return { molPerL: HIGHEST_MOL_PER_L, endsBy: "none" };
+  } else {
+    other = at(LOWEST_MOL_PER_L);
+    if (other.excess > 0) return { molPerL: 0, endsBy: why(LOWEST_MOL_PER_L) };
   }
-  for (let i = 0; i < HALVINGS; i++) {
-    const middle = Math.sqrt(low * high);
-    if (at(middle)) low = middle;
-    else high = middle;
-  }
-  return low;
+  const [good, bad] = start.excess <= 0 ? [start, other] : [other, start];
+  const found = findBreak((x) => at(x).excess, good, bad, { relative: RELATIVE, guesses });
+  return { molPerL: found.holds.x, endsBy: why(found.breaks.x) };
+}
+
+/** Where the requirement would break if the bias grew in proportion to the level, which it does while the component is bound alike. */
+function linearGuesses(
+  task: Task,
+  { evaluations, excess }: Standing,
+  component: ComponentId,
+  fromMolPerL: number,
+  knowledge: Knowledge,
+): number[] {
+  return evaluations.flatMap((e) => {
+    const own = e.biasOf.get(component) ?? 0;
+    if (e.status === "failed" || own === 0) return [];
+    const bias = e.biasFraction;
+    const room = task.requirementPercent / 100 - (stageBudget(task, e, knowledge).expanded - Math.abs(bias));
+    if (!(room > 0)) return [];
+    const changes = [(room - bias) / own, (-room - bias) / own].filter((t) => (excess <= 0 ? t > 0 : t < 0 && t > -1));
+    return changes.length === 0
+      ? []
+      : [fromMolPerL * (1 + (excess <= 0 ? Math.min(...changes) : Math.max(...changes)))];
+  });
 }
 
 /** How much richer in what disturbs an ordinary sample may be than its brief expects (common practice). */
@@ -105,27 +165,56 @@ export function bearsRicherMatrix(task: Task, method: EvaluatedMethod, knowledge
   if (rows.length === 0 || method.results.some((r) => 100 * r.budget.expanded > task.requirementPercent)) return null;
   if (rows.some((c) => empiricalCeiling(task, plans, c.component, knowledge) < RICHER * c.molPerL)) return false;
   const matrix = task.matrix.map((c) => (counts(c.component) ? { ...c, molPerL: RICHER * c.molPerL } : c));
-  return holds({ ...task, matrix }, method.mode, plans, knowledge);
+  return standing({ ...task, matrix }, method.mode, plans, knowledge).excess <= 0;
 }
 
-/** Tolerance limits of a method for the components of the matrix, with its masking, and without it where it masks. */
-export function toleranceLimits(task: Task, method: EvaluatedMethod, knowledge: Knowledge): ToleranceLimit[] {
+/** The plans without the agents that mask a component, and the sample without what only they kept out: how much of it alone would be borne. */
+function unmasked(
+  task: Task,
+  plans: readonly StagePlan[],
+  component: ComponentId,
+): { readonly task: Task; readonly plans: readonly StagePlan[] } {
+  const steps = plans.flatMap((p) => p.masking);
+  const agents = new Set(steps.filter((m) => m.masks.includes(component)).map((m) => m.agent));
+  const kept = new Set(steps.filter((m) => !agents.has(m.agent)).flatMap((m) => m.masks));
+  const freed = new Set(steps.filter((m) => agents.has(m.agent)).flatMap((m) => m.masks.filter((c) => !kept.has(c))));
+  return {
+    task: { ...task, matrix: task.matrix.filter((c) => c.component === component || !freed.has(c.component)) },
+    plans: plans.map((p) => ({ ...p, masking: p.masking.filter((m) => !agents.has(m.agent)) })),
+  };
+}
+
+/**
+ * Tolerance limits of a method, with its masking, and without it where it masks the component: levels found by root finding, every one with what
+ * ends it. What carries charge and nothing else, and what a separation takes out, has none.
+ * @param components the matrix of the brief where nothing is said; others are looked at as if the sample held them too
+ */
+export function toleranceLimits(
+  task: Task,
+  method: LimitedMethod,
+  knowledge: Knowledge,
+  components: readonly ComponentId[] = task.matrix.map((c) => c.component),
+): ToleranceLimit[] {
   const plans = method.stages.map((s) => s.plan);
-  const bare = plans.map((p) => ({ ...p, masking: [] }));
-  return task.matrix.flatMap(({ component, molPerL }) => {
+  return components.flatMap((component) => {
     if (knowledge.components.get(component)?.kind === "inert" || plans.some((p) => p.removed.includes(component)))
       return [];
-    const rows: ToleranceLimit[] = [];
-    const masked = plans.some((p) => p.masking.some((m) => m.masks.includes(component)));
-    const limit = limitOf(task, method.mode, plans, component, molPerL, knowledge);
-    const ceiling = empiricalCeiling(task, plans, component, knowledge);
-    const least = limit === null ? null : Math.min(limit, ceiling);
-    if (least !== null && Number.isFinite(least))
-      rows.push({ component, limitMolPerL: least, presentMolPerL: molPerL, withMasking: true });
-    if (masked) {
-      const without = limitOf(task, method.mode, bare, component, molPerL, knowledge);
-      if (without !== null && Number.isFinite(without))
-        rows.push({ component, limitMolPerL: without, presentMolPerL: molPerL, withMasking: false });
+    const presentMolPerL = task.matrix.find((c) => c.component === component)?.molPerL ?? 0;
+    const row = ({ molPerL, endsBy }: Limit, withMasking: boolean): ToleranceLimit => ({
+      component,
+      limitMolPerL: molPerL,
+      presentMolPerL,
+      withMasking,
+      endsBy,
+    });
+    const { mode } = method;
+    const masked = limitOf(task, { mode, plans, asProposed: true }, component, presentMolPerL, knowledge);
+    const ceiling = maskCeiling(task, plans, component, knowledge);
+    const rows = [row(ceiling.molPerL < masked.molPerL ? ceiling : masked, true)];
+    if (plans.some((p) => p.masking.some((m) => m.masks.includes(component)))) {
+      const bare = unmasked(task, plans, component);
+      const alone = { mode, plans: bare.plans, asProposed: false };
+      rows.push(row(limitOf(bare.task, alone, component, presentMolPerL, knowledge), false));
     }
     return rows;
   });

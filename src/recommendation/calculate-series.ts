@@ -120,7 +120,7 @@ function conditionalSeries(
 const ML_PER_L = 1000;
 
 /** The plan that a stage of the document was written from; ions come back from spellings to components. */
-function planOf(method: RecommendedMethod, stage: StageDocument, knowledge: Knowledge): StagePlan {
+export function planOf(method: RecommendedMethod, stage: StageDocument, knowledge: Knowledge): StagePlan {
   const component = (spelling: string): ComponentId => componentOf(spelling, knowledge);
   const titrant = stage.titrant ?? method.titrant;
   const back = stage.mode === "direct" ? null : (stage.backTitrant ?? method.backTitrant);

@@ -4,6 +4,7 @@ import {
   DETECTIONS,
   FINDING_KINDS,
   INDICATOR_CLASSES,
+  LIMIT_ENDS,
   MASKING_VIAS,
   METHOD_MODES,
   PREPARATION_STEPS,
@@ -187,7 +188,13 @@ export const methodSchema = z.strictObject({
   verdict: z.enum(VERDICTS),
   reservations: z.array(text),
   tolerance: z.array(
-    z.strictObject({ component: text, limitMolPerL: level, presentMolPerL: level, withMasking: z.boolean() }),
+    z.strictObject({
+      component: text,
+      limitMolPerL: level, // 0: not even a trace is borne; with endsBy "none" the highest level looked at
+      presentMolPerL: level,
+      withMasking: z.boolean(),
+      endsBy: z.enum(LIMIT_ENDS),
+    }),
   ),
   uncertaintyBudget: z.array(z.strictObject({ source: text, percent: level })), // standard uncertainties, largest first
   workingConditions: z.strictObject({

@@ -12,6 +12,16 @@ export const METHOD_MODES = [
 ] as const;
 export const STAGE_MODES = ["direct", "back", "displacement"] as const;
 export const VERDICTS = ["fit", "fit-with-reservations", "not-fit"] as const;
+/** What ends the room for a component; "none": nothing does up to the level given. */
+export const LIMIT_ENDS = [
+  "requirement",
+  "blocking",
+  "masking-used-up",
+  "empirical-record",
+  "precipitation",
+  "fails",
+  "none",
+] as const;
 export const MASKING_VIAS = ["complexation", "precipitation", "reduction", "oxidation", "kinetic"] as const;
 export const RULE_EFFECTS = ["excludes", "requires", "favours", "disfavours", "cautions"] as const;
 export const FINDING_KINDS = [

@@ -238,9 +238,10 @@ export function methodDocument(
     reservations: [...judged.reservations],
     tolerance: tolerance.map((t) => ({
       component: ion(t.component),
-      limitMolPerL: signif(t.limitMolPerL, 3),
+      limitMolPerL: signif(t.limitMolPerL, 4),
       presentMolPerL: signif(t.presentMolPerL, 6),
       withMasking: t.withMasking,
+      endsBy: t.endsBy,
     })),
     uncertaintyBudget: worst.budget.terms.map((t) => ({ source: t.source, percent: signif(100 * t.relative, 3) })),
     workingConditions: {

@@ -1,5 +1,6 @@
 import type { Because, RecommendedMethod, StageDocument } from "./contract.ts";
 import { bullet, row, wrap } from "./text-layout.ts";
+import { LIMIT_END_WORDS } from "./limit-words.ts";
 import { mergedStatements } from "./merge-statements.ts";
 import { changeWords } from "./text-amounts.ts";
 import { figures, listed, percent, reagentWords, signedPercent } from "./text-words.ts";
@@ -153,20 +154,28 @@ export function masking(method: RecommendedMethod): readonly (readonly string[])
     ...[...new Set(masked)].map(bullet),
     ...method.tolerance.map((limit) =>
       bullet(
-        `${limit.component}: ${limitWords(limit.presentMolPerL, limit.limitMolPerL)}${steps.length === 0 ? "" : limit.withMasking ? " with the masking" : " without it"}`,
+        `${limit.component}: ${limitWords(limit.presentMolPerL, limit.limitMolPerL)}${steps.length === 0 ? "" : limit.withMasking ? " with the masking" : " without it"}${endWords(limit)}`,
       ),
     ),
   ];
 }
+
+/** What ends the room, where it is not the requirement. */
+const endWords = ({ endsBy, limitMolPerL, presentMolPerL }: RecommendedMethod["tolerance"][number]): string =>
+  endsBy === "requirement" || endsBy === "none" || limitMolPerL === 0 || limitMolPerL > FAR_ABOVE * presentMolPerL
+    ? ""
+    : `; ${LIMIT_END_WORDS[endsBy]}`;
 
 /** What is there and what is borne, in the unit in which the first reads well. */
 function limitWords(presentMolPerL: number, limitMolPerL: number): string {
   const [times, unit] =
     presentMolPerL >= 0.1 ? [1, "mol/L"] : presentMolPerL >= 1e-4 ? [1e3, "mmol/L"] : [1e6, "µmol/L"];
   const borne =
-    limitMolPerL > FAR_ABOVE * presentMolPerL
-      ? "more than a hundred times as much"
-      : `up to ${figures(times * limitMolPerL)} ${unit}`;
+    limitMolPerL === 0
+      ? "not even a trace"
+      : limitMolPerL > FAR_ABOVE * presentMolPerL
+        ? "more than a hundred times as much"
+        : `up to ${figures(times * limitMolPerL)} ${unit}`;
   return `${figures(times * presentMolPerL)} ${unit} is there, ${borne} is borne`;
 }
 

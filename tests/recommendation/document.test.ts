@@ -31,7 +31,13 @@ async function written(task: Task, plan: StagePlan, tolerance: readonly Toleranc
 
 describe("methodDocument", () => {
   const task = inventedTask({ "Zn2+": 0.008 }, { "Al3+": 0.001, "Cd2+": 0.00002, "Mn2+": 0.0001 });
-  const limit = { component: "Cd2+", limitMolPerL: 0.0000512345, presentMolPerL: 0.00002, withMasking: true };
+  const limit = {
+    component: "Cd2+",
+    limitMolPerL: 0.0000512345,
+    presentMolPerL: 0.00002,
+    withMasking: true,
+    endsBy: "requirement",
+  } as const;
   const plan = inventedPlan({ masking: [fluoride], removed: ["Mn2+"], preparation: ["separate"] });
   let written1: Awaited<ReturnType<typeof written>>;
   let document: RecommendedMethod;
@@ -64,7 +70,7 @@ describe("methodDocument", () => {
   });
   it("carries the cautions of what it uses and the limits it was given", () => {
     expect(document.cautions.join("\n")).toMatch(/hydrofluoric/);
-    expect(document.tolerance).toEqual([{ ...limit, limitMolPerL: 0.0000512 }]);
+    expect(document.tolerance).toEqual([{ ...limit, limitMolPerL: 0.00005123 }]);
   });
   it("writes ions as the brief wrote them", async () => {
     const spelt: Task = { ...task, matrix: [], analytes: task.analytes.map((row) => ({ ...row, shown: "zinc(II)" })) };

@@ -83,7 +83,9 @@ export const METHOD: RecommendedMethod = {
   meetsRequirement: true,
   verdict: "fit",
   reservations: [],
-  tolerance: [{ component: "Al3+", limitMolPerL: 0.021, presentMolPerL: 0.002, withMasking: true }],
+  tolerance: [
+    { component: "Al3+", limitMolPerL: 0.021, presentMolPerL: 0.002, withMasking: true, endsBy: "requirement" },
+  ],
   uncertaintyBudget: [
     { source: "burette", percent: 0.08 },
     { source: "end point", percent: 0.05 },

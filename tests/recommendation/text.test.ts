@@ -93,7 +93,9 @@ describe("recommendationText", () => {
         { source: "Cd2+", percent: 0.02 },
       ],
     };
-    const tolerance = [{ component: "Na+", limitMolPerL: 0.5, presentMolPerL: 0.001, withMasking: true }];
+    const tolerance = [
+      { component: "Na+", limitMolPerL: 0.5, presentMolPerL: 0.001, withMasking: true, endsBy: "requirement" } as const,
+    ];
     const flat = textWith({ methods: [{ ...METHOD, predicted, tolerance }] }).replace(/\s+/g, " ");
     expect(flat).toContain("Bias +0.04 %: Cd2+ +0.02 %.");
     expect(flat).toContain("Na+: 1 mmol/L is there, more than a hundred times as much is borne");

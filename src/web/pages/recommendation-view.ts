@@ -9,7 +9,8 @@ import { amount, fixed, percent, signed, signedPercent } from "../format/numbers
 import { FINDING_WORDS, MODE_WORDS, VERDICT_WORDS, wordsOf } from "../format/words.ts";
 import { joinMarkup } from "../render/markup.ts";
 import type { FactListing, FigureSeries, WebServices } from "../services.ts";
-import { errorParts, roomViews, stageViews } from "./method-view.ts";
+import { errorParts, stageViews } from "./method-view.ts";
+import { roomViews } from "./room-view.ts";
 import { marginFacts, reasonViews } from "./reasons-view.ts";
 import { constantViews } from "./constants-used-view.ts";
 import { questionRows } from "./question-view.ts";
@@ -131,7 +132,7 @@ function methodView(
             uncertainty: percent(p.relativeExpandedUncertaintyPercent),
           })),
     parts: errorParts(method, names),
-    room: roomViews(method, names),
+    room: roomViews(method.tolerance, names),
     interferents: method.stages.flatMap((stage, i) =>
       stage.interferents.map((x) => ({
         stage: String(i + 1),
