@@ -1,4 +1,5 @@
 import { ManyAtoms } from "./solve-eliminated-many.ts";
+import type { EliminatedStructure } from "./solve-eliminated-structure.ts";
 import type { EliminatedTerms } from "./solve-eliminated-terms.ts";
 
 /**
@@ -10,7 +11,8 @@ export class EliminatedBalances {
   readonly gradient: Float64Array; // balance of each kept component, mol/L
   readonly hessian: Float64Array; // lower triangle, k x k
   readonly freeGone: Float64Array; // per eliminated component, mol/L, after `combine`
-  private readonly terms: EliminatedTerms;
+  private readonly structure: EliminatedStructure;
+  private terms: EliminatedTerms;
   private readonly power: Float64Array;
   private readonly sum: Float64Array; // per block: total over free of the species with one atom
   private readonly first: Float64Array; // per segment: sum of exponent times term, mixed terms included
@@ -21,20 +23,28 @@ export class EliminatedBalances {
   private readonly plainPair: boolean;
 
   constructor(terms: EliminatedTerms) {
-    const { k } = terms;
+    const { structure } = terms;
+    const { k } = structure;
+    this.structure = structure;
     this.terms = terms;
     this.free = new Float64Array(k);
     this.gradient = new Float64Array(k);
     this.hessian = new Float64Array(k * k);
-    this.freeGone = new Float64Array(terms.gone.length);
-    this.power = new Float64Array(terms.powerStart[k]!);
-    this.sum = new Float64Array(terms.constant.length);
-    this.first = new Float64Array(terms.ligand.length);
-    this.second = new Float64Array(terms.ligand.length);
-    this.cross = new Float64Array(terms.ligand.length);
-    this.mixedValue = new Float64Array(terms.mixed.beta.length);
+    this.freeGone = new Float64Array(structure.gone.length);
+    this.power = new Float64Array(structure.powerStart[k]!);
+    this.sum = new Float64Array(structure.nBlocks);
+    this.first = new Float64Array(structure.ligand.length);
+    this.second = new Float64Array(structure.ligand.length);
+    this.cross = new Float64Array(structure.ligand.length);
+    this.mixedValue = new Float64Array(structure.mixed.n);
     this.manyAtoms = new ManyAtoms(terms);
-    this.plainPair = k === 2 && terms.mixed.beta.length === 0 && !this.manyAtoms.holdKept;
+    this.plainPair = k === 2 && structure.mixed.n === 0 && !this.manyAtoms.holdKept;
+  }
+
+  /** Takes terms of the same structure with other constants. */
+  use(terms: EliminatedTerms): void {
+    this.terms = terms;
+    this.manyAtoms.use(terms);
   }
 
   /** Sums and moments of all terms at the free concentrations. */
@@ -47,7 +57,8 @@ export class EliminatedBalances {
   /** Powers of the free concentrations, sums and moments of the terms of one kept component. Nothing else stands in this function, so that its arrays stay at hand. */
   private polynomials(): void {
     const { free, power, sum, first, second } = this;
-    const { k, constant, plan, polynomial, powerStart } = this.terms;
+    const { k, plan, powerStart } = this.structure;
+    const { constant, polynomial } = this.terms;
     for (let l = 0; l < k; l++) {
       const value = free[l]!;
       let product = 1;
@@ -94,14 +105,14 @@ export class EliminatedBalances {
   combine(keptTotal: Float64Array, goneTotal: Float64Array, least: number, withMatrix: boolean): void {
     if (this.plainPair) this.combinePair(keptTotal, goneTotal, least, withMatrix);
     else this.combineAny(keptTotal, goneTotal, least, withMatrix);
-    const { k } = this.terms;
+    const { k } = this.structure;
     if (withMatrix) for (let l = 0; l < k; l++) if (keptTotal[l] === 0) this.hessian[l * k + l] = 1;
   }
 
   /** Two kept components and no species with both: everything stays in local variables. */
   private combinePair(keptTotal: Float64Array, goneTotal: Float64Array, least: number, withMatrix: boolean): void {
     const { sum, first, second, gradient, hessian, freeGone, manyAtoms } = this;
-    const { ligand, segmentStart } = this.terms;
+    const { ligand, segmentStart } = this.structure;
     const blocks = sum.length;
     let g0 = -keptTotal[0]!;
     let g1 = -keptTotal[1]!;
@@ -149,7 +160,7 @@ export class EliminatedBalances {
 
   private combineAny(keptTotal: Float64Array, goneTotal: Float64Array, least: number, withMatrix: boolean): void {
     const { sum, first, second, cross, gradient, hessian, freeGone, manyAtoms } = this;
-    const { k, ligand, segmentStart, mixed } = this.terms;
+    const { k, ligand, segmentStart, mixed } = this.structure;
     const blocks = sum.length;
     for (let l = 0; l < k; l++) gradient[l] = -keptTotal[l]!;
     if (withMatrix) for (let q = k * k - 1; q >= 0; q--) hessian[q] = 0;
@@ -194,10 +205,11 @@ export class EliminatedBalances {
   /** Values of the mixed terms, added to the sums and first moments of their blocks. */
   private mixedMoments(): void {
     const { power, mixedValue, sum, first } = this;
-    const { mixed, ligand, powerStart } = this.terms;
+    const { mixed, ligand, powerStart } = this.structure;
+    const { mixedBeta } = this.terms;
     for (let block = 0; block < sum.length; block++)
       for (let i = mixed.blockStart[block]!; i < mixed.blockStart[block + 1]!; i++) {
-        let w = mixed.beta[i]!;
+        let w = mixedBeta[i]!;
         for (let p = mixed.start[i]!; p < mixed.start[i + 1]!; p++)
           w *= power[powerStart[ligand[mixed.segment[p]!]!]! + mixed.exponent[p]! - 1]!;
         mixedValue[i] = w;
@@ -212,7 +224,7 @@ export class EliminatedBalances {
   /** Adds the second moments of the mixed terms of a block, times `m`, to the matrix. */
   private addMixed(block: number, m: number): void {
     const { mixedValue, hessian } = this;
-    const { k, mixed, ligand } = this.terms;
+    const { k, mixed, ligand } = this.structure;
     for (let i = mixed.blockStart[block]!; i < mixed.blockStart[block + 1]!; i++)
       for (let p = mixed.start[i]!; p < mixed.start[i + 1]!; p++) {
         const row = ligand[mixed.segment[p]!]! * k;

@@ -1,3 +1,4 @@
+import type { EliminatedStructure } from "./solve-eliminated-structure.ts";
 import type { EliminatedTerms } from "./solve-eliminated-terms.ts";
 
 const NOTHING = 1e-17; // share of every total below which species with several atoms change no digit
@@ -9,25 +10,35 @@ export class ManyAtoms {
   readonly inBlock: Uint8Array; // per block: 1 where it has such species
   readonly holdKept: boolean; // whether any such species holds a kept component
   inverseCurvature = 0; // of the balance last solved by `free`: 1 / (second derivative towards ln of the eliminated component)
-  private readonly terms: EliminatedTerms;
-  private readonly value: Float64Array; // per term: beta times powers of the kept components
+  private readonly structure: EliminatedStructure;
+  private beta: Float64Array;
+  private value: Float64Array; // per term: beta times powers of the kept components
   private readonly concentration: Float64Array; // per term, mol/L
-  private readonly atoms: Int32Array;
 
   constructor(terms: EliminatedTerms) {
-    const { beta, blockStart, atoms, segment } = terms.homonuclear;
-    this.terms = terms;
-    this.inBlock = Uint8Array.from(terms.constant, (_, block) => (blockStart[block + 1]! > blockStart[block]! ? 1 : 0));
+    const { structure, homonuclearBeta } = terms;
+    const { n, blockStart, segment } = structure.homonuclear;
+    this.structure = structure;
+    this.inBlock = Uint8Array.from({ length: structure.nBlocks }, (_, block) =>
+      blockStart[block + 1]! > blockStart[block]! ? 1 : 0,
+    );
     this.holdKept = segment.length > 0;
-    this.value = this.holdKept ? new Float64Array(beta.length) : beta;
-    this.concentration = new Float64Array(beta.length);
-    this.atoms = Int32Array.from(atoms);
+    this.beta = homonuclearBeta;
+    this.value = this.holdKept ? new Float64Array(n) : homonuclearBeta;
+    this.concentration = new Float64Array(n);
+  }
+
+  /** Takes terms of the same structure with other constants. */
+  use({ homonuclearBeta }: EliminatedTerms): void {
+    this.beta = homonuclearBeta;
+    if (!this.holdKept) this.value = homonuclearBeta;
   }
 
   /** Takes in the powers of the kept components, where these species hold any. */
   values(power: Float64Array): void {
-    const { homonuclear, ligand, powerStart } = this.terms;
-    const { beta, start, segment, exponent } = homonuclear;
+    const { beta } = this;
+    const { homonuclear, ligand, powerStart } = this.structure;
+    const { start, segment, exponent } = homonuclear;
     for (let i = 0; i < beta.length; i++) {
       let w = beta[i]!;
       for (let p = start[i]!; p < start[i + 1]!; p++) w *= power[powerStart[ligand[segment[p]!]!]! + exponent[p]! - 1]!;
@@ -69,7 +80,7 @@ export class ManyAtoms {
   add(block: number, gradient: Float64Array, cross: Float64Array, hessian: Float64Array, withMatrix: boolean): void {
     if (!this.holdKept) return;
     const { concentration } = this;
-    const { k, homonuclear, ligand } = this.terms;
+    const { k, homonuclear, ligand } = this.structure;
     const { start, segment, exponent, atoms } = homonuclear;
     for (let i = homonuclear.blockStart[block]!; i < homonuclear.blockStart[block + 1]!; i++)
       for (let p = start[i]!; p < start[i + 1]!; p++) {
@@ -87,8 +98,8 @@ export class ManyAtoms {
 
   /** Amount of the component in species with several atoms at free concentration m, mol/L; leaves the concentration of each. */
   private hold(block: number, m: number): number {
-    const { value, concentration, atoms } = this;
-    const { blockStart } = this.terms.homonuclear;
+    const { value, concentration } = this;
+    const { blockStart, atoms } = this.structure.homonuclear;
     let held = 0;
     const end = blockStart[block + 1]!;
     for (let i = blockStart[block]!; i < end; i++) {
@@ -103,8 +114,8 @@ export class ManyAtoms {
 
   /** Their part of the slope towards ln m. */
   private slope(block: number): number {
-    const { concentration, atoms } = this;
-    const { blockStart } = this.terms.homonuclear;
+    const { concentration } = this;
+    const { blockStart, atoms } = this.structure.homonuclear;
     let slope = 0;
     const end = blockStart[block + 1]!;
     for (let i = blockStart[block]!; i < end; i++) slope += atoms[i]! * atoms[i]! * concentration[i]!;
@@ -113,8 +124,8 @@ export class ManyAtoms {
 
   /** The least free concentration at which one of the species alone would hold the total. */
   private upperBound(block: number, m: number, total: number): number {
-    const { value, atoms } = this;
-    const { blockStart } = this.terms.homonuclear;
+    const { value } = this;
+    const { blockStart, atoms } = this.structure.homonuclear;
     let bound = m;
     for (let i = blockStart[block]!; i < blockStart[block + 1]!; i++) {
       const n = atoms[i]!;
@@ -124,7 +135,7 @@ export class ManyAtoms {
   }
 
   private clear(block: number): void {
-    const { blockStart } = this.terms.homonuclear;
+    const { blockStart } = this.structure.homonuclear;
     this.concentration.fill(0, blockStart[block], blockStart[block + 1]);
   }
 }

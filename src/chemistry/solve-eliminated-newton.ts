@@ -1,5 +1,6 @@
 import { factorScaled, solveScaled } from "../numerics/cholesky.ts";
 import { EliminatedBalances } from "./solve-eliminated-balances.ts";
+import type { EliminatedStructure } from "./solve-eliminated-structure.ts";
 import type { EliminatedTerms } from "./solve-eliminated-terms.ts";
 import { ABSENT_LN_FREE } from "./solve-load.ts";
 
@@ -11,12 +12,17 @@ const MAX_STEP = 2; // ln units
 const ITERATIONS = 30; // beyond it the general solver takes over
 const WELL_CONDITIONED = 1e-7; // least share of a total that still buffers its free concentration; below it digits are lost
 
-/** Newton on the components that are kept, with its scratch arrays. */
+const workspaces = new WeakMap<EliminatedStructure, EliminatedNewton>();
+
+/** Newton on the components that are kept, with its scratch arrays; one for all solvers of a structure, for nothing in it outlives a solve but what `use` resets. */
 export class EliminatedNewton {
+  readonly keptTotal: Float64Array;
+  readonly goneTotal: Float64Array;
+  readonly held: Float64Array; // in species of two eliminated components, per component
   readonly heldBefore: Float64Array;
   residual = 0;
   worst = -1;
-  private readonly terms: EliminatedTerms;
+  terms: EliminatedTerms;
   private readonly balances: EliminatedBalances;
   private readonly step: Float64Array;
   private readonly scale: Float64Array;
@@ -24,23 +30,39 @@ export class EliminatedNewton {
   private conditioned = false;
 
   constructor(terms: EliminatedTerms) {
+    const { k, nComponents } = terms.structure;
     this.terms = terms;
-    this.heldBefore = new Float64Array(terms.nComponents);
+    this.keptTotal = new Float64Array(k);
+    this.goneTotal = new Float64Array(terms.structure.gone.length);
+    this.held = new Float64Array(nComponents);
+    this.heldBefore = new Float64Array(nComponents);
     this.balances = new EliminatedBalances(terms);
-    this.step = new Float64Array(terms.k);
-    this.scale = new Float64Array(terms.k);
-    this.answer = new Float64Array(terms.k).fill(NaN);
+    this.step = new Float64Array(k);
+    this.scale = new Float64Array(k);
+    this.answer = new Float64Array(k).fill(NaN);
   }
 
-  /** To be called when the constants have changed. */
-  forget(): void {
+  /** The workspace of the structure of these terms. */
+  static of(terms: EliminatedTerms): EliminatedNewton {
+    let found = workspaces.get(terms.structure);
+    if (found === undefined) {
+      found = new EliminatedNewton(terms);
+      workspaces.set(terms.structure, found);
+    }
+    return found;
+  }
+
+  /** Takes terms of the same structure, or the same terms with other constants. */
+  use(terms: EliminatedTerms): void {
+    this.terms = terms;
+    this.balances.use(terms);
     this.answer.fill(NaN);
   }
 
-  /** Iterates from `lnFree` and writes the answer there; returns the iterations, or their negative minus one when it did not get there. */
-  newton(keptTotal: Float64Array, goneTotal: Float64Array, lnFree: Float64Array): number {
-    const { balances, answer } = this;
-    const { k } = this.terms;
+  /** Iterates from `lnFree` at the totals put in and writes the answer there; returns the iterations, or their negative minus one when it did not get there. */
+  newton(lnFree: Float64Array): number {
+    const { balances, answer, keptTotal, goneTotal } = this;
+    const { k } = this.terms.structure;
     const least = leastOf(keptTotal, goneTotal);
     if (!(least > 0)) return -1;
     const begun = this.begin(keptTotal, lnFree);
@@ -57,7 +79,7 @@ export class EliminatedNewton {
       const { residual } = this;
       if (residual <= TOLERANCE && (k === 0 || lastStep <= SMALL_LAST_STEP)) {
         if (!this.conditioned) return -1 - iteration;
-        return this.finish(keptTotal, goneTotal, lnFree) ? iteration : -1 - iteration;
+        return this.finish(lnFree) ? iteration : -1 - iteration;
       }
       if (iteration >= ITERATIONS || !(residual < 1e290)) return -1 - iteration;
       if (lastStep <= SMALL_LAST_STEP) balances.combine(keptTotal, goneTotal, least, true);
@@ -71,7 +93,7 @@ export class EliminatedNewton {
   private begin(keptTotal: Float64Array, lnFree: Float64Array): number {
     const { answer } = this;
     const { free } = this.balances;
-    const { k, kept } = this.terms;
+    const { k, kept } = this.terms.structure;
     let there = true;
     for (let l = 0; l < k; l++) {
       const start = lnFree[kept[l]!]!;
@@ -109,7 +131,7 @@ export class EliminatedNewton {
   private findStep(keptTotal: Float64Array, newMatrix: boolean): number {
     const { step, scale } = this;
     const { gradient, hessian } = this.balances;
-    const { k } = this.terms;
+    const { k } = this.terms.structure;
     if (newMatrix) {
       this.conditioned = true;
       for (let l = 0; l < k; l++)
@@ -151,10 +173,11 @@ export class EliminatedNewton {
     }
   }
 
-  private finish(keptTotal: Float64Array, goneTotal: Float64Array, lnFree: Float64Array): boolean {
-    const { answer } = this;
+  private finish(lnFree: Float64Array): boolean {
+    const { answer, keptTotal, goneTotal } = this;
     const { free, freeGone } = this.balances;
-    const { kept, gone, fixed } = this.terms;
+    const { fixedLnFree } = this.terms;
+    const { kept, gone, fixed } = this.terms.structure;
     let check = 0;
     for (let l = 0; l < kept.length; l++) {
       const value = keptTotal[l] === 0 ? ABSENT_LN_FREE : Math.log(free[l]!);
@@ -167,7 +190,7 @@ export class EliminatedNewton {
       lnFree[gone[e]!] = value;
       check += value;
     }
-    for (const { component, lnFree: value } of fixed) lnFree[component] = value;
+    for (let f = 0; f < fixed.length; f++) lnFree[fixed[f]!] = fixedLnFree[fixed[f]!]!;
     return Number.isFinite(check);
   }
 }

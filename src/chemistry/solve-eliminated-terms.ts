@@ -1,303 +1,92 @@
+import {
+  CONSTANT,
+  eliminatedStructure,
+  MIXED,
+  NOWHERE,
+  POLYNOMIAL,
+  POLYNUCLEAR,
+  type EliminatedStructure,
+} from "./solve-eliminated-structure.ts";
 import type { MassBalanceProblem } from "./types.ts";
 
 const LARGEST_LN = 600; // a constant beyond e^600 leaves no room for the powers beside it
 
-/** A species that the eliminated form cannot hold. */
-interface PolynuclearSpecies {
-  lnBeta: number; // fixed components folded in
-  readonly component: Int32Array;
-  readonly coefficient: Float64Array;
-}
-
-/** Where the constant of each species of the problem goes, so that other constants can be put in without sorting the species again. */
-interface Sources {
-  readonly list: Uint8Array; // per species: CONSTANT, ... POLYNUCLEAR, or NOWHERE
-  readonly place: Int32Array; // per species: its place in that list
-  readonly fixedStart: Int32Array; // per species: its first fixed component ...
-  readonly fixedComponent: Int32Array;
-  readonly fixedCoefficient: Float64Array;
-}
-const NOWHERE = 0; // made of fixed components only
-const CONSTANT = 1;
-const POLYNOMIAL = 2;
-const MIXED = 3;
-const HOMONUCLEAR = 4;
-const POLYNUCLEAR = 5;
-
-/** Terms of one or several kept components at once: sparse rows of (place among the block's segments, exponent). */
-interface MixedTerms {
-  readonly blockStart: Int32Array; // per block: its first mixed term
-  readonly beta: Float64Array;
-  readonly start: Int32Array; // per mixed term
-  readonly segment: Int32Array; // number of the segment, over all blocks
-  readonly exponent: Float64Array;
-}
-
-/** Species with several atoms of one eliminated component, per block: beta times powers of the kept ones, and how many atoms. */
-interface HomonuclearTerms {
-  readonly blockStart: Int32Array; // per block: its first term
-  readonly beta: Float64Array;
-  readonly atoms: Float64Array;
-  readonly start: Int32Array; // per term
-  readonly segment: Int32Array; // number of the segment, over all blocks
-  readonly exponent: Float64Array;
-}
-
-/**
- * The terms of one problem at fixed components, grouped in blocks; see `eliminatedSolver`. Block 0 holds the species without an eliminated component,
- * block e + 1 those of eliminated component e. A block is a constant, one polynomial in each kept component it holds (a segment), and
- * mixed terms.
- */
-export interface EliminatedTerms {
-  readonly nComponents: number;
-  readonly k: number; // kept components
-  readonly kept: Int32Array; // their numbers in the problem
-  readonly gone: Int32Array; // eliminated components
-  readonly fixed: readonly { readonly component: number; lnFree: number }[];
+/** The terms of one problem at fixed components: the structure of its species with their constants put in, fixed components folded in. */
+export class EliminatedTerms {
+  readonly structure: EliminatedStructure;
   readonly constant: Float64Array; // per block
-  /** Per block: number of segments; then per segment: first power in the table, number of powers (1 or more). */
-  readonly plan: Int32Array;
-  readonly segmentStart: Int32Array; // per block: its first segment
-  readonly ligand: Int32Array; // per segment: the kept component, rising within a block
-  readonly polynomial: Float64Array; // per segment: coefficients of powers 1, 2, ... ; gaps are 0
-  readonly mixed: MixedTerms;
-  readonly homonuclear: HomonuclearTerms;
-  readonly powerStart: Int32Array; // per kept component: its first power in a table of powers
-  /** Species that hold two different eliminated components. */
-  readonly polynuclear: readonly PolynuclearSpecies[];
-  readonly sources: Sources;
+  readonly polynomial: Float64Array; // coefficients in the order of the plan; gaps are 0
+  readonly mixedBeta: Float64Array;
+  readonly homonuclearBeta: Float64Array;
+  readonly polynuclearLnBeta: Float64Array;
+  readonly fixedLnFree: Float64Array; // per component
+
+  constructor(structure: EliminatedStructure) {
+    this.structure = structure;
+    this.constant = new Float64Array(structure.nBlocks);
+    this.polynomial = new Float64Array(structure.nCoefficients);
+    this.mixedBeta = new Float64Array(structure.mixed.n);
+    this.homonuclearBeta = new Float64Array(structure.homonuclear.n);
+    this.polynuclearLnBeta = new Float64Array(structure.polynuclear.length);
+    this.fixedLnFree = new Float64Array(structure.nComponents);
+  }
+
+  /**
+   * Puts in constants (ln beta per species) and free concentrations of the fixed components. False, and the terms of no use, where a constant
+   * lies beyond e^600.
+   */
+  refill(lnBeta: ArrayLike<number>, fixedLnFree: ArrayLike<number>): boolean {
+    const { constant, polynomial, mixedBeta, homonuclearBeta } = this;
+    const { list, place, fixedStart, fixedComponent, fixedCoefficient } = this.structure.sources;
+    this.fixedLnFree.set(fixedLnFree);
+    constant.fill(0);
+    polynomial.fill(0);
+    mixedBeta.fill(0);
+    for (let i = 0; i < list.length; i++) {
+      let ln = lnBeta[i]!;
+      const end = fixedStart[i + 1]!;
+      for (let p = fixedStart[i]!; p < end; p++) ln += fixedCoefficient[p]! * fixedLnFree[fixedComponent[p]!]!;
+      if (!(ln < LARGEST_LN)) return false;
+      const to = list[i]!;
+      if (to === NOWHERE) continue;
+      const at = place[i]!;
+      if (to === POLYNUCLEAR) this.polynuclearLnBeta[at] = ln;
+      else {
+        const beta = Math.exp(ln);
+        if (to === POLYNOMIAL) polynomial[at] = polynomial[at]! + beta;
+        else if (to === CONSTANT) constant[at] = constant[at]! + beta;
+        else if (to === MIXED) mixedBeta[at] = mixedBeta[at]! + beta;
+        else homonuclearBeta[at] = beta;
+      }
+    }
+    return true;
+  }
+
+  /** Amounts held in species of two eliminated components, mol/L per component. */
+  polynuclear(lnFree: Float64Array, held: Float64Array): void {
+    const { polynuclear } = this.structure;
+    held.fill(0);
+    for (let i = 0; i < polynuclear.length; i++) {
+      const { component, coefficient } = polynuclear[i]!;
+      let e = this.polynuclearLnBeta[i]!;
+      for (let p = 0; p < component.length; p++) e += coefficient[p]! * lnFree[component[p]!]!;
+      const c = Math.exp(Math.min(e, LARGEST_LN));
+      for (let p = 0; p < component.length; p++) {
+        const j = component[p]!;
+        held[j] = held[j]! + coefficient[p]! * c;
+      }
+    }
+  }
 }
 
-/** Species of a block by the powers of the kept components they hold; numbers of species as lists. */
-interface Block {
-  readonly constant: number[];
-  readonly segments: Map<number, number[][]>; // kept component -> species by power, from 1
-  readonly mixed: Map<string, { readonly exponents: readonly number[]; readonly species: number[] }>;
-  readonly homonuclear: { readonly exponents: readonly number[]; readonly species: number; readonly atoms: number }[];
-}
-
-/** Groups the species of a problem by eliminated component and by powers of the kept ones, or null where the form does not apply. */
+/** The terms of a problem, or null where the form does not apply. */
 export function compileEliminated(
   problem: MassBalanceProblem,
   fixedLnFree: ArrayLike<number>,
   eliminate: readonly number[],
 ): EliminatedTerms | null {
-  const { nComponents: n, nSpecies, stoichiometry } = problem;
-  const isFixed = (j: number): boolean => !Number.isNaN(fixedLnFree[j]);
-  const all = Array.from({ length: n }, (_, j) => j);
-  const gone = eliminate.filter((j) => !isFixed(j));
-  const kept = all.filter((j) => !isFixed(j) && !gone.includes(j));
-  const blocks = Array.from(
-    { length: gone.length + 1 },
-    (): Block => ({ constant: [], segments: new Map(), mixed: new Map(), homonuclear: [] }),
-  );
-  const polynuclear: PolynuclearSpecies[] = [];
-  const sources = emptySources(problem, all.filter(isFixed));
-  for (let i = 0; i < nSpecies; i++) {
-    const coefficient = (j: number): number => stoichiometry[i * n + j]!;
-    const unknown = all.filter((j) => !isFixed(j) && coefficient(j) !== 0);
-    if (unknown.some((j) => coefficient(j) < 0)) return null;
-    if (unknown.length === 0) continue;
-    const metals = gone.filter((j) => coefficient(j) > 0);
-    const atoms = metals.reduce((sum, j) => sum + coefficient(j), 0);
-    if (metals.length === 1 && atoms > 1) {
-      addHomonuclear(blocks[1 + gone.indexOf(metals[0]!)]!, kept.map(coefficient), i, atoms);
-      continue;
-    }
-    if (atoms > 1) {
-      sources.list[i] = POLYNUCLEAR;
-      sources.place[i] = polynuclear.length;
-      polynuclear.push({
-        lnBeta: 0,
-        component: Int32Array.from(unknown),
-        coefficient: Float64Array.from(unknown, coefficient),
-      });
-      continue;
-    }
-    addTerm(blocks[atoms === 0 ? 0 : 1 + gone.indexOf(metals[0]!)]!, kept.map(coefficient), i);
-  }
-  const terms = {
-    ...flatten(blocks, kept.length, sources),
-    nComponents: n,
-    k: kept.length,
-    kept: Int32Array.from(kept),
-    gone: Int32Array.from(gone),
-    fixed: all.filter(isFixed).map((component) => ({ component, lnFree: fixedLnFree[component]! })),
-    polynuclear,
-    sources,
-  };
-  return refillEliminated(terms, problem.lnBeta, fixedLnFree) ? terms : null;
-}
-
-/**
- * Puts other constants (ln beta per species) and other free concentrations of the fixed components into compiled terms. False, and the
- * terms of no use, where a constant lies beyond e^600.
- */
-export function refillEliminated(
-  terms: EliminatedTerms,
-  lnBeta: ArrayLike<number>,
-  fixedLnFree: ArrayLike<number>,
-): boolean {
-  const { constant, polynomial, mixed, homonuclear, polynuclear, sources } = terms;
-  const { list, place, fixedStart, fixedComponent, fixedCoefficient } = sources;
-  for (const one of terms.fixed) one.lnFree = fixedLnFree[one.component]!;
-  constant.fill(0);
-  polynomial.fill(0);
-  mixed.beta.fill(0);
-  for (let i = 0; i < list.length; i++) {
-    let ln = lnBeta[i]!;
-    const end = fixedStart[i + 1]!;
-    for (let p = fixedStart[i]!; p < end; p++) ln += fixedCoefficient[p]! * fixedLnFree[fixedComponent[p]!]!;
-    if (!(ln < LARGEST_LN)) return false;
-    const to = list[i]!;
-    if (to === NOWHERE) continue;
-    const at = place[i]!;
-    if (to === POLYNUCLEAR) polynuclear[at]!.lnBeta = ln;
-    else {
-      const beta = Math.exp(ln);
-      if (to === POLYNOMIAL) polynomial[at] = polynomial[at]! + beta;
-      else if (to === CONSTANT) constant[at] = constant[at]! + beta;
-      else if (to === MIXED) mixed.beta[at] = mixed.beta[at]! + beta;
-      else homonuclear.beta[at] = beta;
-    }
-  }
-  return true;
-}
-
-function emptySources(
-  { nComponents: n, nSpecies, stoichiometry }: MassBalanceProblem,
-  fixed: readonly number[],
-): Sources {
-  const start = [0];
-  const component: number[] = [];
-  const coefficient: number[] = [];
-  for (let i = 0; i < nSpecies; i++) {
-    for (const j of fixed) {
-      const value = stoichiometry[i * n + j]!;
-      if (value === 0) continue;
-      component.push(j);
-      coefficient.push(value);
-    }
-    start.push(component.length);
-  }
-  return {
-    list: new Uint8Array(nSpecies),
-    place: new Int32Array(nSpecies),
-    fixedStart: Int32Array.from(start),
-    fixedComponent: Int32Array.from(component),
-    fixedCoefficient: Float64Array.from(coefficient),
-  };
-}
-
-function addTerm(block: Block, exponents: readonly number[], species: number): void {
-  const held = exponents.map((_, l) => l).filter((l) => exponents[l]! > 0);
-  for (const l of held) if (!block.segments.has(l)) block.segments.set(l, []);
-  if (held.length === 0) block.constant.push(species);
-  else if (held.length === 1) {
-    const powers = block.segments.get(held[0]!)!;
-    const power = exponents[held[0]!]!;
-    while (powers.length < power) powers.push([]);
-    powers[power - 1]!.push(species);
-  } else {
-    const key = exponents.join(",");
-    const term = block.mixed.get(key);
-    if (term === undefined) block.mixed.set(key, { exponents, species: [species] });
-    else term.species.push(species);
-  }
-}
-
-function addHomonuclear(block: Block, exponents: readonly number[], species: number, atoms: number): void {
-  exponents.forEach((exponent, l) => {
-    if (exponent > 0 && !block.segments.has(l)) block.segments.set(l, []);
-  });
-  block.homonuclear.push({ exponents, species, atoms });
-}
-
-/** Sparse rows of (segment, exponent) under construction. */
-interface Rows {
-  readonly blockStart: number[];
-  readonly start: number[];
-  readonly segment: number[];
-  readonly exponent: number[];
-}
-
-/** Adds a row and returns its number. */
-function addRow(rows: Rows, exponents: readonly number[], place: ReadonlyMap<number, number>): number {
-  exponents.forEach((value, l) => {
-    if (value === 0) return;
-    rows.segment.push(place.get(l)!);
-    rows.exponent.push(value);
-  });
-  rows.start.push(rows.segment.length);
-  return rows.start.length - 2;
-}
-
-const emptyRows = (): Rows => ({ blockStart: [0], start: [0], segment: [], exponent: [] });
-
-const packed = (rows: Rows): MixedTerms => ({
-  blockStart: Int32Array.from(rows.blockStart),
-  beta: new Float64Array(rows.start.length - 1),
-  start: Int32Array.from(rows.start),
-  segment: Int32Array.from(rows.segment),
-  exponent: Float64Array.from(rows.exponent),
-});
-
-function flatten(
-  blocks: readonly Block[],
-  k: number,
-  sources: Sources,
-): Pick<
-  EliminatedTerms,
-  "constant" | "plan" | "segmentStart" | "ligand" | "polynomial" | "mixed" | "homonuclear" | "powerStart"
-> {
-  const highest = new Int32Array(k);
-  const ligand: number[] = [];
-  const segmentStart: number[] = [0];
-  let coefficients = 0;
-  const mixed = emptyRows();
-  const homonuclear = emptyRows();
-  const atoms: number[] = [];
-  const goesTo = (species: readonly number[], list: number, at: number): void => {
-    for (const i of species) {
-      sources.list[i] = list;
-      sources.place[i] = at;
-    }
-  };
-  blocks.forEach((block, number) => {
-    goesTo(block.constant, CONSTANT, number);
-    const place = new Map<number, number>();
-    for (const [l, powers] of [...block.segments].sort(([a], [b]) => a - b)) {
-      place.set(l, ligand.length);
-      ligand.push(l);
-      if (powers.length === 0) powers.push([]); // held by mixed terms only
-      for (const species of powers) goesTo(species, POLYNOMIAL, coefficients++);
-      highest[l] = Math.max(highest[l]!, powers.length);
-    }
-    segmentStart.push(ligand.length);
-    for (const term of [...block.mixed.values(), ...block.homonuclear])
-      term.exponents.forEach((value, l) => (highest[l] = Math.max(highest[l]!, value)));
-    for (const term of block.mixed.values()) goesTo(term.species, MIXED, addRow(mixed, term.exponents, place));
-    for (const term of block.homonuclear) {
-      goesTo([term.species], HOMONUCLEAR, addRow(homonuclear, term.exponents, place));
-      atoms.push(term.atoms);
-    }
-    mixed.blockStart.push(mixed.start.length - 1);
-    homonuclear.blockStart.push(homonuclear.start.length - 1);
-  });
-  const powerStart = new Int32Array(k + 1);
-  for (let l = 0; l < k; l++) powerStart[l + 1] = powerStart[l]! + highest[l]!;
-  const plan = blocks.flatMap((block) => [
-    block.segments.size,
-    ...[...block.segments].sort(([a], [b]) => a - b).flatMap(([l, powers]) => [powerStart[l]!, powers.length]),
-  ]);
-  return {
-    constant: new Float64Array(blocks.length),
-    plan: Int32Array.from(plan),
-    segmentStart: Int32Array.from(segmentStart),
-    ligand: Int32Array.from(ligand),
-    polynomial: new Float64Array(coefficients),
-    mixed: packed(mixed),
-    homonuclear: { ...packed(homonuclear), atoms: Float64Array.from(atoms) },
-    powerStart,
-  };
+  const structure = eliminatedStructure(problem, fixedLnFree, eliminate);
+  if (structure === null) return null;
+  const terms = new EliminatedTerms(structure);
+  return terms.refill(problem.lnBeta, fixedLnFree) ? terms : null;
 }

@@ -1,5 +1,5 @@
 import { EliminatedNewton } from "./solve-eliminated-newton.ts";
-import { compileEliminated, refillEliminated, type EliminatedTerms } from "./solve-eliminated-terms.ts";
+import { compileEliminated } from "./solve-eliminated-terms.ts";
 import { solveEquilibrium } from "./solve-equilibrium.ts";
 import type { MassBalanceProblem, SolveResult } from "./types.ts";
 
@@ -54,11 +54,9 @@ export function eliminatedSolver(
   const fixed = Float64Array.from(fixedLnFree);
   const terms = compileEliminated(problem, fixed, eliminate);
   if (terms === null) return null;
-  const { kept, gone, k } = terms;
-  const keptTotal = new Float64Array(k);
-  const goneTotal = new Float64Array(gone.length);
-  const held = new Float64Array(problem.nComponents); // in species of two eliminated components, per component
-  const work = new EliminatedNewton(terms);
+  const { kept, gone, k, polynuclear } = terms.structure;
+  const work = EliminatedNewton.of(terms);
+  const { keptTotal, goneTotal, held } = work;
   const evidence: EliminatedEvidence = {
     status: "converged",
     residual: 0,
@@ -76,7 +74,7 @@ export function eliminatedSolver(
     evidence.worstComponent = result.worstComponent;
     evidence.iterations += result.iterations;
     let share = 0;
-    polynuclear(terms, lnFree, held);
+    terms.polynuclear(lnFree, held);
     for (let j = 0; j < held.length; j++) if (totals[j]! > 0) share = Math.max(share, held[j]! / totals[j]!);
     evidence.polynuclearShare = share;
     return evidence;
@@ -89,17 +87,18 @@ export function eliminatedSolver(
     evidence.method = "eliminated";
     evidence.iterations = 0;
     evidence.polynuclearShare = 0;
+    if (work.terms !== terms) work.use(terms);
     load(totals, false);
     for (let pass = 0; ; pass++) {
-      const iterations = work.newton(keptTotal, goneTotal, lnFree);
+      const iterations = work.newton(lnFree);
       evidence.iterations += Math.abs(iterations);
       if (iterations < 0) return general(totals, lnFree);
-      if (terms.polynuclear.length === 0) break;
+      if (polynuclear.length === 0) break;
       let share = 0;
       let change = 0;
       const before = work.heldBefore;
       before.set(held);
-      polynuclear(terms, lnFree, held);
+      terms.polynuclear(lnFree, held);
       for (let j = 0; j < held.length; j++) {
         const amount = held[j]!;
         const total = totals[j]!;
@@ -119,22 +118,8 @@ export function eliminatedSolver(
   };
   const refill = (to: ArrayLike<number>): boolean => {
     fixed.set(to);
-    work.forget();
-    return refillEliminated(terms, problem.lnBeta, fixed);
+    work.use(terms);
+    return terms.refill(problem.lnBeta, fixed);
   };
   return { solve, refill };
-}
-
-/** Amounts held in species of two eliminated components, mol/L per component. */
-function polynuclear(terms: EliminatedTerms, lnFree: Float64Array, held: Float64Array): void {
-  held.fill(0);
-  for (const species of terms.polynuclear) {
-    let e = species.lnBeta;
-    for (let p = 0; p < species.component.length; p++) e += species.coefficient[p]! * lnFree[species.component[p]!]!;
-    const c = Math.exp(Math.min(e, 600));
-    for (let p = 0; p < species.component.length; p++) {
-      const j = species.component[p]!;
-      held[j] = held[j]! + species.coefficient[p]! * c;
-    }
-  }
 }
