@@ -6,24 +6,48 @@ import { evaluateRelease } from "./release.ts";
 import { releaseExcess } from "./release-plan.ts";
 import type { StagePlan, Task } from "./types.ts";
 
+/** The titration against which another is standardised, evaluated, and how its bias is taken back. */
+export interface Calibration {
+  readonly alone: StageEvaluation;
+  /** "divide": the amounts divide; else a blank is subtracted, and this is its weight in the bias. */
+  readonly takes: "divide" | number;
+}
+
 /**
- * The evaluation as it counts when the titrant was standardised against the same metal with the same dye, pH and buffer: what the
- * observer does wrong in both titrations cancels (common practice: Ca or Mg for hardness, Zn for hexamine work). In a back
- * titration the blank, titrant against back titrant to the same end point, does the same.
- * A release is standardised as a whole, with the metal itself. Left as it is where no primary standard of the metal is on record, or where the standard titration itself has no end point.
+ * The standard titration of the same metal with the same dye, pH and buffer: what the observer does wrong in both titrations cancels
+ * (common practice: Ca or Mg for hardness, Zn for hexamine work). In a back titration the blank, titrant against back titrant to the
+ * same end point, does the same. A release is standardised as a whole, with the metal itself. Null where no primary standard of the
+ * metal is on record, or where the standard titration itself has no end point worth standardising with.
  */
-export function standardisedAlike(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): StageEvaluation {
+export function calibrationOf(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): Calibration | null {
   const { plan } = evaluation.model;
-  if (evaluation.status === "failed") return evaluation;
+  if (evaluation.status === "failed") return null;
   if (plan.detour && evaluation.basis !== "empirical") return blankOfDetour(task, evaluation, knowledge);
   const standard = standardOf(task, plan, evaluation.basis, knowledge);
-  if (standard === null) return evaluation;
+  if (standard === null) return null;
   const alone = remembered("standard", task, standard.plan, knowledge, () =>
     standardEvaluation(standard.task, standard.plan, knowledge),
   );
-  return alone.status === "failed" || !cancels(alone.biasFraction)
-    ? evaluation
-    : corrected(evaluation, standardisedBias(evaluation.biasFraction, alone.biasFraction));
+  return alone.status === "failed" || !cancels(alone.biasFraction) ? null : { alone, takes: "divide" };
+}
+
+/**
+ * The part of a bias that is left when the standard's own part is taken back: linear in both, so that it holds cause by cause and
+ * for the sum alike, (1 + b) / (1 + s) - 1 = (b - s) / (1 + s).
+ */
+export const leftOf = ({ alone, takes }: Calibration, ofTitration: number, ofStandard: number): number =>
+  takes === "divide" ? (ofTitration - ofStandard) / (1 + alone.biasFraction) : ofTitration + takes * ofStandard;
+
+/** The evaluation as it counts when the titrant was standardised alike; as it is where no standard serves. */
+export function standardisedAlike(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): StageEvaluation {
+  const calibration = calibrationOf(task, evaluation, knowledge);
+  if (calibration === null) return evaluation;
+  const biasFraction = leftOf(calibration, evaluation.biasFraction, calibration.alone.biasFraction);
+  return {
+    ...evaluation,
+    biasFraction,
+    ledger: [...evaluation.ledger, { source: "standardised alike", fraction: biasFraction - evaluation.biasFraction }],
+  };
 }
 
 /** The titration with which the titrant of this one is standardised; null where its end point does not allow it or nothing serves. */
@@ -51,21 +75,15 @@ export const cancels = (biasOfStandard: number): boolean => Math.abs(biasOfStand
 /** What is left of a bias when the titrant was standardised with a titration of this bias; fractions. */
 export const standardisedBias = (bias: number, biasOfStandard: number): number => (1 + bias) / (1 + biasOfStandard) - 1;
 
-const corrected = (evaluation: StageEvaluation, biasFraction: number): StageEvaluation => ({
-  ...evaluation,
-  biasFraction,
-  ledger: [...evaluation.ledger, { source: "standardised alike", fraction: biasFraction - evaluation.biasFraction }],
-});
-
 /**
  * A way round is calibrated by its metal alone: the reagent titrated the same way is the blank of a surplus (the amounts subtract),
  * a standard of the metal serves the rest (the amounts divide). Titrant that a precipitate set free has no such blank.
  */
-function blankOfDetour(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): StageEvaluation {
+function blankOfDetour(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): Calibration | null {
   const { plan, solution, volumeL } = evaluation.model;
   const { detour } = plan;
   const { way } = solution;
-  if (!detour || !way || way.record.kind === "conversion") return evaluation;
+  if (!detour || !way || way.record.kind === "conversion") return null;
   const surplus = way.record.kind === "surplus";
   const molPerL = surplus ? detour.reagent.molPerL : evaluation.presentMol / detour.analytePerMetal / volumeL;
   const alone = evaluateStage(
@@ -73,10 +91,9 @@ function blankOfDetour(task: Task, evaluation: StageEvaluation, knowledge: Knowl
     metalPlan(plan, detour.metal, molPerL),
     knowledge,
   );
-  if (alone.status === "failed" || !cancels(alone.biasFraction)) return evaluation;
-  if (!surplus) return corrected(evaluation, standardisedBias(evaluation.biasFraction, alone.biasFraction));
-  const blankMol = alone.foundMol - alone.presentMol;
-  return corrected(evaluation, evaluation.biasFraction + (detour.analytePerMetal * blankMol) / evaluation.presentMol);
+  if (alone.status === "failed" || !cancels(alone.biasFraction)) return null;
+  const weight = (detour.analytePerMetal * alone.presentMol) / evaluation.presentMol;
+  return { alone, takes: surplus ? weight : "divide" };
 }
 
 /** A solution of one metal, mol/L of the vessel. */

@@ -14,7 +14,17 @@ describe("the budget of zinc with xylenol orange, by hand", () => {
   const portion = 0.03 / Math.sqrt(6) / 25;
   const burette = Math.sqrt((0.03 / Math.sqrt(6)) ** 2 + 2 * 0.01 ** 2) / 19.993; // read twice, 0.01 mL each
   const endPoint = Math.sqrt((0.00848 / 2 / Math.sqrt(3)) ** 2 + (0.015 / Math.sqrt(3)) ** 2) / 19.993; // band 8.5 uL, half a drop
-  const strength = 1.0e-3;
+  // Zinc of 99.99 % (U 0.05 %, k = 2), 0.00013 g in 0.523 g for 1000 mL (0.4 mL), 25 mL by pipette (0.03 mL), 20 mL from the burette
+  // (0.03 mL), in triplicate: two readings, band and half a drop as in the titration itself.
+  const scatter = Math.sqrt((2 * 0.01 ** 2 + (0.00848 / 2) ** 2 / 3 + 0.015 ** 2 / 3) / 3);
+  const strength = Math.sqrt(
+    (0.0005 / 2 / 0.9999) ** 2 +
+      (0.00013 / (0.008 * 65.38)) ** 2 +
+      (0.4 / Math.sqrt(6) / 1000) ** 2 +
+      (0.03 / Math.sqrt(6) / 25) ** 2 +
+      (0.03 / Math.sqrt(6) / 20) ** 2 +
+      (scatter / 20) ** 2,
+  );
   const temperature = (3 * 2.0e-4) / Math.sqrt(3);
   const blank = 0.015 / Math.sqrt(3) / 19.993;
   // A tenth of what cancels against the standard, which here is the whole of the end-point error.
@@ -67,8 +77,12 @@ describe("stageBudget", () => {
     const budget = stageBudget(task, evaluation, KNOWLEDGE);
     // 0.2 mmol stand for 20 mL of the back titrant; the excess is 1.4 times the result.
     expectRelative(term(budget, "burette"), Math.sqrt((0.03 / Math.sqrt(6)) ** 2 + 2 * 0.01 ** 2) / 20, 0.01);
-    expectRelative(term(budget, "excess titrant"), 1.4 * 5e-4, 1e-6);
-    expectRelative(term(budget, "back titrant strength"), 0.4 * 1e-3, 1e-6);
+    // Pipette of 25 mL, 0.03 mL; the back titrant's strength from triplicates: pipette, burette, scatter of the three.
+    expectRelative(term(budget, "excess titrant"), (1.4 * 0.03) / Math.sqrt(6) / 25, 1e-6);
+    const band = Math.abs(evaluation.bandML[1] - evaluation.bandML[0]) / 2;
+    const scatter = Math.sqrt((2 * 0.01 ** 2 + (band ** 2 + 0.015 ** 2) / 3) / 3);
+    const ratio = Math.hypot(0.03 / Math.sqrt(6) / 25, 0.03 / Math.sqrt(6) / 20, scatter / 20);
+    expectRelative(term(budget, "back titrant strength"), 0.4 * ratio, 1e-6);
   });
   it("has no finite figure for a titration without an end point", () => {
     const task = inventedTask({ "Zn2+": 0.008 });
