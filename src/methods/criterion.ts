@@ -1,5 +1,6 @@
 import { EMPIRICAL_EXTRA_BAND_PM, practisedLog10Ratio, VISIBLE_COMPLEX_MOL_PER_L } from "../chemistry/end-point.ts";
 import type { ComponentId } from "../constants/knowledge.ts";
+import { remainingL, remainingToEquivalenceL } from "./remaining-volume.ts";
 import type { StageModel, VesselState } from "./stage-model.ts";
 
 /** On what the place of the end point rests. */
@@ -15,6 +16,8 @@ export interface Criterion {
   readonly ratio: (state: VesselState) => number;
   /** Negative before the end point, positive after. */
   readonly of: (state: VesselState) => number;
+  /** About how far the burette has to run from this state until `of` plus `by` is zero, L; of the same sign as what is missing. */
+  readonly remainingL: (state: VesselState, by: number) => number;
 }
 
 const FLOOR = 1e-300;
@@ -37,12 +40,14 @@ export function criterionOf(model: StageModel, determined: ReadonlySet<Component
     const log10Ratio = (s: VesselState): number => Math.log10(Math.max(ratio(s), FLOOR));
     // A band in pM is that many times as wide in the logarithm of the colour ratio as metal ions sit on one dye.
     const perDye = Math.max(...known.map((m) => dyeBasis.byTable.get(m)?.metalsPerDye ?? 1));
+    const of = (s: VesselState): number => (back ? log10Ratio(s) - target : target - log10Ratio(s));
     return {
       basis: known.some((m) => dyeBasis.byTable.has(m)) ? "table" : "constants",
       bandPM: indicator.observerBandPM,
       bandLog10: perDye * indicator.observerBandPM,
       ratio,
-      of: back ? (s) => log10Ratio(s) - target : (s) => target - log10Ratio(s),
+      of,
+      remainingL: (s, by) => remainingL(model, s, known, -(of(s) + by) / perDye, back),
     };
   }
   // No constants and no table: the end point is taken at equivalence, with a wide band. The dye answers to the metals
@@ -56,19 +61,22 @@ export function criterionOf(model: StageModel, determined: ReadonlySet<Component
   const shown = model.metals.filter((m) => answering.has(m));
   const deaf = model.metals.filter((m) => !answering.has(m));
   const bandPM = (indicator?.observerBandPM ?? 0.3) + EMPIRICAL_EXTRA_BAND_PM;
-  const log10Excess = (s: VesselState): number => {
-    const metal = shown.reduce((sum, m) => sum + s.unbound(m), 0);
-    // In a back titration the back titrant itself decides by equilibrium which of the deaf metals it takes the titrant from.
-    const titrant = s.titrantUnbound + (back ? 0 : deaf.reduce((sum, m) => sum + s.boundToTitrant(m), 0));
-    return Math.log10(Math.max(titrant, FLOOR)) - Math.log10(Math.max(metal, FLOOR));
-  };
+  const metalOf = (s: VesselState): number => shown.reduce((sum, m) => sum + s.unbound(m), 0);
+  // In a back titration the back titrant itself decides by equilibrium which of the deaf metals it takes the titrant from.
+  const titrantOf = (s: VesselState): number =>
+    s.titrantUnbound + (back ? 0 : deaf.reduce((sum, m) => sum + s.boundToTitrant(m), 0));
+  const log10Excess = (s: VesselState): number =>
+    Math.log10(Math.max(titrantOf(s), FLOOR)) - Math.log10(Math.max(metalOf(s), FLOOR));
+  const of = (s: VesselState): number => (back ? -log10Excess(s) : log10Excess(s));
   // pM up by b means metal down and free titrant up by b each: twice b on this scale.
   return {
     basis: "empirical",
     bandPM,
     bandLog10: 2 * bandPM,
     ratio: (s) => s.dyeRatio,
-    of: back ? (s) => -log10Excess(s) : log10Excess,
+    of,
+    remainingL: (s, by) =>
+      remainingToEquivalenceL(model, s, { titrant: titrantOf(s), shown: metalOf(s), deaf }, -(of(s) + by), back),
   };
 }
 

@@ -40,6 +40,83 @@ export function firstCrossing(criterion: (volumeL: number) => number, expectedL:
   return { found: false, volumeL: 0, evaluations };
 }
 
+/** What a vessel says of an end point: the criterion there, negative before, and about how far the burette still has to run, L. */
+export interface Outlook {
+  readonly criterion: number;
+  readonly remainingL: number;
+}
+
+const PREDICTIONS = 25;
+/** Volumes, in parts of the expected one, beyond which no end is looked for. */
+const FARTHEST = 4;
+
+/**
+ * The same crossing as `firstCrossing`, found from what each vessel foretells: the volume that is left to run is nearly straight in the
+ * volume, so chords of it close in within a few vessels. Null where the foretelling does not help (over at the first look, or not a number).
+ * @param look what the vessel says at a volume, L
+ * @param fromL a volume before the end, L
+ */
+export function foretoldCrossing(
+  look: (volumeL: number) => Outlook,
+  fromL: number,
+  expectedL: number,
+): EndPointSearch | null {
+  const farthestL = FARTHEST * expectedL;
+  const first = look(fromL);
+  if (!(first.criterion < 0) || !(first.remainingL > 0)) return null;
+  let evaluations = 1;
+  let low = fromL;
+  let high = Infinity;
+  let before = fromL;
+  let hBefore = -first.remainingL;
+  let v = Math.min(fromL + first.remainingL, farthestL);
+  for (; evaluations < PREDICTIONS; evaluations++) {
+    const { criterion, remainingL } = look(v);
+    if (!Number.isFinite(criterion) || Number.isNaN(remainingL)) return null;
+    if (criterion >= 0) high = Math.min(high, v);
+    else if (v >= farthestL) return { found: false, volumeL: 0, evaluations };
+    else low = Math.max(low, v);
+    const h = -remainingL;
+    const slope = (h - hBefore) / (v - before);
+    const step = slope > 0 ? -h / slope : Number.NaN;
+    if (high < Infinity || h === 0) {
+      if (h === 0 || Math.abs(step) <= VOLUME_TOLERANCE * expectedL || high - low <= VOLUME_TOLERANCE * expectedL)
+        return { found: true, volumeL: v, evaluations };
+    }
+    before = v;
+    hBefore = h;
+    const next = v + step;
+    if (next > low && next < high && next <= farthestL) v = next;
+    else v = high < Infinity ? (low + high) / 2 : Math.min(farthestL, low + (low - 0.5 * fromL));
+  }
+  return null;
+}
+
+/** How well the edge of an observer's band is met, relative to its distance from the end point. */
+const EDGE_TOLERANCE = 1e-3;
+const EDGE_STEPS = 8;
+
+/**
+ * The edge of an observer's band beside a known end point, by the same foretelling; null where it does not close in.
+ * @param look what the vessel says of the shifted criterion at a volume, L
+ */
+export function foretoldEdge(look: (volumeL: number) => Outlook, fromL: number, scaleL: number): number | null {
+  let before = fromL;
+  let hBefore = -look(fromL).remainingL;
+  let v = fromL - hBefore;
+  for (let step = 0; step < EDGE_STEPS; step++) {
+    if (!(v > 0 && v < fromL + FARTHEST * scaleL)) return null;
+    const h = -look(v).remainingL;
+    const next = v - (h * (v - before)) / (h - hBefore);
+    if (!Number.isFinite(next)) return null;
+    if (Math.abs(next - v) <= EDGE_TOLERANCE * Math.abs(next - fromL)) return next;
+    before = v;
+    hBefore = h;
+    v = next;
+  }
+  return null;
+}
+
 /** False position with the Illinois modification, kept inside the bracket. */
 function refine(
   f: (v: number) => number,

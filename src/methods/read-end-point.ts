@@ -1,7 +1,7 @@
 import { BLOCKED_BOUND_FRACTION } from "../chemistry/end-point.ts";
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { criterionOf, showsColour, type Criterion, type EndPointBasis } from "./criterion.ts";
-import { firstCrossing, nearCrossing } from "./end-point-search.ts";
+import { firstCrossing, foretoldCrossing, foretoldEdge, nearCrossing, type Outlook } from "./end-point-search.ts";
 import { readWithElectrode, type ElectrodeFault, type ElectrodeReading } from "./read-electrode.ts";
 import { readWithPhotometer, type PhotometricFault, type PhotometricReading } from "./read-photometer.ts";
 import type { StageModel } from "./stage-model.ts";
@@ -61,7 +61,7 @@ function readByEye(
   criterion: Criterion,
   back: boolean,
   equivalenceL: number,
-  { search: find = firstCrossing, band = true }: EyeOptions,
+  { search: find, band = true }: EyeOptions,
 ): EndPointRead {
   const base = { basis: criterion.basis, bandPM: criterion.bandPM, electrode: null, photometric: null };
   const failed = (why: EndPointFault): EndPointRead => ({ ...base, why, volumeL: 0, bandL: [0, 0] });
@@ -71,9 +71,20 @@ function readByEye(
     if (back && criterion.ratio(early) / (1 + criterion.ratio(early)) > BLOCKED_BOUND_FRACTION)
       return failed("dye-held");
   }
-  const search = find((v) => criterion.of(model.at(v)), equivalenceL);
+  const outlook =
+    (by: number) =>
+    (volumeL: number): Outlook => {
+      const state = model.at(volumeL);
+      return { criterion: criterion.of(state) + by, remainingL: criterion.remainingL(state, by) };
+    };
+  const ofVolume = (v: number): number => criterion.of(model.at(v));
+  const search = find
+    ? find(ofVolume, equivalenceL)
+    : (foretoldCrossing(outlook(0), (back ? BEFORE_END_BACK : BEFORE_END) * equivalenceL, equivalenceL) ??
+      firstCrossing(ofVolume, equivalenceL));
   if (!search.found) return failed("no-end-point");
   const shifted = (by: number): number =>
+    foretoldEdge(outlook(by), search.volumeL, equivalenceL) ??
     nearCrossing((v) => criterion.of(model.at(v)) + by, search.volumeL, by > 0 ? -1 : 1, equivalenceL) ??
     search.volumeL;
   return {
@@ -83,3 +94,7 @@ function readByEye(
     bandL: band ? [shifted(criterion.bandLog10), shifted(-criterion.bandLog10)] : [search.volumeL, search.volumeL],
   };
 }
+
+/** Where the search for the end begins, in parts of the expected volume: metal and chelate both there, or nearly all of the excess gone. */
+const BEFORE_END = 0.5;
+const BEFORE_END_BACK = 0.9;

@@ -201,12 +201,15 @@ export function stageModel(
   );
   const buretteColumn = system.index.get(burette.component)!;
   let start: VesselState | null = null;
+  let last: VesselState | null = null;
   const at = (fromBuretteL: number): VesselState => {
     if (fromBuretteL === 0 && start !== null) return start;
+    if (fromBuretteL === last?.volumeFromBuretteL) return last;
     const dilution = volumeL / (volumeL + fromBuretteL);
     const t = base.map((v) => v * dilution);
     t[buretteColumn] = t[buretteColumn]! + (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL);
     const state = new SolvedVessel(vessel, fromBuretteL, solve(t));
+    last = state;
     if (fromBuretteL === 0) start = state;
     return state;
   };
