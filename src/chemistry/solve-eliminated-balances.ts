@@ -1,5 +1,6 @@
 import { ManyAtoms } from "./solve-eliminated-many.ts";
 import type { EliminatedStructure } from "./solve-eliminated-structure.ts";
+import type { UnrolledBalances } from "./solve-eliminated-unrolled.ts";
 import type { EliminatedTerms } from "./solve-eliminated-terms.ts";
 
 /**
@@ -45,6 +46,25 @@ export class EliminatedBalances {
   use(terms: EliminatedTerms): void {
     this.terms = terms;
     this.manyAtoms.use(terms);
+  }
+
+  /** Balances and matrix at once, by code made for the structure; leaves no moments. */
+  evaluateUnrolled(keptTotal: Float64Array, goneTotal: Float64Array, least: number, unrolled: UnrolledBalances): void {
+    const { free, gradient, hessian, freeGone, manyAtoms } = this;
+    const { constant, polynomial, mixedBeta } = this.terms;
+    unrolled(
+      free,
+      keptTotal,
+      goneTotal,
+      constant,
+      polynomial,
+      mixedBeta,
+      gradient,
+      hessian,
+      freeGone,
+      manyAtoms,
+      least,
+    );
   }
 
   /** Sums and moments of all terms at the free concentrations. */

@@ -2,11 +2,13 @@ import { factorScaled, solveScaled } from "../numerics/cholesky.ts";
 import { EliminatedBalances } from "./solve-eliminated-balances.ts";
 import type { EliminatedStructure } from "./solve-eliminated-structure.ts";
 import type { EliminatedTerms } from "./solve-eliminated-terms.ts";
+import { unrollBalances, type UnrolledBalances } from "./solve-eliminated-unrolled.ts";
 import { ABSENT_LN_FREE } from "./solve-load.ts";
 
 const TOLERANCE = 5e-13; // as the plain iteration of the general solver
 const SMALL_LAST_STEP = 1e-5;
 const SAME_MATRIX_STEP = 1e-3; // ln units; after a step this small the matrix is kept for the next one, which loses less than three digits of it
+const UNROLL_AFTER = 20_000; // evaluations of a structure after which making code for it pays
 const TAYLOR_STEP = 1e-3; // below it five terms give e^step to the last digit
 const MAX_STEP = 2; // ln units
 const ITERATIONS = 30; // beyond it the general solver takes over
@@ -28,6 +30,8 @@ export class EliminatedNewton {
   private readonly scale: Float64Array;
   private readonly answer: Float64Array; // ln free of the kept components at which the moments stand; NaN where they stand nowhere
   private conditioned = false;
+  private evaluations = 0;
+  private unrolled: UnrolledBalances | null = null;
 
   constructor(terms: EliminatedTerms) {
     const { k, nComponents } = terms.structure;
@@ -67,26 +71,36 @@ export class EliminatedNewton {
     if (!(least > 0)) return -1;
     const begun = this.begin(keptTotal, lnFree);
     if (begun === REFUSED) return -1;
-    if (begun === ELSEWHERE) balances.moments();
     answer[0] = NaN;
     let lastStep = Infinity;
     this.conditioned = k === 0;
+    const { unrolled } = this;
     for (let iteration = 0; ; iteration++) {
-      const sameMatrix = k > 2 && lastStep <= SAME_MATRIX_STEP && lastStep > SMALL_LAST_STEP;
-      if (iteration > 0) balances.moments();
-      balances.combine(keptTotal, goneTotal, least, lastStep > SMALL_LAST_STEP && !sameMatrix);
+      const sameMatrix = k > 2 && lastStep <= SAME_MATRIX_STEP && lastStep > SMALL_LAST_STEP && unrolled === null;
+      if (unrolled !== null) balances.evaluateUnrolled(keptTotal, goneTotal, least, unrolled);
+      else {
+        if (iteration > 0 || begun === ELSEWHERE) balances.moments();
+        balances.combine(keptTotal, goneTotal, least, lastStep > SMALL_LAST_STEP && !sameMatrix);
+      }
       this.measure(keptTotal);
       const { residual } = this;
       if (residual <= TOLERANCE && (k === 0 || lastStep <= SMALL_LAST_STEP)) {
         if (!this.conditioned) return -1 - iteration;
+        this.count(iteration + 1);
         return this.finish(lnFree) ? iteration : -1 - iteration;
       }
       if (iteration >= ITERATIONS || !(residual < 1e290)) return -1 - iteration;
-      if (lastStep <= SMALL_LAST_STEP) balances.combine(keptTotal, goneTotal, least, true);
+      if (lastStep <= SMALL_LAST_STEP && unrolled === null) balances.combine(keptTotal, goneTotal, least, true);
       lastStep = this.findStep(keptTotal, !sameMatrix);
       if (!(lastStep < Infinity)) return -1 - iteration;
       this.move(lastStep);
     }
+  }
+
+  private count(evaluations: number): void {
+    if (this.evaluations > UNROLL_AFTER) return;
+    this.evaluations += evaluations;
+    if (this.evaluations > UNROLL_AFTER) this.unrolled = unrollBalances(this.terms.structure);
   }
 
   /** Takes in the start; says whether it is where the moments stand already. */

@@ -51,6 +51,7 @@ export interface EliminatedStructure {
   readonly plan: Int32Array;
   readonly segmentStart: Int32Array; // per block: its first segment
   readonly ligand: Int32Array; // per segment: the kept component, rising within a block
+  readonly segmentLength: Int32Array; // per segment: number of powers (1 or more)
   readonly nCoefficients: number; // of the polynomials: per segment those of powers 1, 2, ...
   readonly mixed: MixedRows;
   readonly homonuclear: HomonuclearRows;
@@ -237,11 +238,20 @@ function flatten(
   sources: Sources,
 ): Pick<
   EliminatedStructure,
-  "nBlocks" | "plan" | "segmentStart" | "ligand" | "nCoefficients" | "mixed" | "homonuclear" | "powerStart"
+  | "nBlocks"
+  | "plan"
+  | "segmentStart"
+  | "segmentLength"
+  | "ligand"
+  | "nCoefficients"
+  | "mixed"
+  | "homonuclear"
+  | "powerStart"
 > {
   const highest = new Int32Array(k);
   const ligand: number[] = [];
   const segmentStart: number[] = [0];
+  const segmentLength: number[] = [];
   let coefficients = 0;
   const mixed = emptyRows();
   const homonuclear = emptyRows();
@@ -259,6 +269,7 @@ function flatten(
       place.set(l, ligand.length);
       ligand.push(l);
       if (powers.length === 0) powers.push([]); // held by mixed terms only
+      segmentLength.push(powers.length);
       for (const species of powers) goesTo(species, POLYNOMIAL, coefficients++);
       highest[l] = Math.max(highest[l]!, powers.length);
     }
@@ -283,6 +294,7 @@ function flatten(
     nBlocks: blocks.length,
     plan: Int32Array.from(plan),
     segmentStart: Int32Array.from(segmentStart),
+    segmentLength: Int32Array.from(segmentLength),
     ligand: Int32Array.from(ligand),
     nCoefficients: coefficients,
     mixed: packed(mixed),

@@ -26,12 +26,16 @@ describe("the neutral speed system", () => {
     const { nComponents } = system.problem;
     const solver = eliminatedSolver(system.problem, new Float64Array(nComponents).fill(NaN), system.metals)!;
     const lnFree = new Float64Array(nComponents);
-    system.start(lnFree);
-    let sum = 0;
-    for (let point = 0; point < system.points; point++) {
-      expect(solver.solve(system.totalsAt(point), lnFree)).toMatchObject({ status: "converged", method: "eliminated" });
-      sum += lnFree[0]!;
+    // often enough that the solver makes code for the structure on the way
+    for (let pass = 0; pass < 40; pass++) {
+      system.start(lnFree);
+      let sum = 0;
+      for (let point = 0; point < system.points; point++) {
+        const { status, method } = solver.solve(system.totalsAt(point), lnFree);
+        if (status !== "converged" || method !== "eliminated") throw new Error(`point ${point}: ${status}, ${method}`);
+        sum += lnFree[0]!;
+      }
+      expect(sum.toFixed(6)).toBe(check);
     }
-    expect(sum.toFixed(6)).toBe(check);
   });
 });
