@@ -6,7 +6,7 @@ import { countedIn } from "./types.ts";
 /** Where no level is stated a metal spoils the change from about a tenth of the dye's concentration (inference from read levels). */
 const UNSTATED_LEVEL_OF_DYE = 0.1;
 /** "At every level" still means a level that an analyst could notice: a hundredth of the dye. */
-const EVERY_LEVEL_OF_DYE = 0.01;
+export const EVERY_LEVEL_OF_DYE = 0.01;
 
 /** From here on the alkali itself is the mask, and what it throws down is meant to be out of the way. */
 const ALKALI_MASKS_FROM_PH = 11.5;

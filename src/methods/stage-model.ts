@@ -13,7 +13,7 @@ import type {
 import { protonFixed, vesselSolver } from "./vessel-solver.ts";
 import { SolvedVessel, type Vessel, type VesselState } from "./vessel-state.ts";
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
-import { inertIonsOf } from "./inert-ions.ts";
+import { inertIonsOf, saltSteps } from "./inert-ions.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
 import { staysBound } from "./saturation.ts";
 import { agentComponents, classifyRows } from "./stage-rows.ts";
@@ -150,12 +150,17 @@ export function stageModel(
   let ionicStrengthMolPerL = 0.1;
   let system = prepare(ionicStrengthMolPerL, wantsSolid, wantedKey);
   let first = atStart(system, null);
+  const inertIons = inertIonsOf(totals, knowledge);
+  const salt = saltSteps(task, knowledge);
+  const dilution = task.portion.volumeML / 1000 / volumeL;
+  const cz2 = inertIons.cz2 + dilution * salt.cz2;
+  const cz = inertIons.cz + dilution * salt.cz;
   for (let round = 0; round < 4; round++) {
-    const inert = inertIonsOf(totals, knowledge);
-    const found = Math.max(MIN_IONIC_STRENGTH_MOL_PER_L, ionicStrengthOf(system, first, inert.cz2, inert.cz).molPerL);
+    const found = Math.max(MIN_IONIC_STRENGTH_MOL_PER_L, ionicStrengthOf(system, first, cz2, cz).molPerL);
     const agrees = Math.abs(found - ionicStrengthMolPerL) <= IONIC_STRENGTH_AGREES * ionicStrengthMolPerL;
-    if (agrees) break;
+    // The last finding counts also where it agrees: else a hair more salt could shift the constants by the whole allowance.
     ionicStrengthMolPerL = found;
+    if (agrees) break;
     system = prepare(ionicStrengthMolPerL, wantsSolid, wantedKey);
     first = atStart(system, first);
   }

@@ -1,4 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
+import { EVERY_LEVEL_OF_DYE } from "./blocking.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import { lyingAsHydroxideMolPerL } from "./hydroxide-lying.ts";
 import { vesselSample } from "./solution.ts";
@@ -71,10 +72,16 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
           : Math.min(1, Math.max(0, evaluation.titrated.get(component) ?? 0));
     const biasFraction = (share * inVesselMolPerL * (plan.detour?.analytePerMetal ?? 1)) / present;
     const titrates = biasFraction > allowed || liesAsFlocs(model, component, inVesselMolPerL, present, knowledge);
+    // What the method itself brings of this metal is not the sample's doing.
+    const enoughForDye = inVesselMolPerL > EVERY_LEVEL_OF_DYE * (plan.indicator?.molPerL ?? 0);
     const blocks =
-      evaluation.blockedBy.includes(component) ||
       spoilsElectrode(evaluation, component) ||
-      (!plan.backTitrant && model.indicator !== null && plan.indicator !== null && heldDye(evaluation, component));
+      (enoughForDye && evaluation.blockedBy.includes(component)) ||
+      (enoughForDye &&
+        !plan.backTitrant &&
+        model.indicator !== null &&
+        plan.indicator !== null &&
+        heldDye(evaluation, component));
     if (titrates || blocks)
       threats.push({ component, titrates, blocks, holdsAnalyte: false, biasFraction, molPerL: inVesselMolPerL });
   }

@@ -215,8 +215,8 @@ function byComposition(
 /** Name of a precipitate that the model has no solid for. */
 export const COMPOSITION = "the precipitate";
 
-const ROUNDS = 4;
-const IONIC_STRENGTH_AGREES = 0.05;
+const ROUNDS = 6;
+const IONIC_STRENGTH_AGREES = 0.005;
 
 /** The precipitation vessel at equilibrium: solids of the record, and whatever else of the sample falls with the reagent in that time. */
 function precipitation(
