@@ -2,5 +2,6 @@
 export * from "./contract-brief.ts";
 export * from "./contract-recommendation.ts";
 export * from "./contract-method-map.ts";
+export * from "./contract-turning-points.ts";
 export * from "./contract-vocabulary.ts";
 export type { Immutable } from "./contract-immutable.ts";

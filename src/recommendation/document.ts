@@ -194,6 +194,10 @@ function separationDocument(
   };
 }
 
+/** What a judged method is worth for the brief. */
+export const verdictOf = ({ meets, reservations }: JudgedMethod): RecommendedMethod["verdict"] =>
+  !meets ? "not-fit" : reservations.length > 0 ? "fit-with-reservations" : "fit";
+
 /** One judged method as the contract writes it. */
 export function methodDocument(
   task: Task,
@@ -234,7 +238,7 @@ export function methodDocument(
       })),
     },
     meetsRequirement: meets,
-    verdict: !meets ? "not-fit" : judged.reservations.length > 0 ? "fit-with-reservations" : "fit",
+    verdict: verdictOf(judged),
     reservations: [...judged.reservations],
     tolerance: tolerance.map((t) => ({
       component: ion(t.component),

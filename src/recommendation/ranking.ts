@@ -4,7 +4,7 @@ import type { DevelopedStage } from "../methods/develop.ts";
 import { roughCost, seenWith, singleMethod, type EvaluatedMethod } from "../methods/methods.ts";
 import { bearsRicherMatrix } from "../methods/tolerance.ts";
 import { portionsMethod } from "../methods/portions.ts";
-import type { Task } from "../methods/types.ts";
+import type { MethodMode, StagePlan, Task } from "../methods/types.ts";
 import { centred, workingRange, type WorkingRange } from "../methods/working-range.ts";
 import type { MethodUnderJudgement } from "./facts.ts";
 import { judge, rank, type JudgedMethod } from "./judge.ts";
@@ -98,19 +98,30 @@ export function ranged(task: Task, method: EvaluatedMethod, knowledge: Knowledge
   return { method: moved, ranges, bearsRicherMatrix: bearsRicherMatrix(task, moved, knowledge) };
 }
 
-/** One method of a kind: the same mode, titrants, dyes and masks differ only in buffer or a shade of pH. */
+/**
+ * What makes two methods the same one to an analyst: mode, and titration by titration the way round, titrant, back titrant, dye or electrode,
+ * masking agents and what is separated. They may differ in buffer, amounts or a shade of pH.
+ */
+export function kindOf(method: {
+  readonly mode: MethodMode;
+  readonly stages: readonly { readonly plan: StagePlan }[];
+}): string {
+  return `${method.mode} ${method.stages
+    .map(
+      (s) =>
+        `${s.plan.detour?.id ?? ""} ${s.plan.titrant.id} ${s.plan.backTitrant?.id ?? ""} ${seenWith(s.plan)} ${s.plan.masking
+          .map((m) => m.agent)
+          .sort()
+          .join()} ${s.plan.removed.join()}`,
+    )
+    .join("; ")}`;
+}
+
+/** One method of a kind. */
 function distinct(judged: readonly JudgedMethod[]): JudgedMethod[] {
   const seen = new Set<string>();
   return judged.filter(({ method }) => {
-    const key = `${method.mode} ${method.stages
-      .map(
-        (s) =>
-          `${s.plan.detour?.id ?? ""} ${s.plan.titrant.id} ${s.plan.backTitrant?.id ?? ""} ${seenWith(s.plan)} ${s.plan.masking
-            .map((m) => m.agent)
-            .sort()
-            .join()} ${s.plan.removed.join()}`,
-      )
-      .join("; ")}`;
+    const key = kindOf(method);
     if (seen.has(key)) return false;
     seen.add(key);
     return true;

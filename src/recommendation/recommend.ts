@@ -2,7 +2,7 @@ import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { RuleRunner } from "../inference/index.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
 import { roughCost, type EvaluatedMethod } from "../methods/methods.ts";
-import { searchMethods } from "../methods/search.ts";
+import { searchMethods, type MethodSearch } from "../methods/search.ts";
 import { toleranceLimits } from "../methods/tolerance.ts";
 import type { Task } from "../methods/types.ts";
 import { briefOf } from "./brief-document.ts";
@@ -12,7 +12,7 @@ import { becauseOf, methodDocument } from "./document.ts";
 import { findingsOf } from "./findings.ts";
 import { disagreementOf } from "./precedents.ts";
 import { judge, type JudgedMethod } from "./judge.ts";
-import { judgedMethods, ranged, ranking } from "./ranking.ts";
+import { judgedMethods, ranged, ranking, type Ranking } from "./ranking.ts";
 import { notByThisTechnique } from "./not-by-this-technique.ts";
 import { shownIon } from "./spelling.ts";
 
@@ -26,10 +26,7 @@ const SIMPLEST_SHOWN = 3;
  * Deterministic: the same task, knowledge and rules give the same document.
  */
 export async function recommend(task: Task, knowledge: Knowledge, rules: RuleRunner): Promise<Recommendation> {
-  const search = searchMethods(task, knowledge);
-  const { shown, judged } = await ranking(await judgedMethods(task, search.methods, knowledge, rules), (method) =>
-    judge(task, ranged(task, method, knowledge), knowledge, rules),
-  );
+  const { search, shown, judged } = await rankedMethods(task, knowledge, rules);
   const methods = shown.map((j, i) =>
     methodDocument(task, j, i + 1, i === 0 ? toleranceLimits(task, j.method, knowledge) : [], knowledge),
   );
@@ -61,6 +58,19 @@ export async function recommend(task: Task, knowledge: Knowledge, rules: RuleRun
     ],
     constants: first ? constantsUsed(first.method.stages, knowledge) : [],
   };
+}
+
+/** The search and the judgement behind an answer, best method first. */
+export async function rankedMethods(
+  task: Task,
+  knowledge: Knowledge,
+  rules: RuleRunner,
+): Promise<Ranking & { readonly search: MethodSearch }> {
+  const search = searchMethods(task, knowledge);
+  const found = await ranking(await judgedMethods(task, search.methods, knowledge, rules), (method) =>
+    judge(task, ranged(task, method, knowledge), knowledge, rules),
+  );
+  return { ...found, search };
 }
 
 /** The direct titrations of the analyte that an analyst would think of first: EDTA, published dye, nothing separated. */
