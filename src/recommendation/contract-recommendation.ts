@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { biasBySourceSchema, budgetSchema, wouldMeetSchema } from "./contract-budget.ts";
 import { briefSchema } from "./contract-brief.ts";
 import {
   DETECTIONS,
@@ -87,7 +88,7 @@ export const stageSchema = z.strictObject({
   backTitrant: reagentSchema.nullable(),
   added: z.array(addedSchema),
   titreML: level.nullable(),
-  pH: z.strictObject({ target: finite, low: finite, high: finite }),
+  pH: z.strictObject({ target: finite, low: finite, high: finite, drop: finite.nullable() }), // target: at the end point; drop: by how much it falls until there
   buffer: reagentSchema,
   detection: z.enum(DETECTIONS),
   indicator: z
@@ -161,14 +162,15 @@ export const stageSchema = z.strictObject({
 });
 
 const perResult = {
-  biasPercent: finite,
+  biasPercent: finite, // after what the standardisation takes back
+  biasUncancelledPercent: finite, // as it is in the titration
   relativeExpandedUncertaintyPercent: level,
+  biasBySource: biasBySourceSchema, // largest first; adds up to both
 };
 
-/** What the calculation expects of a method: bias signed, uncertainty k = 2 with the bias included. */
+/** What the calculation expects of a method: bias signed, uncertainty k = 2 with the bias included; the figures are those of the worst result. */
 export const predictedSchema = z.strictObject({
   ...perResult,
-  biasBySource: z.array(z.strictObject({ source: text, percent: finite })),
   titreML: level,
   perAnalyte: z.array(z.strictObject({ determines: z.array(text).min(1), ...perResult })),
 });
@@ -197,6 +199,8 @@ export const methodSchema = z.strictObject({
     }),
   ),
   uncertaintyBudget: z.array(z.strictObject({ source: text, percent: level })), // standard uncertainties, largest first
+  budget: budgetSchema,
+  wouldMeet: wouldMeetSchema.nullable(), // of the first-ranked method, where it misses the requirement
   workingConditions: z.strictObject({
     ionicStrengthMolPerL: level.nullable(),
     temperatureC: finite,

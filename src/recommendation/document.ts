@@ -1,12 +1,15 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { DevelopedStage } from "../methods/develop.ts";
 import type { ToleranceLimit } from "../methods/tolerance.ts";
+import { bufferStrain } from "../methods/protons.ts";
 import { vesselSample } from "../methods/solution.ts";
 import { separationsOf, type Separation } from "../methods/separation.ts";
 import type { StagePlan, Task } from "../methods/types.ts";
 import { amountsOf } from "./bench-amounts.ts";
 import type { Because, RecommendedMethod, StageDocument } from "./contract.ts";
 import type { JudgedMethod, Verdict } from "./judge.ts";
+import { budgetDocument, resultFigures, wouldMeetDocument } from "./budget-document.ts";
+import { signif } from "./figures-shown.ts";
 import { maskingDocument } from "./masking-document.ts";
 import { precedentsOf } from "./precedents.ts";
 import { resultFormulas } from "./result-formula.ts";
@@ -16,12 +19,6 @@ import { detourDocument } from "./detour-words.ts";
 import { summaryOf } from "./summary.ts";
 
 type Preparation = StageDocument["preparation"][number];
-
-/** Below this a percentage or an amount is zero for every purpose of a bench; printing 1e-13 would pretend otherwise. */
-const NOTHING = 1e-12;
-const signif = (value: number, digits = 6): number =>
-  Number.isFinite(value) && Math.abs(value) > NOTHING ? Number(value.toPrecision(digits)) : 0;
-const percentOf = (fraction: number): number => Number((100 * fraction).toFixed(4)) + 0; // never a minus zero
 
 /** A rule's word as the contract writes it. */
 export function becauseOf({ finding, stage }: Verdict): Because {
@@ -104,7 +101,12 @@ function stageDocument(task: Task, method: JudgedMethod, index: number, knowledg
     backTitrant: sameBack ? null : plan.backTitrant && { ...plan.backTitrant },
     added,
     titreML: converged ? signif(evaluation.endPointML, 5) : null,
-    pH: { target: plan.pH, low: range?.low ?? plan.pH, high: range?.high ?? plan.pH },
+    pH: {
+      target: plan.pH,
+      low: range?.low ?? plan.pH,
+      high: range?.high ?? plan.pH,
+      drop: converged ? pHDropOf(task, stage, knowledge) : null,
+    },
     buffer: { ...plan.buffer },
     detection: plan.detection,
     indicator:
@@ -175,6 +177,12 @@ function stageDocument(task: Task, method: JudgedMethod, index: number, knowledg
   };
 }
 
+/** Units of pH by which a titration falls from its start to its end point; null where the buffer is not on record. */
+function pHDropOf(task: Task, { evaluation }: DevelopedStage, knowledge: Knowledge): number | null {
+  const strain = bufferStrain(evaluation, task.temperatureC, knowledge);
+  return strain && Number(strain.pHDrop.toFixed(3));
+}
+
 /** How what is removed is parted from the analyte, as far as a step is on record. */
 function separationDocument(
   { steps, unknown }: Separation,
@@ -210,12 +218,7 @@ export function methodDocument(
   const head = method.stages[0]!;
   const ion = (id: string): string => shownIon(task, id, knowledge);
   const worst = [...method.results].sort((a, b) => b.budget.expanded - a.budget.expanded)[0]!;
-  const ledger = method.stages.flatMap((s, i) =>
-    s.evaluation.ledger.map((line) => ({
-      source: method.stages.length > 1 ? `${ion(line.source)} (titration ${i + 1})` : ion(line.source),
-      percent: percentOf(line.fraction),
-    })),
-  );
+  const figures = method.results.map((result) => resultFigures(task, method, result, knowledge));
   const meets = judged.meets;
   return {
     id: method.id,
@@ -227,15 +230,9 @@ export function methodDocument(
     stages: method.stages.map((_, i) => stageDocument(task, judged, i, knowledge)),
     calculation: resultFormulas(task, method, knowledge),
     predicted: {
-      biasPercent: percentOf(worst.biasFraction),
-      relativeExpandedUncertaintyPercent: signif(100 * worst.budget.expanded, 4),
-      biasBySource: ledger.sort((a, b) => Math.abs(b.percent) - Math.abs(a.percent)),
+      ...figures[method.results.indexOf(worst)]!,
       titreML: signif(head.evaluation.endPointML, 5),
-      perAnalyte: method.results.map((r) => ({
-        determines: r.determines.map(ion),
-        biasPercent: percentOf(r.biasFraction),
-        relativeExpandedUncertaintyPercent: signif(100 * r.budget.expanded, 4),
-      })),
+      perAnalyte: method.results.map((result, i) => ({ determines: result.determines.map(ion), ...figures[i]! })),
     },
     meetsRequirement: meets,
     verdict: verdictOf(judged),
@@ -248,6 +245,8 @@ export function methodDocument(
       endsBy: t.endsBy,
     })),
     uncertaintyBudget: worst.budget.terms.map((t) => ({ source: t.source, percent: signif(100 * t.relative, 3) })),
+    budget: budgetDocument(task, method, worst, knowledge),
+    wouldMeet: rankNumber === 1 && !meets ? wouldMeetDocument(task, method, knowledge) : null,
     workingConditions: {
       ionicStrengthMolPerL: signif(head.evaluation.model.ionicStrengthMolPerL, 4),
       temperatureC: task.temperatureC,

@@ -1,6 +1,7 @@
 import type { Because, RecommendedMethod, StageDocument } from "./contract.ts";
 import { bullet, row, wrap } from "./text-layout.ts";
 import { LIMIT_END_WORDS } from "./limit-words.ts";
+import { causeWords } from "./cause-words.ts";
 import { mergedStatements } from "./merge-statements.ts";
 import { changeWords } from "./text-amounts.ts";
 import { figures, listed, percent, reagentWords, signedPercent } from "./text-words.ts";
@@ -23,6 +24,8 @@ const LEAST_LOG10_K = 2;
 /** Parts of a bias and of an uncertainty below these, %, change no figure that is shown. */
 const LEAST_BIAS_PERCENT = 0.005;
 const LEAST_UNCERTAINTY_PERCENT = 0.01;
+/** A shift of the pH that a meter shows. */
+const SEEN_PH = 0.02;
 /** Limits this many times above what is there are no limits to mind. */
 const FAR_ABOVE = 100;
 
@@ -52,7 +55,10 @@ function stageConditions(stage: StageDocument, method: RecommendedMethod): reado
   const rows: readonly (readonly [string, string | null])[] = [
     ["Titrant", `${titrant.id} ${figures(titrant.molPerL)} mol/L`],
     ["Back titrant", back && `${back.id} ${figures(back.molPerL)} mol/L`],
-    ["pH", `${figures(pH.target)} (${range}), ${reagentWords(buffer.id)} ${figures(buffer.molPerL)} mol/L`],
+    [
+      "pH",
+      `${figures(pH.target)} (${range}${dropWords(pH.drop)}), ${reagentWords(buffer.id)} ${figures(buffer.molPerL)} mol/L`,
+    ],
     ["End point", `${seen} (${END_POINT_BASIS[endPoint.basis]})`],
     [
       "Step",
@@ -75,6 +81,12 @@ function stageConditions(stage: StageDocument, method: RecommendedMethod): reado
   return rows.flatMap(([name, value]) => (value === null ? [] : [row(name, value)]));
 }
 
+/** By how much the pH moves until the end point, where a pH meter would show it. */
+const dropWords = (drop: number | null): string =>
+  drop === null || Math.abs(drop) < SEEN_PH
+    ? ""
+    : `; at the end point, ${drop > 0 ? "higher" : "lower"} by ${Math.abs(drop).toFixed(2)} at the start`;
+
 /** How the end is read when no eye reads it: the electrode, or the dye, the photometer and its wavelength. */
 export function instrumentWords(stage: StageDocument): string {
   const { electrode, wavelengthNm } = stage.endPoint;
@@ -88,53 +100,70 @@ export function backTitrantOf(stage: StageDocument, method: RecommendedMethod): 
   return stage.mode === "direct" ? null : (stage.backTitrant ?? method.backTitrant);
 }
 
-/** Causes of a bias as a reader would name them; what the standardisation takes back stands beside it. */
-const CAUSE_WORDS: Readonly<Record<string, string>> = {
-  "end-point": "end point beside equivalence",
-  "standardised alike": "the same shift in the standardisation, which takes it back",
-};
-const BUDGET_WORDS: Readonly<Record<string, string>> = {
-  "standardised alike": "shift of the standardisation",
-};
+type Figures = Omit<RecommendedMethod["predicted"]["perAnalyte"][number], "determines">;
 
-/** Bias with its causes, titration by titration, expanded uncertainty with its parts, and both for each result where there are several. */
+/** Bias with its causes, expanded uncertainty with its terms, for each result where there are several, and what would meet the requirement. */
 export function error(method: RecommendedMethod): readonly (readonly string[])[] {
-  const { predicted, uncertaintyBudget } = method;
+  const { predicted, budget, wouldMeet } = method;
   const several = predicted.perAnalyte.length > 1;
-  const parts = uncertaintyBudget
-    .filter((part) => part.percent >= LEAST_UNCERTAINTY_PERCENT)
-    .map((part) => `${BUDGET_WORDS[part.source] ?? part.source} ${percent(part.percent)}`);
-  const budget = parts.length > 0 ? ` (standard uncertainties: ${parts.join(", ")})` : "";
-  const expanded = percent(predicted.relativeExpandedUncertaintyPercent);
   const worst = several ? " of the worst result" : "";
-  const causes = causesOf(method);
-  const single = method.stages.length === 1 && causes.length > 0 ? `: ${causes[0]!.words}` : "";
+  const expanded = percent(predicted.relativeExpandedUncertaintyPercent);
+  const degrees =
+    budget.effectiveDegreesOfFreedom === null
+      ? ""
+      : `, ${Math.floor(budget.effectiveDegreesOfFreedom)} effective degrees of freedom`;
   return [
-    wrap(`Bias${worst} ${signedPercent(predicted.biasPercent)}${single}.`, "  "),
-    ...(method.stages.length === 1
-      ? []
-      : causes.map(({ titration, words }) => bullet(`in titration ${titration}, of what it finds: ${words}`))),
-    wrap(`Expanded uncertainty${worst}, bias included: ${expanded}${budget}.`, "  "),
+    // The causes stand with each result where there are several.
+    wrap(`${biasWords(several ? { ...predicted, biasBySource: [] } : predicted, worst)}.`, "  "),
+    wrap(
+      `Expanded uncertainty${worst}, bias included: ${expanded} (k = ${budget.coverageFactor}; combined standard uncertainty ${percent(budget.combinedPercent)}${degrees}).`,
+      "  ",
+    ),
+    ...budgetTable(method),
+    ...budget.notCounted.map((left) => bullet(`not counted: ${left}`)),
     ...(several
       ? predicted.perAnalyte.map((result) =>
           bullet(
-            `${listed(result.determines)}: bias ${signedPercent(result.biasPercent)}, expanded uncertainty ${percent(result.relativeExpandedUncertaintyPercent)}`,
+            `${listed(result.determines)}: b${biasWords(result, "").slice(1)}; expanded uncertainty ${percent(result.relativeExpandedUncertaintyPercent)}`,
           ),
         )
       : []),
+    ...(wouldMeet === null ? [] : [wrap(wouldMeet.statement, "  ")]),
   ];
 }
 
-/** What shifts each titration, largest first, without what changes no figure. */
-function causesOf(method: RecommendedMethod): readonly { titration: number; words: string }[] {
-  const of = new Map<number, string[]>();
-  for (const { source, percent: value } of method.predicted.biasBySource) {
-    if (Math.abs(value) < LEAST_BIAS_PERCENT) continue;
-    const [, plain = source, number = "1"] = /^(.*?)(?: \(titration (\d+)\))?$/.exec(source) ?? [];
-    const words = `${CAUSE_WORDS[plain] ?? plain} ${signedPercent(value)}`;
-    of.set(Number(number), [...(of.get(Number(number)) ?? []), words]);
-  }
-  return [...of].sort(([a], [b]) => a - b).map(([titration, words]) => ({ titration, words: words.join("; ") }));
+/** A bias, what of it the standardisation takes back, and what makes it, without what changes no figure. */
+function biasWords(result: Figures, of: string): string {
+  const { biasPercent, biasUncancelledPercent, biasBySource } = result;
+  const changed = (after: number, before: number): boolean => Math.abs(after - before) >= LEAST_BIAS_PERCENT;
+  const before = changed(biasPercent, biasUncancelledPercent)
+    ? ` (${signedPercent(biasUncancelledPercent)} before the standardisation takes its part back)`
+    : "";
+  const causes = biasBySource
+    .filter((c) => Math.max(Math.abs(c.percent), Math.abs(c.uncancelledPercent)) >= LEAST_BIAS_PERCENT)
+    .map(
+      (c) =>
+        `${causeWords(c)} ${signedPercent(c.percent)}${changed(c.percent, c.uncancelledPercent) ? ` (${signedPercent(c.uncancelledPercent)} before)` : ""}`,
+    );
+  return `Bias${of} ${signedPercent(biasPercent)}${before}${causes.length > 0 ? `: ${causes.join("; ")}` : ""}`;
+}
+
+/** Standard uncertainties by term, largest first, each with the quantities it is made of. */
+function budgetTable({ uncertaintyBudget, budget }: RecommendedMethod): readonly (readonly string[])[] {
+  return uncertaintyBudget
+    .filter((term) => term.percent >= LEAST_UNCERTAINTY_PERCENT)
+    .map((term) => {
+      const made = budget.rows
+        .filter((r) => r.term === term.source && r.percent >= LEAST_UNCERTAINTY_PERCENT)
+        .map((r) => `${r.quantity} ${quantityWords(r)} ${percent(r.percent)}`);
+      return bullet(`${term.source} ${percent(term.percent)}${made.length > 0 ? `: ${made.join("; ")}` : ""}`);
+    });
+}
+
+/** How far a quantity may be off, in its unit. */
+function quantityWords({ halfWidth, unit, distribution }: RecommendedMethod["budget"]["rows"][number]): string {
+  const amount = `${figures(halfWidth)}${unit === "" ? "" : ` ${unit}`}`;
+  return distribution === "normal" ? `(u ${amount})` : `(±${amount}, ${distribution})`;
 }
 
 /** What is masked by what, on what knowledge, and up to which level each component is borne. */

@@ -9,7 +9,7 @@ export const STAGE: StageDocument = {
   backTitrant: null,
   added: [],
   titreML: 20.1,
-  pH: { target: 5.5, low: 5, high: 6 },
+  pH: { target: 5.5, low: 5, high: 6, drop: 0.05 },
   buffer: { id: "hexamine", molPerL: 0.05 },
   detection: "visual",
   indicator: { id: "xylenol-orange", class: "triphenylmethane", colourChange: ["red-violet", "yellow"], molPerL: 2e-5 },
@@ -61,6 +61,18 @@ export const STAGE: StageDocument = {
   interferents: [{ component: "Al3+", titratedFraction: 0.001, biasPercent: 0.01, maskedBy: "fluoride" }],
 };
 
+const CAUSES: RecommendedMethod["predicted"]["biasBySource"] = [
+  { source: "end-point", percent: 0.03, uncancelledPercent: -0.03, kind: "end-point", by: null, titration: null },
+  {
+    source: "Al3+",
+    percent: 0.01,
+    uncancelledPercent: 0.01,
+    kind: "incomplete-masking",
+    by: "fluoride",
+    titration: null,
+  },
+];
+
 export const METHOD: RecommendedMethod = {
   id: "Zn2+|direct|EDTA|xylenol-orange|5.5",
   rank: 1,
@@ -72,13 +84,19 @@ export const METHOD: RecommendedMethod = {
   calculation: [],
   predicted: {
     biasPercent: 0.04,
-    biasBySource: [
-      { source: "end-point", percent: 0.03 },
-      { source: "Al3+", percent: 0.01 },
-    ],
+    biasUncancelledPercent: -0.02,
+    biasBySource: CAUSES,
     relativeExpandedUncertaintyPercent: 0.31,
     titreML: 20.1,
-    perAnalyte: [{ determines: ["Zn2+"], biasPercent: 0.04, relativeExpandedUncertaintyPercent: 0.31 }],
+    perAnalyte: [
+      {
+        determines: ["Zn2+"],
+        biasPercent: 0.04,
+        biasUncancelledPercent: -0.02,
+        biasBySource: CAUSES,
+        relativeExpandedUncertaintyPercent: 0.31,
+      },
+    ],
   },
   meetsRequirement: true,
   verdict: "fit",
@@ -90,6 +108,29 @@ export const METHOD: RecommendedMethod = {
     { source: "burette", percent: 0.08 },
     { source: "end point", percent: 0.05 },
   ],
+  budget: {
+    determines: ["Zn2+"],
+    resultMolPerL: 0.008,
+    rows: [
+      {
+        term: "burette",
+        quantity: "burette",
+        value: 20.1,
+        unit: "mL",
+        distribution: "triangular",
+        halfWidth: 0.03,
+        standardUncertainty: 0.0122,
+        sensitivityPercentPerUnit: 4.975,
+        percent: 0.0609,
+        degreesOfFreedom: null,
+      },
+    ],
+    combinedPercent: 0.135,
+    coverageFactor: 2,
+    effectiveDegreesOfFreedom: 60,
+    notCounted: ["The uncertainty of the constants: the study of robustness carries it to the result."],
+  },
+  wouldMeet: null,
   workingConditions: { ionicStrengthMolPerL: 0.12, temperatureC: 25, outOfModelRange: false },
   scores: [{ rule: "mode/direct-first", weight: 3, statement: "A direct titration has the fewest steps." }],
   precedents: [],

@@ -71,7 +71,7 @@ describe("ownFaults", () => {
   it("sees a target outside its range, a verdict against the figures and a broken shape", () => {
     const document = documents.get(INVENTED_BRIEFS.zinc)!;
     const [first, ...rest] = document.methods;
-    const stage = { ...first!.stages[0]!, pH: { target: 9, low: 5, high: 6 } };
+    const stage = { ...first!.stages[0]!, pH: { target: 9, low: 5, high: 6, drop: 0 } };
     expect(ownFaults(document)).toEqual([]);
     expect(ownFaults({ ...document, methods: [{ ...first!, stages: [stage] }, ...rest] })).toEqual([
       "method 1: pH 9 outside 5 to 6",

@@ -85,19 +85,18 @@ describe("recommendationText", () => {
     expect(text.match(/The mask is reported only/g)).toHaveLength(1);
     expect(text.slice(text.indexOf("\nWhy"))).not.toContain("The dye fades.");
   });
+  const cause = (source: string, percent: number, uncancelledPercent = percent) =>
+    ({ source, percent, uncancelledPercent, kind: "interferent", by: null, titration: null }) as const;
   it("leaves out parts of bias and uncertainty that change no figure, and limits that are far away", () => {
     const predicted = {
       ...METHOD.predicted,
-      biasBySource: [
-        { source: "Na+", percent: 0.0002 },
-        { source: "Cd2+", percent: 0.02 },
-      ],
+      biasBySource: [cause("Na+", 0.0002), cause("Cd2+", 0.02)],
     };
     const tolerance = [
       { component: "Na+", limitMolPerL: 0.5, presentMolPerL: 0.001, withMasking: true, endsBy: "requirement" } as const,
     ];
     const flat = textWith({ methods: [{ ...METHOD, predicted, tolerance }] }).replace(/\s+/g, " ");
-    expect(flat).toContain("Bias +0.04 %: Cd2+ +0.02 %.");
+    expect(flat).toContain("Bias +0.04 % (-0.02 % before the standardisation takes its part back): Cd2+ +0.02 %.");
     expect(flat).toContain("Na+: 1 mmol/L is there, more than a hundred times as much is borne");
   });
   it("says a rejected reason once, and what told most between the first two", () => {

@@ -1,7 +1,7 @@
 import type { Recommendation, RecommendedMethod, StageDocument } from "../../recommendation/contract.ts";
 import { colourMarkup } from "../format/colour-words.ts";
 import type { Names } from "../format/names.ts";
-import { amount, fixed, percent, signedPercent, significant } from "../format/numbers.ts";
+import { amount, fixed, percent, significant } from "../format/numbers.ts";
 import {
   END_POINT_BASIS_WORDS,
   MASKING_BASIS_WORDS,
@@ -79,7 +79,11 @@ function benchRows(
         ],
   );
   if (back) add("Back titrant", [reagent(back)]);
-  add("pH", [text(fixed(stage.pH.target, 1))], [text(rangeWords(method.meetsRequirement, stage.pH))]);
+  add(
+    "pH",
+    [text(fixed(stage.pH.target, 1))],
+    [text(rangeWords(method.meetsRequirement, stage.pH)), ...dropNotes(stage.pH.drop)],
+  );
   add(
     "Buffer",
     [reagent(stage.buffer)],
@@ -182,6 +186,15 @@ function rangeWords(meets: boolean, { low, high }: StageDocument["pH"]): string 
   return `works from ${fixed(low, 1)} to ${fixed(high, 1)}`;
 }
 
+/** A shift of the pH that a meter shows. */
+const SEEN_PH = 0.02;
+
+/** That the pH of the plan is the one at the end point, where protons set free bring it there. */
+const dropNotes = (drop: number | null): readonly Markup[] =>
+  drop === null || Math.abs(drop) < SEEN_PH
+    ? []
+    : [text(`at the end point; ${drop > 0 ? "higher" : "lower"} by ${fixed(Math.abs(drop), 2)} at the start`)];
+
 /** The instrument that finds the end, in words. */
 function readWith(stage: StageDocument): string {
   const { electrode, wavelengthNm } = stage.endPoint;
@@ -207,42 +220,3 @@ function endPointLines(stage: StageDocument): readonly Markup[] {
   const sharpness = sharpnessPercent === null ? "" : `, which is ±${percent(sharpnessPercent)} of the titre`;
   return [text(`pM ${fixed(pM, 2)} ± ${fixed(bandPM, 2)}${sharpness}${equivalence}`)];
 }
-
-export interface PartView {
-  readonly source: Markup;
-  readonly value: string;
-  /** Length of the bar, 0 to 100, and the side it grows to. */
-  readonly bar: Markup;
-}
-
-/** A bar of up to 60 units; with negative parts about, it grows from the middle to either side, so the side says the sign. */
-const bar = (share: number, negative: boolean, twoSided: boolean): Markup => {
-  const length = Math.round(Math.min(1, Math.max(0, share)) * 600) / 10;
-  const zero = twoSided ? 60 : 0;
-  const total = twoSided ? 120 : 60;
-  return new Markup(
-    `<svg class="bar" viewBox="0 0 ${total} 10" width="${total}" height="10" aria-hidden="true" focusable="false"><path class="tick" d="M${zero + 0.5} 0V10"/><rect class="${negative ? "bar-minus" : "bar-plus"}" x="${negative ? zero - length : zero}" y="2" width="${length}" height="6"/></svg>`,
-  );
-};
-
-/** The error of a method by its causes, and the uncertainty by its terms, each with a bar against the largest. */
-export function errorParts(
-  method: RecommendedMethod,
-  names: Names,
-): { readonly bias: readonly PartView[]; readonly budget: readonly PartView[] } {
-  const view = (parts: readonly { source: string; percent: number }[], isSigned: boolean): readonly PartView[] => {
-    const twoSided = parts.some((p) => p.percent < 0);
-    const largest = Math.max(...parts.map((p) => Math.abs(p.percent)), 1e-12);
-    return parts.map((p) => ({
-      source: sourceName(p.source, names),
-      value: isSigned ? signedPercent(p.percent) : percent(p.percent),
-      bar: bar(Math.abs(p.percent) / largest, p.percent < 0, twoSided),
-    }));
-  };
-  return { bias: view(method.predicted.biasBySource, true), budget: view(method.uncertaintyBudget, false) };
-}
-
-const sourceName = (source: string, names: Names): Markup =>
-  /[+-]$/.test(source) || source === names.plain(source)
-    ? names.set(source.replaceAll(/(?<=[a-z])-(?=[a-z])/g, " "))
-    : names.name(source);

@@ -9,7 +9,8 @@ import { amount, fixed, percent, signed, signedPercent } from "../format/numbers
 import { FINDING_WORDS, MODE_WORDS, VERDICT_WORDS, wordsOf } from "../format/words.ts";
 import { joinMarkup } from "../render/markup.ts";
 import type { FactListing, FigureSeries, WebServices } from "../services.ts";
-import { errorParts, stageViews } from "./method-view.ts";
+import { budgetView, causeViews, termViews } from "./error-view.ts";
+import { stageViews } from "./method-view.ts";
 import { roomViews } from "./room-view.ts";
 import { marginFacts, reasonViews } from "./reasons-view.ts";
 import { constantViews } from "./constants-used-view.ts";
@@ -131,7 +132,11 @@ function methodView(
             bias: signedPercent(p.biasPercent),
             uncertainty: percent(p.relativeExpandedUncertaintyPercent),
           })),
-    parts: errorParts(method, names),
+    biasBefore: signedPercent(method.predicted.biasUncancelledPercent),
+    causes: causeViews(method, names),
+    terms: termViews(method, names),
+    budget: budgetView(method, names),
+    wouldMeet: method.wouldMeet === null ? null : names.set(method.wouldMeet.statement),
     room: roomViews(method.tolerance, names),
     interferents: method.stages.flatMap((stage, i) =>
       stage.interferents.map((x) => ({
