@@ -49,6 +49,8 @@ export function termViews({ uncertaintyBudget }: RecommendedMethod, names: Names
   }));
 }
 
+type Row = RecommendedMethod["budget"]["rows"][number];
+
 /** One quantity of the budget: what is known of it, and what it does to the result. */
 interface QuantityView {
   readonly quantity: Markup;
@@ -70,19 +72,31 @@ export interface BudgetView {
   readonly notCounted: readonly Markup[];
 }
 
+/** A figure without the zeros that would claim more of it than is known. */
+const short = (value: number, digits: number): string =>
+  Math.abs(value) >= 1e-3 && Math.abs(value) < 1e5
+    ? String(Number(value.toPrecision(digits))).replace("-", "−")
+    : significant(value, digits);
+
 const withUnit = (value: number, digits: number, unit: string): string =>
-  `${significant(value, digits)}${unit === "" ? "" : ` ${unit}`}`;
+  `${short(value, digits)}${unit === "" ? "" : ` ${unit}`}`;
 
-const degrees = (value: number | null): string => (value === null ? "infinite" : significant(Math.floor(value), 4));
+/** What is known of a quantity: its value where it has one, how far it may be off, and of how many observations that speaks. */
+function known({ value, unit, distribution, halfWidth, degreesOfFreedom }: Row): string {
+  const parts = [
+    value === 0 ? "" : withUnit(value, 4, unit),
+    distribution === "normal" ? "normal" : `± ${withUnit(halfWidth, 3, unit)}, ${distribution}`,
+    degreesOfFreedom === null ? "" : `degrees of freedom ${Math.floor(degreesOfFreedom)}`,
+  ];
+  return parts.filter((p) => p !== "").join("; ");
+}
 
-function quantityView(row: RecommendedMethod["budget"]["rows"][number], names: Names): QuantityView {
-  const limits =
-    row.distribution === "normal" ? "normal" : `± ${withUnit(row.halfWidth, 3, row.unit)}, ${row.distribution}`;
+function quantityView(row: Row, names: Names): QuantityView {
   return {
     quantity: names.set(row.quantity),
-    known: `${withUnit(row.value, 5, row.unit)}; ${limits}; degrees of freedom ${degrees(row.degreesOfFreedom)}`,
+    known: known(row),
     standardUncertainty: withUnit(row.standardUncertainty, 2, row.unit),
-    sensitivity: `${significant(row.sensitivityPercentPerUnit, 3)} %${row.unit === "" ? "" : `/${row.unit}`}`,
+    sensitivity: `${short(row.sensitivityPercentPerUnit, 3)} %${row.unit === "" ? "" : `/${row.unit}`}`,
     contribution: percent(row.percent),
   };
 }
@@ -102,9 +116,10 @@ export function budgetView(method: RecommendedMethod, names: Names): BudgetView 
       { label: "Combined standard uncertainty", value: percent(budget.combinedPercent) },
       {
         label: "Effective degrees of freedom (Welch and Satterthwaite)",
-        value: degrees(budget.effectiveDegreesOfFreedom),
+        value:
+          budget.effectiveDegreesOfFreedom === null ? "infinite" : `${Math.floor(budget.effectiveDegreesOfFreedom)}`,
       },
-      { label: "Coverage factor k", value: significant(budget.coverageFactor, 2) },
+      { label: "Coverage factor k", value: short(budget.coverageFactor, 2) },
       { label: "Bias, added by its size", value: signedPercent(predicted.biasPercent) },
       { label: "Expanded uncertainty", value: `±${percent(predicted.relativeExpandedUncertaintyPercent)}` },
     ],

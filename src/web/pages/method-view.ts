@@ -193,7 +193,7 @@ const SEEN_PH = 0.02;
 const dropNotes = (drop: number | null): readonly Markup[] =>
   drop === null || Math.abs(drop) < SEEN_PH
     ? []
-    : [text(`at the end point; ${drop > 0 ? "higher" : "lower"} by ${fixed(Math.abs(drop), 2)} at the start`)];
+    : [text(`the pH at the end point; ${drop > 0 ? "higher" : "lower"} by ${fixed(Math.abs(drop), 2)} at the start`)];
 
 /** The instrument that finds the end, in words. */
 function readWith(stage: StageDocument): string {
