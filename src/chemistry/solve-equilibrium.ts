@@ -11,6 +11,8 @@ export { ABSENT_LN_FREE, type SolveOptions } from "./solve-load.ts";
 export { BALANCE_TOLERANCE, type EquilibriumResult } from "./solve-result.ts";
 
 const NEAR_TOLERANCE = 5e-13; // the plain iteration's, with room for the residual to be summed in another order
+const COLD_TOLERANCE = 5e-14; // from a cold start, with the pivot below: an error of at most 5e-11 in ln free
+const COLD_PIVOT = 1e-3; // scaled pivot from which the plain variables may answer a cold start; below it the safe method keeps the digits
 const DEFAULT_ITERATIONS = 500;
 const NEAR_ITERATIONS = 30; // the plain iteration gets this many before the safe method takes over
 
@@ -24,8 +26,8 @@ const NEAR_ITERATIONS = 30; // the plain iteration gets this many before the saf
  * residual and its component, iterations. Residuals are relative to the total, or for a component with negative
  * coefficients to the sum of the magnitudes in its balance. No value is NaN or infinite whatever the status.
  *
- * Method: the balances are the gradient of a convex function of the logs; damped Newton, in the plain variables when a near start is
- * given, else in the variables that suit the point (see `solveReduced`); solids by an active set.
+ * Method: the balances are the gradient of a convex function of the logs; damped Newton in the plain variables, and where
+ * those would lose digits or do not get there in the variables that suit the point (see `solveReduced`); solids by an active set.
  *
  * @throws AppError "solver-input" for wrong lengths, or a negative total that no species can meet.
  */
@@ -52,16 +54,20 @@ function iterate(st: SolveStructure, options: SolveOptions): Run {
       }
   if (st.n === 0) return { status: "converged", iterations: 0, active: [], cancellation: 1 };
   const near = loadStart(st, options.start);
-  let spent = 0;
-  const guess = anyAllowed ? (options.activeSolids ?? []).map((s) => st.solids.indexOf(s)).filter((s) => s >= 0) : [];
-  if (near && st.nonNegative && guess.length === 0) {
-    const fast = newtonFromNear(st, NEAR_TOLERANCE, Math.min(limit, NEAR_ITERATIONS));
-    spent = fast.iterations;
-    if (fast.ok && !(anyAllowed && supersaturated(st, allowed)))
-      return { status: "converged", iterations: spent, active: [], cancellation: 1 };
-    if (!fast.ok) loadStart(st, options.start);
-  }
   if (!near) coldStart(st);
+  let spent = 0;
+  let guess = anyAllowed ? (options.activeSolids ?? []).map((s) => st.solids.indexOf(s)).filter((s) => s >= 0) : [];
+  if (st.nonNegative && guess.length === 0) {
+    st.scratch.trial.set(st.scratch.x);
+    const fast = newtonFromNear(st, near ? NEAR_TOLERANCE : COLD_TOLERANCE, Math.min(limit, NEAR_ITERATIONS));
+    spent = fast.iterations;
+    if (fast.ok && (near || fast.pivot >= COLD_PIVOT)) {
+      const solid = anyAllowed ? mostSupersaturated(st, allowed) : -1;
+      if (solid < 0)
+        return { status: "converged", iterations: spent, active: [], cancellation: near ? 1 : 1 / fast.pivot };
+      guess = [solid]; // what the search for solids would take in first
+    } else st.scratch.x.set(st.scratch.trial);
+  }
   const left = Math.max(0, limit - spent);
   if (!anyAllowed) {
     const outcome = solveReduced(st, [], left);
@@ -81,14 +87,19 @@ function loadStart(st: SolveStructure, start: ArrayLike<number> | undefined): bo
   return true;
 }
 
-function supersaturated(st: SolveStructure, allowed: Uint8Array): boolean {
+/** The allowed local solid that is furthest above saturation at the present point, -1 where none is. */
+function mostSupersaturated(st: SolveStructure, allowed: Uint8Array): number {
   const { x, base } = st.scratch;
   const { start, column, value } = st.rows;
+  let found = -1;
+  let highest = 0;
   for (let s = 0; s < allowed.length; s++) {
     const row = st.m + s;
     let sum = base[row]!;
     for (let p = start[row]!; p < start[row + 1]!; p++) sum += value[p]! * x[column[p]!]!;
-    if (allowed[s] === 1 && sum > 0) return true;
+    if (allowed[s] !== 1 || !(sum > highest)) continue;
+    highest = sum;
+    found = s;
   }
-  return false;
+  return found;
 }

@@ -10,6 +10,7 @@ const OVERFLOW = 690;
 export interface NewtonOutcome {
   readonly ok: boolean;
   readonly iterations: number;
+  readonly pivot: number; // smallest scaled pivot of the last matrix: its inverse says how far the answer magnifies rounding
 }
 
 /**
@@ -31,7 +32,7 @@ export function newtonFromNear(st: SolveStructure, tolerance: number, maxIterati
       let e = base[i]!;
       const end = start[i + 1]!;
       for (let p = start[i]!; p < end; p++) e += value[p]! * x[column[p]!]!;
-      if (!(e < OVERFLOW)) return { ok: false, iterations: iteration };
+      if (!(e < OVERFLOW)) return { ok: false, iterations: iteration, pivot };
       exponent[i] = e;
       concentration[i] = Math.exp(e);
     }
@@ -46,8 +47,8 @@ export function newtonFromNear(st: SolveStructure, tolerance: number, maxIterati
       if (relative > worst) worst = relative;
     }
     if (worst <= tolerance && lastStep <= SMALL_LAST_STEP && pivot >= WELL_CONDITIONED)
-      return { ok: true, iterations: iteration };
-    if (iteration >= maxIterations) return { ok: false, iterations: iteration };
+      return { ok: true, iterations: iteration, pivot };
+    if (iteration >= maxIterations) return { ok: false, iterations: iteration, pivot };
     hessian.fill(0);
     for (let p = 0; p < nPairs; p++) {
       let sum = 0;
@@ -56,7 +57,7 @@ export function newtonFromNear(st: SolveStructure, tolerance: number, maxIterati
       hessian[hessianIndex[p]!] = sum;
     }
     pivot = factorScaled(hessian, n, scale, 1e-300);
-    if (!(pivot >= WELL_CONDITIONED)) return { ok: false, iterations: iteration };
+    if (!(pivot >= WELL_CONDITIONED)) return { ok: false, iterations: iteration, pivot };
     solveScaled(hessian, n, scale, step);
     lastStep = 0;
     for (let j = 0; j < n; j++) {
