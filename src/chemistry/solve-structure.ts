@@ -1,17 +1,18 @@
 import { AppError } from "../errors.ts";
+import {
+  columnsOf,
+  groupSpecies,
+  kindOf,
+  pairsOf,
+  sparseRows,
+  FIXED,
+  UNKNOWN,
+  type MatrixRows,
+  type Rows,
+} from "./solve-structure-rows.ts";
 import type { MassBalanceProblem } from "./types.ts";
 
-/** What a component is in one solve: solved for, held at a given free concentration, or not there at all. */
-export const UNKNOWN = 0;
-export const FIXED = 1;
-export const ABSENT = 2;
-
-/** Sparse rows over local unknowns or over global components. */
-interface Rows {
-  readonly start: Int32Array;
-  readonly column: Int32Array;
-  readonly value: Float64Array;
-}
+export { ABSENT, FIXED, UNKNOWN } from "./solve-structure-rows.ts";
 
 /**
  * The index lists and scratch arrays of one pattern of unknown, fixed and absent components; local numbering throughout.
@@ -142,77 +143,37 @@ function buildStructure(
   nonNegativeColumn: Uint8Array,
 ): SolveStructure {
   const nComponents = problem.nComponents;
-  const unknown: number[] = [];
   const local = new Int32Array(nComponents).fill(-1);
+  const unknown: number[] = [];
   for (let j = 0; j < nComponents; j++) {
     if (state[j] !== UNKNOWN) continue;
     local[j] = unknown.length;
     unknown.push(j);
   }
   const n = unknown.length;
-  const classify = (matrix: Int8Array, row: number): "variable" | "constant" | "absent" => {
-    let variable = false;
-    for (let j = 0; j < nComponents; j++) {
-      if (matrix[row * nComponents + j] === 0) continue;
-      if (state[j] === ABSENT) return "absent";
-      if (state[j] === UNKNOWN) variable = true;
-    }
-    return variable ? "variable" : "constant";
-  };
-  const groups = new Map<string, number[]>();
-  const constantSpecies: number[] = [];
-  for (let i = 0; i < problem.nSpecies; i++) {
-    const kind = classify(problem.stoichiometry, i);
-    if (kind === "constant") constantSpecies.push(i);
-    if (kind !== "variable") continue;
-    const key = unknown.map((j) => problem.stoichiometry[i * nComponents + j]!).join(",");
-    const group = groups.get(key);
-    if (group === undefined) groups.set(key, [i]);
-    else group.push(i);
-  }
-  const members = [...groups.values()];
-  const groupStart = new Int32Array(members.length + 1);
-  members.forEach((group, g) => (groupStart[g + 1] = groupStart[g]! + group.length));
+  const { groups, constantSpecies, groupOf } = groupSpecies(problem, state, unknown);
+  const groupStart = new Int32Array(groups.length + 1);
+  for (let g = 0; g < groups.length; g++) groupStart[g + 1] = groupStart[g]! + groups[g]!.length;
   const solids: number[] = [];
   for (let s = 0; s < problem.solids.n; s++)
-    if (classify(problem.solids.stoichiometry, s) === "variable") solids.push(s);
-  const m = members.length;
-  const species = members.flat();
-  const solidRows = solids.map((row) => ({ matrix: problem.solids.stoichiometry, row }));
-  const rows = [...members.map((group) => ({ matrix: problem.stoichiometry, row: group[0]! })), ...solidRows];
-  const everyRow = [...species.map((row) => ({ matrix: problem.stoichiometry, row })), ...solidRows];
-  const dense = new Float64Array(rows.length * n);
-  rows.forEach(({ matrix, row }, i) => {
-    for (let j = 0; j < n; j++) dense[i * n + j] = matrix[row * nComponents + unknown[j]!]!;
-  });
-  const sparse = (select: number, from: typeof rows): Rows => {
-    const start = [0];
-    const column: number[] = [];
-    const value: number[] = [];
-    for (const { matrix, row } of from) {
-      for (let j = 0; j < nComponents; j++) {
-        const coefficient = matrix[row * nComponents + j]!;
-        if (coefficient === 0 || state[j] !== select) continue;
-        column.push(select === UNKNOWN ? local[j]! : j);
-        value.push(coefficient);
-      }
-      start.push(column.length);
-    }
-    return { start: Int32Array.from(start), column: Int32Array.from(column), value: Float64Array.from(value) };
-  };
-  const balance = gather(n, m, (j, i) => dense[i * n + j]!);
-  const pairs: number[] = [];
-  for (let j = 0; j < n; j++)
-    for (let k = 0; k <= j; k++)
-      for (let i = 0; i < m; i++)
-        if (dense[i * n + j] !== 0 && dense[i * n + k] !== 0) {
-          pairs.push(j * n + k);
-          break;
-        }
-  const hessian = gather(pairs.length, m, (p, i) => {
-    const j = Math.floor(pairs[p]! / n);
-    return dense[i * n + j]! * dense[i * n + (pairs[p]! - j * n)]!;
-  });
+    if (kindOf(problem.solids.stoichiometry, s, nComponents, state) === UNKNOWN) solids.push(s);
+  const m = groups.length;
+  const species = groups.flat();
+  const ofSpecies = (rows: readonly number[]): MatrixRows => ({ matrix: problem.stoichiometry, rows });
+  const ofSolids: MatrixRows = { matrix: problem.solids.stoichiometry, rows: solids };
+  const unknownRows = sparseRows(
+    [ofSpecies(groups.map((group) => group[0]!)), ofSolids],
+    nComponents,
+    state,
+    UNKNOWN,
+    local,
+  );
+  const dense = new Float64Array((m + solids.length) * n);
+  for (let i = 0; i < m + solids.length; i++)
+    for (let p = unknownRows.start[i]!; p < unknownRows.start[i + 1]!; p++)
+      dense[i * n + unknownRows.column[p]!] = unknownRows.value[p]!;
+  const balance = columnsOf(unknownRows, m, n);
+  const hessian = pairsOf(unknownRows, m, n);
   return {
     n,
     m,
@@ -221,27 +182,27 @@ function buildStructure(
     groupStart,
     constantSpecies: Int32Array.from(constantSpecies),
     solids: Int32Array.from(solids),
-    rows: sparse(UNKNOWN, rows),
-    fixedRows: sparse(FIXED, everyRow),
+    rows: unknownRows,
+    fixedRows: sparseRows([ofSpecies(species), ofSolids], nComponents, state, FIXED, null),
     dense,
-    unit: Int32Array.from(unknown, (j) => members.findIndex((group) => group.includes(unitRow[j]!))),
+    unit: Int32Array.from(unknown, (j) => groupOf[unitRow[j]!]!),
     balanceStart: balance.start,
     balanceRow: balance.column,
     balanceValue: balance.value,
-    hessianIndex: Int32Array.from(pairs),
+    hessianIndex: hessian.index,
     hessianStart: hessian.start,
     hessianRow: hessian.column,
     hessianValue: hessian.value,
     mixedSign: Uint8Array.from(unknown, (j) => 1 - nonNegativeColumn[j]!),
     nonNegative: unknown.every((j) => nonNegativeColumn[j] === 1),
     scratch: {
-      folded: new Float64Array(everyRow.length).fill(NaN),
+      folded: new Float64Array(species.length + solids.length).fill(NaN),
       share: new Float64Array(species.length),
-      base: new Float64Array(rows.length),
+      base: new Float64Array(m + solids.length),
       total: new Float64Array(n),
       x: new Float64Array(n),
       trial: new Float64Array(n),
-      exponent: new Float64Array(rows.length),
+      exponent: new Float64Array(m + solids.length),
       concentration: new Float64Array(m),
       gradient: new Float64Array(n),
       step: new Float64Array(n),
@@ -250,21 +211,4 @@ function buildStructure(
       amount: new Float64Array(solids.length),
     },
   };
-}
-
-/** Lists, for each target, the rows with a coefficient that is not zero. */
-function gather(targets: number, m: number, coefficient: (target: number, row: number) => number): Rows {
-  const start = [0];
-  const column: number[] = [];
-  const value: number[] = [];
-  for (let target = 0; target < targets; target++) {
-    for (let i = 0; i < m; i++) {
-      const c = coefficient(target, i);
-      if (c === 0) continue;
-      column.push(i);
-      value.push(c);
-    }
-    start.push(column.length);
-  }
-  return { start: Int32Array.from(start), column: Int32Array.from(column), value: Float64Array.from(value) };
 }
