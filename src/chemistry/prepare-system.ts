@@ -1,7 +1,7 @@
 import type { ComponentId, Knowledge, SolidDefinition, SpeciesDefinition } from "../constants/knowledge.ts";
 import { beyondDaviesRange, daviesTerm, log10ActivityCoefficient } from "./activity.ts";
-import { constantUse, log10KAt, uncertaintyAt } from "./move-constant.ts";
-import type { ChosenConstants, SystemTemplate, TemplateRow } from "./system-template.ts";
+import { constantUse, uncertaintyAt } from "./move-constant.ts";
+import type { Chains, ChosenConstants, SystemTemplate, TemplateRow } from "./system-template.ts";
 import { buildTemplate, chooseConstants, filterTemplate } from "./system-template.ts";
 import type { Conditions, ConstantUse, PreparedSpecies, PreparedSystem } from "./types.ts";
 
@@ -157,22 +157,9 @@ interface EvidenceBasis {
 
 function assemble(template: SystemTemplate, chosen: ChosenConstants, conditions: Conditions): PreparedSystem {
   const term = daviesTerm(conditions.ionicStrengthMolPerL);
-  const { reactions } = template;
-  const log10K = new Float64Array(reactions.length);
-  for (let i = 0; i < reactions.length; i++) log10K[i] = log10KAt(chosen.movable[i]!, term);
   const basis = { template, chosen, conditions };
-  const log10Betas = (rows: readonly TemplateRow[]): Float64Array => {
-    const out = new Float64Array(rows.length);
-    for (let i = 0; i < rows.length; i++) {
-      const { chain } = rows[i]!;
-      let sum = 0;
-      for (let p = 0; p < chain.length; p++) sum += chain[p]!.factor * log10K[chain[p]!.reaction]!;
-      out[i] = sum;
-    }
-    return out;
-  };
-  const ofSpecies = log10Betas(template.species);
-  const ofSolids = log10Betas(template.solids);
+  const ofSpecies = log10Betas(template.chains, chosen, term);
+  const ofSolids = log10Betas(template.solidChains, chosen, term);
   const prepared = (rows: readonly TemplateRow[], log10Beta: Float64Array): PreparedRow[] =>
     rows.map((row, i) => new PreparedRow(row, log10Beta[i]!, basis));
   let species: readonly PreparedSpecies[] | null = null;
@@ -204,6 +191,18 @@ function assemble(template: SystemTemplate, chosen: ChosenConstants, conditions:
     log10GammaH: log10ActivityCoefficient(1, conditions.ionicStrengthMolPerL, conditions.temperatureC),
     log10Kw: template.waterRow < 0 ? LOG10_KW_25C : ofSpecies[template.waterRow]!,
   };
+}
+
+function log10Betas({ start, reaction, factor }: Chains, chosen: ChosenConstants, term: number): Float64Array {
+  const { log10KAtZeroTerm, slope } = chosen;
+  const out = new Float64Array(start.length - 1);
+  for (let i = 0; i < out.length; i++) {
+    let sum = 0;
+    for (let p = start[i]!; p < start[i + 1]!; p++)
+      sum += factor[p]! * (log10KAtZeroTerm[reaction[p]!]! + slope[reaction[p]!]! * term);
+    out[i] = sum;
+  }
+  return out;
 }
 
 /** Ion product of water at 25 C and I = 0, used only where the knowledge holds no hydroxide. */

@@ -1,4 +1,12 @@
-import type { ComponentId, ConstantRecord, Knowledge, Reaction, SpeciesId } from "../constants/knowledge.ts";
+import type {
+  ComponentId,
+  ConstantRecord,
+  Knowledge,
+  Reaction,
+  SolidDefinition,
+  SpeciesDefinition,
+  SpeciesId,
+} from "../constants/knowledge.ts";
 import { selectRecord } from "../constants/select-constant.ts";
 import { AppError } from "../errors.ts";
 import type { MovableConstant } from "./move-constant.ts";
@@ -13,6 +21,13 @@ export interface TemplateRow {
   readonly chain: readonly { readonly reaction: number; readonly factor: number }[];
 }
 
+/** The chains of a list of rows as one list: row i holds the entries from start[i] to start[i + 1]. */
+export interface Chains {
+  readonly start: Int32Array;
+  readonly reaction: Int32Array;
+  readonly factor: Float64Array;
+}
+
 /** Everything about a set of components that does not depend on ionic strength or temperature. */
 export interface SystemTemplate {
   readonly components: readonly ComponentId[];
@@ -20,6 +35,8 @@ export interface SystemTemplate {
   readonly species: readonly TemplateRow[]; // the free components first, in the order of the columns
   readonly solids: readonly TemplateRow[];
   readonly reactions: readonly Reaction[];
+  readonly chains: Chains; // of the species
+  readonly solidChains: Chains;
   readonly stoichiometry: Int8Array; // species x components
   readonly solidStoichiometry: Int8Array; // solids x components
   readonly charges: Float64Array;
@@ -31,6 +48,8 @@ export interface ChosenConstants {
   readonly records: readonly ConstantRecord[];
   readonly passedOver: readonly number[];
   readonly movable: readonly MovableConstant[];
+  readonly log10KAtZeroTerm: Float64Array; // of the movable constants
+  readonly slope: Float64Array;
 }
 
 /**
@@ -54,30 +73,92 @@ export function buildTemplate(knowledge: Knowledge, componentIds: readonly Compo
       }
       return { reaction: at, factor };
     });
-  const inside = (row: { readonly components: Readonly<Record<ComponentId, number>> }) =>
-    Object.keys(row.components).every((id) => index.has(id));
   const species: TemplateRow[] = components.map((id) => ({
     id,
     components: { [id]: 1 },
     charge: chargeOf(knowledge, id),
     chain: [],
   }));
-  for (const found of knowledge.species) {
-    if (inside(found) && !isFreeComponent(found.components)) species.push({ ...found, chain: chainOf(found.chain) });
-  }
-  const solids = knowledge.solids
-    .filter(inside)
-    .map((found) => ({ id: found.id, components: found.components, charge: 0, chain: chainOf(found.chain) }));
+  const known = componentIndexOf(knowledge);
+  for (const found of rowsMadeOf(index, known.species)) species.push({ ...found, chain: chainOf(found.chain) });
+  const solids = rowsMadeOf(index, known.solids).map((found) => ({
+    id: found.id,
+    components: found.components,
+    charge: 0,
+    chain: chainOf(found.chain),
+  }));
   return {
     components,
     index,
     species,
     solids,
     reactions,
+    chains: chainsOf(species),
+    solidChains: chainsOf(solids),
     stoichiometry: matrixOf(species, index),
     solidStoichiometry: matrixOf(solids, index),
     charges: Float64Array.from(species, (row) => row.charge),
     waterRow: waterRowOf(species),
+  };
+}
+
+interface Composed {
+  readonly components: Readonly<Record<ComponentId, number>>;
+}
+/** Rows by the rarest component of each, so that a set of components looks at few rows that it does not hold whole. */
+type RowsByComponent<R extends Composed> = ReadonlyMap<
+  ComponentId,
+  readonly { readonly at: number; readonly row: R }[]
+>;
+interface ComponentIndex {
+  readonly species: RowsByComponent<SpeciesDefinition>;
+  readonly solids: RowsByComponent<SolidDefinition>;
+}
+const indexes = new WeakMap<Knowledge, ComponentIndex>();
+
+function componentIndexOf(knowledge: Knowledge): ComponentIndex {
+  let found = indexes.get(knowledge);
+  if (found === undefined) {
+    found = {
+      species: byRarest(knowledge.species.filter(({ components }) => !isFreeComponent(components))),
+      solids: byRarest(knowledge.solids),
+    };
+    indexes.set(knowledge, found);
+  }
+  return found;
+}
+
+function byRarest<R extends Composed>(rows: readonly R[]): RowsByComponent<R> {
+  const count = new Map<ComponentId, number>();
+  for (const { components } of rows) for (const id of Object.keys(components)) count.set(id, (count.get(id) ?? 0) + 1);
+  const lists = new Map<ComponentId, { readonly at: number; readonly row: R }[]>();
+  rows.forEach((row, at) => {
+    const [first, ...others] = Object.keys(row.components);
+    const rarest = others.reduce((a, b) => (count.get(b)! < count.get(a)! ? b : a), first!);
+    const list = lists.get(rarest);
+    if (list === undefined) lists.set(rarest, [{ at, row }]);
+    else list.push({ at, row });
+  });
+  return lists;
+}
+
+/** The rows made of these components alone, in the order of the knowledge. */
+function rowsMadeOf<R extends Composed>(index: ReadonlyMap<ComponentId, number>, rows: RowsByComponent<R>): R[] {
+  const found: { readonly at: number; readonly row: R }[] = [];
+  for (const id of index.keys())
+    for (const one of rows.get(id) ?? [])
+      if (Object.keys(one.row.components).every((part) => index.has(part))) found.push(one);
+  return found.sort((a, b) => a.at - b.at).map(({ row }) => row);
+}
+
+function chainsOf(rows: readonly TemplateRow[]): Chains {
+  const start = new Int32Array(rows.length + 1);
+  rows.forEach(({ chain }, i) => (start[i + 1] = start[i]! + chain.length));
+  const entries = rows.flatMap(({ chain }) => chain);
+  return {
+    start,
+    reaction: Int32Array.from(entries, (e) => e.reaction),
+    factor: Float64Array.from(entries, (e) => e.factor),
   };
 }
 
@@ -90,6 +171,8 @@ export function chooseConstants(template: SystemTemplate, conditions: Conditions
     records: chosen.map((c) => c.record),
     passedOver: chosen.map((c) => c.passedOver),
     movable: chosen.map((c) => c.movable),
+    log10KAtZeroTerm: Float64Array.from(chosen, (c) => c.movable.log10KAtZeroTerm),
+    slope: Float64Array.from(chosen, (c) => c.movable.slope),
   };
 }
 
@@ -129,6 +212,8 @@ export function filterTemplate(
     ...template,
     species,
     solids,
+    chains: chainsOf(species),
+    solidChains: chainsOf(solids),
     stoichiometry: matrixOf(species, template.index),
     solidStoichiometry: matrixOf(solids, template.index),
     charges: Float64Array.from(species, (row) => row.charge),
