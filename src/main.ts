@@ -5,7 +5,7 @@ import { runCommandLine } from "./cli/run-command-line.ts";
 import type { Knowledge } from "./constants/knowledge.ts";
 import { AppError } from "./errors.ts";
 import type { RuleBase, RuleRunner } from "./inference/index.ts";
-import type { IonMap, MethodMap, Recommendation } from "./recommendation/contract.ts";
+import type { IonMap, MethodLimits, MethodMap, Recommendation, TurningPoints } from "./recommendation/contract.ts";
 import type { WebServices } from "./web/index.ts";
 
 // Composition root: the only place that knows every layer. Modules are loaded when a command needs them, so that `recommend` starts without the web server.
@@ -62,6 +62,8 @@ function doors(io: CommandIO): Doors {
       return answerCurve(question, loadKnowledge());
     },
     methodMap: async (ion) => methodMap(ion, await openEngine()),
+    limits: async (brief, method, also) => methodLimits(brief, method, also, await openEngine()),
+    turningPoints: async (brief, watch) => findTurningPoints(brief, watch, await openEngine()),
     knowledge: async () => summary(await openEngine()),
     checkRules: async (folder) => {
       const { checkRules } = await import("./inference/index.ts");
@@ -73,6 +75,39 @@ function doors(io: CommandIO): Doors {
 }
 
 const calculators = () => Promise.all([import("./recommendation/calculate.ts"), import("./constants/index.ts")]);
+
+/** Tolerance limits of one method of the answer to a brief. */
+async function methodLimits(
+  brief: unknown,
+  method: string | undefined,
+  also: readonly string[],
+  { recommend, knowledge }: Engine,
+): Promise<MethodLimits> {
+  const { limitsDocument, limitsWork, workOutLimits } = await import("./recommendation/method-limits.ts");
+  const asked = limitsWork(await recommend(brief), method, also, knowledge);
+  return limitsDocument(asked, workOutLimits(asked.work, knowledge), knowledge);
+}
+
+/** Turning points of a brief, worked out in two threads of their own. */
+async function findTurningPoints(
+  brief: unknown,
+  watch: Parameters<Doors["turningPoints"]>[1],
+  { knowledge }: Engine,
+): Promise<TurningPoints> {
+  const [{ readBrief }, { turningPoints }, { createWorkerPool }, { patientStanding }] = await Promise.all([
+    import("./recommendation/brief.ts"),
+    import("./recommendation/turning-points.ts"),
+    import("./engine/worker-pool.ts"),
+    import("./engine/turning-point-service.ts"),
+  ]);
+  const task = readBrief(brief, knowledge);
+  const pool = createWorkerPool({ data: { hash: knowledge.hash } });
+  try {
+    return await turningPoints(task, patientStanding(pool, watch.signal), knowledge, watch);
+  } finally {
+    await pool.close();
+  }
+}
 
 /** The method map of one ion, or of all, worked out one after the other. */
 async function methodMap(ion: string | null, { knowledge, rules }: Engine): Promise<MethodMap> {
@@ -96,25 +131,45 @@ export async function openServices(
   log: (line: string) => void,
   options: { readonly mapOnly?: readonly string[] } = {},
 ): Promise<{ readonly services: WebServices; readonly close: () => Promise<void> }> {
-  const [engine, { FACT_CATALOGUE, OPERATORS }, { figureSeries }, { readBrief }, pools, maps] = await Promise.all([
+  const [
+    engine,
+    { FACT_CATALOGUE, OPERATORS },
+    { figureSeries },
+    { readBrief },
+    { briefOf },
+    limits,
+    pools,
+    maps,
+    turns,
+  ] = await Promise.all([
     openEngine(),
     import("./inference/index.ts"),
     import("./recommendation/calculate-series.ts"),
     import("./recommendation/brief.ts"),
+    import("./recommendation/brief-document.ts"),
+    import("./recommendation/method-limits.ts"),
     import("./engine/worker-pool.ts"),
     import("./engine/method-map-service.ts"),
+    import("./engine/turning-point-service.ts"),
   ]);
   const { knowledge, ruleBase } = engine;
   const pool = pools.createWorkerPool({ data: { hash: knowledge.hash } });
+  const turning = turns.createTurningPoints(pool, knowledge, log);
   return {
     services: {
       knowledge,
       rules: ruleBase.rules,
       facts: FACT_CATALOGUE,
       operators: OPERATORS,
+      readBrief: (brief) => briefOf(readBrief(brief, knowledge), knowledge),
       // A faulty brief is answered here; only a task that can be worked out goes to a thread.
       recommend: async (brief) => pool.ask("recommend", readBrief(brief, knowledge)),
       figureSeries: (document, methodId) => figureSeries(document, methodId, knowledge),
+      limits: async (document, methodId, also) => {
+        const asked = limits.limitsWork(document, methodId, also, knowledge);
+        return limits.limitsDocument(asked, await pool.ask("limits", asked.work), knowledge);
+      },
+      turningPoints: { ...turning, start: (brief) => turning.start(readBrief(brief, knowledge)) },
       methodMap: maps.createMethodMap(knowledge, (ion) => pool.ask("mapIon", ion), log, options.mapOnly),
       log,
     },
@@ -185,6 +240,10 @@ function processIO(): CommandIO {
     out: (text) => void process.stdout.write(text),
     err: (text) => void process.stderr.write(text),
     standardInput: process.stdin,
+    onStop: (stop) => {
+      process.once("SIGINT", stop);
+      return () => process.off("SIGINT", stop);
+    },
     environment: process.env,
   };
 }

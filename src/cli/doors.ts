@@ -1,5 +1,5 @@
 import type { CurveAnswer, EquilibriumAnswer } from "../recommendation/calculate.ts";
-import type { MethodMap, Recommendation } from "../recommendation/contract.ts";
+import type { MethodLimits, MethodMap, Recommendation, TurningPoints } from "../recommendation/contract.ts";
 
 /** What the knowledge base holds, counted, and what it is known to lack. */
 export interface KnowledgeSummary {
@@ -22,6 +22,13 @@ export interface Doors {
   readonly curve: (question: unknown) => Promise<CurveAnswer>;
   /** `ion` null means every metal ion of the knowledge base. */
   readonly methodMap: (ion: string | null) => Promise<MethodMap>;
+  /** Tolerance limits of a method of the answer (undefined: the first), also for ions that the brief does not name. */
+  readonly limits: (brief: unknown, method: string | undefined, also: readonly string[]) => Promise<MethodLimits>;
+  /** Takes long: tells how far it is, and gives what it has when it is stopped. */
+  readonly turningPoints: (
+    brief: unknown,
+    watch: { readonly signal: AbortSignal; readonly report: (soFar: TurningPoints) => void },
+  ) => Promise<TurningPoints>;
   readonly knowledge: () => Promise<KnowledgeSummary>;
   /** `folder` null means the project's own rules. */
   readonly checkRules: (folder: string | null) => Promise<RuleCheck>;
@@ -34,5 +41,7 @@ export interface CommandIO {
   readonly out: (text: string) => void;
   readonly err: (text: string) => void;
   readonly standardInput: AsyncIterable<Uint8Array>;
+  /** Calls back when the user asks to stop (Ctrl-C); gives back what ends the watch. */
+  readonly onStop: (stop: () => void) => () => void;
   readonly environment: Readonly<Record<string, string | undefined>>;
 }

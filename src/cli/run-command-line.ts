@@ -1,7 +1,10 @@
 import { Command, CommanderError } from "commander";
 import { AppError, InputError } from "../errors.ts";
+import type { TurningPoints } from "../recommendation/contract.ts";
+import { limitsText } from "../recommendation/limits-text.ts";
 import { methodMapText } from "../recommendation/method-map-text.ts";
 import { recommendationText } from "../recommendation/text.ts";
+import { turningPointsText, turningProgress } from "../recommendation/turning-points-text.ts";
 import type { CommandIO, Doors, KnowledgeSummary } from "./doors.ts";
 import { readJsonFile } from "./read-input.ts";
 
@@ -62,6 +65,42 @@ function commands(io: CommandIO, doors: Doors, exit: (code: number) => void): Co
       else io.out(methodMapText(map));
     });
   program
+    .command("limits")
+    .description("say how much of each component a method bears, and what ends it")
+    .argument("<brief>", 'brief as a JSON file; "-" reads standard input')
+    .option("--method <id>", "id of a method of the answer (default: the first)")
+    .option("--also <ions...>", "ions that the brief does not name, looked at one by one as if the sample held them")
+    .option("--json", "print the limits as JSON")
+    .action(
+      async (
+        file: string,
+        options: { readonly method?: string; readonly also?: string[]; readonly json?: boolean },
+      ) => {
+        const limits = await doors.limits(await read(file), options.method, options.also ?? []);
+        if (options.json === true) json(limits);
+        else io.out(limitsText(limits));
+      },
+    );
+  program
+    .command("turning-points")
+    .description(
+      "find the smallest single changes of a brief that change its first method or its verdict; takes minutes, Ctrl-C stops it and prints what it has",
+    )
+    .argument("<brief>", 'brief as a JSON file; "-" reads standard input')
+    .option("--json", "print them as JSON")
+    .action(async (file: string, options: { readonly json?: boolean }) => {
+      const stop = new AbortController();
+      const unwatch = io.onStop(() => stop.abort());
+      try {
+        const report = atMostEvery(REPORT_MS, (found: TurningPoints) => io.err(`${turningProgress(found)}\n`));
+        const found = await doors.turningPoints(await read(file), { signal: stop.signal, report });
+        if (options.json === true) json(found);
+        else io.out(turningPointsText(found));
+      } finally {
+        unwatch();
+      }
+    });
+  program
     .command("equilibrium")
     .description("solve one solution at fixed acidity; prints JSON")
     .argument("<file>", 'question as a JSON file; "-" reads standard input')
@@ -100,6 +139,19 @@ function commands(io: CommandIO, doors: Doors, exit: (code: number) => void): Co
       io.out(`chelwright answers at ${address}\n`);
     });
   return program;
+}
+
+/** How often progress is told, ms. */
+const REPORT_MS = 5000;
+
+/** Passes on what it is told, but not more often than this. */
+function atMostEvery<T>(milliseconds: number, tell: (what: T) => void): (what: T) => void {
+  let told = Date.now();
+  return (what) => {
+    if (Date.now() - told < milliseconds) return;
+    told = Date.now();
+    tell(what);
+  };
 }
 
 function readPort(text: string | undefined): number {

@@ -1,10 +1,15 @@
 import type { Recommendation, IonMap } from "../recommendation/contract.ts";
+import type { ToleranceLimit } from "../methods/tolerance.ts";
 import type { Task } from "../methods/types.ts";
+import type { LimitsWork } from "../recommendation/method-limits.ts";
+import type { StandingAnswer } from "../recommendation/standing.ts";
 
 /** What a worker can be asked, and what it answers. Everything in it can be copied between threads. */
 export interface Jobs {
   readonly recommend: { readonly asks: Task; readonly answers: Recommendation };
   readonly mapIon: { readonly asks: string; readonly answers: IonMap };
+  readonly standing: { readonly asks: Task; readonly answers: StandingAnswer };
+  readonly limits: { readonly asks: LimitsWork; readonly answers: readonly ToleranceLimit[] };
 }
 
 export type JobKind = keyof Jobs;

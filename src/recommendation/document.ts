@@ -202,6 +202,19 @@ function separationDocument(
   };
 }
 
+/** A tolerance limit as the contract writes it. */
+export const limitRow = (
+  task: Task,
+  limit: ToleranceLimit,
+  knowledge: Knowledge,
+): RecommendedMethod["tolerance"][number] => ({
+  component: shownIon(task, limit.component, knowledge),
+  limitMolPerL: signif(limit.limitMolPerL, 4),
+  presentMolPerL: signif(limit.presentMolPerL, 6),
+  withMasking: limit.withMasking,
+  endsBy: limit.endsBy,
+});
+
 /** What a judged method is worth for the brief. */
 export const verdictOf = ({ meets, reservations }: JudgedMethod): RecommendedMethod["verdict"] =>
   !meets ? "not-fit" : reservations.length > 0 ? "fit-with-reservations" : "fit";
@@ -237,13 +250,7 @@ export function methodDocument(
     meetsRequirement: meets,
     verdict: verdictOf(judged),
     reservations: [...judged.reservations],
-    tolerance: tolerance.map((t) => ({
-      component: ion(t.component),
-      limitMolPerL: signif(t.limitMolPerL, 4),
-      presentMolPerL: signif(t.presentMolPerL, 6),
-      withMasking: t.withMasking,
-      endsBy: t.endsBy,
-    })),
+    tolerance: tolerance.map((limit) => limitRow(task, limit, knowledge)),
     uncertaintyBudget: worst.budget.terms.map((t) => ({ source: t.source, percent: signif(100 * t.relative, 3) })),
     budget: budgetDocument(task, method, worst, knowledge),
     wouldMeet: rankNumber === 1 && !meets ? wouldMeetDocument(task, method, knowledge) : null,

@@ -10,9 +10,11 @@ import { calculatorsPage } from "./pages/calculators-page.ts";
 import { constantsPage } from "./pages/constants-page.ts";
 import { dataPages } from "./pages/data-pages.ts";
 import { knowledgePage } from "./pages/knowledge-page.ts";
+import { limitsPage } from "./pages/limits-page.ts";
 import { methodMapPage } from "./pages/method-map-page.ts";
 import { recommendationPage } from "./pages/recommendation-page.ts";
 import { rulesPage } from "./pages/rules-page.ts";
+import { turningPointsPage } from "./pages/turning-points-page.ts";
 import { STYLESHEET } from "./pages/shell.ts";
 import type { WebServices } from "./services.ts";
 
@@ -52,10 +54,13 @@ export function createApp(services: WebServices): Express {
     });
   });
   app.use("/api", express.json({ limit: BODY_LIMIT, type: () => true, strict: false }));
-  app.use("/recommendation", express.urlencoded({ limit: BODY_LIMIT, extended: false, parameterLimit: 2000 }));
+  for (const path of ["/recommendation", "/turning-points"])
+    app.use(path, express.urlencoded({ limit: BODY_LIMIT, extended: false, parameterLimit: 2000 }));
   app.use(apiRoutes(services, answers));
   app.use(briefPage(services, names));
   app.use(recommendationPage(services, names, answers));
+  app.use(limitsPage(services, names, answers));
+  app.use(turningPointsPage(services, names));
   app.use(methodMapPage(services, names));
   app.use(constantsPage(services, names));
   app.use(dataPages(services, names));

@@ -1,6 +1,6 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { StageSeries } from "../recommendation/calculate-series.ts";
-import type { MethodMap, Recommendation } from "../recommendation/contract.ts";
+import type { Brief, MethodLimits, MethodMap, Recommendation, TurningPoints } from "../recommendation/contract.ts";
 
 /** A condition of a rule, as the rule layer hands it over after its checks. */
 export type RuleCondition =
@@ -61,10 +61,20 @@ export interface WebServices {
   readonly facts: readonly FactListing[];
   /** The operators of the rule language, by name, with the words they are read as. */
   readonly operators: ReadonlyMap<string, { readonly words: string }>;
+  /** A brief with its ions recognised and every default filled in; throws InputError with one fault per error of the brief. */
+  readonly readBrief: (brief: unknown) => Brief;
   /** Answers a brief; throws InputError with one fault per error of the brief. */
   readonly recommend: (brief: unknown) => Promise<Recommendation>;
   /** The figures of one method of an answer; null where they cannot be computed. */
   readonly figureSeries: (recommendation: Recommendation, methodId: string) => FigureSeries | null;
+  /** Tolerance limits of one method of an answer, also for what the brief does not name; throws InputError where it is not one, or an ion is not known. */
+  readonly limits: (
+    document: Recommendation,
+    methodId: string | undefined,
+    also: readonly string[],
+  ) => Promise<MethodLimits>;
+  /** The smallest changes of a brief that change its answer: a long calculation. Throws InputError with one fault per error of the brief. */
+  readonly turningPoints: Jobs<unknown, TurningPoints>;
   /** The method map as far as it is worked out; the first call sets the work going. */
   readonly methodMap: () => MethodMap;
   /** Where one line about an unexpected failure goes; the page shows only its id. */

@@ -37,6 +37,7 @@ export function recorder(
       },
       standardInput: once(Buffer.from(standardInput)),
       environment,
+      onStop: () => () => undefined,
     },
     written: () => ({ out, err }),
   };

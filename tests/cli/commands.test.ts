@@ -13,6 +13,8 @@ const NO_DOORS: Doors = {
   equilibrium: unused,
   curve: unused,
   methodMap: unused,
+  limits: unused,
+  turningPoints: unused,
   knowledge: unused,
   checkRules: unused,
   serve: unused,

@@ -1,5 +1,8 @@
-import { Router } from "express";
+import { Router, type Response } from "express";
+import { InputError } from "../../errors.ts";
 import { answerCurve, answerEquilibrium } from "../../recommendation/calculate.ts";
+import { limitsQuestionSchema } from "../../recommendation/contract.ts";
+import { shapeFaults } from "../../recommendation/contract-faults.ts";
 import { decodeBrief } from "../form/brief-link.ts";
 import type { Answers } from "../pages/answers.ts";
 import { shell } from "../pages/shell.ts";
@@ -8,7 +11,7 @@ import type { WebServices } from "../services.ts";
 import { openApiDocument } from "./openapi.ts";
 
 /** The JSON doors: the recommendation, the two calculators, and their description. */
-export function apiRoutes({ knowledge, methodMap }: WebServices, answers: Answers): Router {
+export function apiRoutes({ knowledge, methodMap, limits, turningPoints }: WebServices, answers: Answers): Router {
   const router = Router();
   const description = openApiDocument(knowledge.version);
 
@@ -23,6 +26,29 @@ export function apiRoutes({ knowledge, methodMap }: WebServices, answers: Answer
     const map = methodMap();
     response.status(map.done < map.total ? 202 : 200).json(map);
   });
+  router.post("/api/limits", async (request, response) => {
+    const asked = limitsQuestionSchema.safeParse(request.body);
+    if (!asked.success) throw new InputError(shapeFaults(limitsQuestionSchema, request.body));
+    const { brief, method, also } = asked.data;
+    response.json(await limits(await answers.answer(brief), method, also));
+  });
+  const jobAt = (id: string, response: Response): void => {
+    const job = turningPoints.look(id);
+    if (job === null) response.status(404).json({ error: "no calculation of this id is kept; begin it again" });
+    else response.status(job.state === "running" ? 202 : 200).json(job);
+  };
+  router.post("/api/turning-points", (request, response) => {
+    jobAt(turningPoints.start(request.body as unknown), response);
+  });
+  router
+    .route("/api/turning-points/:id")
+    .get((request, response) => {
+      jobAt(request.params.id, response);
+    })
+    .delete((request, response) => {
+      turningPoints.stop(request.params.id);
+      jobAt(request.params.id, response);
+    });
   router.post("/api/equilibrium", (request, response) => {
     response.json(answerEquilibrium(request.body as unknown, knowledge));
   });

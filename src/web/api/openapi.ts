@@ -1,5 +1,12 @@
 import { z } from "zod";
-import { briefSchema, methodMapSchema, recommendationSchema } from "../../recommendation/contract.ts";
+import {
+  briefSchema,
+  limitsQuestionSchema,
+  methodLimitsSchema,
+  methodMapSchema,
+  recommendationSchema,
+  turningPointsSchema,
+} from "../../recommendation/contract.ts";
 import { curveRequestSchema, equilibriumRequestSchema } from "../../recommendation/calculate.ts";
 
 const faultsSchema = z.object({
@@ -19,6 +26,47 @@ const failures = {
   },
   "500": { description: "Something failed on our side; the id stands in the log.", content: json(ref("Error")) },
   "503": { description: "Too much to do at present, or a question that takes too long.", content: json(ref("Error")) },
+};
+
+/** A long calculation as it stands. */
+const jobSchema = (result: z.ZodType): z.ZodType =>
+  z.object({
+    id: z.string(),
+    state: z.enum(["running", "done", "stopped", "failed"]),
+    progress: z.object({ done: z.int(), total: z.int() }),
+    result: result.nullable(),
+    message: z.string().nullable(),
+  });
+
+const jobAnswers = {
+  "200": { description: "It has ended: done, stopped or failed.", content: json(ref("TurningPointsJob")) },
+  "202": { description: "It runs; what is found so far. Ask again by its id.", content: json(ref("TurningPointsJob")) },
+};
+const noJob = { description: "No calculation of this id is kept.", content: json(ref("Error")) };
+const jobId = { name: "id", in: "path", required: true, schema: { type: "string" } };
+
+const turningPointsStart = {
+  post: {
+    operationId: "startTurningPoints",
+    summary:
+      "Begins the search for the smallest single changes of a brief that change its first method or its verdict, or finds it: the same brief has the same id.",
+    requestBody: { required: true, content: json(ref("Brief")) },
+    responses: { ...jobAnswers, ...failures },
+  },
+};
+const turningPointsJob = {
+  get: {
+    operationId: "turningPoints",
+    summary: "Turning points as far as they are found.",
+    parameters: [jobId],
+    responses: { ...jobAnswers, "404": noJob },
+  },
+  delete: {
+    operationId: "stopTurningPoints",
+    summary: "Stops the search; what it has found so far stays.",
+    parameters: [jobId],
+    responses: { ...jobAnswers, "404": noJob },
+  },
 };
 
 const operation = (id: string, summary: string, body: string, answer: object): object => ({
@@ -61,6 +109,14 @@ export function openApiDocument(version: string): object {
           },
         },
       },
+      "/api/limits": operation(
+        "limits",
+        "Finds up to which level a method bears each component, also such as the brief does not name, and what ends it.",
+        "LimitsQuestion",
+        ref("MethodLimits"),
+      ),
+      "/api/turning-points": turningPointsStart,
+      "/api/turning-points/{id}": turningPointsJob,
       "/api/equilibrium": operation(
         "equilibrium",
         "Solves a solution at a fixed acidity: species, side-reaction coefficients, conditional constants, solids.",
@@ -76,6 +132,10 @@ export function openApiDocument(version: string): object {
         Brief: input(briefSchema),
         Recommendation: output(recommendationSchema),
         MethodMap: output(methodMapSchema),
+        LimitsQuestion: input(limitsQuestionSchema),
+        MethodLimits: output(methodLimitsSchema),
+        TurningPoints: output(turningPointsSchema),
+        TurningPointsJob: output(jobSchema(turningPointsSchema)),
         EquilibriumQuestion: input(equilibriumRequestSchema),
         CurveQuestion: input(curveRequestSchema),
         Faults: output(faultsSchema),

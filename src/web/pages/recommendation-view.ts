@@ -50,6 +50,7 @@ export function recommendationView(
     title: brief.title,
     changeHref: `/?${link}`,
     jsonHref: `/api/recommendations?${link}`,
+    turningHref: `/turning-points?${link}`,
     question: questionRows(brief, names),
     verdict: wordsOf(VERDICT_WORDS, recommendation.verdict),
     verdictMark: VERDICT_MARKS[recommendation.verdict],
@@ -138,6 +139,7 @@ function methodView(
     budget: budgetView(method, names),
     wouldMeet: method.wouldMeet === null ? null : names.set(method.wouldMeet.statement),
     room: roomViews(method.tolerance, names),
+    limitsHref: `/limits?${link}&method=${encodeURIComponent(method.id)}`,
     interferents: method.stages.flatMap((stage, i) =>
       stage.interferents.map((x) => ({
         stage: String(i + 1),
