@@ -7,10 +7,30 @@ const PH_SLACK = 0.3;
 /** The aldehyde takes up the mask one to one, and a fifth more goes in. */
 const EXCESS = 1.2;
 
+/** Pairs of agent and ion of the rows that demask, and triples of demasking agent, mask and ion of the rows that give way. */
+interface Releases {
+  readonly demasks: ReadonlySet<string>;
+  readonly givesWay: ReadonlySet<string>;
+}
+
+const remembered = new WeakMap<Knowledge, Releases>();
+
+function releasesOf(knowledge: Knowledge): Releases {
+  const known = remembered.get(knowledge);
+  if (known !== undefined) return known;
+  const made = {
+    demasks: new Set(knowledge.masking.filter((r) => r.effect === "demasks").map((r) => `${r.agent} ${r.ion}`)),
+    givesWay: new Set(knowledge.masking.flatMap((r) => r.releasedBy.map((by) => `${by} ${r.agent} ${r.ion}`))),
+  };
+  remembered.set(knowledge, made);
+  return made;
+}
+
 /** Whether a record says that `by` takes this mask from the ion again, and that the mask gives way to it. */
-const frees = (by: string, mask: string, ion: ComponentId, knowledge: Knowledge): boolean =>
-  knowledge.masking.some((r) => r.agent === by && r.ion === ion && r.effect === "demasks") &&
-  knowledge.masking.some((r) => r.agent === mask && r.ion === ion && r.releasedBy.includes(by));
+function frees(by: string, mask: string, ion: ComponentId, knowledge: Knowledge): boolean {
+  const { demasks, givesWay } = releasesOf(knowledge);
+  return demasks.has(`${by} ${ion}`) && givesWay.has(`${by} ${mask} ${ion}`);
+}
 
 /** Agents that take a mask from all these ions again, by their records; the least hazardous first. */
 export function demaskersOf(mask: string, ions: readonly ComponentId[], knowledge: Knowledge, shelf: Shelf): string[] {

@@ -55,11 +55,13 @@ const FARTHEST = 4;
  * volume, so chords of it close in within a few vessels. Null where the foretelling does not help (over at the first look, or not a number).
  * @param look what the vessel says at a volume, L
  * @param fromL a volume before the end, L
+ * @param tolerance of the volume, relative to the expected one
  */
 export function foretoldCrossing(
   look: (volumeL: number) => Outlook,
   fromL: number,
   expectedL: number,
+  tolerance = VOLUME_TOLERANCE,
 ): EndPointSearch | null {
   const farthestL = FARTHEST * expectedL;
   const first = look(fromL);
@@ -80,7 +82,7 @@ export function foretoldCrossing(
     const slope = (h - hBefore) / (v - before);
     const step = slope > 0 ? -h / slope : Number.NaN;
     if (high < Infinity || h === 0) {
-      if (h === 0 || Math.abs(step) <= VOLUME_TOLERANCE * expectedL || high - low <= VOLUME_TOLERANCE * expectedL)
+      if (h === 0 || Math.abs(step) <= tolerance * expectedL || high - low <= tolerance * expectedL)
         return { found: true, volumeL: v, evaluations };
     }
     before = v;
@@ -92,8 +94,8 @@ export function foretoldCrossing(
   return null;
 }
 
-/** How well the edge of an observer's band is met, relative to its distance from the end point. */
-const EDGE_TOLERANCE = 1e-3;
+/** When a chord moves the edge of a band by less than this part of its distance from the end point, it has met it to a thousandth. */
+const EDGE_TOLERANCE = 1e-2;
 const EDGE_STEPS = 8;
 
 /**

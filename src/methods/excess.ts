@@ -1,5 +1,7 @@
 import type { Knowledge } from "../constants/knowledge.ts";
+import { foretoldCrossing, type Outlook } from "./end-point-search.ts";
 import { frozenComplexes } from "./frozen.ts";
+import { remainingL } from "./remaining-volume.ts";
 import { vesselSample } from "./solution.ts";
 import { stageModel, type StageModel, type VesselState } from "./stage-model.ts";
 import type { StagePlan, Task } from "./types.ts";
@@ -10,18 +12,33 @@ import type { StagePlan, Task } from "./types.ts";
  */
 export function backEndPointL(model: StageModel): number {
   const back = model.burette;
+  const most = (model.at(0).titrantTotal * model.volumeL) / back.molPerL;
+  const seen = (state: VesselState): number =>
+    Math.log10(Math.max(state.unbound(back.component), Number.MIN_VALUE) / SEEN_MOL_PER_L);
+  const look = (volumeL: number): Outlook => {
+    const state = model.at(volumeL);
+    return { criterion: seen(state), remainingL: remainingL(model, state, [back.component], -seen(state), true) };
+  };
+  const free = (model.at(0).titrantUnbound * model.volumeL) / back.molPerL;
+  const from = Math.max(BEFORE_FREE_IS_GONE * free, LEAST_OF_ALL * most);
+  const found = foretoldCrossing(look, from, most, 0.1 / PARTS);
+  const step = most / PARTS;
+  if (found) return found.found ? Math.min(most, step * Math.ceil(found.volumeL / step)) : most;
   let low = 0;
-  let high = (model.at(0).titrantTotal * model.volumeL) / back.molPerL;
-  for (let i = 0; i < HALVINGS; i++) {
+  let high = most;
+  for (let parts = 1; parts < PARTS; parts *= 2) {
     const middle = (low + high) / 2;
-    if (model.at(middle).unbound(back.component) >= SEEN_MOL_PER_L) high = middle;
+    if (seen(model.at(middle)) >= 0) high = middle;
     else low = middle;
   }
   return high;
 }
 
+/** Where the search begins: most of the free titrant gone, or a little of all of it. */
+const BEFORE_FREE_IS_GONE = 0.9;
+const LEAST_OF_ALL = 0.05;
 /** To a hundredth of the titrant: the excess is a round figure anyway. */
-const HALVINGS = 7;
+const PARTS = 128;
 /** The back titrant that a dye sees at the first colour that stays, mol/L (the usual transitions lie at pM 5 to 7). */
 const SEEN_MOL_PER_L = 1e-6;
 /** A burette so strong that it does not dilute what is looked at, mol/L. */
@@ -39,8 +56,14 @@ export function boundAtBackEndPoint(task: Task, plan: StagePlan, knowledge: Know
     (c) => knowledge.components.get(c.component)?.kind === "metal" && !plan.removed.includes(c.component),
   );
   const everything = sample.reduce((s, c) => s + c.inVesselMolPerL, 0);
+  // The little dye there is takes no part in a round figure: one vessel serves every dye and reading of one pH.
   const strong: StagePlan = {
     ...plan,
+    mode: "back",
+    titrant: { ...plan.titrant, molPerL: UNDILUTING_MOL_PER_L },
+    indicator: null,
+    electrode: null,
+    detection: "visual",
     excessTitrantMolPerL: 2 * everything,
     backTitrant: { ...back, molPerL: UNDILUTING_MOL_PER_L },
   };

@@ -18,8 +18,17 @@ const HAZARD_BURDEN: Readonly<Record<string, number>> = {
   cadmium: 5,
 };
 
+const remembered = new WeakMap<Knowledge, Map<string, number>>();
+
 /** Hazard burden of a reagent by its tags, in the points of the rules. */
 export function hazardBurden(id: string, knowledge: Knowledge): number {
-  const tags = knowledge.reagents.get(id)?.hazardTags ?? [];
-  return Math.max(0, ...tags.map((t) => HAZARD_BURDEN[t] ?? 0));
+  let known = remembered.get(knowledge);
+  if (known === undefined) remembered.set(knowledge, (known = new Map<string, number>()));
+  let burden = known.get(id);
+  if (burden === undefined) {
+    const tags = knowledge.reagents.get(id)?.hazardTags ?? [];
+    burden = Math.max(0, ...tags.map((t) => HAZARD_BURDEN[t] ?? 0));
+    known.set(id, burden);
+  }
+  return burden;
 }

@@ -170,15 +170,19 @@ export function maskSets(threats: readonly Threat[], plan: StagePlan, knowledge:
         reach.get(b.agent.id)! - reach.get(a.agent.id)! || burdenOf(a.agent, knowledge) - burdenOf(b.agent, knowledge),
     ),
   );
-  let combinations: MaskOption[][] = [[]];
+  let combinations: Combination[] = [{ options: [], burden: 0 }];
   for (const list of sorted) {
-    const next: MaskOption[][] = [];
-    for (const head of combinations) for (const option of list) next.push([...head, option]);
-    combinations = next.sort((a, b) => setBurden(a, knowledge) - setBurden(b, knowledge)).slice(0, COMBINATIONS_LIMIT);
+    const next: Combination[] = [];
+    for (const head of combinations)
+      for (const option of list) {
+        const together = [...head.options, option];
+        next.push({ options: together, burden: setBurden(together, knowledge) });
+      }
+    combinations = next.sort((a, b) => a.burden - b.burden).slice(0, COMBINATIONS_LIMIT);
   }
   const seen = new Set<string>();
   const sets: MaskSet[] = [];
-  for (const combination of combinations) {
+  for (const { options: combination, burden } of combinations) {
     const key = [...new Set(combination.map((o) => o.agent.id))].sort().join("+");
     if (seen.has(key)) continue;
     seen.add(key);
@@ -197,18 +201,26 @@ export function maskSets(threats: readonly Threat[], plan: StagePlan, knowledge:
         knowledge,
       ),
       unanswered,
-      burden: setBurden(combination, knowledge),
+      burden,
     });
     if (sets.length >= SETS_KEPT) break;
   }
   return sets;
 }
 
-function setBurden(combination: readonly MaskOption[], knowledge: Knowledge): number {
-  const agents = new Map(combination.map((o) => [o.agent.id, o.agent]));
+/** One option for each threat that has any, and what they burden together. */
+interface Combination {
+  readonly options: readonly MaskOption[];
+  readonly burden: number;
+}
+
+function setBurden(options: readonly MaskOption[], knowledge: Knowledge): number {
   let burden = 0;
-  for (const agent of agents.values()) burden += burdenOf(agent, knowledge);
-  for (const option of combination) {
+  options.forEach(({ agent }, i) => {
+    const first = options.findIndex((o) => o.agent.id === agent.id) === i;
+    if (first) burden += burdenOf(agent, knowledge);
+  });
+  for (const option of options) {
     if (option.record.effect === "partial") burden += 4;
     // Of equals the one that more sources know comes first.
     burden += 1 / (1 + option.record.otherSources.length);

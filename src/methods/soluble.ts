@@ -1,4 +1,4 @@
-import type { Knowledge } from "../constants/knowledge.ts";
+import type { Knowledge, MaskingRecord } from "../constants/knowledge.ts";
 import { evaluate } from "./evaluate.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import type { Shelf } from "./shelf.ts";
@@ -8,6 +8,31 @@ import type { StagePlan, Task } from "./types.ts";
 
 /** Share of the analyte that may lie as a redissolving deposit when the titration starts. */
 const DEPOSIT_BORNE_FRACTION = 0.3;
+
+/** The vessel before titrant and dye: the same for every dye, back titrant and reading of one pH. */
+const beforeTitrant = (plan: StagePlan): StagePlan => ({
+  ...plan,
+  mode: "direct",
+  titrant: { ...plan.titrant, molPerL: 1 },
+  backTitrant: null,
+  excessTitrantMolPerL: 0,
+  release: null,
+  indicator: null,
+  electrode: null,
+  detection: "visual",
+});
+
+const auxiliaries = new WeakMap<Knowledge, readonly MaskingRecord[]>();
+
+/** Rows of agents that keep an ion dissolved as a complex. */
+function auxiliaryRows(knowledge: Knowledge): readonly MaskingRecord[] {
+  let rows = auxiliaries.get(knowledge);
+  if (rows === undefined) {
+    rows = knowledge.masking.filter((r) => r.effect === "auxiliary" && r.via === "complexation");
+    auxiliaries.set(knowledge, rows);
+  }
+  return rows;
+}
 
 /** Adds what keeps the analyte dissolved where it would precipitate before the titrant reaches it. */
 export function soluble(
@@ -34,18 +59,13 @@ export function soluble(
   if (plan.detour) return { plan, bare, precipitates: false };
   // In a back titration the titrant goes in first; what would precipitate without it does not.
   if (plan.backTitrant !== null)
-    return { plan, bare, precipitates: lost(stageModel(task, { ...plan, excessTitrantMolPerL: 0 }, knowledge)) };
+    return { plan, bare, precipitates: lost(stageModel(task, beforeTitrant(plan), knowledge)) };
   if (!lost(bare.model)) return { plan, bare, precipitates: false };
   for (const agent of knowledge.agents.values()) {
     if (!shelf(agent.id)) continue;
-    const keeps = knowledge.masking.some(
+    const keeps = auxiliaryRows(knowledge).some(
       (r) =>
-        r.agent === agent.id &&
-        r.effect === "auxiliary" &&
-        r.via === "complexation" &&
-        plan.determines.includes(r.ion) &&
-        plan.pH >= r.pH[0] - 0.3 &&
-        plan.pH <= r.pH[1] + 0.3,
+        r.agent === agent.id && plan.determines.includes(r.ion) && plan.pH >= r.pH[0] - 0.3 && plan.pH <= r.pH[1] + 0.3,
     );
     if (!keeps) continue;
     const kept = withAuxiliary(plan, knowledge, agent.id, `keeps ${plan.determines.join(", ")} dissolved`);

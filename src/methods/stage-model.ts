@@ -14,6 +14,7 @@ import { protonFixed, vesselSolver } from "./vessel-solver.ts";
 import { SolvedVessel, type Vessel, type VesselState } from "./vessel-state.ts";
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
 import { inertIonsOf, saltSteps } from "./inert-ions.ts";
+import { keepStart, nearStart, startFrom } from "./near-start.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
 import { staysBound } from "./saturation.ts";
 import { agentComponents, classifyRows } from "./stage-rows.ts";
@@ -50,17 +51,37 @@ export interface StageModel {
 const MIN_IONIC_STRENGTH_MOL_PER_L = 1e-4; // pure water never stands in a titration vessel
 const IONIC_STRENGTH_AGREES = 0.03; // relative; a shift below this moves no log K by more than 0.005
 
+/** What of a model does not stand in its plan. */
+interface ModelOptions {
+  /** Metals that do not react with the titrant in the time and at the temperature of the titration. */
+  readonly inert?: ReadonlySet<ComponentId>;
+  /** Complexes that formed before and do not exchange any more, mol/L of the vessel. */
+  readonly frozen?: ReadonlyMap<ComponentId, number>;
+}
+
+/** How many states of a vessel are kept for who asks again: the end point, and the way to it. */
+const STATES_KEPT = 8;
+const models = new WeakMap<Knowledge, WeakMap<Task, Map<string, StageModel>>>();
+
+/**
+ * The model of one titration, made once for each plan of a task: the way to an excess, a release and the titration itself come back to
+ * the same vessel. Forgotten with the task.
+ */
+export function stageModel(task: Task, plan: StagePlan, knowledge: Knowledge, options: ModelOptions = {}): StageModel {
+  let ofKnowledge = models.get(knowledge);
+  if (ofKnowledge === undefined) models.set(knowledge, (ofKnowledge = new WeakMap<Task, Map<string, StageModel>>()));
+  let ofTask = ofKnowledge.get(task);
+  if (ofTask === undefined) ofKnowledge.set(task, (ofTask = new Map<string, StageModel>()));
+  const key = JSON.stringify([plan, [...(options.inert ?? [])].sort(), [...(options.frozen ?? [])]]);
+  let model = ofTask.get(key);
+  if (model === undefined) ofTask.set(key, (model = builtModel(task, plan, knowledge, options)));
+  return model;
+}
+
 /**
  * Builds the model of one titration: composition, constants at its own ionic strength, and a solver for any burette volume.
- * @param inert metals that do not react with the titrant in the time and at the temperature of the titration
- * @param options.burette "titrant" for direct titrations, "back-titrant" for the second step of back titrations and releases
  */
-export function stageModel(
-  task: Task,
-  plan: StagePlan,
-  knowledge: Knowledge,
-  options: { readonly inert?: ReadonlySet<ComponentId>; readonly frozen?: ReadonlyMap<ComponentId, number> } = {},
-): StageModel {
+function builtModel(task: Task, plan: StagePlan, knowledge: Knowledge, options: ModelOptions): StageModel {
   const solution = stageSolution(task, plan, knowledge);
   const inert = options.inert ?? new Set<ComponentId>();
   const frozen = options.frozen ?? new Map<ComponentId, number>();
@@ -140,11 +161,11 @@ export function stageModel(
     system.components.forEach((c, i) => (t[i] = c === "H+" ? 0 : (totals.get(c) ?? 0)));
     return t;
   };
-  const atStart = (system: PreparedSystem, near: SolveResult | null): SolveResult =>
-    solveEquilibrium(system.problem, columns(system), {
-      fixedLnFree: protonFixed(system, plan.pH),
-      ...(near && near.solidsMolPerL.every((amount) => amount === 0) ? { start: near.lnFree } : {}),
-    });
+  const atStart = (system: PreparedSystem, before: SolveResult | null): SolveResult => {
+    const t = columns(system);
+    const near = before?.status === "converged" ? startFrom(before, t) : nearStart(task, system, t);
+    return solveEquilibrium(system.problem, t, { fixedLnFree: protonFixed(system, plan.pH), ...near });
+  };
 
   // Ionic strength of the vessel itself, half way: start from 0.1 mol/L and correct until it agrees.
   let ionicStrengthMolPerL = 0.1;
@@ -164,6 +185,7 @@ export function stageModel(
     system = prepare(ionicStrengthMolPerL, wantsSolid, wantedKey);
     first = atStart(system, first);
   }
+  keepStart(task, system, first, columns(system));
   // Solids that formed and do not redissolve in time are out of the game; those that do stay in equilibrium.
   const stays = new Set<string>();
   system.solids.forEach((solid, i) => {
@@ -185,7 +207,8 @@ export function stageModel(
     stays.has(solid.id) && first.solidsMolPerL[i]! > 0 ? [solid.id] : [],
   );
   const forming = system;
-  system = prepare(ionicStrengthMolPerL, (s) => stays.has(s.id), ["staying", [...stays].sort()]);
+  if (forming.problem.solids.n > 0)
+    system = prepare(ionicStrengthMolPerL, (s) => stays.has(s.id), ["staying", [...stays].sort()]);
   const base = columns(system);
   const kinds = { titrant, dye, metals, way: heldByWay(plan, knowledge), agents: agentComponents(plan, knowledge) };
   const vessel = {
@@ -206,16 +229,16 @@ export function stageModel(
   );
   const buretteColumn = system.index.get(burette.component)!;
   let start: VesselState | null = null;
-  let last: VesselState | null = null;
+  const recent: VesselState[] = [];
   const at = (fromBuretteL: number): VesselState => {
     if (fromBuretteL === 0 && start !== null) return start;
-    if (fromBuretteL === last?.volumeFromBuretteL) return last;
+    for (const known of recent) if (known.volumeFromBuretteL === fromBuretteL) return known;
     const dilution = volumeL / (volumeL + fromBuretteL);
     const t = base.map((v) => v * dilution);
     t[buretteColumn] = t[buretteColumn]! + (burette.molPerL * fromBuretteL) / (volumeL + fromBuretteL);
     const state = new SolvedVessel(vessel, fromBuretteL, solve(t));
-    last = state;
     if (fromBuretteL === 0) start = state;
+    else if (recent.push(state) > STATES_KEPT) recent.shift();
     return state;
   };
   return {

@@ -127,9 +127,19 @@ function standardEvaluation(own: Task, plan: StagePlan, knowledge: Knowledge): S
 /** Largest bias of the standard titration, relative, that an analyst would let cancel. */
 const CANCELS_UP_TO = 0.02;
 
-/** The metal alone, at the same level. */
+const standards = new WeakMap<Task, Map<string, Task>>();
+
+/** The metal alone, at the same level; one task for each, so that its titrations are solved one from the other. */
 function standardTask(task: Task, plan: StagePlan): Task {
-  return { ...task, analytes: task.analytes.filter((a) => plan.determines.includes(a.component)), matrix: [] };
+  let known = standards.get(task);
+  if (known === undefined) standards.set(task, (known = new Map<string, Task>()));
+  const key = plan.determines.join();
+  let own = known.get(key);
+  if (own === undefined) {
+    own = { ...task, analytes: task.analytes.filter((a) => plan.determines.includes(a.component)), matrix: [] };
+    known.set(key, own);
+  }
+  return own;
 }
 
 function standardPlan(task: Task, plan: StagePlan): StagePlan {

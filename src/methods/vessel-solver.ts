@@ -1,7 +1,8 @@
 import { eliminatedSolver } from "../chemistry/solve-eliminated.ts";
-import { ABSENT_LN_FREE, solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
+import { solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
 import type { MassBalanceProblem, PreparedSystem, SolveResult } from "../chemistry/types.ts";
 import type { ComponentId } from "../constants/knowledge.ts";
+import { withNewcomers } from "./near-start.ts";
 
 /** A solved vessel: what the equilibrium gives, species counted only when asked for. */
 export class VesselSolution {
@@ -83,9 +84,6 @@ export function protonFixed(system: PreparedSystem, pH: number): Float64Array {
   return fixed;
 }
 
-/** Where a component that was not there before begins: nearly all of it bound, as of titrant. */
-const MOSTLY_BOUND_LN = 20;
-
 /**
  * Solves one vessel for many totals (mol/L per column of the system, H+ held at `pH`), each from the last answer. While no solid
  * is there the metals are eliminated exactly; else, and wherever that form does not hold, the general solver answers.
@@ -112,9 +110,7 @@ export function vesselSolver(
       : system.solids.flatMap((s, i) => (near.solids.includes(s.id) ? [i] : []));
   return (totals) => {
     if (fast && warm && activeSolids.length === 0) {
-      const lnFree = warm.slice();
-      for (let j = 1; j < lnFree.length; j++)
-        if (lnFree[j]! <= ABSENT_LN_FREE && totals[j]! > 0) lnFree[j] = Math.log(totals[j]!) - MOSTLY_BOUND_LN;
+      const lnFree = withNewcomers(warm.slice(), totals);
       const { status, residual, iterations } = fast.solve(totals, lnFree);
       if (status === "converged" && !supersaturated(lnFree)) {
         warm = lnFree;
@@ -124,7 +120,7 @@ export function vesselSolver(
     const result = solveEquilibrium(
       problem,
       totals,
-      warm ? { fixedLnFree, start: warm, activeSolids } : { fixedLnFree },
+      warm ? { fixedLnFree, start: withNewcomers(warm.slice(), totals), activeSolids } : { fixedLnFree },
     );
     const ok = result.status === "converged";
     if (ok) {
