@@ -1,6 +1,7 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import { foretoldCrossing, type Outlook } from "./end-point-search.ts";
 import { frozenComplexes } from "./frozen.ts";
+import { withoutLittleDye } from "./little-dye.ts";
 import { remainingL } from "./remaining-volume.ts";
 import { vesselSample } from "./solution.ts";
 import { stageModel, type StageModel, type VesselState } from "./stage-model.ts";
@@ -56,14 +57,10 @@ export function boundAtBackEndPoint(task: Task, plan: StagePlan, knowledge: Know
     (c) => knowledge.components.get(c.component)?.kind === "metal" && !plan.removed.includes(c.component),
   );
   const everything = sample.reduce((s, c) => s + c.inVesselMolPerL, 0);
-  // The little dye there is takes no part in a round figure: one vessel serves every dye and reading of one pH.
   const strong: StagePlan = {
-    ...plan,
+    ...withoutLittleDye(task, plan),
     mode: "back",
     titrant: { ...plan.titrant, molPerL: UNDILUTING_MOL_PER_L },
-    indicator: null,
-    electrode: null,
-    detection: "visual",
     excessTitrantMolPerL: 2 * everything,
     backTitrant: { ...back, molPerL: UNDILUTING_MOL_PER_L },
   };

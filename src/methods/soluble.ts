@@ -3,23 +3,21 @@ import { evaluate } from "./evaluate.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import type { Shelf } from "./shelf.ts";
 import { withAuxiliary } from "./skeletons.ts";
+import { withoutLittleDye } from "./little-dye.ts";
 import { stageModel, type StageModel } from "./stage-model.ts";
 import type { StagePlan, Task } from "./types.ts";
 
 /** Share of the analyte that may lie as a redissolving deposit when the titration starts. */
 const DEPOSIT_BORNE_FRACTION = 0.3;
 
-/** The vessel before titrant and dye: the same for every dye, back titrant and reading of one pH. */
-const beforeTitrant = (plan: StagePlan): StagePlan => ({
-  ...plan,
+/** The vessel before the titrant: the same for every back titrant, reading and dye of one pH. */
+const beforeTitrant = (task: Task, plan: StagePlan): StagePlan => ({
+  ...withoutLittleDye(task, plan),
   mode: "direct",
   titrant: { ...plan.titrant, molPerL: 1 },
   backTitrant: null,
   excessTitrantMolPerL: 0,
   release: null,
-  indicator: null,
-  electrode: null,
-  detection: "visual",
 });
 
 const auxiliaries = new WeakMap<Knowledge, readonly MaskingRecord[]>();
@@ -59,7 +57,7 @@ export function soluble(
   if (plan.detour) return { plan, bare, precipitates: false };
   // In a back titration the titrant goes in first; what would precipitate without it does not.
   if (plan.backTitrant !== null)
-    return { plan, bare, precipitates: lost(stageModel(task, beforeTitrant(plan), knowledge)) };
+    return { plan, bare, precipitates: lost(stageModel(task, beforeTitrant(task, plan), knowledge)) };
   if (!lost(bare.model)) return { plan, bare, precipitates: false };
   for (const agent of knowledge.agents.values()) {
     if (!shelf(agent.id)) continue;

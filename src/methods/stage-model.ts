@@ -207,7 +207,7 @@ function builtModel(task: Task, plan: StagePlan, knowledge: Knowledge, options: 
     stays.has(solid.id) && first.solidsMolPerL[i]! > 0 ? [solid.id] : [],
   );
   const forming = system;
-  if (forming.problem.solids.n > 0)
+  if (forming.problem.solids.n > 0 || forming.conditions.ionicStrengthMolPerL !== ionicStrengthMolPerL)
     system = prepare(ionicStrengthMolPerL, (s) => stays.has(s.id), ["staying", [...stays].sort()]);
   const base = columns(system);
   const kinds = { titrant, dye, metals, way: heldByWay(plan, knowledge), agents: agentComponents(plan, knowledge) };
