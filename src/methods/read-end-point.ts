@@ -21,10 +21,8 @@ export interface EndPointRead {
   readonly photometric: PhotometricReading | null;
 }
 
-/** How an end point seen by eye is looked for. */
+/** What is wanted of an end point seen by eye. */
 export interface EyeOptions {
-  /** Finds where the criterion turns; who knows a near answer needs fewer looks than the default, which looks everywhere. */
-  readonly search?: typeof firstCrossing;
   /** Whether the observer's band is wanted (default true). */
   readonly band?: boolean;
 }
@@ -61,7 +59,7 @@ function readByEye(
   criterion: Criterion,
   back: boolean,
   equivalenceL: number,
-  { search: find, band = true }: EyeOptions,
+  { band = true }: EyeOptions,
 ): EndPointRead {
   const base = { basis: criterion.basis, bandPM: criterion.bandPM, electrode: null, photometric: null };
   const failed = (why: EndPointFault): EndPointRead => ({ ...base, why, volumeL: 0, bandL: [0, 0] });
@@ -77,11 +75,9 @@ function readByEye(
       const state = model.at(volumeL);
       return { criterion: criterion.of(state) + by, remainingL: criterion.remainingL(state, by) };
     };
-  const ofVolume = (v: number): number => criterion.of(model.at(v));
-  const search = find
-    ? find(ofVolume, equivalenceL)
-    : (foretoldCrossing(outlook(0), (back ? BEFORE_END_BACK : BEFORE_END) * equivalenceL, equivalenceL) ??
-      firstCrossing(ofVolume, equivalenceL));
+  const search =
+    foretoldCrossing(outlook(0), (back ? BEFORE_END_BACK : BEFORE_END) * equivalenceL, equivalenceL) ??
+    firstCrossing((v) => criterion.of(model.at(v)), equivalenceL);
   if (!search.found) return failed("no-end-point");
   const shifted = (by: number): number =>
     foretoldEdge(outlook(by), search.volumeL, equivalenceL) ??
