@@ -7,7 +7,7 @@ import { constantsUsed } from "../../src/recommendation/constants-used.ts";
 import { colourChangeOf, methodDocument } from "../../src/recommendation/document.ts";
 import { judge } from "../../src/recommendation/judge.ts";
 import { expectRelative } from "../expect-relative.ts";
-import { backPlan, inventedPlan, inventedTask, KNOWLEDGE } from "../methods/invented.ts";
+import { backPlan, inventedPlan, magnesiumPlan, inventedTask, KNOWLEDGE } from "../methods/invented.ts";
 import { developed, underJudgement } from "./developed.ts";
 
 const silent: RuleRunner = {
@@ -62,6 +62,25 @@ describe("methodDocument", () => {
     const combined = Math.hypot(...document.uncertaintyBudget.map((row) => row.percent));
     const { relativeExpandedUncertaintyPercent, biasPercent } = document.predicted;
     expectRelative(2 * combined + Math.abs(biasPercent), relativeExpandedUncertaintyPercent, 5e-3);
+  });
+  it("shows each cause before and after the standardisation, and what a mask leaves with its agent", async () => {
+    const weak = { ...fluoride, molPerL: 0.003 };
+    const { document: masked } = await written(task, inventedPlan({ masking: [weak] }));
+    const { biasBySource, biasUncancelledPercent } = masked.predicted;
+    const before = biasBySource.reduce((sum, cause) => sum + cause.uncancelledPercent, 0);
+    expect(Math.abs(before - biasUncancelledPercent)).toBeLessThan(2e-3);
+    expect(biasBySource.find((c) => c.source === "Al3+")).toMatchObject({ kind: "incomplete-masking", by: "fluoride" });
+    expect(biasBySource.find((c) => c.source === "Cd2+")).toMatchObject({ kind: "interferent", by: null });
+    expect(biasBySource.some((c) => c.source === "standardised alike")).toBe(false);
+  });
+  it("says what of bias and uncertainty it leaves out: carbonate of the air at pH 10, where the brief has none", async () => {
+    const left = async (matrix: Readonly<Record<string, number>>): Promise<string> => {
+      const hard = inventedTask({ "Mg2+": 0.004 }, matrix);
+      return (await written(hard, magnesiumPlan())).document.budget.notCounted.join();
+    };
+    expect(await left({})).toContain("Carbonate from the air");
+    expect(await left({ carbonate: 0.001 })).not.toContain("Carbonate from the air");
+    expect(await left({})).toContain("uncertainty of the constants");
   });
   it("says of every metal beside the analyte how it is kept out", () => {
     const by = Object.fromEntries(document.stages[0]!.interferents.map((row) => [row.component, row.maskedBy]));

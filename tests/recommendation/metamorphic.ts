@@ -115,7 +115,39 @@ export const RELATIONS: readonly Relation[] = [
   },
 ];
 
-/** What an answer says against itself: schema, ranks, targets outside their range, verdicts against figures, presence above the limit. */
+/** What the causes and the terms of a method add up to, against its bias and uncertainty; figures are printed to 1e-4 % a line. */
+function figureFaults({ predicted, budget, uncertaintyBudget }: RecommendedMethod): string[] {
+  const faults: string[] = [];
+  const near = (what: string, sum: number, figure: number, slack: number): void => {
+    if (!(Math.abs(sum - figure) <= slack)) faults.push(`${what}: ${sum} against ${figure}`);
+  };
+  for (const { determines, biasBySource, biasPercent, biasUncancelledPercent } of predicted.perAnalyte) {
+    const slack = 1e-4 * (2 + biasBySource.length);
+    const sum = (part: (cause: (typeof biasBySource)[number]) => number): number =>
+      biasBySource.reduce((total, cause) => total + part(cause), 0);
+    near(
+      `causes of ${determines.join("+")}`,
+      sum((c) => c.percent),
+      biasPercent,
+      slack,
+    );
+    near(
+      `causes before of ${determines.join("+")}`,
+      sum((c) => c.uncancelledPercent),
+      biasUncancelledPercent,
+      slack,
+    );
+  }
+  const terms = Math.hypot(...uncertaintyBudget.map((t) => t.percent));
+  const rows = Math.hypot(...budget.rows.map((r) => r.percent));
+  near("terms", terms, budget.combinedPercent, 0.01 * budget.combinedPercent);
+  near("quantities", rows, budget.combinedPercent, 0.01 * budget.combinedPercent);
+  const expanded = budget.coverageFactor * budget.combinedPercent + Math.abs(predicted.biasPercent);
+  near("expanded", expanded, predicted.relativeExpandedUncertaintyPercent, 2e-3 * expanded);
+  return faults;
+}
+
+/** What an answer says against itself: schema, ranks, targets outside their range, verdicts against figures, sums against their parts, presence above the limit. */
 export function ownFaults(document: Recommendation): string[] {
   const parsed = recommendationSchema.safeParse(JSON.parse(JSON.stringify(document)));
   const out = parsed.success ? [] : parsed.error.issues.map((issue) => `schema: ${issue.path.join(".")}`);
@@ -130,6 +162,7 @@ export function ownFaults(document: Recommendation): string[] {
       say(`meets ${method.meetsRequirement} at ${expanded} %`);
     if ((method.verdict === "not-fit") === method.meetsRequirement)
       say(`${method.verdict}, meets ${method.meetsRequirement}`);
+    for (const fault of figureFaults(method)) say(fault);
     for (const row of method.tolerance) {
       if (method.meetsRequirement && row.withMasking && row.limitMolPerL < row.presentMolPerL * 0.99)
         say(`${row.component} at ${row.presentMolPerL} above its limit ${row.limitMolPerL}`);

@@ -68,6 +68,16 @@ describe("recommend", () => {
 });
 
 describe("ownFaults", () => {
+  it("sees causes that do not add up to the bias, and a budget that is not its quantities", () => {
+    const document = documents.get(INVENTED_BRIEFS.zinc)!;
+    const [first, ...rest] = document.methods;
+    const [result] = first!.predicted.perAnalyte;
+    const off = { ...result!, biasPercent: result!.biasPercent + 0.01 };
+    const wrong = { ...first!, predicted: { ...first!.predicted, perAnalyte: [off] } };
+    expect(ownFaults({ ...document, methods: [wrong, ...rest] }).join()).toMatch(/^method 1: causes of Zn2\+/);
+    const fewer = { ...first!, budget: { ...first!.budget, rows: first!.budget.rows.slice(1) } };
+    expect(ownFaults({ ...document, methods: [fewer, ...rest] }).join()).toMatch(/^method 1: quantities/);
+  });
   it("sees a target outside its range, a verdict against the figures and a broken shape", () => {
     const document = documents.get(INVENTED_BRIEFS.zinc)!;
     const [first, ...rest] = document.methods;

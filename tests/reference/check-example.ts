@@ -34,6 +34,8 @@ function checkOne(check: Check, knowledge: Knowledge): Comparison[] {
       return given.errorCriterion(check);
     case "minimum-pH":
       return given.minimumPH(check);
+    case "uncertainty-budget":
+      return given.uncertaintyBudget(check);
     case "supersaturation":
       return given.supersaturation(check, knowledge);
     case "known-constant":

@@ -6,11 +6,38 @@ import { explicitCurve } from "../../src/chemistry/curve-explicit.ts";
 import { prepareSystem } from "../../src/chemistry/prepare-system.ts";
 import { conditionalConstantAt, lnSpeciesAt, log10SideReaction } from "../../src/chemistry/speciation.ts";
 import type { Knowledge } from "../../src/constants/knowledge.ts";
+import { propagate } from "../../src/methods/gum.ts";
 import { smallKnowledge } from "../chemistry/small-knowledge.ts";
 import type { CheckOf, Comparison, Quantity } from "./example.ts";
 import { compare } from "./example.ts";
 
 const TRACE = -80;
+
+/** A result that is a quotient of products, and its standard uncertainty by propagation. */
+export function uncertaintyBudget(check: CheckOf<"uncertainty-budget">): Comparison[] {
+  const given = [...check.over, ...check.under];
+  const result = propagate(
+    given.map(({ name, value, standardUncertainty }) => ({
+      name,
+      value,
+      unit: "",
+      distribution: "normal",
+      halfWidth: standardUncertainty,
+      degreesOfFreedom: Number.POSITIVE_INFINITY,
+    })),
+    (values) => values.reduce((product, v, i) => (i < check.over.length ? product * v : product / v), check.factor),
+  );
+  return [
+    compare(check.of, result.value, check.expected, check.tolerance),
+    compare(
+      `u of ${check.of}`,
+      result.combined,
+      check.expectedStandardUncertainty,
+      check.tolerance,
+      check.disagreement,
+    ),
+  ];
+}
 
 /** Cumulative protonation constants of a ligand from its pKa in any order. */
 function protonation(ligand: string, pKa: readonly number[]): GivenConstant[] {

@@ -146,6 +146,16 @@ export type Check = Toleranced &
         readonly points: readonly Point[];
       }
     | { readonly kind: "known-glassware"; readonly ware: string; readonly nominalML: number; readonly expected: number }
+    | {
+        readonly kind: "uncertainty-budget";
+        readonly of: string;
+        readonly factor: number;
+        readonly over: readonly KnownQuantity[]; // multiplied
+        readonly under: readonly KnownQuantity[]; // divided by
+        readonly expected: number;
+        readonly expectedStandardUncertainty: number;
+        readonly disagreement?: string; // of the uncertainty
+      }
     | { readonly kind: "known-molar-mass"; readonly standard: string; readonly expected: number }
     | {
         readonly kind: "buffer-pH";
@@ -161,6 +171,12 @@ export type Check = Toleranced &
         readonly consequences: readonly string[];
       }
   );
+/** An input of an uncertainty budget as it is printed. */
+export interface KnownQuantity {
+  readonly name: string;
+  readonly value: number;
+  readonly standardUncertainty: number;
+}
 export type Quantity = "fraction" | "log10Alpha";
 export type CheckOf<K extends Check["kind"]> = Extract<Check, { readonly kind: K }>;
 
