@@ -24,7 +24,7 @@ export function combinedMethods(
 ): EvaluatedMethod[] {
   // The order of the rows in a brief says nothing: portions stand in an order of their own.
   const groups = [...asked].sort((a, b) => a.join().localeCompare(b.join()));
-  const found = groups.map((group) => stagesFor(task, group, knowledge, shelf, false));
+  const found = groups.map((group) => stagesFor(task, group, knowledge, shelf, "until-served"));
   const byGroup = found.map((stages) => best(task, stages, knowledge));
   return [
     ...portions(task, found, byGroup, knowledge),
@@ -162,9 +162,9 @@ function follow(
   );
   const developed = best(
     task,
-    starts.flatMap((s) => develop(task, s, knowledge, shelf)),
+    starts.flatMap((s) => develop(task, s, knowledge, shelf, false)),
     knowledge,
-  ).filter((s) => s.plan.removed.length === 0);
+  );
   const sameDye = (s: DevelopedStage): number => Number(seenWith(s.plan) !== seenWith(last.plan));
   // A continuation that leaves something undone is no use, whatever its dye.
   const undone = (s: DevelopedStage): number => Number(s.remaining.length > 0);
@@ -179,7 +179,7 @@ function differences(
   knowledge: Knowledge,
   shelf: Shelf,
 ): EvaluatedMethod[] {
-  const together = best(task, stagesFor(task, groups.flat(), knowledge, shelf, false), knowledge).filter(
+  const together = best(task, stagesFor(task, groups.flat(), knowledge, shelf, "until-served"), knowledge).filter(
     (s) => s.remaining.length === 0,
   );
   const sum = together.slice(0, CARRIED_ON);

@@ -91,8 +91,17 @@ function otherConditions(task: Task, skeleton: Skeleton, knowledge: Knowledge): 
   return [...plans, ...sparing.filter((p) => p.buffer.molPerL < plan.buffer.molPerL)];
 }
 
-/** Works a titration out into the variants worth judging: masked in a few ways, or with the unmaskable separated. */
-export function develop(task: Task, start: BareStage, knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
+/**
+ * Works a titration out into the variants worth judging: masked in a few ways, or with the unmaskable separated.
+ * @param separate false where a titration after a separation is of no use
+ */
+export function develop(
+  task: Task,
+  start: BareStage,
+  knowledge: Knowledge,
+  shelf: Shelf,
+  separate = true,
+): DevelopedStage[] {
   const { threats } = start;
   const finished = (variants: readonly DevelopedStage[]): DevelopedStage[] =>
     variants.flatMap((v) => {
@@ -117,7 +126,7 @@ export function develop(task: Task, start: BareStage, knowledge: Knowledge, shel
   const present = start.bare.presentMol / start.bare.model.volumeL;
   const bulk = threats.some((t) => t.molPerL > BULK_RATIO * present);
   if (!anyClean && countedWhole(task, start, knowledge)) kept.push({ ...start, evaluation: start.bare, remaining: [] });
-  if (!anyClean || bulk)
+  if (separate && (!anyClean || bulk))
     kept.push(...separations(task, without, threats, failed, knowledge, shelf).map((v) => ({ ...start, ...v })));
   return finished(kept);
 }

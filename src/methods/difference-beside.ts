@@ -29,10 +29,13 @@ export function differencesBeside(
   if (alone.some((s) => meetsCleanly(task, s, knowledge) && !throwsDown(s))) return [];
   return partnersOf(task, alone, knowledge).flatMap((partner) => {
     const useful = (stages: readonly DevelopedStage[]): DevelopedStage[] =>
-      best(task, stages, knowledge).filter((s) => s.remaining.length === 0 && s.plan.removed.length === 0);
-    const parts = useful(stagesFor(task, [partner], knowledge, shelf, false)).slice(0, CARRIED_ON);
+      best(task, stages, knowledge).filter((s) => s.remaining.length === 0);
+    const parts = useful(stagesFor(task, [partner], knowledge, shelf, "usual-together")).slice(0, CARRIED_ON);
     if (parts.length === 0) return [];
-    const wholes = useful(stagesFor(task, [...analyte, partner].sort(), knowledge, shelf, false)).slice(0, CARRIED_ON);
+    const wholes = useful(stagesFor(task, [...analyte, partner].sort(), knowledge, shelf, "usual-together")).slice(
+      0,
+      CARRIED_ON,
+    );
     return wholes.flatMap((whole) =>
       parts.map((part): EvaluatedMethod => {
         const { biasFraction, budget } = combineDifference(task, whole.evaluation, part.evaluation, knowledge);

@@ -60,27 +60,39 @@ const DYES_FOR_OTHERS = 2;
 const DYES_WHEN_SHORT = 6;
 
 /**
+ * How far the titrations of a group are looked for: as rivals of each other; only until the usual titrant serves (stages of combined
+ * methods); only with the usual titrant and nothing separated (what is subtracted beside).
+ */
+export type Reach = "rivals" | "until-served" | "usual-together";
+
+/**
  * All titrations of one group of ions that are worth judging: first EDTA with every dye in use, then, where that leaves too
  * little, the other titrants and back titrations by analogy.
- * @param widen false: stop as soon as EDTA serves (stages of combined methods)
  */
 export function stagesFor(
   task: Task,
   determines: readonly ComponentId[],
   knowledge: Knowledge,
   shelf: Shelf,
-  widen = true,
+  reach: Reach = "rivals",
 ): DevelopedStage[] {
   // Only metal ions are bound by the titrant itself; anions need a way round, and so do some metals.
-  const around = developed(task, detourSkeletons(task, determines, knowledge, shelf), knowledge, shelf);
+  const around = developed(task, detourSkeletons(task, determines, knowledge, shelf), knowledge, shelf, reach);
   if (determines.some((id) => knowledge.components.get(id)?.kind !== "metal")) return around;
-  return [...directly(task, determines, knowledge, shelf, widen), ...around];
+  return [...directly(task, determines, knowledge, shelf, reach), ...around];
 }
 
 /** Skeletons worked out against the matrix, as far as they are worth it. */
-function developed(task: Task, skeletons: readonly Skeleton[], knowledge: Knowledge, shelf: Shelf): DevelopedStage[] {
+function developed(
+  task: Task,
+  skeletons: readonly Skeleton[],
+  knowledge: Knowledge,
+  shelf: Shelf,
+  reach: Reach,
+): DevelopedStage[] {
   const bare = skeletons.map((skeleton) => bareStage(task, skeleton, knowledge, shelf));
-  return promising(task, bare, knowledge).flatMap((start) => develop(task, start, knowledge, shelf));
+  const separate = reach !== "usual-together";
+  return promising(task, bare, knowledge).flatMap((start) => develop(task, start, knowledge, shelf, separate));
 }
 
 /** Titrations in which the titrant binds the analyte itself. */
@@ -89,7 +101,7 @@ function directly(
   determines: readonly ComponentId[],
   knowledge: Knowledge,
   shelf: Shelf,
-  widen: boolean,
+  reach: Reach,
 ): DevelopedStage[] {
   const seen = new Set<string>();
   const search = (field: Field): DevelopedStage[] => {
@@ -97,7 +109,7 @@ function directly(
     const skeletons: Skeleton[] = skeletonsOf(make);
     const bare = skeletons.map((skeleton) => bareStage(task, skeleton, knowledge, shelf));
     return promising(task, bare, knowledge).flatMap((start) =>
-      develop(task, start, knowledge, shelf).filter((stage) => {
+      develop(task, start, knowledge, shelf, reach !== "usual-together").filter((stage) => {
         const key = stageKey(stage);
         if (seen.has(key)) return false;
         seen.add(key);
@@ -106,7 +118,9 @@ function directly(
     );
   };
   const usual = search(USUAL_FIELD);
-  if (!widen && usual.some((s) => s.evaluation.status !== "failed" && s.remaining.length === 0)) return usual;
+  if (reach === "usual-together") return usual;
+  if (reach === "until-served" && usual.some((s) => s.evaluation.status !== "failed" && s.remaining.length === 0))
+    return usual;
   const clean = usual.filter((s) => meetsCleanly(task, s, knowledge));
   const others = (shelf("EDTA") ? OTHER_TITRANTS : [...OTHER_TITRANTS, ...LAST_TITRANTS]).filter((t) => shelf(t));
   if (clean.length < ENOUGH) {
@@ -120,7 +134,7 @@ function directly(
     const dyes = usual.length > 0 ? new Set([...likely].slice(0, DYES_WHEN_SHORT)) : null;
     return [
       ...usual,
-      ...developed(task, alone, knowledge, shelf),
+      ...developed(task, alone, knowledge, shelf, reach),
       ...search({ titrants: others, dyes, analogous: false }),
       ...search({ titrants: ["EDTA"], dyes: null, analogous: true }),
     ];
