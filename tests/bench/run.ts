@@ -1,11 +1,12 @@
 /** `npm run bench [NAME]`: every bench in turn. What cannot be measured here is said on a line of its own and in the last line. */
 import type { Bench } from "./bench.ts";
 import { equilibriumBench } from "./equilibrium.ts";
+import { componentsBench } from "./components.ts";
 import { curveBench } from "./curve.ts";
 import { recommendBench } from "./recommend.ts";
 
 /** The benches there are, in the order in which they run. */
-export const benches: readonly Bench[] = [equilibriumBench, curveBench, recommendBench];
+export const benches: readonly Bench[] = [equilibriumBench, curveBench, componentsBench, recommendBench];
 
 const only = process.argv[2];
 const chosen = benches.filter(({ name }) => only === undefined || name === only);
