@@ -7,8 +7,14 @@ export interface BenchReport {
   readonly failures: readonly string[];
 }
 
+/** What the command line may ask of a bench; each uses what it knows. */
+export interface BenchOptions {
+  readonly count?: number; // how often what is measured is done
+  readonly brief?: string; // ids of acceptance briefs, by commas
+}
+
 /** One bench: a name and a function that measures; one file each. */
 export interface Bench {
   readonly name: string;
-  readonly run: () => Promise<BenchReport>;
+  readonly run: (options: BenchOptions) => Promise<BenchReport>;
 }
