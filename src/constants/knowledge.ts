@@ -225,6 +225,7 @@ export interface AgentRecord {
   readonly component: ComponentId | null; // the ligand it brings ("fluoride"), where the model has one
   readonly counterIonCharge: number; // charge of the inert partner per component (Na+ salts: 1 each)
   readonly usualMaxMolPerL: number;
+  readonly usualMinMolPerL?: number | undefined; // lower end of the usual amounts, where they are known as a range
   readonly usualMolPerL: number;
   readonly pH: readonly [number, number]; // where it may be used at all (cyanide from 9.5)
   readonly special: boolean;

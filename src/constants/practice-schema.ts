@@ -145,6 +145,7 @@ export const agentSchema = z
     component: text.nullable(),
     counterIonCharge: z.number().int(),
     usualMaxMolPerL: molPerL,
+    usualMinMolPerL: molPerL.optional(), // the lower end of its usual amounts, where they are known as a range
     usualMolPerL: molPerL,
     pH: range,
     special: z.boolean(),
@@ -161,7 +162,8 @@ export const agentSchema = z
     ),
     provenance: provenanceSchema,
   })
-  .refine((agent) => agent.usualMolPerL <= agent.usualMaxMolPerL, "usual amount above the usual maximum");
+  .refine((agent) => agent.usualMolPerL <= agent.usualMaxMolPerL, "usual amount above the usual maximum")
+  .refine((agent) => (agent.usualMinMolPerL ?? 0) <= agent.usualMolPerL, "usual amount below the usual minimum");
 
 /** A fact about rates and what follows for a method; temperatures in C. */
 export const kineticSchema = z.strictObject({

@@ -32,6 +32,21 @@ function auxiliaryRows(knowledge: Knowledge): readonly MaskingRecord[] {
   return rows;
 }
 
+/** Whether the analyte lies as a precipitate before the titrant comes. A deposit that redissolves as the titrant takes the rest is no loss while it is the smaller part. */
+export function analyteLost(model: StageModel): boolean {
+  const { determines } = model.plan;
+  const start = model.at(0);
+  const deposited = model.system.solids.reduce((sum, solid, i) => {
+    const ions = determines.reduce((n, ion) => n + (solid.components[ion] ?? 0), 0);
+    return sum + ions * (start.result.solidsMolPerL[i] ?? 0);
+  }, 0);
+  const gone = model.held
+    .filter((h) => h.why === "precipitated" && determines.includes(h.component))
+    .reduce((s, h) => s + h.molPerL, 0);
+  const present = determines.reduce((s, ion) => s + (model.solution.fromSample.get(ion) ?? 0), 0);
+  return gone > 1e-3 * present || deposited > DEPOSIT_BORNE_FRACTION * present;
+}
+
 /** Adds what keeps the analyte dissolved where it would precipitate before the titrant reaches it. */
 export function soluble(
   task: Task,
@@ -39,26 +54,13 @@ export function soluble(
   knowledge: Knowledge,
   shelf: Shelf,
 ): { plan: StagePlan; bare: StageEvaluation; precipitates: boolean } {
-  // A deposit that redissolves as the titrant takes the rest is no loss while it is the smaller part.
-  const lost = (model: StageModel): boolean => {
-    const start = model.at(0);
-    const deposited = model.system.solids.reduce((sum, solid, i) => {
-      const ions = plan.determines.reduce((n, ion) => n + (solid.components[ion] ?? 0), 0);
-      return sum + ions * (start.result.solidsMolPerL[i] ?? 0);
-    }, 0);
-    const gone = model.held
-      .filter((h) => h.why === "precipitated" && plan.determines.includes(h.component))
-      .reduce((s, h) => s + h.molPerL, 0);
-    const present = plan.determines.reduce((s, ion) => s + (model.solution.fromSample.get(ion) ?? 0), 0);
-    return gone > 1e-3 * present || deposited > DEPOSIT_BORNE_FRACTION * present;
-  };
   const bare = evaluate(task, plan, knowledge);
   // Whether the metal of a way round stays dissolved, the way itself has settled.
   if (plan.detour) return { plan, bare, precipitates: false };
   // In a back titration the titrant goes in first; what would precipitate without it does not.
   if (plan.backTitrant !== null)
-    return { plan, bare, precipitates: lost(stageModel(task, beforeTitrant(task, plan), knowledge)) };
-  if (!lost(bare.model)) return { plan, bare, precipitates: false };
+    return { plan, bare, precipitates: analyteLost(stageModel(task, beforeTitrant(task, plan), knowledge)) };
+  if (!analyteLost(bare.model)) return { plan, bare, precipitates: false };
   for (const agent of knowledge.agents.values()) {
     if (!shelf(agent.id)) continue;
     const keeps = auxiliaryRows(knowledge).some(
@@ -68,7 +70,7 @@ export function soluble(
     if (!keeps) continue;
     const kept = withAuxiliary(plan, knowledge, agent.id, `keeps ${plan.determines.join(", ")} dissolved`);
     const evaluation = evaluate(task, kept, knowledge);
-    if (!lost(evaluation.model)) return { plan: kept, bare: evaluation, precipitates: true };
+    if (!analyteLost(evaluation.model)) return { plan: kept, bare: evaluation, precipitates: true };
   }
   return { plan, bare, precipitates: true };
 }

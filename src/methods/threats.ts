@@ -19,7 +19,7 @@ export interface Threat {
 }
 
 /** A bias smaller than this part of the requirement is left alone, */
-const IGNORED_PART_OF_REQUIREMENT = 0.12;
+export const IGNORED_PART_OF_REQUIREMENT = 0.12;
 /** and up to this part where the requirement is met with it: no mask without need. */
 const BORNE_PART_OF_REQUIREMENT = 0.4;
 /** log alpha of the analyte from one ligand of the sample beyond which a titration suffers noticeably, */

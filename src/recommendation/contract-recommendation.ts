@@ -80,6 +80,15 @@ export const maskPracticeSchema = z.strictObject({
   basis: z.enum(["read", "memory", "computed"]),
 });
 
+/** One condition of a titration as it was chosen (pH, or mol/L of the reagent `id`), what the search had planned, and why. */
+export const conditionSchema = z.strictObject({
+  of: z.enum(["pH", "buffer", "masking"]),
+  id: text.nullable(), // the reagent; null for the pH
+  value: finite,
+  planned: finite,
+  statement: text,
+});
+
 /** One titration of a method. */
 export const stageSchema = z.strictObject({
   determines: z.array(text),
@@ -90,6 +99,7 @@ export const stageSchema = z.strictObject({
   titreML: level.nullable(),
   pH: z.strictObject({ target: finite, low: finite, high: finite, drop: finite.nullable() }), // target: at the end point; drop: by how much it falls until there
   buffer: reagentSchema,
+  conditions: z.array(conditionSchema), // empty where nothing was to be chosen: the requirement is missed, or the titration hangs on another
   detection: z.enum(DETECTIONS),
   indicator: z
     .strictObject({ id: text, class: z.enum(INDICATOR_CLASSES), colourChange: z.tuple([text, text]), molPerL: level })
@@ -280,6 +290,7 @@ export const recommendationSchema = z.strictObject({
 
 export type Recommendation = Immutable<z.output<typeof recommendationSchema>>;
 export type RecommendedMethod = Immutable<z.output<typeof methodSchema>>;
+export type ConditionDocument = Immutable<z.output<typeof conditionSchema>>;
 export type StageDocument = Immutable<z.output<typeof stageSchema>>;
 export type Finding = Immutable<z.output<typeof findingSchema>>;
 export type RejectedMethod = Immutable<z.output<typeof rejectedSchema>>;

@@ -7,6 +7,7 @@ import { separationsOf, type Separation } from "../methods/separation.ts";
 import type { StagePlan, Task } from "../methods/types.ts";
 import { amountsOf } from "./bench-amounts.ts";
 import type { Because, RecommendedMethod, StageDocument } from "./contract.ts";
+import { conditionsDocument } from "./condition-words.ts";
 import type { JudgedMethod, Verdict } from "./judge.ts";
 import { budgetDocument, resultFigures, wouldMeetDocument } from "./budget-document.ts";
 import { signif } from "./figures-shown.ts";
@@ -108,6 +109,7 @@ function stageDocument(task: Task, method: JudgedMethod, index: number, knowledg
       drop: converged ? pHDropOf(task, stage, knowledge) : null,
     },
     buffer: { ...plan.buffer },
+    conditions: [...conditionsDocument(stage, range, method.choices?.[index] ?? null, ion)],
     detection: plan.detection,
     indicator:
       plan.indicator && evaluation.model.indicator

@@ -10,6 +10,7 @@ import { separationsOf } from "../methods/separation.ts";
 import { supersaturations, type Supersaturation } from "../methods/saturation.ts";
 import { countedIn, type Task } from "../methods/types.ts";
 import { stageBudget } from "../methods/uncertainty.ts";
+import type { StageChoices } from "../methods/optimise.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import { detourFacts } from "./detour-facts.ts";
 import { releaseFacts } from "./release-facts.ts";
@@ -20,6 +21,8 @@ import { hazardTagsOf, reagentsOf } from "./reagents.ts";
 export interface MethodUnderJudgement {
   readonly method: EvaluatedMethod;
   readonly ranges: readonly (WorkingRange | null)[];
+  /** Why each titration is done at its pH and with its amounts; absent where that was not looked at. */
+  readonly choices?: readonly StageChoices[];
   /** See `bearsRicherMatrix`; null also where it was not looked at. */
   readonly bearsRicherMatrix: boolean | null;
 }

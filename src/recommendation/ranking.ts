@@ -1,11 +1,9 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { RuleRunner } from "../inference/index.ts";
-import type { DevelopedStage } from "../methods/develop.ts";
-import { roughCost, seenWith, singleMethod, type EvaluatedMethod } from "../methods/methods.ts";
+import { roughCost, seenWith, type EvaluatedMethod } from "../methods/methods.ts";
 import { bearsRicherMatrix } from "../methods/tolerance.ts";
-import { portionsMethod } from "../methods/portions.ts";
+import { optimised } from "../methods/optimise.ts";
 import type { MethodMode, StagePlan, Task } from "../methods/types.ts";
-import { centred, workingRange, type WorkingRange } from "../methods/working-range.ts";
 import type { MethodUnderJudgement } from "./facts.ts";
 import { judge, rank, type JudgedMethod } from "./judge.ts";
 
@@ -75,27 +73,10 @@ function shortlist(task: Task, methods: readonly EvaluatedMethod[], knowledge: K
   return diverse.slice(0, JUDGED);
 }
 
-/** Working ranges of every titration of a method, and whether it bears a richer matrix; targets moved to the middle of theirs where they sat at an edge. */
+/** A method at its best conditions, with the working range of every titration and whether it bears a richer matrix. */
 export function ranged(task: Task, method: EvaluatedMethod, knowledge: Knowledge): MethodUnderJudgement {
-  const ranges: WorkingRange[] = [];
-  const stages: DevelopedStage[] = [];
-  const independent = method.stages.length === 1 || method.mode === "portions";
-  for (const stage of method.stages) {
-    const range = workingRange(task, stage, knowledge);
-    // What follows in the same vessel, or is subtracted, hangs on how it was: only independent titrations are moved.
-    const moved = independent ? centred(task, stage, range, knowledge) : stage;
-    stages.push(moved);
-    ranges.push(
-      moved === stage ? range : { low: Math.min(range.low, moved.plan.pH), high: Math.max(range.high, moved.plan.pH) },
-    );
-  }
-  const same = stages.every((s, i) => s === method.stages[i]);
-  const moved = same
-    ? method
-    : method.mode === "portions"
-      ? portionsMethod(task, stages, knowledge)
-      : singleMethod(task, stages[0]!, knowledge);
-  return { method: moved, ranges, bearsRicherMatrix: bearsRicherMatrix(task, moved, knowledge) };
+  const best = optimised(task, method, knowledge);
+  return { ...best, bearsRicherMatrix: bearsRicherMatrix(task, best.method, knowledge) };
 }
 
 /**

@@ -39,6 +39,14 @@ export function conditions(method: RecommendedMethod): readonly (readonly string
   ]);
 }
 
+/** Why each titration is done at its pH and with its amounts. */
+export function conditionReasons(method: RecommendedMethod): readonly (readonly string[])[] {
+  const several = method.stages.length > 1;
+  return method.stages.flatMap((stage, index) =>
+    stage.conditions.map(({ statement }) => bullet(`${several ? `titration ${index + 1}: ` : ""}${statement}`)),
+  );
+}
+
 function stageConditions(stage: StageDocument, method: RecommendedMethod): readonly (readonly string[])[] {
   const titrant = stage.titrant ?? method.titrant;
   const back = backTitrantOf(stage, method);

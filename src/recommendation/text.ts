@@ -1,6 +1,6 @@
 import type { Recommendation, RecommendedMethod } from "./contract.ts";
 import { bullet, LINE_CHARACTERS, section, wrap } from "./text-layout.ts";
-import { conditions, error, masking, minded, reasons } from "./text-method.ts";
+import { conditionReasons, conditions, error, masking, minded, reasons } from "./text-method.ts";
 import { stepsOf } from "./text-steps.ts";
 import {
   FINDING_WORDS,
@@ -63,6 +63,7 @@ function firstMethod(document: Recommendation, method: RecommendedMethod): reado
       method.cautions.map((caution) => bullet(caution)),
     ),
     section("At the bench", conditions(method)),
+    section("Why these conditions", conditionReasons(method)),
     section(
       "Steps",
       stepsOf(method, document.brief).map((step, index) => wrap(step, `  ${String(index + 1).padStart(2)}. `)),

@@ -11,6 +11,16 @@ export const STAGE: StageDocument = {
   titreML: 20.1,
   pH: { target: 5.5, low: 5, high: 6, drop: 0.05 },
   buffer: { id: "hexamine", molPerL: 0.05 },
+  conditions: [
+    {
+      of: "pH",
+      id: null,
+      value: 5.5,
+      planned: 5.5,
+      statement:
+        "pH 5.5: works from 5 to 6; the pH in use for xylenol orange, and no other is better by a real amount (0.31 % here).",
+    },
+  ],
   detection: "visual",
   indicator: { id: "xylenol-orange", class: "triphenylmethane", colourChange: ["red-violet", "yellow"], molPerL: 2e-5 },
   masking: [

@@ -149,6 +149,10 @@ function benchRows(
         `, with ${amount(carried.titrantMolPerL)} of titrant`,
       ]),
     ]);
+  add(
+    "Why these conditions",
+    stage.conditions.map((c) => names.set(c.statement)),
+  );
   if (stage.titreML !== null)
     add(
       "Expected titre",

@@ -1,0 +1,175 @@
+import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
+import { type DevelopedStage } from "./develop.ts";
+import { evaluate } from "./evaluate.ts";
+import { singleMethod, stageKey, type EvaluatedMethod, type MethodResult } from "./methods.ts";
+import { chooseBuffer, type BufferChoice } from "./optimise-buffer.ts";
+import { chooseMasks, type MaskChoice, type Tried } from "./optimise-masks.ts";
+import { choosePH, type PHChoice, type PHLook } from "./optimise-ph.ts";
+import { portionsMethod, resultOf } from "./portions.ts";
+import { supersaturations } from "./saturation.ts";
+import { analyteLost } from "./soluble.ts";
+import { threatsOf } from "./threats.ts";
+import type { StagePlan, Task } from "./types.ts";
+import { combineDifference, stageBudget } from "./uncertainty.ts";
+import { atPH, expandedWhereHeld, scannedRange, type ScannedRange, type WorkingRange } from "./working-range.ts";
+
+/** Why a titration is done at its pH and with its amounts; null where there was nothing to choose. */
+export interface StageChoices {
+  readonly pH: PHChoice | null;
+  readonly buffer: BufferChoice | null;
+  readonly masks: readonly MaskChoice[];
+}
+
+/** A method at the conditions chosen for it, with the working range of each titration, and why. */
+export interface OptimisedMethod {
+  readonly method: EvaluatedMethod;
+  readonly ranges: readonly WorkingRange[];
+  readonly choices: readonly StageChoices[];
+}
+
+/** A cheaper amount may cost the third figure of the uncertainty a little, no more. */
+const COST_OF_AMOUNTS = 0.002;
+
+const NOTHING_CHOSEN: StageChoices = { pH: null, buffer: null, masks: [] };
+
+interface OptimisedStage {
+  readonly stage: DevelopedStage;
+  readonly range: WorkingRange;
+  readonly choices: StageChoices;
+}
+
+/**
+ * Moves every titration of a method to the conditions it is best done under: first the pH (least expanded uncertainty, away from the edges of
+ * the working range), then the least usual buffer that holds it, then the least of each mask that holds what it masks with room to spare. What
+ * meets the requirement still meets it, no figure gets worse by more than its third digit, and no working range gets narrower.
+ * Titrations that others of the same vessel follow, or follow on, keep their conditions.
+ */
+export function optimised(task: Task, method: EvaluatedMethod, knowledge: Knowledge): OptimisedMethod {
+  const scans = method.stages.map((stage) => scannedRange(task, stage, knowledge));
+  const asPlanned = (): OptimisedMethod => ({
+    method,
+    ranges: scans.map(({ low, high }) => ({ low, high })),
+    choices: method.stages.map(() => NOTHING_CHOSEN),
+  });
+  if (method.mode === "successive") return asPlanned();
+  const made = method.stages.map((stage, i) => optimisedStage(task, stage, scans[i]!, knowledge));
+  const stages = made.map((m) => m.stage);
+  const moved = stages.every((s, i) => s === method.stages[i]) ? method : rebuilt(task, method, stages, knowledge);
+  if (method.mode === "difference" && !noWorse(moved.results, method.results)) return asPlanned();
+  return { method: moved, ranges: made.map((m) => m.range), choices: made.map((m) => m.choices) };
+}
+
+/** Whether each result is as sure as before: what is better for each of two titrations need not be for their difference. */
+const noWorse = (now: readonly MethodResult[], before: readonly MethodResult[]): boolean =>
+  now.every((r, i) => r.budget.expanded <= (1 + COST_OF_AMOUNTS) * before[i]!.budget.expanded);
+
+/** The method of the same kind with other titrations. */
+function rebuilt(
+  task: Task,
+  method: EvaluatedMethod,
+  stages: readonly DevelopedStage[],
+  knowledge: Knowledge,
+): EvaluatedMethod {
+  if (method.mode === "portions") return portionsMethod(task, stages, knowledge);
+  const [whole, part] = stages;
+  if (method.mode !== "difference" || whole === undefined || part === undefined)
+    return singleMethod(task, stages[0]!, knowledge);
+  const ofPart = (ions: readonly ComponentId[]): boolean => ions.join() === part.plan.determines.join();
+  return {
+    ...method,
+    id: `difference: ${stages.map(stageKey).join(" ; ")}`,
+    stages,
+    results: method.results.map((r) =>
+      ofPart(r.determines)
+        ? resultOf(task, part, knowledge)
+        : { determines: r.determines, ...combineDifference(task, whole.evaluation, part.evaluation, knowledge) },
+    ),
+  };
+}
+
+function optimisedStage(
+  task: Task,
+  planned: DevelopedStage,
+  scanned: ScannedRange,
+  knowledge: Knowledge,
+): OptimisedStage {
+  const range = { low: scanned.low, high: scanned.high };
+  const at = (look: PHLook): DevelopedStage | null =>
+    asGood(task, planned, atPH(planned.plan, look.pH, knowledge), look.expanded, knowledge);
+  const pH =
+    planned.evaluation.status === "failed" || planned.plan.carried !== null
+      ? null
+      : choosePH(planned, scanned, (look) => at(look) !== null, knowledge);
+  if (pH === null) return { stage: planned, range, choices: NOTHING_CHOSEN };
+  const stage = pH.chosen === pH.start ? planned : (at(pH.chosen) ?? planned);
+  // No step may take back what the one before it gained.
+  const most = (1 + COST_OF_AMOUNTS) * pH.chosen.expanded;
+  const tried = (plan: StagePlan): DevelopedStage | null => asGood(task, planned, plan, most, knowledge);
+  const { made, choices } = withAmounts(task, stage, range, tried, knowledge);
+  // Less of a mask must not cost the ends of the range.
+  const holds = [range.low, range.high].every((end) => expandedWhereHeld(task, made, end, knowledge) !== null);
+  return made === stage || holds
+    ? { stage: made, range, choices: { ...choices, pH } }
+    : { stage, range, choices: { ...givenUp(choices), pH } };
+}
+
+/** The same titration with the masks and the buffer it needs. */
+function withAmounts(
+  task: Task,
+  stage: DevelopedStage,
+  range: WorkingRange,
+  tried: Tried,
+  knowledge: Knowledge,
+): { readonly made: DevelopedStage; readonly choices: Omit<StageChoices, "pH"> } {
+  const { stage: masked, choices: masks } = chooseMasks(task, stage, tried, knowledge);
+  const buffer = chooseBuffer(task, masked, range, knowledge);
+  if (buffer === null) return { made: masked, choices: { buffer, masks } };
+  for (const chosen of [buffer.chosen, ...buffer.rounded]) {
+    const { molPerL } = chosen;
+    if (molPerL === masked.plan.buffer.molPerL) break;
+    const made = tried({ ...masked.plan, buffer: { id: buffer.id, molPerL } });
+    if (made !== null)
+      return {
+        made,
+        choices: { buffer: { ...buffer, chosen, less: chosen === buffer.chosen ? buffer.less : null }, masks },
+      };
+  }
+  return { made: masked, choices: { buffer: { ...buffer, chosen: buffer.start, less: null }, masks } };
+}
+
+/** What stands where amounts that narrow the working range were given up. */
+const givenUp = ({ buffer, masks }: Omit<StageChoices, "pH">): Omit<StageChoices, "pH"> => ({
+  buffer: buffer && { ...buffer, chosen: buffer.start, less: null },
+  masks: masks.map((m) => ({
+    ...m,
+    chosenMolPerL: m.startMolPerL,
+    ion: null,
+    log10Margin: null,
+    why: "as-planned" as const,
+  })),
+});
+
+/** A titration with another plan, where it is no less sure than `atMost` (relative) and nothing more is in the way or precipitates; else null. */
+function asGood(
+  task: Task,
+  planned: DevelopedStage,
+  plan: StagePlan,
+  atMost: number,
+  knowledge: Knowledge,
+): DevelopedStage | null {
+  const evaluation = evaluate(task, plan, knowledge);
+  const before = planned.evaluation;
+  if (evaluation.status === "failed" || evaluation.blockedBy.length > before.blockedBy.length) return null;
+  if (evaluation.status === "outOfModelRange" && before.status === "converged") return null;
+  // Where an end point rests on less (no band of the dye's own) its smaller uncertainty is no gain.
+  if (evaluation.basis !== before.basis) return null;
+  if (stageBudget(task, evaluation, knowledge).expanded > atMost) return null;
+  const remaining = threatsOf(task, evaluation, knowledge);
+  const known = new Set(planned.remaining.map((t) => t.component));
+  if (remaining.some((t) => !known.has(t.component))) return null;
+  if (!planned.analytePrecipitates && plan.backTitrant === null && analyteLost(evaluation.model)) return null;
+  const solids = (of: DevelopedStage["evaluation"]): string[] =>
+    supersaturations(task, of.model.plan, knowledge, of.model.ionicStrengthMolPerL).map((s) => s.solid);
+  const there = new Set(solids(before));
+  return solids(evaluation).some((id) => !there.has(id)) ? null : { ...planned, plan, evaluation, remaining };
+}
