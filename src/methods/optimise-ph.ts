@@ -34,7 +34,7 @@ export interface PHChoice {
 }
 
 /** To this a bench sets a pH with a meter (common practice), */
-export const SETTING_ERROR_PH = 0.1;
+const SETTING_ERROR_PH = 0.1;
 /** and so many of these should lie between a pH and the edge of its working range. */
 const SAFE_SETTING_ERRORS = 3;
 /** A gain below this part of the expanded uncertainty is not real: a bench keeps to the pH it knows. */
@@ -48,6 +48,10 @@ const WIDE = 1;
 const BENCH_STEP = 0.5;
 
 const round = (pH: number): number => Math.round(pH * 10) / 10;
+
+/** Whether an edge of the working range is nearer to a pH than three setting errors. */
+export const nearEdge = (pH: number, { low, high }: { readonly low: number; readonly high: number }): boolean =>
+  Math.min(pH - low, high - pH) < SAFE_SETTING_ERRORS * SETTING_ERROR_PH - 1e-6;
 
 /** Expanded uncertainty as the choice of a pH counts it: up to double where an edge of the working range is nearer than three setting errors. */
 export function weighted({ pH, expanded }: PHLook, range: { readonly low: number; readonly high: number }): number {
@@ -78,13 +82,13 @@ export function choosePH(
   const looks = candidates(stage, scanned, knowledge).flatMap((pH) => at(pH) ?? []);
   const cost = (look: PHLook): number => weighted(look, scanned);
   // What stands clear of the edges is not given up for a figure that is no better.
-  const clear = cost(start) <= (1 + SAME_UNCERTAINTY) * start.expanded;
+  const clear = !nearEdge(start.pH, scanned);
   const worthIt = looks.filter((l) => !clear || l.expanded <= (1 + SAME_UNCERTAINTY) * start.expanded);
   const wide = scanned.high - scanned.low >= WIDE;
   const [chosen, why] = preferred(stage, start, worthIt, cost, wide, knowledge).find(
     ([look]) => look === start || serves(look),
   )!;
-  const others = [...looks, start].filter((look) => look.pH !== chosen.pH);
+  const others = [...looks, start].filter((look) => !sameForBench(look, chosen));
   const next = others.reduce<PHLook | null>(
     (least, look) => (least === null || cost(look) < cost(least) ? look : least),
     null,
@@ -106,15 +110,14 @@ function preferred(
   const asGood = (look: PHLook): boolean => cost(look) <= (1 + REAL_GAIN) * least;
   const published = [start, ...looks].filter((look) => look.pH === skeleton.plan.pH && asGood(look));
   const onBench = isHalf(start.pH) || !wide ? [] : byCost.filter((look) => isHalf(look.pH) && asGood(look));
+  const better = byCost.filter((look) => (1 + REAL_GAIN) * cost(look) < cost(start) && !sameForBench(look, start));
   return [
     ...published.map((look) => [look, "published"] as const),
     ...milder(plan, looks.filter(asGood), knowledge).map((look) => [look, "milder"] as const),
     ...onBench.map((look) => [look, "least-uncertainty"] as const),
     ...(asGood(start) ? [[start, "as-planned"] as const] : []),
-    ...byCost
-      .filter((look) => (1 + REAL_GAIN) * cost(look) < cost(start) && !sameForBench(look, start))
-      .map((look) => [look, "least-uncertainty"] as const),
-    [start, "nothing-else-serves"],
+    ...better.map((look) => [look, "least-uncertainty"] as const),
+    [start, better.length > 0 ? "nothing-else-serves" : "as-planned"],
   ];
 }
 

@@ -169,7 +169,9 @@ function asGood(
   if (remaining.some((t) => !known.has(t.component))) return null;
   if (!planned.analytePrecipitates && plan.backTitrant === null && analyteLost(evaluation.model)) return null;
   const solids = (of: DevelopedStage["evaluation"]): string[] =>
-    supersaturations(task, of.model.plan, knowledge, of.model.ionicStrengthMolPerL).map((s) => s.solid);
+    supersaturations(task, of.model.plan, knowledge, of.model.ionicStrengthMolPerL)
+      .filter((s) => s.pace !== "no")
+      .map((s) => [...s.components].sort().join());
   const there = new Set(solids(before));
-  return solids(evaluation).some((id) => !there.has(id)) ? null : { ...planned, plan, evaluation, remaining };
+  return solids(evaluation).some((ions) => !there.has(ions)) ? null : { ...planned, plan, evaluation, remaining };
 }

@@ -1,7 +1,7 @@
 import type { DevelopedStage } from "../methods/develop.ts";
 import type { BufferChoice, BufferLook } from "../methods/optimise-buffer.ts";
 import type { MaskChoice } from "../methods/optimise-masks.ts";
-import type { PHChoice, PHLook } from "../methods/optimise-ph.ts";
+import { nearEdge, type PHChoice, type PHLook } from "../methods/optimise-ph.ts";
 import type { StageChoices } from "../methods/optimise.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import type { ConditionDocument } from "./contract.ts";
@@ -46,13 +46,14 @@ export function conditionsDocument(
 }
 
 const expanded = (look: PHLook): string => `${figures(100 * look.expanded, 2)} %`;
-const at = (look: PHLook): string => `${expanded(look)} at pH ${figures(look.pH)}`;
+const at = (look: PHLook, range: WorkingRange): string =>
+  `${expanded(look)} at pH ${figures(look.pH)}${nearEdge(look.pH, range) ? ", near the edge" : ""}`;
 
 function pHStatement({ chosen, start, why, next }: PHChoice, range: WorkingRange, stage: DevelopedStage): string {
   const works =
     range.low === range.high ? "works at this pH only" : `works from ${figures(range.low)} to ${figures(range.high)}`;
   const others = [start, ...(next === null || next.pH === start.pH ? [] : [next])].filter((l) => l.pH !== chosen.pH);
-  const beside = others.length === 0 ? "" : `, ${listed(others.map(at))}`;
+  const beside = others.length === 0 ? "" : `, ${listed(others.map((look) => at(look, range)))}`;
   const reason = {
     published: `the pH in use for ${seen(stage)}, and no other is better by a real amount`,
     "as-planned":
