@@ -99,7 +99,7 @@ export const stageSchema = z.strictObject({
   titreML: level.nullable(),
   pH: z.strictObject({ target: finite, low: finite, high: finite, drop: finite.nullable() }), // target: at the end point; drop: by how much it falls until there
   buffer: reagentSchema,
-  conditions: z.array(conditionSchema), // empty where nothing was to be chosen: the requirement is missed, or the titration hangs on another
+  conditions: z.array(conditionSchema).default([]), // empty where nothing was to be chosen: the requirement is missed, or the titration hangs on another
   detection: z.enum(DETECTIONS),
   indicator: z
     .strictObject({ id: text, class: z.enum(INDICATOR_CLASSES), colourChange: z.tuple([text, text]), molPerL: level })

@@ -63,7 +63,7 @@ function firstMethod(document: Recommendation, method: RecommendedMethod): reado
       method.cautions.map((caution) => bullet(caution)),
     ),
     section("At the bench", conditions(method)),
-    section("Why these conditions", conditionReasons(method)),
+    section("Conditions chosen", conditionReasons(method)),
     section(
       "Steps",
       stepsOf(method, document.brief).map((step, index) => wrap(step, `  ${String(index + 1).padStart(2)}. `)),

@@ -150,7 +150,7 @@ function benchRows(
       ]),
     ]);
   add(
-    "Why these conditions",
+    "Conditions chosen",
     stage.conditions.map((c) => names.set(c.statement)),
   );
   if (stage.titreML !== null)
