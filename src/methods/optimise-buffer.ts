@@ -29,8 +29,9 @@ const BORNE_PH_CHANGE = 0.1;
 /** and nearer to the edge of the working range by half of what is left; never asked for less than this. */
 const LEAST_PH_CHANGE = 0.03;
 const PART_OF_ROOM = 0.5;
-/** Where more buffer costs the titration something, so much is borne (common practice). */
-const MOST_PH_CHANGE = 0.2;
+/** Where more buffer costs the titration something, or is more than a bench takes without need, so much is borne (common practice). */
+export const MOST_PH_CHANGE = 0.2;
+const WITHOUT_NEED_MOL_PER_L = 0.2;
 
 /**
  * The least usual amount of the buffer of a titration with which the protons that it sets free move the pH no further than it can be set, nor
@@ -62,8 +63,14 @@ export function chooseBuffer(
   const room = freed > 0 ? plan.pH - range.low : range.high - plan.pH;
   const borne = Math.max(LEAST_PH_CHANGE, Math.min(BORNE_PH_CHANGE, PART_OF_ROOM * room));
   const looks = usual.map(look);
-  const at = looks.findIndex((l) => Math.abs(l.pHDrop) <= borne);
-  const index = at < 0 ? looks.length - 1 : at;
+  const first = (change: number, limit: number): number =>
+    looks.findIndex((l) => Math.abs(l.pHDrop) <= change && l.molPerL <= limit);
+  const found = [
+    first(borne, WITHOUT_NEED_MOL_PER_L),
+    first(MOST_PH_CHANGE, WITHOUT_NEED_MOL_PER_L),
+    first(borne, most),
+  ];
+  const index = found.find((i) => i >= 0) ?? looks.length - 1;
   const figure = 10 ** Math.floor(Math.log10(plan.buffer.molPerL) + 1e-9);
   const rounded = [Math.floor, Math.ceil]
     .map((to) => Number((figure * to(plan.buffer.molPerL / figure - 1e-9)).toPrecision(1)))

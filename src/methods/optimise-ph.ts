@@ -130,9 +130,12 @@ const isHalf = (pH: number): boolean => Math.abs(2 * pH - Math.round(2 * pH)) < 
 function candidates(stage: DevelopedStage, { low, high }: ScannedRange, knowledge: Knowledge): number[] {
   const { plan, skeleton } = stage;
   const buffer = knowledge.buffers.get(plan.buffer.id);
-  const records = [skeleton.window, ...(buffer ? [buffer.workingPH] : []), ...maskRecords(plan, knowledge)];
-  const from = Math.max(low, ...records.map(([first]) => first));
-  const to = Math.min(high, ...records.map(([, last]) => last));
+  const records = [skeleton.window, ...(buffer ? [buffer.workingPH] : [])];
+  const [from, to] = whereMasked(
+    plan,
+    [Math.max(low, ...records.map(([first]) => first)), Math.min(high, ...records.map(([, last]) => last))],
+    knowledge,
+  );
   if (to < from) return [];
   const grid = (step: number): number[] => {
     const first = Math.ceil(from / step - 1e-6);
@@ -145,16 +148,24 @@ function candidates(stage: DevelopedStage, { low, high }: ScannedRange, knowledg
     .sort((a, b) => Math.abs(a - plan.pH) - Math.abs(b - plan.pH) || a - b);
 }
 
-/** The pH ranges in which the masks of a plan are on record as they are used in it. */
-const maskRecords = (plan: StagePlan, knowledge: Knowledge): (readonly [number, number])[] =>
-  plan.masking.flatMap((step) =>
-    step.masks.flatMap((ion) => {
-      const ranges = rowsFor(knowledge, step.agent, ion, plan.pH).map((row) => row.pH);
-      return ranges.length === 0
-        ? []
-        : [[Math.min(plan.pH, ...ranges.map((r) => r[0])), Math.max(plan.pH, ...ranges.map((r) => r[1]))] as const];
-    }),
+/** The part of a range of pH, around the planned one, in which every mask of a plan is on record as it is there. */
+function whereMasked(plan: StagePlan, [low, high]: readonly [number, number], knowledge: Knowledge): [number, number] {
+  const onRecord = (pH: number, agent: string, ion: string): boolean => rowsFor(knowledge, agent, ion, pH).length > 0;
+  const masks = plan.masking.flatMap(({ agent, masks: ions }) =>
+    ions.filter((ion) => onRecord(plan.pH, agent, ion)).map((ion) => [agent, ion] as const),
   );
+  const held = (pH: number): boolean => masks.every(([agent, ion]) => onRecord(pH, agent, ion));
+  const edge = (direction: -1 | 1, last: number): number => {
+    let pH = plan.pH;
+    while (direction * (last - pH) > 1e-6) {
+      const next = direction > 0 ? Math.min(last, pH + SETTING_ERROR_PH) : Math.max(last, pH - SETTING_ERROR_PH);
+      if (!held(next)) return pH;
+      pH = next;
+    }
+    return last;
+  };
+  return masks.length === 0 ? [low, high] : [edge(-1, low), edge(1, high)];
+}
 
 /** Whether the dye is seen at this pH as well as at the planned one. */
 const seenAsWell = ({ plan, evaluation }: DevelopedStage, pH: number): boolean => {

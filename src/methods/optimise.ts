@@ -2,7 +2,7 @@ import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { type DevelopedStage } from "./develop.ts";
 import { evaluate } from "./evaluate.ts";
 import { singleMethod, stageKey, type EvaluatedMethod, type MethodResult } from "./methods.ts";
-import { chooseBuffer, type BufferChoice } from "./optimise-buffer.ts";
+import { chooseBuffer, MOST_PH_CHANGE, type BufferChoice } from "./optimise-buffer.ts";
 import { chooseMasks, type MaskChoice, type Tried } from "./optimise-masks.ts";
 import { choosePH, type PHChoice, type PHLook } from "./optimise-ph.ts";
 import { portionsMethod, resultOf } from "./portions.ts";
@@ -94,47 +94,65 @@ function optimisedStage(
   knowledge: Knowledge,
 ): OptimisedStage {
   const range = { low: scanned.low, high: scanned.high };
-  const at = (look: PHLook): DevelopedStage | null =>
-    asGood(task, planned, atPH(planned.plan, look.pH, knowledge), look.expanded, knowledge);
-  const pH =
-    planned.evaluation.status === "failed" || planned.plan.carried !== null
-      ? null
-      : choosePH(planned, scanned, (look) => at(look) !== null, knowledge);
+  if (planned.evaluation.status === "failed" || planned.plan.carried !== null)
+    return { stage: planned, range, choices: NOTHING_CHOSEN };
+  const finished = ({ pH, expanded }: PHLook): Finished | null => {
+    const moved =
+      pH === planned.plan.pH ? planned : asGood(task, planned, atPH(planned.plan, pH, knowledge), expanded, knowledge);
+    // No step may take back what the one before it gained.
+    const most = (1 + COST_OF_AMOUNTS) * expanded;
+    const tried = (plan: StagePlan): DevelopedStage | null => asGood(task, planned, plan, most, knowledge);
+    return moved && withAmounts(task, moved, range, tried, knowledge);
+  };
+  const made = new Map<PHLook, Finished | null>();
+  const pH = choosePH(
+    planned,
+    scanned,
+    (look) => {
+      made.set(look, finished(look));
+      return holdsPH(made.get(look) ?? null);
+    },
+    knowledge,
+  );
   if (pH === null) return { stage: planned, range, choices: NOTHING_CHOSEN };
-  const stage = pH.chosen === pH.start ? planned : (at(pH.chosen) ?? planned);
-  // No step may take back what the one before it gained.
-  const most = (1 + COST_OF_AMOUNTS) * pH.chosen.expanded;
-  const tried = (plan: StagePlan): DevelopedStage | null => asGood(task, planned, plan, most, knowledge);
-  const { made, choices } = withAmounts(task, stage, range, tried, knowledge);
+  const { stage, bare, choices } = made.get(pH.chosen) ?? finished(pH.chosen)!;
   // Less of a mask must not cost the ends of the range.
-  const holds = [range.low, range.high].every((end) => expandedWhereHeld(task, made, end, knowledge) !== null);
-  return made === stage || holds
-    ? { stage: made, range, choices: { ...choices, pH } }
-    : { stage, range, choices: { ...givenUp(choices), pH } };
+  const holds = [range.low, range.high].every((end) => expandedWhereHeld(task, stage, end, knowledge) !== null);
+  return stage === bare || holds
+    ? { stage, range, choices: { ...choices, pH } }
+    : { stage: bare, range, choices: { ...givenUp(choices), pH } };
 }
+
+/** A titration at a pH, before and after its amounts were chosen. */
+interface Finished {
+  readonly bare: DevelopedStage;
+  readonly stage: DevelopedStage;
+  readonly choices: Omit<StageChoices, "pH">;
+}
+
+/** A pH that no usual amount of the buffer holds is not gone to. */
+const holdsPH = (made: Finished | null): boolean =>
+  made !== null && Math.abs(made.choices.buffer?.chosen.pHDrop ?? 0) <= MOST_PH_CHANGE;
 
 /** The same titration with the masks and the buffer it needs. */
 function withAmounts(
   task: Task,
-  stage: DevelopedStage,
+  bare: DevelopedStage,
   range: WorkingRange,
   tried: Tried,
   knowledge: Knowledge,
-): { readonly made: DevelopedStage; readonly choices: Omit<StageChoices, "pH"> } {
-  const { stage: masked, choices: masks } = chooseMasks(task, stage, tried, knowledge);
-  const buffer = chooseBuffer(task, masked, range, knowledge);
-  if (buffer === null) return { made: masked, choices: { buffer, masks } };
+): Finished {
+  const { stage, choices: masks } = chooseMasks(task, bare, tried, knowledge);
+  const buffer = chooseBuffer(task, stage, range, knowledge);
+  if (buffer === null) return { bare, stage, choices: { buffer, masks } };
   for (const chosen of [buffer.chosen, ...buffer.rounded]) {
     const { molPerL } = chosen;
-    if (molPerL === masked.plan.buffer.molPerL) break;
-    const made = tried({ ...masked.plan, buffer: { id: buffer.id, molPerL } });
-    if (made !== null)
-      return {
-        made,
-        choices: { buffer: { ...buffer, chosen, less: chosen === buffer.chosen ? buffer.less : null }, masks },
-      };
+    if (molPerL === stage.plan.buffer.molPerL) break;
+    const made = tried({ ...stage.plan, buffer: { id: buffer.id, molPerL } });
+    const less = chosen === buffer.chosen ? buffer.less : null;
+    if (made !== null) return { bare, stage: made, choices: { buffer: { ...buffer, chosen, less }, masks } };
   }
-  return { made: masked, choices: { buffer: { ...buffer, chosen: buffer.start, less: null }, masks } };
+  return { bare, stage, choices: { buffer: { ...buffer, chosen: buffer.start, less: null }, masks } };
 }
 
 /** What stands where amounts that narrow the working range were given up. */
@@ -167,7 +185,13 @@ function asGood(
   const remaining = threatsOf(task, evaluation, knowledge);
   const known = new Set(planned.remaining.map((t) => t.component));
   if (remaining.some((t) => !known.has(t.component))) return null;
-  if (!planned.analytePrecipitates && plan.backTitrant === null && analyteLost(evaluation.model)) return null;
+  if (
+    !planned.analytePrecipitates &&
+    plan.backTitrant === null &&
+    plan.detour === null &&
+    analyteLost(evaluation.model)
+  )
+    return null;
   const solids = (of: DevelopedStage["evaluation"]): string[] =>
     supersaturations(task, of.model.plan, knowledge, of.model.ionicStrengthMolPerL)
       .filter((s) => s.pace !== "no")

@@ -47,7 +47,7 @@ export function conditionsDocument(
 
 const expanded = (look: PHLook): string => `${figures(100 * look.expanded, 2)} %`;
 const at = (look: PHLook, range: WorkingRange): string =>
-  `${expanded(look)} at pH ${figures(look.pH)}${nearEdge(look.pH, range) ? ", near the edge" : ""}`;
+  `${expanded(look)} ${nearEdge(look.pH, range) ? "near the edge at" : "at"} pH ${figures(look.pH)}`;
 
 function pHStatement({ chosen, start, why, next }: PHChoice, range: WorkingRange, stage: DevelopedStage): string {
   const works =
