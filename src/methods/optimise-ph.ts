@@ -2,6 +2,7 @@ import type { IndicatorRecord, Knowledge } from "../constants/knowledge.ts";
 import { bufferAmount } from "./buffers.ts";
 import { type DevelopedStage } from "./develop.ts";
 import { benchPH } from "./dye-uses.ts";
+import { MOST_PH_CHANGE } from "./optimise-buffer.ts";
 import { rowsFor } from "./masks.ts";
 import type { StagePlan } from "./types.ts";
 import type { ScannedRange } from "./working-range.ts";
@@ -35,8 +36,8 @@ export interface PHChoice {
 
 /** To this a bench sets a pH with a meter (common practice), */
 const SETTING_ERROR_PH = 0.1;
-/** and so many of these should lie between a pH and the edge of its working range. */
-const SAFE_SETTING_ERRORS = 3;
+/** and so far a pH should lie from the edges of its working range: three setting errors, and the fall that is borne while titrating. */
+const CLEAR_OF_EDGES_PH = 3 * SETTING_ERROR_PH + MOST_PH_CHANGE;
 /** A gain below this part of the expanded uncertainty is not real: a bench keeps to the pH it knows. */
 const REAL_GAIN = 0.05;
 /** Two figures of an uncertainty are given (JCGM 100, 7.2.6): up to this part more is not more. */
@@ -49,21 +50,20 @@ const BENCH_STEP = 0.5;
 
 const round = (pH: number): number => Math.round(pH * 10) / 10;
 
-/** Whether an edge of the working range is nearer to a pH than three setting errors. */
+/** Whether an edge of the working range is nearer to a pH than it should be. */
 export const nearEdge = (pH: number, { low, high }: { readonly low: number; readonly high: number }): boolean =>
-  Math.min(pH - low, high - pH) < SAFE_SETTING_ERRORS * SETTING_ERROR_PH - 1e-6;
+  Math.min(pH - low, high - pH) < CLEAR_OF_EDGES_PH - 1e-6;
 
-/** Expanded uncertainty as the choice of a pH counts it: up to double where an edge of the working range is nearer than three setting errors. */
+/** Expanded uncertainty as the choice of a pH counts it: up to double the nearer an edge of the working range is. */
 export function weighted({ pH, expanded }: PHLook, range: { readonly low: number; readonly high: number }): number {
-  const safe = SAFE_SETTING_ERRORS * SETTING_ERROR_PH;
   const distance = Math.min(pH - range.low, range.high - pH);
-  return expanded * (1 + Math.max(0, safe - distance) / safe);
+  return expanded * (1 + Math.max(0, CLEAR_OF_EDGES_PH - distance) / CLEAR_OF_EDGES_PH);
 }
 
 /**
  * The pH at which a titration is best done, all else kept: of the bench's half units (tenths where the range is narrow) inside the published
  * window of the dye, the buffer and the records of the masks, the one with the least expanded uncertainty, an edge of the working range nearer
- * than three setting errors counting against it. The published pH stays, or else the planned one, where that gains less than a twentieth.
+ * than half a unit counting against it. The published pH stays, or else the planned one, where that gains less than a twentieth.
  * Null where the requirement does not hold as planned.
  * @param serves whether nothing else speaks against the titration at a pH: asked of the preferred first, of as few as possible
  */

@@ -92,7 +92,10 @@ export function weighed(
   };
 }
 
-/** Feasible before not; meeting the requirement before missing it; then points of the rules; then expanded uncertainty; then id. */
+/**
+ * Feasible before not; meeting the requirement before missing it; then points of the rules; of equals the one that stands without
+ * reservations; then expanded uncertainty; then id.
+ */
 export function rank(a: JudgedMethod, b: JudgedMethod): number {
   return (
     Number(a.excludedBy.length > 0) - Number(b.excludedBy.length > 0) ||
@@ -100,6 +103,7 @@ export function rank(a: JudgedMethod, b: JudgedMethod): number {
     // Methods that miss are ordered by how far they miss: the nearest is shown.
     (a.meets ? 0 : missOrder(a.expandedPercent) - missOrder(b.expandedPercent)) ||
     b.points - a.points ||
+    (a.meets ? Number(a.reservations.length > 0) - Number(b.reservations.length > 0) : 0) ||
     asPrinted(a.expandedPercent) - asPrinted(b.expandedPercent) ||
     a.method.id.localeCompare(b.method.id)
   );

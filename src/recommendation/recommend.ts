@@ -148,9 +148,11 @@ function decidedBy(first: JudgedMethod | undefined, second: JudgedMethod | undef
       ? "The first meets the requirement, the second does not."
       : first.points !== second.points
         ? `By the rules the first stands at ${signed(first.points)}, the second at ${signed(second.points)}.`
-        : first.expandedPercent.toPrecision(3) === second.expandedPercent.toPrecision(3)
-          ? `Equal in the rules and in the uncertainty (${first.expandedPercent.toPrecision(3)} %): neither is better; the order is that of their names.`
-          : `Equal in the rules; the first has the smaller expanded uncertainty (${first.expandedPercent.toPrecision(3)} % against ${second.expandedPercent.toPrecision(3)} %).`;
+        : first.meets && first.reservations.length === 0 && second.reservations.length > 0
+          ? "Equal in the rules; the first stands without reservations, the second does not."
+          : first.expandedPercent.toPrecision(3) === second.expandedPercent.toPrecision(3)
+            ? `Equal in the rules and in the uncertainty (${first.expandedPercent.toPrecision(3)} %): neither is better; the order is that of their names.`
+            : `Equal in the rules; the first has the smaller expanded uncertainty (${first.expandedPercent.toPrecision(3)} % against ${second.expandedPercent.toPrecision(3)} %).`;
   return { statement, differences };
 }
 

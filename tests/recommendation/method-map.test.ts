@@ -79,12 +79,14 @@ describe("mapIon", () => {
   });
 
   test.each(["Zn2+", "Bi3+"])("leads from each method of %s to an answer that holds the method", async (ion) => {
+    // Of two published pH values of one kind of method an answer shows the better one with the reagents of its brief.
+    const kind = (id: string): string => id.split("|").toSpliced(5, 2).join("|");
     for (const method of (await map(ion)).modes.flatMap((m) => m.methods)) {
       const answer = await engine.recommend(method.brief);
       expect(
-        answer.methods.map((m) => m.id),
+        answer.methods.map((m) => kind(m.id)),
         method.id,
-      ).toContain(method.id);
+      ).toContain(kind(method.id));
     }
   });
 
