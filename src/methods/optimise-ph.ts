@@ -50,13 +50,18 @@ const BENCH_STEP = 0.5;
 
 const round = (pH: number): number => Math.round(pH * 10) / 10;
 
-/** Whether an edge of the working range is nearer to a pH than it should be. */
-export const nearEdge = (pH: number, { low, high }: { readonly low: number; readonly high: number }): boolean =>
-  Math.min(pH - low, high - pH) < CLEAR_OF_EDGES_PH - 1e-6;
+type Edges = Readonly<Record<"low" | "high", number>>;
+/** How far the nearer edge of the working range is; negative outside. */
+const distanceOf = (pH: number, { low, high }: Edges): number => Math.min(pH - low, high - pH);
+
+/** Whether an edge of the working range is nearer to a pH than it should be, and nearer than to another pH. */
+export const nearerEdge = (pH: number, other: number, range: Edges): boolean =>
+  nearEdge(pH, range) && distanceOf(pH, range) < distanceOf(other, range) - 1e-6;
+const nearEdge = (pH: number, range: Edges): boolean => distanceOf(pH, range) < CLEAR_OF_EDGES_PH - 1e-6;
 
 /** Expanded uncertainty as the choice of a pH counts it: up to double the nearer an edge of the working range is. */
-export function weighted({ pH, expanded }: PHLook, range: { readonly low: number; readonly high: number }): number {
-  const distance = Math.min(pH - range.low, range.high - pH);
+export function weighted({ pH, expanded }: PHLook, range: Edges): number {
+  const distance = distanceOf(pH, range);
   return expanded * (1 + Math.max(0, CLEAR_OF_EDGES_PH - distance) / CLEAR_OF_EDGES_PH);
 }
 

@@ -1,7 +1,7 @@
 import type { DevelopedStage } from "../methods/develop.ts";
 import type { BufferChoice, BufferLook } from "../methods/optimise-buffer.ts";
 import type { MaskChoice } from "../methods/optimise-masks.ts";
-import { nearEdge, type PHChoice, type PHLook } from "../methods/optimise-ph.ts";
+import { nearerEdge, type PHChoice, type PHLook } from "../methods/optimise-ph.ts";
 import type { StageChoices } from "../methods/optimise.ts";
 import type { WorkingRange } from "../methods/working-range.ts";
 import type { ConditionDocument } from "./contract.ts";
@@ -46,14 +46,14 @@ export function conditionsDocument(
 }
 
 const expanded = (look: PHLook): string => `${figures(100 * look.expanded, 2)} %`;
-const at = (look: PHLook, range: WorkingRange): string =>
-  `${expanded(look)} ${nearEdge(look.pH, range) ? "near the edge at" : "at"} pH ${figures(look.pH)}`;
+const at = (look: PHLook, chosen: PHLook, range: WorkingRange): string =>
+  `${expanded(look)} ${nearerEdge(look.pH, chosen.pH, range) ? "nearer the edge at" : "at"} pH ${figures(look.pH)}`;
 
 function pHStatement({ chosen, start, why, next }: PHChoice, range: WorkingRange, stage: DevelopedStage): string {
   const works =
     range.low === range.high ? "works at this pH only" : `works from ${figures(range.low)} to ${figures(range.high)}`;
   const others = [start, ...(next === null || next.pH === start.pH ? [] : [next])].filter((l) => l.pH !== chosen.pH);
-  const beside = others.length === 0 ? "" : `, ${listed(others.map((look) => at(look, range)))}`;
+  const beside = others.length === 0 ? "" : `, ${listed(others.map((look) => at(look, chosen, range)))}`;
   const reason = {
     published: `the pH in use for ${seen(stage)}, and no other is better by a real amount`,
     "as-planned":

@@ -44,7 +44,7 @@ const words = (change: Partial<StageChoices> = {}): string[] =>
 describe("conditionsDocument", () => {
   it("gives a line to pH, buffer and each mask, with its figures", () => {
     expect(words()).toEqual([
-      "pH 5.9: works from 5.2 to 6.3; the least expanded uncertainty clear of the edges (0.31 % here, 0.44 % near the edge at pH 5.3 and 0.38 % at pH 5.5).",
+      "pH 5.9: works from 5.2 to 6.3; the least expanded uncertainty clear of the edges (0.31 % here, 0.44 % nearer the edge at pH 5.3 and 0.38 % nearer the edge at pH 5.5).",
       "hexamine 0.1 mol/L: the pH falls by 0.03 until the end point; with 0.05 mol/L the pH falls by 0.06.",
       "acetylacetone 0.05 mol/L (usual: 0.08): holds Al3+ with 1.3 in log alpha to spare; less is in no recipe.",
     ]);
