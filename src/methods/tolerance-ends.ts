@@ -3,7 +3,9 @@ import { blockingLevel } from "./blocking.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import { lyingAsHydroxideMolPerL } from "./hydroxide-lying.ts";
 import { maskAccounts } from "./mask-account.ts";
-import type { StagePlan, Task } from "./types.ts";
+import { pairHasComplex } from "./masks.ts";
+import { conversionProduct } from "./solution.ts";
+import type { MaskingStep, StagePlan, Task } from "./types.ts";
 
 /** What ends the room that a method leaves a component; "none": nothing does up to the highest level looked at. */
 export type LimitEnd =
@@ -21,14 +23,29 @@ export interface MaskCeiling {
   readonly endsBy: LimitEnd;
 }
 
-/** Two ligands a metal ion at the least, or one reductant an ion converted. */
-const AGENT_PER_ION = { empirical: 2, conversion: 1 } as const;
+/** Ligands that a masked metal ion takes at the least, and reductant that an ion takes to be converted. */
+const LIGANDS_PER_ION = 2;
+const REDUCTANT_PER_ION = 1;
 
-/** The level at which a mask that no equilibrium judges leaves its record or is used up. */
+/** How much of an agent one ion takes where no equilibrium says it; a reductant that then holds the product takes part twice. */
+function agentPerIon(step: MaskingStep, component: ComponentId, knowledge: Knowledge): number {
+  if (step.basis === "empirical") return LIGANDS_PER_ION;
+  const product = conversionProduct(knowledge, step.agent, component);
+  const ligand = knowledge.agents.get(step.agent)?.component ?? null;
+  const holds = product !== null && ligand !== null && pairHasComplex(knowledge, product, ligand);
+  return REDUCTANT_PER_ION + (holds ? LIGANDS_PER_ION : 0);
+}
+
+/**
+ * The level at which a mask that no equilibrium judges is used up, or any mask leaves a record that counts. It does where no constants stand for
+ * the mask, and where constants cannot tell: how fast and how dark a precipitate forms, and what keeps a mask from being a whole one.
+ * @param presentMolPerL a sample beyond the record already has no limit by it, unless nothing but the record stands for the mask
+ */
 export function maskCeiling(
   task: Task,
   plans: readonly StagePlan[],
   component: ComponentId,
+  presentMolPerL: number,
   knowledge: Knowledge,
 ): MaskCeiling {
   const perSample = task.portion.titrationVolumeML / task.portion.volumeML;
@@ -38,13 +55,16 @@ export function maskCeiling(
     if (molPerL < ceiling.molPerL) ceiling = { molPerL, endsBy };
   };
   for (const plan of plans)
-    for (const { agent, masks, basis, molPerL } of plan.masking) {
-      if (basis === "equilibrium" || agent === "hydroxide" || !masks.includes(component)) continue;
-      lower(molPerL / AGENT_PER_ION[basis], "masking-used-up");
-      if (basis === "empirical")
-        for (const record of knowledge.masking)
-          if (record.agent === agent && record.ion === component && record.upToMolPerL !== null)
-            lower(record.upToMolPerL, "empirical-record");
+    for (const step of plan.masking) {
+      const { agent, masks, basis, via, molPerL } = step;
+      if (agent === "hydroxide" || !masks.includes(component)) continue;
+      if (basis !== "equilibrium") lower(molPerL / agentPerIon(step, component, knowledge), "masking-used-up");
+      for (const record of knowledge.masking) {
+        if (record.agent !== agent || record.ion !== component || record.upToMolPerL === null) continue;
+        const counts = basis !== "equilibrium" || via === "precipitation" || record.effect === "partial";
+        const left = basis !== "empirical" && presentMolPerL > record.upToMolPerL * perSample;
+        if (counts && !left) lower(record.upToMolPerL, "empirical-record");
+      }
     }
   return ceiling;
 }
@@ -57,7 +77,7 @@ export function empiricalCeiling(
   knowledge: Knowledge,
 ): number {
   const onRecord = plans.map((p) => ({ ...p, masking: p.masking.filter((m) => m.basis === "empirical") }));
-  return maskCeiling(task, onRecord, component, knowledge).molPerL;
+  return maskCeiling(task, onRecord, component, 0, knowledge).molPerL;
 }
 
 /** Share of an agent that metals hold beyond which it counts as used up: the rest no longer holds what comes. */

@@ -209,7 +209,7 @@ export function toleranceLimits(
     });
     const { mode } = method;
     const masked = limitOf(task, { mode, plans, asProposed: true }, component, presentMolPerL, knowledge);
-    const ceiling = maskCeiling(task, plans, component, knowledge);
+    const ceiling = maskCeiling(task, plans, component, presentMolPerL, knowledge);
     const rows = [row(ceiling.molPerL < masked.molPerL ? ceiling : masked, true)];
     if (plans.some((p) => p.masking.some((m) => m.masks.includes(component)))) {
       const bare = unmasked(task, plans, component);
