@@ -5,9 +5,16 @@ import { coverageCampaign } from "./coverage.ts";
 import { metamorphicCampaign } from "./metamorphic.ts";
 import { perturbationCampaign } from "./perturbation.ts";
 import { solverCampaign } from "./solver.ts";
+import { turningCampaign } from "./turning-points.ts";
 
 /** The campaigns there are; one file each, listed here. */
-const campaigns: readonly Campaign[] = [solverCampaign, metamorphicCampaign, perturbationCampaign, coverageCampaign];
+const campaigns: readonly Campaign[] = [
+  solverCampaign,
+  metamorphicCampaign,
+  perturbationCampaign,
+  coverageCampaign,
+  turningCampaign,
+];
 
 function refuse(why: string): never {
   console.error(`${why}\nusage: npm run campaign -- ${campaigns.map((c) => c.name).join(" | ")} [options]`);
