@@ -118,6 +118,19 @@ function summed(terms: BudgetTerm[], biasFraction: number): Budget {
   return { terms, combined, expanded: COVERAGE_FACTOR * combined + Math.abs(biasFraction) };
 }
 
+/** The largest part of an expanded uncertainty: the bias, or a term of the budget. */
+export function largestOf({
+  biasFraction,
+  budget,
+}: {
+  readonly biasFraction: number;
+  readonly budget: Budget;
+}): BudgetTerm {
+  const bias = { source: "bias", relative: Math.abs(biasFraction) };
+  const term = budget.terms[0] ?? bias;
+  return bias.relative > COVERAGE_FACTOR * term.relative ? bias : term;
+}
+
 /** Terms that two titrations of separate portions have in common: one pipette, one room, and one bottle where they have one titrant. */
 export function commonTerms(whole: StageEvaluation, part: StageEvaluation): ReadonlySet<string> {
   const [a, b] = [whole.model.plan.titrant, part.model.plan.titrant];

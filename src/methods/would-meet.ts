@@ -4,7 +4,7 @@ import type { StageEvaluation } from "./evaluate-stage.ts";
 import type { EvaluatedMethod } from "./methods.ts";
 import { withExcess } from "./plan-excess.ts";
 import type { StagePlan, Task } from "./types.ts";
-import { combineDifference, COVERAGE_FACTOR, stageBudget, type Budget } from "./uncertainty.ts";
+import { combineDifference, largestOf, stageBudget, type Budget } from "./uncertainty.ts";
 
 /** Burettes, pipettes and strengths of titrant that a laboratory has or makes up (common practice). */
 const BURETTES_ML = [10, 25, 50];
@@ -13,6 +13,23 @@ const STRENGTHS_MOL_PER_L = [0.002, 0.005, 0.01, 0.02, 0.05, 0.1];
 /** A titre is to be more than this part of the burette, and no more than the burette, or it is read poorly or refilled. */
 const LEAST_OF_BURETTE = 0.3;
 const MOST_OF_BURETTE = 0.98;
+
+interface Ware {
+  readonly portionML: number;
+  readonly titrantMolPerL: number;
+  readonly buretteML: number;
+}
+
+const WARE: readonly Ware[] = PORTIONS_ML.flatMap((portionML) =>
+  STRENGTHS_MOL_PER_L.flatMap((titrantMolPerL) =>
+    BURETTES_ML.map((buretteML) => ({ portionML, titrantMolPerL, buretteML })),
+  ),
+);
+const FOR_TRACES: Ware = {
+  portionML: Math.max(...PORTIONS_ML),
+  titrantMolPerL: Math.min(...STRENGTHS_MOL_PER_L),
+  buretteML: Math.min(...BURETTES_ML),
+};
 
 /** Other ware and strength for the same method, and what the same evaluation says of it. */
 export interface OtherWare {
@@ -26,16 +43,10 @@ export interface OtherWare {
   readonly largest: { readonly source: string; readonly relative: number };
 }
 
-interface Ware {
-  readonly portionML: number;
-  readonly titrantMolPerL: number;
-  readonly buretteML: number;
-}
-
 /**
  * What burette, portion and strength of titrant would let a method that misses the requirement meet it: of those that do, the one that
  * changes least; where none does, the one that comes nearest. Null for a method whose titrations follow one another in one vessel,
- * and where no other ware fits the sample.
+ * and where the titration fails with all of it.
  */
 export function wouldMeet(task: Task, method: EvaluatedMethod, knowledge: Knowledge): OtherWare | null {
   if (method.mode === "successive") return null;
@@ -60,16 +71,15 @@ export function wouldMeet(task: Task, method: EvaluatedMethod, knowledge: Knowle
   return best ?? null;
 }
 
-/** Portions, strengths and burettes with which every titre of the method is read well. */
+/** Portions, strengths and burettes with which every titre of the method is read well; where none is, what gives a trace its largest titre. */
 function fitting(task: Task, method: EvaluatedMethod): Ware[] {
-  return PORTIONS_ML.flatMap((portionML) =>
-    STRENGTHS_MOL_PER_L.flatMap((titrantMolPerL) => {
-      const expected = method.stages.map((s) => titreAt(task, s.evaluation, portionML, titrantMolPerL));
-      return BURETTES_ML.filter((mL) =>
-        expected.every((titre) => titre >= LEAST_OF_BURETTE * mL && titre <= MOST_OF_BURETTE * mL),
-      ).map((buretteML) => ({ portionML, titrantMolPerL, buretteML }));
-    }),
-  );
+  const within = (ware: Ware, least: number): boolean =>
+    method.stages.every((s) => {
+      const titre = titreAt(task, s.evaluation, ware.portionML, ware.titrantMolPerL);
+      return titre >= least * ware.buretteML && titre <= MOST_OF_BURETTE * ware.buretteML;
+    });
+  const well = WARE.filter((ware) => within(ware, LEAST_OF_BURETTE));
+  return well.length > 0 ? well : [FOR_TRACES].filter((ware) => within(ware, 0));
 }
 
 /** The titre that another portion and strength would give, mL: it goes with the amount over the strength. */
@@ -104,15 +114,12 @@ function evaluated(
   if (method.mode === "difference" && first && second)
     results.splice(0, method.results.length === 1 ? 2 : 1, combineDifference(read, first, second, knowledge));
   const worst = results.sort((a, b) => b.budget.expanded - a.budget.expanded)[0]!;
-  const { expanded, terms } = worst.budget;
-  const bias = { source: "bias", relative: Math.abs(worst.biasFraction) };
-  const term = terms[0]!;
   return {
     ...ware,
-    meets: 100 * expanded <= task.requirementPercent,
+    meets: 100 * worst.budget.expanded <= task.requirementPercent,
     titreML: first!.endPointML,
-    expanded,
-    largest: bias.relative > COVERAGE_FACTOR * term.relative ? bias : term,
+    expanded: worst.budget.expanded,
+    largest: largestOf(worst),
   };
 }
 

@@ -2,7 +2,7 @@ import type { Knowledge } from "../constants/knowledge.ts";
 import type { EvaluatedMethod, MethodResult } from "../methods/methods.ts";
 import { resultCauses, resultTable } from "../methods/result-account.ts";
 import type { Task } from "../methods/types.ts";
-import { COVERAGE_FACTOR } from "../methods/uncertainty.ts";
+import { COVERAGE_FACTOR, largestOf } from "../methods/uncertainty.ts";
 import { wouldMeet } from "../methods/would-meet.ts";
 import type { RecommendedMethod } from "./contract.ts";
 import { percentOf, signif } from "./figures-shown.ts";
@@ -90,28 +90,39 @@ function notCounted(task: Task, { stages }: EvaluatedMethod): string[] {
   ];
 }
 
-/** What would meet the requirement with the same method, or what stands in the way. Null where it is met, or where nothing else can be tried. */
+/** What would meet the requirement with the same method, or what stands in the way; null where there is nothing to say of a method that gave no result. */
 export function wouldMeetDocument(
   task: Task,
   method: EvaluatedMethod,
+  worst: MethodResult,
   knowledge: Knowledge,
 ): RecommendedMethod["wouldMeet"] {
+  if (!Number.isFinite(worst.budget.expanded)) return null;
   const found = wouldMeet(task, method, knowledge);
-  if (found === null) return null;
+  const { source, relative } = found?.largest ?? largestOf(worst);
+  const largest = { source, percent: signif(100 * relative, 3) };
+  const share = `The largest part is ${source === "bias" ? "the bias" : `the term "${source}"`}, ${largest.percent} %.`;
+  if (found === null) {
+    const why =
+      method.mode === "successive"
+        ? "Other ware is not looked at where titrations follow one another in one vessel."
+        : "With no usual burette, portion and strength of titrant does this method come to a result.";
+    return { meets: false, with: null, largest, statement: `${why} ${share}` };
+  }
   const percent = signif(100 * found.expanded, 3);
-  const largest = { source: found.largest.source, percent: signif(100 * found.largest.relative, 3) };
   const ware = `a burette of ${found.buretteML} mL, a portion of ${found.portionML} mL and titrant of ${found.titrantMolPerL} mol/L`;
-  const what = largest.source === "bias" ? "the bias" : `the term "${largest.source}"`;
   return {
     meets: found.meets,
-    buretteML: found.buretteML,
-    portionML: found.portionML,
-    titrantMolPerL: found.titrantMolPerL,
-    titreML: signif(found.titreML, 4),
-    relativeExpandedUncertaintyPercent: percent,
+    with: {
+      buretteML: found.buretteML,
+      portionML: found.portionML,
+      titrantMolPerL: found.titrantMolPerL,
+      titreML: signif(found.titreML, 4),
+      relativeExpandedUncertaintyPercent: percent,
+    },
     largest,
     statement: found.meets
       ? `The same method meets the requirement with ${ware}: ${percent} % is predicted.`
-      : `No usual burette, portion and strength of titrant meets the requirement with this method; the nearest is ${ware}, with ${percent} %. The largest part is ${what}, ${largest.percent} %.`,
+      : `No usual burette, portion and strength of titrant meets the requirement with this method; the nearest is ${ware}, with ${percent} %. ${share}`,
   };
 }

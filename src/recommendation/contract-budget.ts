@@ -53,11 +53,16 @@ export const budgetSchema = z.strictObject({
 /** Other ware and strength for the same method: what would meet the requirement, or what comes nearest. */
 export const wouldMeetSchema = z.strictObject({
   meets: z.boolean(),
-  buretteML: level,
-  portionML: level,
-  titrantMolPerL: level,
-  titreML: level,
-  relativeExpandedUncertaintyPercent: level,
+  // null where no other ware was found to try
+  with: z
+    .strictObject({
+      buretteML: level,
+      portionML: level,
+      titrantMolPerL: level,
+      titreML: level,
+      relativeExpandedUncertaintyPercent: level,
+    })
+    .nullable(),
   largest: z.strictObject({ source: text, percent: level }), // "bias" or a term of the budget
   statement: text,
 });

@@ -255,7 +255,7 @@ export function methodDocument(
     tolerance: tolerance.map((limit) => limitRow(task, limit, knowledge)),
     uncertaintyBudget: worst.budget.terms.map((t) => ({ source: t.source, percent: signif(100 * t.relative, 3) })),
     budget: budgetDocument(task, method, worst, knowledge),
-    wouldMeet: rankNumber === 1 && !meets ? wouldMeetDocument(task, method, knowledge) : null,
+    wouldMeet: rankNumber === 1 && !meets ? wouldMeetDocument(task, method, worst, knowledge) : null,
     workingConditions: {
       ionicStrengthMolPerL: signif(head.evaluation.model.ionicStrengthMolPerL, 4),
       temperatureC: task.temperatureC,

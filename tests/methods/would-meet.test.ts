@@ -44,6 +44,13 @@ describe("wouldMeet", () => {
     expect(found.titreML).toBeGreaterThan(0.3 * found.buretteML);
     expect(found.titreML).toBeLessThan(found.buretteML);
   });
+  it("tries the largest titre that a trace can have where none is read well", () => {
+    const trace = inventedTask({ "Zn2+": 0.00001 }, {}, { requirementPercent: 1 });
+    const weak = inventedPlan({ titrant: { id: "EDTA", molPerL: 0.002 } });
+    const found = wouldMeet(trace, methodOf(trace, weak), KNOWLEDGE)!;
+    expect(found).toMatchObject({ meets: false, buretteML: 10, portionML: 100, titrantMolPerL: 0.002 });
+    expect(found.titreML).toBeLessThan(1);
+  });
   it("says that nothing does, and names the largest part: the bias where an interferent is titrated whole", () => {
     const task = asking(0.3, { "Cd2+": 0.00006 });
     const found = wouldMeet(task, methodOf(task, plan), KNOWLEDGE)!;
