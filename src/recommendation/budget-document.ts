@@ -98,7 +98,8 @@ export function wouldMeetDocument(
   knowledge: Knowledge,
 ): RecommendedMethod["wouldMeet"] {
   if (!Number.isFinite(worst.budget.expanded)) return null;
-  const found = wouldMeet(task, method, knowledge);
+  const tried = wouldMeet(task, method, knowledge);
+  const found = tried !== null && tried.expanded < worst.budget.expanded ? tried : null;
   const { source, relative } = found?.largest ?? largestOf(worst);
   const largest = { source, percent: signif(100 * relative, 3) };
   const share = `The largest part is ${source === "bias" ? "the bias" : `the term "${source}"`}, ${largest.percent} %.`;
@@ -106,7 +107,7 @@ export function wouldMeetDocument(
     const why =
       method.mode === "successive"
         ? "Other ware is not looked at where titrations follow one another in one vessel."
-        : "With no usual burette, portion and strength of titrant does this method come to a result.";
+        : "No usual burette, portion and strength of titrant does better with this method.";
     return { meets: false, with: null, largest, statement: `${why} ${share}` };
   }
   const percent = signif(100 * found.expanded, 3);
