@@ -5,7 +5,14 @@ import { runCommandLine } from "./cli/run-command-line.ts";
 import type { Knowledge } from "./constants/knowledge.ts";
 import { AppError } from "./errors.ts";
 import type { RuleBase, RuleRunner } from "./inference/index.ts";
-import type { IonMap, MethodLimits, MethodMap, Recommendation, TurningPoints } from "./recommendation/contract.ts";
+import type {
+  IonMap,
+  MethodLimits,
+  MethodMap,
+  Recommendation,
+  Robustness,
+  TurningPoints,
+} from "./recommendation/contract.ts";
 import type { WebServices } from "./web/index.ts";
 
 // Composition root: the only place that knows every layer. Modules are loaded when a command needs them, so that `recommend` starts without the web server.
@@ -64,6 +71,7 @@ function doors(io: CommandIO): Doors {
     methodMap: async (ion) => methodMap(ion, await openEngine()),
     limits: async (brief, method, also) => methodLimits(brief, method, also, await openEngine()),
     turningPoints: async (brief, watch) => findTurningPoints(brief, watch, await openEngine()),
+    robustness: async (brief, options, watch) => drawRobustness(brief, options, watch, await openEngine()),
     knowledge: async () => summary(await openEngine()),
     checkRules: async (folder) => {
       const { checkRules } = await import("./inference/index.ts");
@@ -109,6 +117,28 @@ async function findTurningPoints(
   }
 }
 
+/** Draws of one method of the answer to a brief, made in two threads of their own. */
+async function drawRobustness(
+  brief: unknown,
+  options: Parameters<Doors["robustness"]>[1],
+  watch: Parameters<Doors["robustness"]>[2],
+  { recommend, knowledge }: Engine,
+): Promise<Robustness | null> {
+  const [{ robustnessWork }, { createWorkerPool }, { askPool, runRobustness }] = await Promise.all([
+    import("./recommendation/robustness.ts"),
+    import("./engine/worker-pool.ts"),
+    import("./engine/robustness-service.ts"),
+  ]);
+  const document = await recommend(brief);
+  const asked = { document, ...robustnessWork(document, options.method, options, knowledge) };
+  const pool = createWorkerPool({ data: { hash: knowledge.hash } });
+  try {
+    return await runRobustness(asked, askPool(pool, 2), watch, knowledge);
+  } finally {
+    await pool.close();
+  }
+}
+
 /** The method map of one ion, or of all, worked out one after the other. */
 async function methodMap(ion: string | null, { knowledge, rules }: Engine): Promise<MethodMap> {
   const { mapIon, mapIons, SEVERAL_ANALYTES } = await import("./recommendation/method-map.ts");
@@ -141,6 +171,8 @@ export async function openServices(
     pools,
     maps,
     turns,
+    { robustnessWork },
+    draws,
   ] = await Promise.all([
     openEngine(),
     import("./inference/index.ts"),
@@ -151,10 +183,13 @@ export async function openServices(
     import("./engine/worker-pool.ts"),
     import("./engine/method-map-service.ts"),
     import("./engine/turning-point-service.ts"),
+    import("./recommendation/robustness.ts"),
+    import("./engine/robustness-service.ts"),
   ]);
   const { knowledge, ruleBase } = engine;
   const pool = pools.createWorkerPool({ data: { hash: knowledge.hash } });
   const turning = turns.createTurningPoints(pool, knowledge, log);
+  const drawn = draws.createRobustness(pool, knowledge, log);
   return {
     services: {
       knowledge,
@@ -168,6 +203,11 @@ export async function openServices(
       limits: async (document, methodId, also) => {
         const asked = limits.limitsWork(document, methodId, also, knowledge);
         return limits.limitsDocument(asked, await pool.ask("limits", asked.work), knowledge);
+      },
+      robustness: {
+        ...drawn,
+        start: ({ document, method, ...options }) =>
+          drawn.start({ document, ...robustnessWork(document, method, options, knowledge) }),
       },
       turningPoints: { ...turning, start: (brief) => turning.start(readBrief(brief, knowledge)) },
       methodMap: maps.createMethodMap(knowledge, (ion) => pool.ask("mapIon", ion), log, options.mapOnly),

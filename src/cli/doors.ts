@@ -1,5 +1,5 @@
 import type { CurveAnswer, EquilibriumAnswer } from "../recommendation/calculate.ts";
-import type { MethodLimits, MethodMap, Recommendation, TurningPoints } from "../recommendation/contract.ts";
+import type { MethodLimits, MethodMap, Recommendation, Robustness, TurningPoints } from "../recommendation/contract.ts";
 
 /** What the knowledge base holds, counted, and what it is known to lack. */
 export interface KnowledgeSummary {
@@ -29,6 +29,15 @@ export interface Doors {
     brief: unknown,
     watch: { readonly signal: AbortSignal; readonly report: (soFar: TurningPoints) => void },
   ) => Promise<TurningPoints>;
+  /** Draws a method of the answer (id or rank; undefined: the first); gives what it has when it is stopped, null where that is nothing. */
+  readonly robustness: (
+    brief: unknown,
+    options: { readonly method?: string; readonly draws?: number; readonly seed?: number },
+    watch: {
+      readonly signal: AbortSignal;
+      readonly report: (done: number, total: number) => void;
+    },
+  ) => Promise<Robustness | null>;
   readonly knowledge: () => Promise<KnowledgeSummary>;
   /** `folder` null means the project's own rules. */
   readonly checkRules: (folder: string | null) => Promise<RuleCheck>;

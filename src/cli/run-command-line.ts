@@ -3,6 +3,7 @@ import { AppError, InputError } from "../errors.ts";
 import type { TurningPoints } from "../recommendation/contract.ts";
 import { limitsText } from "../recommendation/limits-text.ts";
 import { methodMapText } from "../recommendation/method-map-text.ts";
+import { robustnessText } from "../recommendation/robustness-text.ts";
 import { recommendationText } from "../recommendation/text.ts";
 import { turningPointsText, turningProgress } from "../recommendation/turning-points-text.ts";
 import type { CommandIO, Doors, KnowledgeSummary } from "./doors.ts";
@@ -101,6 +102,35 @@ function commands(io: CommandIO, doors: Doors, exit: (code: number) => void): Co
       }
     });
   program
+    .command("robustness")
+    .description(
+      "draw a method many times with everything it rests on only known so well: how often it meets the requirement, and what matters; Ctrl-C stops it and prints what it has",
+    )
+    .argument("<brief>", 'brief as a JSON file; "-" reads standard input')
+    .option("--method <which>", "id or rank of a method of the answer (default: the first)")
+    .option("--draws <number>", "how many draws (default: 1000)")
+    .option("--seed <number>", "the same seed gives the same figures (default: 1)")
+    .option("--json", "print it as JSON")
+    .action(async (file: string, options: RobustnessFlags) => {
+      const stop = new AbortController();
+      const unwatch = io.onStop(() => stop.abort());
+      try {
+        const report = atMostEvery(REPORT_MS, ([done, total]: readonly [number, number]) =>
+          io.err(`${done} of ${total} draws and rows of the map\n`),
+        );
+        const asked = robustnessOptions(options);
+        const found = await doors.robustness(await read(file), asked, {
+          signal: stop.signal,
+          report: (done, total) => report([done, total]),
+        });
+        if (found === null) io.err("stopped before the first draws\n");
+        else if (options.json === true) json(found);
+        else io.out(robustnessText(found));
+      } finally {
+        unwatch();
+      }
+    });
+  program
     .command("equilibrium")
     .description("solve one solution at fixed acidity; prints JSON")
     .argument("<file>", 'question as a JSON file; "-" reads standard input')
@@ -151,6 +181,26 @@ function atMostEvery<T>(milliseconds: number, tell: (what: T) => void): (what: T
     if (Date.now() - told < milliseconds) return;
     told = Date.now();
     tell(what);
+  };
+}
+
+interface RobustnessFlags {
+  readonly method?: string;
+  readonly draws?: string;
+  readonly seed?: string;
+  readonly json?: boolean;
+}
+
+/** Numbers of the robustness command; what is no whole number is refused with its name. */
+function robustnessOptions({ method, draws, seed }: RobustnessFlags): Parameters<Doors["robustness"]>[1] {
+  const whole = (name: string, text: string): number => {
+    if (/^\d{1,15}$/.test(text)) return Number(text);
+    throw new InputError([{ path: name, expected: "a whole number", found: JSON.stringify(text) }]);
+  };
+  return {
+    ...(method === undefined ? {} : { method }),
+    ...(draws === undefined ? {} : { draws: whole("--draws", draws) }),
+    ...(seed === undefined ? {} : { seed: whole("--seed", seed) }),
   };
 }
 

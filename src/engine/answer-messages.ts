@@ -3,6 +3,7 @@ import { openEngine, type Engine } from "../main.ts";
 import { workOutLimits } from "../recommendation/method-limits.ts";
 import { mapIon } from "../recommendation/method-map.ts";
 import { recommend } from "../recommendation/recommend.ts";
+import { workOutDraws, workOutMapRow } from "../recommendation/robustness.ts";
 import { standingOf } from "../recommendation/standing.ts";
 import type { JobKind, Jobs, Question, Reply } from "./messages.ts";
 
@@ -14,6 +15,8 @@ const ANSWERS: {
   mapIon: (ion, { knowledge, rules }) => mapIon(ion, knowledge, rules),
   standing: (task, { knowledge, rules }) => standingOf(task, knowledge, rules),
   limits: (work, { knowledge }) => workOutLimits(work, knowledge),
+  draws: (asked, { knowledge }) => workOutDraws(asked, knowledge),
+  mapRow: (asked, { knowledge }) => workOutMapRow(asked, knowledge),
 };
 
 /** Loads the engine in this thread and answers one question after the other. Throws where the knowledge is not that of the thread that asks. */

@@ -2,6 +2,7 @@ import type { Recommendation, IonMap } from "../recommendation/contract.ts";
 import type { ToleranceLimit } from "../methods/tolerance.ts";
 import type { Task } from "../methods/types.ts";
 import type { LimitsWork } from "../recommendation/method-limits.ts";
+import type { DrawsAnswer, DrawsAsked, MapRowAnswer, RobustnessWork } from "../recommendation/robustness.ts";
 import type { StandingAnswer } from "../recommendation/standing.ts";
 
 /** What a worker can be asked, and what it answers. Everything in it can be copied between threads. */
@@ -10,6 +11,11 @@ export interface Jobs {
   readonly mapIon: { readonly asks: string; readonly answers: IonMap };
   readonly standing: { readonly asks: Task; readonly answers: StandingAnswer };
   readonly limits: { readonly asks: LimitsWork; readonly answers: readonly ToleranceLimit[] };
+  readonly draws: { readonly asks: DrawsAsked; readonly answers: DrawsAnswer };
+  readonly mapRow: {
+    readonly asks: { readonly work: RobustnessWork; readonly row: number };
+    readonly answers: MapRowAnswer;
+  };
 }
 
 export type JobKind = keyof Jobs;

@@ -13,6 +13,7 @@ import { knowledgePage } from "./pages/knowledge-page.ts";
 import { limitsPage } from "./pages/limits-page.ts";
 import { methodMapPage } from "./pages/method-map-page.ts";
 import { recommendationPage } from "./pages/recommendation-page.ts";
+import { robustnessPage } from "./pages/robustness-page.ts";
 import { rulesPage } from "./pages/rules-page.ts";
 import { turningPointsPage } from "./pages/turning-points-page.ts";
 import { STYLESHEET } from "./pages/shell.ts";
@@ -54,13 +55,14 @@ export function createApp(services: WebServices): Express {
     });
   });
   app.use("/api", express.json({ limit: BODY_LIMIT, type: () => true, strict: false }));
-  for (const path of ["/recommendation", "/turning-points"])
+  for (const path of ["/recommendation", "/robustness", "/turning-points"])
     app.use(path, express.urlencoded({ limit: BODY_LIMIT, extended: false, parameterLimit: 2000 }));
   app.use(apiRoutes(services, answers));
   app.use(briefPage(services, names));
   app.use(recommendationPage(services, names, answers));
   app.use(limitsPage(services, names, answers));
   app.use(turningPointsPage(services, names));
+  app.use(robustnessPage(services, names, answers));
   app.use(methodMapPage(services, names));
   app.use(constantsPage(services, names));
   app.use(dataPages(services, names));

@@ -1,6 +1,13 @@
 import type { Knowledge } from "../constants/knowledge.ts";
 import type { StageSeries } from "../recommendation/calculate-series.ts";
-import type { Brief, MethodLimits, MethodMap, Recommendation, TurningPoints } from "../recommendation/contract.ts";
+import type {
+  Brief,
+  MethodLimits,
+  MethodMap,
+  Recommendation,
+  Robustness,
+  TurningPoints,
+} from "../recommendation/contract.ts";
 
 /** A condition of a rule, as the rule layer hands it over after its checks. */
 export type RuleCondition =
@@ -54,6 +61,14 @@ export interface Jobs<Asks, Result> {
   readonly stop: (id: string) => boolean;
 }
 
+/** Which method of an answer is drawn, how often, and from which seed. */
+export interface RobustnessAsk {
+  readonly document: Recommendation;
+  readonly method?: string | undefined; // id or rank; the first where nothing is said
+  readonly draws?: number | undefined;
+  readonly seed?: number | undefined;
+}
+
 /** Everything the pages need from the layers below; the composition root supplies it. */
 export interface WebServices {
   readonly knowledge: Knowledge;
@@ -73,6 +88,8 @@ export interface WebServices {
     methodId: string | undefined,
     also: readonly string[],
   ) => Promise<MethodLimits>;
+  /** What becomes of a method of an answer when everything is only known so well: a long calculation. Throws InputError where the answer has no such method. */
+  readonly robustness: Jobs<RobustnessAsk, Robustness>;
   /** The smallest changes of a brief that change its answer: a long calculation. Throws InputError with one fault per error of the brief. */
   readonly turningPoints: Jobs<unknown, TurningPoints>;
   /** The method map as far as it is worked out; the first call sets the work going. */

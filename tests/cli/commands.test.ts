@@ -15,6 +15,7 @@ const NO_DOORS: Doors = {
   methodMap: unused,
   limits: unused,
   turningPoints: unused,
+  robustness: unused,
   knowledge: unused,
   checkRules: unused,
   serve: unused,

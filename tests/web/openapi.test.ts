@@ -24,7 +24,7 @@ test("the description is OpenAPI 3.1 and each reference in it leads to a schema"
 
 test("each door says what it answers when the question is faulty", () => {
   const questions = ["/api/recommendations", "/api/equilibrium", "/api/curve", "/api/limits"];
-  const long = ["/api/turning-points", "/api/turning-points/{id}"];
+  const long = ["/api/turning-points", "/api/robustness"].flatMap((path) => [path, `${path}/{id}`]);
   expect(Object.keys(document.paths).sort()).toEqual([...questions, ...long, "/api/method-map"].sort());
   const begun = Object.keys(document.paths["/api/turning-points"]?.post.responses ?? {});
   expect(begun).toEqual(["200", "202", "400", "413", "422", "500", "503"]);

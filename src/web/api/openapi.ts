@@ -5,6 +5,8 @@ import {
   methodLimitsSchema,
   methodMapSchema,
   recommendationSchema,
+  robustnessQuestionSchema,
+  robustnessSchema,
   turningPointsSchema,
 } from "../../recommendation/contract.ts";
 import { curveRequestSchema, equilibriumRequestSchema } from "../../recommendation/calculate.ts";
@@ -38,36 +40,42 @@ const jobSchema = (result: z.ZodType): z.ZodType =>
     message: z.string().nullable(),
   });
 
-const jobAnswers = {
-  "200": { description: "It has ended: done, stopped or failed.", content: json(ref("TurningPointsJob")) },
-  "202": { description: "It runs; what is found so far. Ask again by its id.", content: json(ref("TurningPointsJob")) },
-};
+const jobAnswers = (kind: string): object => ({
+  "200": { description: "It has ended: done, stopped or failed.", content: json(ref(kind)) },
+  "202": { description: "It runs; what is found so far. Ask again by its id.", content: json(ref(kind)) },
+});
 const noJob = { description: "No calculation of this id is kept.", content: json(ref("Error")) };
 const jobId = { name: "id", in: "path", required: true, schema: { type: "string" } };
 
-const turningPointsStart = {
-  post: {
-    operationId: "startTurningPoints",
-    summary:
-      "Begins the search for the smallest single changes of a brief that change its first method or its verdict, or finds it: the same brief has the same id.",
-    requestBody: { required: true, content: json(ref("Brief")) },
-    responses: { ...jobAnswers, ...failures },
-  },
-};
-const turningPointsJob = {
-  get: {
-    operationId: "turningPoints",
-    summary: "Turning points as far as they are found.",
+/** The two paths of a long calculation: begun, then asked for and stopped by its id. */
+function longCalculation(
+  path: string,
+  name: string,
+  asks: string,
+  words: { readonly start: string; readonly look: string; readonly stop: string },
+): object {
+  const answers = jobAnswers(`${name}Job`);
+  const byId = (operationId: string, summary: string): object => ({
+    operationId,
+    summary,
     parameters: [jobId],
-    responses: { ...jobAnswers, "404": noJob },
-  },
-  delete: {
-    operationId: "stopTurningPoints",
-    summary: "Stops the search; what it has found so far stays.",
-    parameters: [jobId],
-    responses: { ...jobAnswers, "404": noJob },
-  },
-};
+    responses: { ...answers, "404": noJob },
+  });
+  return {
+    [path]: {
+      post: {
+        operationId: `start${name}`,
+        summary: words.start,
+        requestBody: { required: true, content: json(ref(asks)) },
+        responses: { ...answers, ...failures },
+      },
+    },
+    [`${path}/{id}`]: {
+      get: byId(`${name.charAt(0).toLowerCase()}${name.slice(1)}`, words.look),
+      delete: byId(`stop${name}`, words.stop),
+    },
+  };
+}
 
 const operation = (id: string, summary: string, body: string, answer: object): object => ({
   post: {
@@ -115,8 +123,18 @@ export function openApiDocument(version: string): object {
         "LimitsQuestion",
         ref("MethodLimits"),
       ),
-      "/api/turning-points": turningPointsStart,
-      "/api/turning-points/{id}": turningPointsJob,
+      ...longCalculation("/api/turning-points", "TurningPoints", "Brief", {
+        start:
+          "Begins the search for the smallest single changes of a brief that change its first method or its verdict, or finds it: the same brief has the same id.",
+        look: "Turning points as far as they are found.",
+        stop: "Stops the search; what it has found so far stays.",
+      }),
+      ...longCalculation("/api/robustness", "Robustness", "RobustnessQuestion", {
+        start:
+          "Begins the draws of a method over what is not known exactly, or finds them: the same question has the same id, the same seed the same figures.",
+        look: "The draws as far as they are made.",
+        stop: "Stops the draws; what they have shown so far stays.",
+      }),
       "/api/equilibrium": operation(
         "equilibrium",
         "Solves a solution at a fixed acidity: species, side-reaction coefficients, conditional constants, solids.",
@@ -136,6 +154,9 @@ export function openApiDocument(version: string): object {
         MethodLimits: output(methodLimitsSchema),
         TurningPoints: output(turningPointsSchema),
         TurningPointsJob: output(jobSchema(turningPointsSchema)),
+        RobustnessQuestion: input(robustnessQuestionSchema),
+        Robustness: output(robustnessSchema),
+        RobustnessJob: output(jobSchema(robustnessSchema)),
         EquilibriumQuestion: input(equilibriumRequestSchema),
         CurveQuestion: input(curveRequestSchema),
         Faults: output(faultsSchema),

@@ -139,6 +139,7 @@ function methodView(
     budget: budgetView(method, names),
     wouldMeet: method.wouldMeet === null ? null : names.set(method.wouldMeet.statement),
     room: roomViews(method.tolerance, names),
+    robustnessHref: `/robustness?${link}&method=${encodeURIComponent(method.id)}`,
     limitsHref: `/limits?${link}&method=${encodeURIComponent(method.id)}`,
     interferents: method.stages.flatMap((stage, i) =>
       stage.interferents.map((x) => ({
