@@ -14,7 +14,7 @@ export interface IonicStrength {
  */
 export function ionicStrengthOf(
   system: PreparedSystem,
-  result: SolveResult,
+  result: Pick<SolveResult, "speciesMolPerL">,
   inertIonsMolPerL: number,
   inertChargeMolPerL = 0,
 ): IonicStrength {

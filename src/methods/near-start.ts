@@ -2,10 +2,10 @@ import { ABSENT_LN_FREE } from "../chemistry/solve-equilibrium.ts";
 import type { PreparedSystem, SolveResult } from "../chemistry/types.ts";
 import type { Task } from "./types.ts";
 
-/** A solved vessel to start another from: ln free concentrations by column, and which solids lie. */
+/** A solved vessel to start another from: ln free concentrations by column, and the ids of the solids that lie. */
 export interface NearStart {
-  readonly start: Float64Array;
-  readonly activeSolids: readonly number[];
+  readonly lnFree: Float64Array;
+  readonly solids: readonly string[];
 }
 
 /** Where a component that was not there before begins: nearly all of it bound, as of titrant. */
@@ -18,28 +18,34 @@ export function withNewcomers(lnFree: Float64Array, totals: Float64Array): Float
   return lnFree;
 }
 
+/** What a solved vessel is as a start for the next. */
+export function startFrom(
+  system: PreparedSystem,
+  solved: Pick<SolveResult, "lnFree" | "solidsMolPerL">,
+  totals: Float64Array,
+): NearStart {
+  const amounts = solved.solidsMolPerL;
+  return {
+    lnFree: withNewcomers(solved.lnFree.slice(), totals),
+    solids: amounts.some((amount) => amount > 0)
+      ? system.solids.flatMap((s, i) => (amounts[i]! > 0 ? [s.id] : []))
+      : [],
+  };
+}
+
 /**
  * The last vessel of each composition that a task met: the next of the same species is solved from there. Kept with the task, so that the
  * same task meets the same starts whatever was asked before.
  */
 const lastOf = new WeakMap<Task, Map<Int8Array, NearStart>>();
 
-/** A start for a vessel of this system, undefined where the task has met none of the kind. */
-export function nearStart(task: Task, system: PreparedSystem, totals: Float64Array): NearStart | undefined {
-  const known = lastOf.get(task)?.get(system.problem.stoichiometry);
-  return known && { ...known, start: withNewcomers(known.start.slice(), totals) };
-}
-
-/** What a solved vessel is as a start for the next. */
-export const startFrom = (solved: SolveResult, totals: Float64Array): NearStart => ({
-  start: withNewcomers(solved.lnFree.slice(), totals),
-  activeSolids: [...solved.solidsMolPerL.keys()].filter((i) => solved.solidsMolPerL[i]! > 0),
-});
+/** A start for a vessel of this system, null where the task has met none of the kind. */
+export const nearStart = (task: Task, system: PreparedSystem): NearStart | null =>
+  lastOf.get(task)?.get(system.problem.stoichiometry) ?? null;
 
 /** Keeps a solved vessel for the next of its composition. */
-export function keepStart(task: Task, system: PreparedSystem, solved: SolveResult, totals: Float64Array): void {
-  if (solved.status !== "converged") return;
+export function keepStart(task: Task, system: PreparedSystem, start: NearStart): void {
   let ofTask = lastOf.get(task);
   if (ofTask === undefined) lastOf.set(task, (ofTask = new Map<Int8Array, NearStart>()));
-  ofTask.set(system.problem.stoichiometry, startFrom(solved, totals));
+  ofTask.set(system.problem.stoichiometry, start);
 }

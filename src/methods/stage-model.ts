@@ -1,8 +1,7 @@
 import { formsInTitration } from "../chemistry/forming-solids.ts";
 import { ionicStrengthOf } from "../chemistry/ionic-strength.ts";
 import { prepareSystem } from "../chemistry/prepare-system.ts";
-import { solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
-import type { PreparedSystem, SolveResult } from "../chemistry/types.ts";
+import type { PreparedSystem } from "../chemistry/types.ts";
 import type {
   ComponentId,
   IndicatorRecord,
@@ -10,11 +9,11 @@ import type {
   SolidDefinition,
   SpeciesDefinition,
 } from "../constants/knowledge.ts";
-import { protonFixed, vesselSolver } from "./vessel-solver.ts";
+import { vesselSolver, type VesselSolution } from "./vessel-solver.ts";
 import { SolvedVessel, type Vessel, type VesselState } from "./vessel-state.ts";
 import { pickDyeBasis, type DyeBasis } from "./dye-basis.ts";
 import { inertIonsOf, saltSteps } from "./inert-ions.ts";
-import { keepStart, nearStart, startFrom } from "./near-start.ts";
+import { keepStart, nearStart, startFrom, type NearStart } from "./near-start.ts";
 import { stageSolution, type HeldAmount, type StageSolution } from "./solution.ts";
 import { staysBound } from "./saturation.ts";
 import { agentComponents, classifyRows } from "./stage-rows.ts";
@@ -161,11 +160,8 @@ function builtModel(task: Task, plan: StagePlan, knowledge: Knowledge, options: 
     system.components.forEach((c, i) => (t[i] = c === "H+" ? 0 : (totals.get(c) ?? 0)));
     return t;
   };
-  const atStart = (system: PreparedSystem, before: SolveResult | null): SolveResult => {
-    const t = columns(system);
-    const near = before?.status === "converged" ? startFrom(before, t) : nearStart(task, system, t);
-    return solveEquilibrium(system.problem, t, { fixedLnFree: protonFixed(system, plan.pH), ...near });
-  };
+  const atStart = (system: PreparedSystem, near: NearStart | null): VesselSolution =>
+    vesselSolver(system, plan.pH, metals, near ?? nearStart(task, system))(columns(system));
 
   // Ionic strength of the vessel itself, half way: start from 0.1 mol/L and correct until it agrees.
   let ionicStrengthMolPerL = 0.1;
@@ -183,9 +179,9 @@ function builtModel(task: Task, plan: StagePlan, knowledge: Knowledge, options: 
     ionicStrengthMolPerL = found;
     if (agrees) break;
     system = prepare(ionicStrengthMolPerL, wantsSolid, wantedKey);
-    first = atStart(system, first);
+    first = atStart(system, first.ok ? startFrom(system, first, columns(system)) : null);
   }
-  keepStart(task, system, first, columns(system));
+  if (first.ok) keepStart(task, system, startFrom(system, first, columns(system)));
   // Solids that formed and do not redissolve in time are out of the game; those that do stay in equilibrium.
   const stays = new Set<string>();
   system.solids.forEach((solid, i) => {
@@ -221,12 +217,7 @@ function builtModel(task: Task, plan: StagePlan, knowledge: Knowledge, options: 
     metals: [...metals],
     dyeBasis,
   };
-  const solve = vesselSolver(
-    system,
-    plan.pH,
-    metals,
-    first.status === "converged" ? { lnFree: first.lnFree, solids: lying } : null,
-  );
+  const solve = vesselSolver(system, plan.pH, metals, first.ok ? { lnFree: first.lnFree, solids: lying } : null);
   const buretteColumn = system.index.get(burette.component)!;
   let start: VesselState | null = null;
   const recent: VesselState[] = [];

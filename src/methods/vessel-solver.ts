@@ -1,5 +1,5 @@
 import { eliminatedSolver } from "../chemistry/solve-eliminated.ts";
-import { solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
+import { ABSENT_LN_FREE, solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
 import type { MassBalanceProblem, PreparedSystem, SolveResult } from "../chemistry/types.ts";
 import type { ComponentId } from "../constants/knowledge.ts";
 import { withNewcomers } from "./near-start.ts";
@@ -36,7 +36,11 @@ export class VesselSolution {
     const { start, column, coefficient } = this.#sparse;
     let sum = this.#problem.lnBeta[row]!;
     const end = start[row + 1]!;
-    for (let p = start[row]!; p < end; p++) sum += coefficient[p]! * this.lnFree[column[p]!]!;
+    for (let p = start[row]!; p < end; p++) {
+      const ln = this.lnFree[column[p]!]!;
+      if (ln <= ABSENT_LN_FREE) return 0; // made of what is not there
+      sum += coefficient[p]! * ln;
+    }
     return Math.exp(sum);
   }
 
@@ -101,8 +105,14 @@ export function vesselSolver(
   const columns = system.components.flatMap((c, i) => (metals.has(c) ? [i] : []));
   const fast = columns.length > 0 ? eliminatedSolver(problem, fixedLnFree, columns) : null;
   const nSolids = problem.solids.n;
-  const supersaturated = nSolids > 0 ? saturationCheck(system) : () => false;
   const noSolids = new Float64Array(nSolids);
+  const lying = new Map<string, LyingSolver | null>();
+  const lyingSolver = (active: readonly number[]): LyingSolver | null => {
+    const key = active.join();
+    let known = lying.get(key);
+    if (known === undefined) lying.set(key, (known = underHydroxides(problem, fixedLnFree, columns, active)));
+    return known;
+  };
   let warm: Float64Array | null = near ? near.lnFree : null;
   let activeSolids: readonly number[] =
     near === null || near.solids.length === 0
@@ -112,9 +122,15 @@ export function vesselSolver(
     if (fast && warm && activeSolids.length === 0) {
       const lnFree = withNewcomers(warm.slice(), totals);
       const { status, residual, iterations } = fast.solve(totals, lnFree);
-      if (status === "converged" && !supersaturated(lnFree)) {
+      if (status === "converged" && !oneForms(problem, lnFree, activeSolids)) {
         warm = lnFree;
         return new VesselSolution(problem, { ok: true, residual, iterations, lnFree, solidsMolPerL: noSolids }, null);
+      }
+    } else if (fast && warm) {
+      const found = lyingSolver(activeSolids)?.(totals, withNewcomers(warm.slice(), totals));
+      if (found) {
+        warm = found.lnFree;
+        return new VesselSolution(problem, { ...found, ok: true }, null);
       }
     }
     const result = solveEquilibrium(
@@ -125,22 +141,86 @@ export function vesselSolver(
     const ok = result.status === "converged";
     if (ok) {
       warm = result.lnFree;
-      activeSolids = nSolids === 0 ? [] : system.solids.flatMap((_, i) => (result.solidsMolPerL[i]! > 0 ? [i] : []));
+      activeSolids = nSolids === 0 ? [] : [...result.solidsMolPerL.keys()].filter((i) => result.solidsMolPerL[i]! > 0);
     }
     return new VesselSolution(problem, { ...result, ok }, result.speciesMolPerL);
   };
 }
 
-/** Whether any solid of the system would form at these free concentrations. */
-function saturationCheck(system: PreparedSystem): (lnFree: Float64Array) => boolean {
-  const rows = system.solids.map((solid) => ({
-    lnK: Math.LN10 * solid.log10Beta,
-    parts: Object.entries(solid.components).map(([c, n]) => ({ column: system.index.get(c), n })),
-  }));
-  return (lnFree) =>
-    rows.some(({ lnK, parts }) => {
-      let sum = lnK;
-      for (const { column, n } of parts) sum += column === undefined ? -Infinity : n * lnFree[column]!;
-      return sum > 0;
-    });
+/** Whether a solid would form at these free concentrations that is not among those that lie already. */
+function oneForms(
+  { solids, nComponents }: MassBalanceProblem,
+  lnFree: Float64Array,
+  lying: readonly number[],
+): boolean {
+  for (let s = 0; s < solids.n; s++) {
+    let sum = solids.lnBeta[s]!;
+    for (let j = 0; j < nComponents; j++) {
+      const n = solids.stoichiometry[s * nComponents + j]!;
+      if (n !== 0) sum += n * lnFree[j]!;
+    }
+    if (sum > 0 && !lying.includes(s)) return true;
+  }
+  return false;
+}
+
+type Solved = Pick<SolveResult, "residual" | "iterations" | "lnFree" | "solidsMolPerL">;
+
+/** Solves a vessel from a near answer, which it overwrites; null where the solids it counts on do not all lie, or another forms. */
+type LyingSolver = (totals: Float64Array, lnFree: Float64Array) => Solved | null;
+
+/**
+ * A solver for a vessel in which these solids lie, each the hydroxide of a metal of its own: at a fixed pH such a solid fixes the free
+ * concentration of its metal, whatever lies of it, and the rest is a vessel without solids. Null where a solid is of another kind.
+ */
+function underHydroxides(
+  problem: MassBalanceProblem,
+  fixedLnFree: Float64Array,
+  metals: readonly number[],
+  active: readonly number[],
+): LyingSolver | null {
+  const { solids, nComponents } = problem;
+  const held = fixedLnFree.slice();
+  const parts: { readonly solid: number; readonly metal: number; readonly atoms: number }[] = [];
+  for (const solid of active) {
+    const row = solids.stoichiometry.subarray(solid * nComponents, (solid + 1) * nComponents);
+    const metal = row.findIndex((n, j) => j > 0 && n !== 0);
+    const alone = metal > 0 && row.every((n, j) => j === 0 || j === metal || n === 0);
+    if (!alone || !metals.includes(metal) || !(row[metal]! > 0) || !Number.isNaN(held[metal]!)) return null;
+    const atoms = row[metal]!;
+    held[metal] = -(solids.lnBeta[solid]! + row[0]! * fixedLnFree[0]!) / atoms;
+    parts.push({ solid, metal, atoms });
+  }
+  const free = metals.filter((metal) => Number.isNaN(held[metal]!));
+  const solver = eliminatedSolver(problem, held, free);
+  if (solver === null) return null;
+  return (totals, lnFree) => {
+    for (const { metal } of parts) lnFree[metal] = held[metal]!;
+    const { status, residual, iterations } = solver.solve(totals, lnFree);
+    if (status !== "converged") return null;
+    for (const { metal } of parts) lnFree[metal] = held[metal]!;
+    if (oneForms(problem, lnFree, active)) return null;
+    const solidsMolPerL = new Float64Array(solids.n);
+    for (const { solid, metal, atoms } of parts) {
+      const amount = (totals[metal]! - dissolved(problem, lnFree, metal)) / atoms;
+      if (!(amount > 0)) return null;
+      solidsMolPerL[solid] = amount;
+    }
+    return { residual, iterations, lnFree, solidsMolPerL };
+  };
+}
+
+/** All of a component that is dissolved, mol/L. */
+function dissolved(problem: MassBalanceProblem, lnFree: Float64Array, component: number): number {
+  const { stoichiometry, lnBeta, nComponents, nSpecies } = problem;
+  const { start, column, coefficient } = sparseRowsOf(problem);
+  let total = 0;
+  for (let row = 0; row < nSpecies; row++) {
+    const n = stoichiometry[row * nComponents + component]!;
+    if (n === 0) continue;
+    let sum = lnBeta[row]!;
+    for (let p = start[row]!; p < start[row + 1]!; p++) sum += coefficient[p]! * lnFree[column[p]!]!;
+    total += n * Math.exp(sum);
+  }
+  return total;
 }
