@@ -137,6 +137,8 @@ function methodView(
     causes: causeViews(method, names),
     terms: termViews(method, names),
     budget: budgetView(method, names),
+    // Several results: cause and term are those of the worst.
+    worst: method.predicted.perAnalyte.length > 1 ? names.set(method.budget.determines.join(" + ")) : null,
     wouldMeet: method.wouldMeet === null ? null : names.set(method.wouldMeet.statement),
     room: roomViews(method.tolerance, names),
     robustnessHref: `/robustness?${link}&method=${encodeURIComponent(method.id)}`,
