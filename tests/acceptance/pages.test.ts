@@ -56,6 +56,8 @@ const PAGES: readonly (readonly [name: string, path: (services: WebServices) => 
   ["filled brief", () => "/?scenario=feed-water"],
   ["answer that fits", () => answerTo(0)],
   ["answer that does not fit", () => answerTo(3)],
+  ["tolerance limits", () => `/limits?brief=${encodeBrief(SCENARIOS[0]?.brief)}&also=Ni2%2B`],
+  ["turning points, not begun", () => `/turning-points?brief=${encodeBrief(SCENARIOS[0]?.brief)}`],
   ["method map", () => "/method-map"],
   ["ion on the method map", () => "/method-map/Mg2%2B"],
   ["constants", () => "/constants"],

@@ -1,3 +1,4 @@
+import type { MethodLimits } from "../../recommendation/contract.ts";
 import type { FigureSeries } from "../services.ts";
 
 const cell = (value: string | number | null): string => {
@@ -21,6 +22,14 @@ export function logKCsv(series: FigureSeries["logK"]): string {
 export function readingCsv(series: NonNullable<FigureSeries["reading"]>): string {
   const name = series.kind === "potential" ? "E / mV against the end point" : "A / A of full colour";
   return rows([["titrant added / mL", name], ...series.volumeML.map((v, i) => [v, series.values[i] ?? null])]);
+}
+
+/** Tolerance limits as CSV: component, what is present and borne in mol/L of the sample, and what ends it. */
+export function limitsCsv({ limits }: MethodLimits): string {
+  return rows([
+    ["component", "present / (mol/L)", "limit / (mol/L)", "with masking", "ends by"],
+    ...limits.map((l) => [l.component, l.presentMolPerL, l.limitMolPerL, l.withMasking ? "yes" : "no", l.endsBy]),
+  ]);
 }
 
 /** The titration curve as CSV: volume in mL, pM. */

@@ -2,6 +2,8 @@ import { Router } from "express";
 import { InputError } from "../../errors.ts";
 import type { MethodLimits, Recommendation } from "../../recommendation/contract.ts";
 import { USUAL_COMPANIONS } from "../../recommendation/method-limits.ts";
+import { limitsCsv } from "../figures/figure-csv.ts";
+import { limitsDescription, limitsFigure } from "../figures/limits-figure.ts";
 import { decodeBrief, encodeBrief } from "../form/brief-link.ts";
 import type { Names } from "../format/names.ts";
 import { joinMarkup } from "../render/markup.ts";
@@ -28,6 +30,12 @@ export function limitsPage(services: WebServices, names: Names, answers: Answers
       const message = error.faults.map((f) => `${f.found}: expected ${f.expected}`).join("; ");
       response.status(400).send(renderView("limits", limitsView({ ...ask, limits: null, message })));
     }
+  });
+  router.get("/limits.csv", async (request, response) => {
+    const recommendation = await answers.answer(decodeBrief(field(request.query["brief"])));
+    const methodId = field(request.query["method"]) || undefined;
+    const limits = await services.limits(recommendation, methodId, listOf(field(request.query["also"])));
+    response.type("text/csv; charset=utf-8").attachment("limits.csv").send(limitsCsv(limits));
   });
   return router;
 }
@@ -66,6 +74,10 @@ function limitsView({ services, names, recommendation, sent, methodId, also, lim
     companionsHref: hrefOf(chosen?.id, companions),
     also: { id: "also", value: also, invalid: message !== "", message },
     rows: limits === null ? [] : roomViews(limits.limits, names),
+    figure:
+      limits === null
+        ? null
+        : figureView(limits, names, `/limits.csv${hrefOf(chosen?.id, also).slice("/limits".length)}`),
     without:
       limits === null || limits.without.length === 0
         ? null
@@ -74,4 +86,11 @@ function limitsView({ services, names, recommendation, sent, methodId, also, lim
       .filter((m) => m !== chosen)
       .map((m) => ({ href: hrefOf(m.id, also), text: joinMarkup([`No. ${m.rank}: `, names.set(m.summary)]) })),
   };
+}
+
+/** The figure for a wide and a narrow page; null where there is nothing to draw. */
+function figureView({ limits }: MethodLimits, names: Names, csvHref: string): object | null {
+  const wide = limitsFigure("limits-wide", limits, 700, names);
+  const narrow = limitsFigure("limits-narrow", limits, 350, names);
+  return wide && narrow ? { wide, narrow, csvHref, description: names.set(limitsDescription(limits)) } : null;
 }

@@ -30,7 +30,7 @@ export function roomViews(tolerance: readonly Limit[], names: Names): readonly R
     const limit = of(true) ?? of(false)!;
     return {
       component: names.link(component),
-      present: amount(limit.presentMolPerL),
+      present: limit.presentMolPerL === 0 ? "–" : amount(limit.presentMolPerL),
       without: level(of(false)),
       withMasking: level(of(true)),
       room: roomWords(limit),
