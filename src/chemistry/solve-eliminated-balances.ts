@@ -49,22 +49,16 @@ export class EliminatedBalances {
   }
 
   /** Balances and matrix at once, by code made for the structure; leaves no moments. */
-  evaluateUnrolled(keptTotal: Float64Array, goneTotal: Float64Array, least: number, unrolled: UnrolledBalances): void {
-    const { free, gradient, hessian, freeGone, manyAtoms } = this;
+  evaluateUnrolled(
+    keptTotal: Float64Array,
+    goneTotal: Float64Array,
+    least: number,
+    withMatrix: boolean,
+    unrolled: UnrolledBalances,
+  ): void {
+    const { free: x, gradient: g, hessian: h, freeGone: m, manyAtoms } = this;
     const { constant, polynomial, mixedBeta } = this.terms;
-    unrolled(
-      free,
-      keptTotal,
-      goneTotal,
-      constant,
-      polynomial,
-      mixedBeta,
-      gradient,
-      hessian,
-      freeGone,
-      manyAtoms,
-      least,
-    );
+    unrolled(x, keptTotal, goneTotal, constant, polynomial, mixedBeta, g, h, m, manyAtoms, least, withMatrix);
   }
 
   /** Sums and moments of all terms at the free concentrations. */
@@ -159,14 +153,14 @@ export class EliminatedBalances {
       if (r < to && ligand[r] === 0) {
         c0 = m * first[r]!;
         g0 += c0;
-        h00 += m * second[r]! - c0 * c0 * inverse;
+        h00 = h00 + m * second[r]! - c0 * inverse * c0;
         r++;
       }
       if (r < to) {
         const c1 = m * first[r]!;
         g1 += c1;
-        h11 += m * second[r]! - c1 * c1 * inverse;
-        h10 -= c0 * c1 * inverse;
+        h11 = h11 + m * second[r]! - c1 * inverse * c1;
+        h10 -= c1 * inverse * c0;
         r++;
       }
     }

@@ -74,14 +74,10 @@ export class EliminatedNewton {
     answer[0] = NaN;
     let lastStep = Infinity;
     this.conditioned = k === 0;
-    const { unrolled } = this;
     for (let iteration = 0; ; iteration++) {
-      const sameMatrix = k > 2 && lastStep <= SAME_MATRIX_STEP && lastStep > SMALL_LAST_STEP && unrolled === null;
-      if (unrolled !== null) balances.evaluateUnrolled(keptTotal, goneTotal, least, unrolled);
-      else {
-        if (iteration > 0 || begun === ELSEWHERE) balances.moments();
-        balances.combine(keptTotal, goneTotal, least, lastStep > SMALL_LAST_STEP && !sameMatrix);
-      }
+      const sameMatrix = k > 2 && lastStep <= SAME_MATRIX_STEP && lastStep > SMALL_LAST_STEP;
+      if (this.unrolled === null && (iteration > 0 || begun === ELSEWHERE)) balances.moments();
+      this.evaluate(least, lastStep > SMALL_LAST_STEP && !sameMatrix);
       this.measure(keptTotal);
       const { residual } = this;
       if (residual <= TOLERANCE && (k === 0 || lastStep <= SMALL_LAST_STEP)) {
@@ -90,11 +86,17 @@ export class EliminatedNewton {
         return this.finish(lnFree) ? iteration : -1 - iteration;
       }
       if (iteration >= ITERATIONS || !(residual < 1e290)) return -1 - iteration;
-      if (lastStep <= SMALL_LAST_STEP && unrolled === null) balances.combine(keptTotal, goneTotal, least, true);
+      if (lastStep <= SMALL_LAST_STEP) this.evaluate(least, true);
       lastStep = this.findStep(keptTotal, !sameMatrix);
       if (!(lastStep < Infinity)) return -1 - iteration;
       this.move(lastStep);
     }
+  }
+
+  private evaluate(least: number, withMatrix: boolean): void {
+    const { balances, keptTotal, goneTotal, unrolled } = this;
+    if (unrolled === null) balances.combine(keptTotal, goneTotal, least, withMatrix);
+    else balances.evaluateUnrolled(keptTotal, goneTotal, least, withMatrix, unrolled);
   }
 
   private count(evaluations: number): void {

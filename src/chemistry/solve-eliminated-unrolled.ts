@@ -19,6 +19,7 @@ export type UnrolledBalances = (
   freeGone: Float64Array,
   manyAtoms: ManyAtoms,
   least: number,
+  withMatrix: boolean,
 ) => void;
 
 /** One term: its name in the code, and the power of each kept component it holds. */
@@ -29,7 +30,8 @@ interface Term {
 
 /**
  * Compiles the balances of a structure into straight code, four times as fast as the loops that read the structure but worth its making
- * only for a structure met many thousand times. Null where it is too large, where species with several atoms hold a kept component, or
+ * only for a structure met many thousand times. The code does the same operations in the same order as the loops, so that no digit depends on
+ * how often a structure was met before. Null where it is too large, where species with several atoms hold a kept component, or
  * where the process may not make code.
  */
 export function unrollBalances(structure: EliminatedStructure): UnrolledBalances | null {
@@ -43,7 +45,20 @@ export function unrollBalances(structure: EliminatedStructure): UnrolledBalances
   }
 }
 
-const PARAMETERS = ["free", "kept", "gone", "C", "P", "B", "gradient", "hessian", "freeGone", "many", "least"];
+const PARAMETERS = [
+  "free",
+  "kept",
+  "gone",
+  "C",
+  "P",
+  "B",
+  "gradient",
+  "hessian",
+  "freeGone",
+  "many",
+  "least",
+  "withMatrix",
+];
 
 function sourceOf(structure: EliminatedStructure): string {
   const { k, nBlocks, powerStart } = structure;
@@ -60,8 +75,10 @@ function sourceOf(structure: EliminatedStructure): string {
     coefficient = found.coefficient;
     lines.push(...found.lines, ...blockLines(structure, block, found.terms));
   }
+  for (let l = 0; l < k; l++) lines.push(`gradient[${l}] = g${l};`);
+  lines.push("if (!withMatrix) return;");
   for (let l = 0; l < k; l++) {
-    lines.push(`gradient[${l}] = g${l}; hessian[${l * k + l}] = kept[${l}] === 0 ? 1 : h${l}_${l};`);
+    lines.push(`hessian[${l * k + l}] = kept[${l}] === 0 ? 1 : h${l}_${l};`);
     for (let c = 0; c < l; c++) lines.push(`hessian[${l * k + c}] = h${l}_${c};`);
   }
   return lines.join("\n");
@@ -112,20 +129,24 @@ function blockLines(structure: EliminatedStructure, block: number, terms: readon
   const times = block > 0 ? `${m} * ` : "";
   const held = [...new Set(terms.flatMap(({ exponents }) => [...exponents.keys()]))].sort((a, b) => a - b);
   for (const l of held) {
-    const first = weighted(terms, ({ exponents }) => exponents.get(l) ?? 0);
-    lines.push(`const f${block}_${l} = ${times}(${first}); g${l} += f${block}_${l};`);
-    for (const c of held) {
-      if (c > l) break;
-      const second = weighted(terms, ({ exponents }) => (exponents.get(l) ?? 0) * (exponents.get(c) ?? 0));
-      if (second !== "") lines.push(`h${l}_${c} += ${times}(${second});`);
-      if (block > 0) lines.push(`h${l}_${c} -= f${block}_${l} * f${block}_${c} * ${v};`);
-    }
+    const f = `f${block}_${l}`;
+    lines.push(`const ${f} = ${times}(${weighted(terms, (e) => [e.get(l) ?? 0])}); g${l} += ${f};`);
+    const pure = terms.filter(({ exponents }) => exponents.size === 1 && exponents.has(l));
+    const second = weighted(pure, (e) => [e.get(l)!, e.get(l)!]);
+    lines.push(`h${l}_${l} = h${l}_${l} + ${times}(${second})${block > 0 ? ` - ${f} * ${v} * ${f}` : ""};`);
+    if (block > 0) for (const c of held) if (c < l) lines.push(`h${l}_${c} -= ${f} * ${v} * f${block}_${c};`);
   }
+  for (const { name, exponents } of terms)
+    if (exponents.size > 1)
+      for (const [l, power] of exponents)
+        for (const [c, other] of exponents)
+          if (c <= l) lines.push(`h${l}_${c} += ${times}${name} * ${power} * ${other};`);
   return lines;
 }
 
-const weighted = (terms: readonly Term[], weight: (term: Term) => number): string =>
+/** Sum of the terms, each times its weights one after another; those of weight nothing left out. */
+const weighted = (terms: readonly Term[], weights: (exponents: Term["exponents"]) => readonly number[]): string =>
   terms
-    .filter((term) => weight(term) !== 0)
-    .map((term) => (weight(term) === 1 ? term.name : `${weight(term)} * ${term.name}`))
+    .filter(({ exponents }) => !weights(exponents).includes(0))
+    .map(({ name, exponents }) => [name, ...weights(exponents).filter((w) => w !== 1)].join(" * "))
     .join(" + ");

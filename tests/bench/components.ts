@@ -111,7 +111,7 @@ function measure(): BenchReport {
   lines.push(
     `half of the components metals, each with each ligand; ${POINTS} points of a titration, each from the last answer; median of ${ROUNDS} interleaved rounds`,
   );
-  return { lines, missing: [], failures };
+  return { lines, missing: [], failures, missed: [] };
 }
 
 /** Slope of ln y against ln x by least squares. */

@@ -3,7 +3,7 @@ import { prepareSystem } from "../../src/chemistry/prepare-system.ts";
 import { eliminatedSolver } from "../../src/chemistry/solve-eliminated.ts";
 import type { Titration } from "../../src/chemistry/titration.ts";
 import { loadKnowledge } from "../../src/constants/index.ts";
-import type { Bench, BenchReport } from "./bench.ts";
+import { atBar, type Bench, type BenchReport } from "./bench.ts";
 import { interleaved, medianRatio, microsecondsPer, timingLine } from "./interleave.ts";
 
 const ROUNDS = 9;
@@ -94,14 +94,18 @@ function measure(): BenchReport {
     ROUNDS,
   );
   const ratio = medianRatio(times.get("metals eliminated")!, times.get("explicit curve")!);
+  const missed: string[] = [];
   const lines = [
     ...[...times].map(([name, values]) => timingLine(name, values, "a point")),
-    `explicit curve: ${ratio.toFixed(2)} times as fast as the eliminated solver (median of the ratios within a round; at least ${LEAST_RATIO} wanted)`,
+    atBar(
+      `explicit curve: ${ratio.toFixed(2)} times as fast as the eliminated solver, median of the ratios within a round`,
+      ratio >= LEAST_RATIO,
+      `at least ${LEAST_RATIO}`,
+      missed,
+    ),
     `${system.species.length} species, 6 metals, EDTA, ammonia held; ln free zinc of both differs by ${worst.toExponential(1)} at most; median of ${ROUNDS} interleaved rounds`,
   ];
-  const failures = [
-    ...(Number.isFinite(sink) && worst <= AGREE ? [] : [`curve: both forms differ by ${worst} in ln free zinc`]),
-    ...(ratio >= LEAST_RATIO ? [] : [`curve: the explicit point is only ${ratio.toFixed(2)} times as fast`]),
-  ];
-  return { lines, missing: [], failures };
+  const failures =
+    Number.isFinite(sink) && worst <= AGREE ? [] : [`curve: both forms differ by ${worst} in ln free zinc`];
+  return { lines, missing: [], failures, missed };
 }

@@ -4,7 +4,7 @@ import { openEngine } from "../../src/main.ts";
 import { readBrief } from "../../src/recommendation/brief.ts";
 import { recommend } from "../../src/recommendation/recommend.ts";
 import { practiceCases } from "../practice/cases.ts";
-import type { Bench, BenchOptions, BenchReport } from "./bench.ts";
+import { atBar, type Bench, type BenchOptions, type BenchReport } from "./bench.ts";
 
 const COUNT = 172; // four rounds of the acceptance briefs: some minutes; the figure wanted is that of 10,000
 const SAMPLES = 20;
@@ -43,17 +43,21 @@ async function measure({ count = COUNT, brief }: BenchOptions): Promise<BenchRep
   const slope = slopeOf(late);
   const level = late.reduce((sum, { megabytes }) => sum + megabytes, 0) / late.length;
   const growth = (slope * count) / 2 / level;
+  const missed: string[] = [];
   const lines = [
     `${count} recommendations over ${cases.length} briefs in ${seconds.toFixed(0)} s; heap in use after a collection, MB:`,
     samples.map(({ done, megabytes }) => `${done}: ${megabytes.toFixed(1)}`).join("  "),
-    `second half: ${level.toFixed(1)} MB on average, slope ${(1024 * slope).toFixed(3)} kB a recommendation, ${(100 * growth).toFixed(2)} % of the heap over that half (at most ${100 * GROWTH_ALLOWED} % allowed)`,
+    atBar(
+      `second half: ${level.toFixed(1)} MB on average, slope ${(1024 * slope).toFixed(3)} kB a recommendation, growth ${(100 * growth).toFixed(2)} % of the heap`,
+      growth <= GROWTH_ALLOWED,
+      `at most ${100 * GROWTH_ALLOWED} %`,
+      missed,
+    ),
     `resident set ${(process.memoryUsage().rss / 2 ** 20).toFixed(0)} MB at the end`,
   ];
   if (count < 10_000)
     lines.push(`10,000 take some ${((seconds / count) * (10_000 / 3600)).toFixed(1)} h here: -- memory --count 10000`);
-  const failures =
-    growth <= GROWTH_ALLOWED ? [] : [`memory: the heap rises by ${(100 * growth).toFixed(1)} % over the second half`];
-  return { lines, missing: [], failures };
+  return { lines, missing: [], failures: [], missed };
 }
 
 /** The collector of this process, without a flag on its command line. */

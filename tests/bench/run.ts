@@ -26,13 +26,16 @@ if (chosen.length === 0 || (options.count !== undefined && !(Number.isInteger(op
 }
 const missing: string[] = [];
 const failures: string[] = [];
+const missed: string[] = [];
 for (const bench of chosen) {
   console.log(`== ${bench.name}`);
   const report = await bench.run(options);
   for (const line of report.lines) console.log(line);
   missing.push(...report.missing);
   failures.push(...report.failures);
+  missed.push(...report.missed);
 }
 for (const line of missing) console.log(`!! NOT MEASURED: ${line}`);
+for (const line of missed) console.log(`!! BAR MISSED: ${line}`);
 for (const line of failures) console.log(`!! WRONG: ${line}`);
-if (failures.length > 0) process.exitCode = 1;
+if (failures.length + missed.length > 0) process.exitCode = 1;

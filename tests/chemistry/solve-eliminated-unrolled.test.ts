@@ -21,29 +21,20 @@ const close = (actual: number, expected: number, scale: number, rtol: number): b
   Math.abs(actual - expected) <= rtol * scale;
 
 describe("the balances of the eliminated form", () => {
-  it("are the same from unrolled code as from the loops, matrix and free metals included", () => {
+  it("are the same to the last digit from unrolled code as from the loops, matrix and free metals included", () => {
     let compared = 0;
     let mixed = 0;
     for (let index = 0; index < 300; index++) {
       const system = compiled(randomSystem(20261205, index));
       if (system === null) continue;
-      const { terms, balances, keptTotal, goneTotal, least, k } = system;
+      const { terms, balances, keptTotal, goneTotal, least } = system;
       const unrolled = unrollBalances(terms.structure);
       if (unrolled === null) continue;
       balances.moments();
       balances.combine(keptTotal, goneTotal, least, true);
       const loops = [balances.gradient.slice(), balances.hessian.slice(), balances.freeGone.slice()];
-      balances.evaluateUnrolled(keptTotal, goneTotal, least, unrolled);
-      const [gradient, hessian, freeGone] = loops as [Float64Array, Float64Array, Float64Array];
-      for (let l = 0; l < k; l++) {
-        const bulk = keptTotal[l]! + Math.abs(gradient[l]!);
-        expect(close(balances.gradient[l]!, gradient[l]!, bulk, 1e-13)).toBe(true);
-        for (let c = 0; c <= l; c++) {
-          const scale = Math.max(bulk, keptTotal[c]! + Math.abs(gradient[c]!)) * 36; // up to six of a ligand in a species
-          expect(close(balances.hessian[l * k + c]!, hessian[l * k + c]!, scale, 1e-13)).toBe(true);
-        }
-      }
-      freeGone.forEach((m, e) => expect(close(balances.freeGone[e]!, m, m, 1e-13)).toBe(true));
+      balances.evaluateUnrolled(keptTotal, goneTotal, least, true, unrolled);
+      expect([balances.gradient, balances.hessian, balances.freeGone]).toEqual(loops);
       compared++;
       if (terms.structure.mixed.n > 0) mixed++;
     }
