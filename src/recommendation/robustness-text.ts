@@ -23,9 +23,12 @@ export function parameterWords({ kind, id }: DrawnParameter, titrations: number)
 
 const percent = (fraction: number): string => `${(100 * fraction).toFixed(1)} %`;
 
-/** "96.1 % of 1000 draws (95 % interval 94.7 to 97.1 %)". */
-export const probabilityWords = ({ probability, done }: Robustness): string =>
-  `${percent(probability.fraction)} of ${done} draws (95 % interval ${(100 * probability.low).toFixed(1)} to ${percent(probability.high)})`;
+/** "96.1 %": the share of the draws that meet the requirement. */
+export const shareWords = ({ probability }: Robustness): string => percent(probability.fraction);
+
+/** "of 1000 draws (95 % interval 94.7 to 97.1 %)". */
+export const drawsWords = ({ probability, done }: Robustness): string =>
+  `of ${done} draws (95 % interval ${(100 * probability.low).toFixed(1)} to ${percent(probability.high)})`;
 
 const AT = [0.05, 0.5, 0.95];
 
@@ -53,7 +56,7 @@ export function robustnessText(found: Robustness): string {
   return [
     ...wrap(`Robustness: ${found.method.summary}`, ""),
     "",
-    `The requirement of ${figures(requirementPercent)} % is met in ${probabilityWords(found)}.`,
+    `The requirement of ${figures(requirementPercent)} % is met in ${shareWords(found)} ${drawsWords(found)}.`,
     ...(unread > 0 ? [`No end point, or a spoilt dye, in ${unread} draws.`] : []),
     ...(done < draws ? [`Stopped: ${done} of ${draws} draws.`] : []),
     "",

@@ -88,7 +88,9 @@ describe("the page of the robustness of a method", () => {
     const body = await (
       await fetch(`${site.url}/robustness?brief=${LINK}&method=${encodeURIComponent(METHOD)}&job=${ROBUSTNESS_JOB.id}`)
     ).text();
-    expect(body).toContain("70.2 % of 1000 draws (95 % interval 67.3 to 73.0 %)");
+    expect(body).toContain(
+      '<strong class="figure-number">70.2 %</strong> of 1000 draws (95 % interval 67.3 to 73.0 %) keep',
+    );
     expect(body).toContain("in 4 of 1000 draws");
     expect(body).toContain("a solid stands in the vessel");
     expect(body.match(/<svg/g)).toHaveLength(4);

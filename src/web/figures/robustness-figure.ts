@@ -31,8 +31,8 @@ export function drawsFigure(id: string, result: Result, requirementPercent: numb
     );
   const bottom = size.height - size.bottom;
   const right = size.width - size.right;
-  const mark = (x: number, text: string): string =>
-    `<path class="line" stroke-dasharray="4 3" d="M${at(f.x(x))} ${size.top}V${bottom}"/><text class="mark" x="${at(f.x(x))}" y="${size.top - 6}" text-anchor="middle">${text}</text>`;
+  const upright = (x: number): string =>
+    `<path class="line" stroke-dasharray="4 3" d="M${at(f.x(x))} ${size.top}V${bottom}"/>`;
   const median = quantileAt(result, 0.5)!;
   const labelled = (percentValue: number, share: number, text: string): string => {
     const y = f.y(share);
@@ -40,8 +40,9 @@ export function drawsFigure(id: string, result: Result, requirementPercent: numb
   };
   const parts = [
     axes(f, "% of the result", "share of the draws below / %"),
-    mark(requirementPercent, `+${percent(requirementPercent)}`),
-    mark(-requirementPercent, `\u2212${percent(requirementPercent)}`),
+    upright(requirementPercent),
+    upright(-requirementPercent),
+    `<text class="label" x="${at(right + 8)}" y="${size.top + 12}">asked:</text><text class="label" x="${at(right + 8)}" y="${size.top + 27}">±${percent(requirementPercent)}</text>`,
     `<path class="line first" d="${curve((q) => q.expandedPercent)}"/>`,
     `<path class="line" stroke-dasharray="7 3" d="${curve((q) => q.biasPercent)}"/>`,
     labelled(quantileAt(result, 0.25)!.expandedPercent, 25, "uncertainty"),

@@ -2,7 +2,8 @@ import type { Recommendation, RecommendedMethod, Robustness } from "../../recomm
 import {
   parameterWords,
   printedQuantiles,
-  probabilityWords,
+  drawsWords,
+  shareWords,
   spreadWords,
   wholeWords,
 } from "../../recommendation/robustness-text.ts";
@@ -59,8 +60,8 @@ function foundView(found: Robustness, names: Names): object {
   const { requirementPercent, results, parameters, map } = found;
   return {
     asked: percent(requirementPercent),
-    probability: percent(100 * found.probability.fraction),
-    words: probabilityWords(found),
+    share: shareWords(found),
+    draws: drawsWords(found),
     unread:
       found.unread === 0
         ? ""
@@ -85,7 +86,10 @@ function foundView(found: Robustness, names: Names): object {
             {
               wide,
               narrow,
-              caption: `${r.determines.join(" + ")}: share of the draws whose expanded uncertainty (thick) or error (broken) lies below a value. The requirement stands at the broken uprights: where the thick line crosses the right one, that share meets it.`,
+              caption: joinMarkup([
+                names.set(r.determines.join(" + ")),
+                `: share of the draws whose expanded uncertainty (thick) or error (broken) lies below a value. The requirement stands at the broken uprights: where the thick line crosses the right one, that share meets it.`,
+              ]),
               description: drawsDescription(r, requirementPercent),
             },
           ]
