@@ -4,6 +4,15 @@ import type { StagePlan, Task } from "./types.ts";
 
 const answers = new WeakMap<Knowledge, WeakMap<Task, Map<string, StageEvaluation>>>();
 
+/** Tasks that differ from another in nothing but their matrix, which a standard titration has not. */
+const sameStandard = new WeakMap<Task, Task>();
+
+/** Lets a task that differs from another in its matrix alone share its standard titrations. */
+export function sharingStandards<T extends Task>(changed: T, task: Task): T {
+  sameStandard.set(changed, sameStandard.get(task) ?? task);
+  return changed;
+}
+
 /**
  * An evaluation asked for again: a search comes back to the same plan for the same task many times (masks tried in turn, working
  * ranges, the standard titration beside every variant). Forgotten with the task.
@@ -18,8 +27,9 @@ export function remembered(
 ): StageEvaluation {
   let ofKnowledge = answers.get(knowledge);
   if (!ofKnowledge) answers.set(knowledge, (ofKnowledge = new WeakMap<Task, Map<string, StageEvaluation>>()));
-  let ofTask = ofKnowledge.get(task);
-  if (!ofTask) ofKnowledge.set(task, (ofTask = new Map<string, StageEvaluation>()));
+  const owner = kind === "standard" ? (sameStandard.get(task) ?? task) : task;
+  let ofTask = ofKnowledge.get(owner);
+  if (!ofTask) ofKnowledge.set(owner, (ofTask = new Map<string, StageEvaluation>()));
   const key = kind + JSON.stringify(plan);
   const known = ofTask.get(key);
   if (known) return known;

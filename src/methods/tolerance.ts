@@ -4,6 +4,7 @@ import { evaluate } from "./evaluate.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import type { EvaluatedMethod } from "./methods.ts";
 import { releaseExcess } from "./release-plan.ts";
+import { sharingStandards } from "./remembered.ts";
 import {
   empiricalCeiling,
   liesAsFlocs,
@@ -43,7 +44,7 @@ export function withLevel(task: Task, component: ComponentId, molPerL: number): 
   const matrix = named
     ? task.matrix.map((c) => (c.component === component ? { ...c, molPerL } : c))
     : [...task.matrix, { component, shown: component, molPerL, protonsPerComponent: 0 }];
-  return { ...task, matrix };
+  return sharingStandards({ ...task, matrix }, task);
 }
 
 /** The excess of a release is not counted: more of it goes in until the first reading shows some. */
@@ -165,7 +166,7 @@ export function bearsRicherMatrix(task: Task, method: EvaluatedMethod, knowledge
   if (rows.length === 0 || method.results.some((r) => 100 * r.budget.expanded > task.requirementPercent)) return null;
   if (rows.some((c) => empiricalCeiling(task, plans, c.component, knowledge) < RICHER * c.molPerL)) return false;
   const matrix = task.matrix.map((c) => (counts(c.component) ? { ...c, molPerL: RICHER * c.molPerL } : c));
-  return standing({ ...task, matrix }, method.mode, plans, knowledge).excess <= 0;
+  return standing(sharingStandards({ ...task, matrix }, task), method.mode, plans, knowledge).excess <= 0;
 }
 
 /** The plans without the agents that mask a component, and the sample without what only they kept out: how much of it alone would be borne. */
@@ -179,7 +180,10 @@ function unmasked(
   const kept = new Set(steps.filter((m) => !agents.has(m.agent)).flatMap((m) => m.masks));
   const freed = new Set(steps.filter((m) => agents.has(m.agent)).flatMap((m) => m.masks.filter((c) => !kept.has(c))));
   return {
-    task: { ...task, matrix: task.matrix.filter((c) => c.component === component || !freed.has(c.component)) },
+    task: sharingStandards(
+      { ...task, matrix: task.matrix.filter((c) => c.component === component || !freed.has(c.component)) },
+      task,
+    ),
     plans: plans.map((p) => ({ ...p, masking: p.masking.filter((m) => !agents.has(m.agent)) })),
   };
 }
