@@ -1,4 +1,5 @@
-import { factsOfScope, wordsOfFact } from "./fact-catalogue.ts";
+import { factsOfScope } from "./fact-catalogue.ts";
+import { wordsOfFact } from "./fact-words.ts";
 import type { FactDefinition, Facts, RuleScope } from "./types.ts";
 
 function fitsType(value: unknown, type: FactDefinition["type"]): boolean {

@@ -1,6 +1,7 @@
 import { factFaults } from "./check-facts.ts";
 import { conditionHolds, distanceToHolding, factsReadBy } from "./conditions.ts";
-import { factsOfScope, GUARD_VALUES, wordsOfFact } from "./fact-catalogue.ts";
+import { factsOfScope, GUARD_VALUES } from "./fact-catalogue.ts";
+import { wordsOfFact } from "./fact-words.ts";
 import { neutralFacts } from "./neutral-facts.ts";
 import { OPERATORS, type RuleOperator } from "./operators.ts";
 import type { Condition, ExampleFacts, Leaf, Report, Rule } from "./rule-schema.ts";

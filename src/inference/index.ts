@@ -1,5 +1,6 @@
 /** The public door of the rule layer. */
-export { FACT_CATALOGUE, factsOfScope, wordsOfFact } from "./fact-catalogue.ts";
+export { FACT_CATALOGUE, factsOfScope } from "./fact-catalogue.ts";
+export { wordsOfFact } from "./fact-words.ts";
 export { OPERATORS } from "./operators.ts";
 export { inspectRules, loadRules, readRuleFiles, type RuleBase, type RuleFile } from "./load-rules.ts";
 export { checkRules } from "./check-rules.ts";

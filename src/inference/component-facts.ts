@@ -1,0 +1,33 @@
+import type { FactRow } from "./types.ts";
+
+/** Facts of one component of the sample in one titration. */
+export const COMPONENT_ROWS: readonly FactRow[] = [
+  ["component", "string", null, "always", "id of the component"],
+  ["role", "string", null, "always", "analyte or matrix"],
+  ["kind", "string", null, "always", "metal or ligand"],
+  ["stageMode", "string", null, "always", "direct, back or displacement"],
+  ["pH", "number", "pH", "always", "pH at which the end point is taken"],
+  ["indicator", "string", null, "always", 'id of the dye, "none" where there is none'],
+  ["indicatorClass", "string", null, "always", 'class of the dye, "none" where there is none'],
+  ["titrant", "string", null, "always", "id of the titrant"],
+  ["buffer", "string", null, "always", "id of the buffer"],
+  ["presentMolPerL", "number", "mol/L", "always", "total in the titrated solution"],
+  ["ratioToAnalyte", "number", null, "always", "total over that of the analyte"],
+  ["titratedFraction", "number", null, "may be absent", "share of it counted at the end point"],
+  ["biasPercent", "number", "%", "may be absent", "bias that it makes"],
+  ["blocksIndicator", "boolean", null, "always", "holds the dye as the method is, after masking"],
+  ["wouldBlock", "boolean", null, "always", "would hold the dye if nothing were done"],
+  ["maskedBy", "string", null, "always", 'masking agent, "none" where there is none'],
+  ["maskedVia", "string", null, "always", "complexation, precipitation, reduction, oxidation, kinetic or none"],
+  ["maskingBasis", "string", null, "always", "equilibrium, empirical, conversion or none"],
+  ["maskStanding", "string", null, "always", "masks, partial (practice knows it as a partial mask) or none"],
+  ["empiricalLimitMolPerL", "number", "mol/L", "may be absent", "level up to which the empirical record holds"],
+  ["ratioToEmpiricalLimit", "number", null, "may be absent", "level present over that limit"],
+  ["maskMolPerL", "number", "mol/L", "always", "masking agent in the titrated solution, 0 where there is none"],
+  ["precipitates", "boolean", null, "always", "with a matrix partner or as hydroxide at this pH"],
+  ["saturationIndex", "number", "log10", "may be absent", "of the solid that comes first"],
+  ["kinetics", "string", null, "always", "fast, slow or inert towards the titrant"],
+  ["complexesAnalyte", "boolean", null, "always", "binds the analyte appreciably"],
+  ["oxidisesIndicator", "boolean", null, "always", "destroys or bleaches the dye"],
+  ["solutionStatus", "string", null, "always", "converged or failed; numbers exist when converged"],
+];
