@@ -9,7 +9,7 @@ import { atCommonEquivalence, turns } from "../methods/threats.ts";
 import { companyOf } from "../methods/way-round.ts";
 import { countedIn, type Task } from "../methods/types.ts";
 import type { Finding } from "./contract.ts";
-import { OXIDANTS } from "./facts.ts";
+import { OXIDANTS } from "./component-facts.ts";
 import { shownIon } from "./spelling.ts";
 
 /** A bias below this part of the requirement is not worth a finding. */

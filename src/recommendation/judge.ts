@@ -3,7 +3,10 @@ import type { RuleRunner } from "../inference/index.ts";
 import type { Facts, RuleFinding } from "../inference/types.ts";
 import type { Task } from "../methods/types.ts";
 import { mergedStatements } from "./merge-statements.ts";
-import { componentFacts, methodFacts, stageContext, stageFacts, type MethodUnderJudgement } from "./facts.ts";
+import { componentFacts } from "./component-facts.ts";
+import { methodFacts } from "./method-facts.ts";
+import { stageContext, stageFacts } from "./stage-facts.ts";
+import type { MethodUnderJudgement } from "./under-judgement.ts";
 
 /** A rule's word on a method, and which stage it was about (null: the whole method). */
 export interface Verdict {

@@ -4,7 +4,7 @@ import { roughCost, seenWith, type EvaluatedMethod } from "../methods/methods.ts
 import { bearsRicherMatrix } from "../methods/tolerance.ts";
 import { optimised } from "../methods/optimise.ts";
 import type { MethodMode, StagePlan, Task } from "../methods/types.ts";
-import type { MethodUnderJudgement } from "./facts.ts";
+import type { MethodUnderJudgement } from "./under-judgement.ts";
 import { judge, rank, type JudgedMethod } from "./judge.ts";
 
 /** How many methods the rules look at; the rest are behind on numbers alone. */

@@ -3,7 +3,7 @@ import { type DevelopedStage } from "../../src/methods/develop.ts";
 import { singleMethod } from "../../src/methods/methods.ts";
 import { threatsOf } from "../../src/methods/threats.ts";
 import type { StagePlan, Task } from "../../src/methods/types.ts";
-import type { MethodUnderJudgement } from "../../src/recommendation/facts.ts";
+import type { MethodUnderJudgement } from "../../src/recommendation/under-judgement.ts";
 import { KNOWLEDGE } from "../methods/invented.ts";
 
 /** A plan evaluated against its task as the search would hand it on: bare without its masks, threats named. */

@@ -1,7 +1,9 @@
 import { describe, expect, it } from "vitest";
 import { factFaults } from "../../src/inference/check-facts.ts";
 import type { StagePlan } from "../../src/methods/types.ts";
-import { componentFacts, contrastAt, methodFacts, stageContext, stageFacts } from "../../src/recommendation/facts.ts";
+import { componentFacts } from "../../src/recommendation/component-facts.ts";
+import { methodFacts } from "../../src/recommendation/method-facts.ts";
+import { contrastAt, stageContext, stageFacts } from "../../src/recommendation/stage-facts.ts";
 import { expectRelative } from "../expect-relative.ts";
 import {
   backPlan,
