@@ -176,6 +176,8 @@ function assemble(template: SystemTemplate, chosen: ChosenConstants, conditions:
     get solids() {
       return (solids ??= prepared(template.solids, ofSolids));
     },
+    rows: template.species,
+    solidRows: template.solids,
     charges: template.charges,
     problem: {
       nComponents: template.components.length,

@@ -27,6 +27,13 @@ export interface SolveResult {
   readonly saturationIndex: Float64Array; // solids.n, log10(IAP/Ksp); 0 where present
 }
 
+/** What a species or solid of a system is made of. */
+export interface SpeciesRow {
+  readonly id: SpeciesId;
+  readonly components: Readonly<Record<ComponentId, number>>;
+  readonly charge: number;
+}
+
 /** One species of a prepared system, with the evidence for its constant. */
 export interface PreparedSpecies {
   readonly id: SpeciesId;
@@ -62,6 +69,9 @@ export interface PreparedSystem {
   readonly components: readonly ComponentId[]; // order of the problem's columns; components[0] === "H+"
   readonly index: ReadonlyMap<ComponentId, number>;
   readonly species: readonly PreparedSpecies[]; // order of the problem's rows
+  /** What the species are made of, without their constants: shared by every system of the composition, and so free to look at. */
+  readonly rows: readonly SpeciesRow[];
+  readonly solidRows: readonly SpeciesRow[];
   readonly solids: readonly PreparedSpecies[];
   readonly charges: Float64Array; // per species
   readonly problem: MassBalanceProblem;

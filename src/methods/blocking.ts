@@ -83,7 +83,7 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
   );
   return mindedMetals(model)
     .filter(({ metal, level }) => {
-      const unmasked = model.system.species.reduce((sum, species, row) => {
+      const unmasked = model.system.rows.reduce((sum, species, row) => {
         const n = species.components[metal] ?? 0;
         if (n <= 0 || (species.components[plan.titrant.id] ?? 0) > 0) return sum;
         return Object.keys(species.components).some((c) => masks.has(c))

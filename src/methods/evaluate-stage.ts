@@ -54,6 +54,8 @@ export const NOT_READ = {
 } as const satisfies Partial<StageEvaluation>;
 
 const ML = 1000;
+/** Relative to the expected volume: what holds the dye half way does not hang on so little. */
+const NEAR_EXPECTED = 0.2;
 
 /**
  * Evaluates one titration by its full equilibrium: where the observer stops, what the titre then holds, and why.
@@ -116,7 +118,9 @@ export function evaluateStage(
   const account = way
     ? detourAccount(task, model, way, end, read.volumeL, presentMol)
     : accountOf(task, model, end, read.volumeL, presentMol, determined);
-  const half = model.at(back ? read.volumeL : 0.5 * read.volumeL);
+  // The search for the end has looked half way to where it was expected: that vessel serves where the end is near there.
+  const expected = Math.abs(read.volumeL / equivalenceL - 1) < NEAR_EXPECTED;
+  const half = back ? end : model.at(0.5 * (expected ? equivalenceL : read.volumeL));
   const indicatorMetal = holderOf(model, half);
   const followed = back ? plan.backTitrant.id : (countedIn(plan)[0] ?? indicatorMetal);
   const equivalence = model.at(equivalenceL);

@@ -27,7 +27,7 @@ export function lyingAsHydroxideMolPerL(
   const held = model.held
     .filter((h) => h.component === metal && h.why === "precipitated" && hydroxides.has(h.by))
     .reduce((sum, h) => sum + h.molPerL, 0);
-  return model.system.solids.reduce(
+  return model.system.solidRows.reduce(
     (sum, solid, i) =>
       sum + (hydroxides.has(solid.id) ? (solid.components[metal] ?? 0) * (state.result.solidsMolPerL[i] ?? 0) : 0),
     held,

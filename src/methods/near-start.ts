@@ -28,7 +28,7 @@ export function startFrom(
   return {
     lnFree: withNewcomers(solved.lnFree.slice(), totals),
     solids: amounts.some((amount) => amount > 0)
-      ? system.solids.flatMap((s, i) => (amounts[i]! > 0 ? [s.id] : []))
+      ? system.solidRows.flatMap((s, i) => (amounts[i]! > 0 ? [s.id] : []))
       : [],
   };
 }

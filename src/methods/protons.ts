@@ -23,7 +23,7 @@ export function protonsFreed(evaluation: StageEvaluation, knowledge: Knowledge):
   const { model } = evaluation;
   const endL = evaluation.endPointML / 1000;
   const held = (state: VesselState): number =>
-    model.system.species.reduce((sum, { components }, row) => {
+    model.system.rows.reduce((sum, { components }, row) => {
       const protons = components["H+"] ?? 0;
       const water = Object.keys(components).every((id) => id === "H+");
       return protons === 0 || water ? sum : sum + protons * state.result.species(row);

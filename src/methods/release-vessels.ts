@@ -76,7 +76,7 @@ const leftByRecord = (record: ReleaseRecord | undefined): ComponentId[] =>
 
 /** Whether the model has a complex of this metal with the titrant. */
 const titrantBinds = (model: StageModel, metal: ComponentId): boolean =>
-  model.system.species.some((s) => (s.components[metal] ?? 0) > 0 && (s.components[model.plan.titrant.id] ?? 0) > 0);
+  model.system.rows.some((s) => (s.components[metal] ?? 0) > 0 && (s.components[model.plan.titrant.id] ?? 0) > 0);
 
 /**
  * Metals of the sample that the record says are bound whole: those for which the model has no constant with the titrant, and slow

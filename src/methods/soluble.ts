@@ -36,7 +36,7 @@ function auxiliaryRows(knowledge: Knowledge): readonly MaskingRecord[] {
 export function analyteLost(model: StageModel): boolean {
   const { determines } = model.plan;
   const start = model.at(0);
-  const deposited = model.system.solids.reduce((sum, solid, i) => {
+  const deposited = model.system.solidRows.reduce((sum, solid, i) => {
     const ions = determines.reduce((n, ion) => n + (solid.components[ion] ?? 0), 0);
     return sum + ions * (start.result.solidsMolPerL[i] ?? 0);
   }, 0);

@@ -59,7 +59,7 @@ interface ModelOptions {
 }
 
 /** How many states of a vessel are kept for who asks again: the end point, and the way to it. */
-const STATES_KEPT = 8;
+const STATES_KEPT = 12;
 const models = new WeakMap<Knowledge, WeakMap<Task, Map<string, StageModel>>>();
 
 /**
@@ -184,7 +184,7 @@ function builtModel(task: Task, plan: StagePlan, knowledge: Knowledge, options: 
   if (first.ok) keepStart(task, system, startFrom(system, first, columns(system)));
   // Solids that formed and do not redissolve in time are out of the game; those that do stay in equilibrium.
   const stays = new Set<string>();
-  system.solids.forEach((solid, i) => {
+  system.solidRows.forEach((solid, i) => {
     const amount = first.solidsMolPerL[i] ?? 0;
     if (amount <= 0) return;
     // A precipitate that was collected to be dissolved goes on dissolving while its metal is taken up.
@@ -199,7 +199,7 @@ function builtModel(task: Task, plan: StagePlan, knowledge: Knowledge, options: 
       if (metals.has(component)) held.push({ component, molPerL: lost, why: "precipitated", by: solid.id });
     }
   });
-  const lying = system.solids.flatMap((solid, i) =>
+  const lying = system.solidRows.flatMap((solid, i) =>
     stays.has(solid.id) && first.solidsMolPerL[i]! > 0 ? [solid.id] : [],
   );
   const forming = system;

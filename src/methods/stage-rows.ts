@@ -70,7 +70,7 @@ function sorted(system: PreparedSystem, { titrant, dye, metals, way, agents }: R
     if (list === undefined) map.set(key, (list = new RowList()));
     list.push(row, count);
   };
-  system.species.forEach((species, row) => {
+  system.rows.forEach((species, row) => {
     const inIt = Object.keys(species.components).filter((c) => metals.has(c));
     const titrants = species.components[titrant] ?? 0;
     if (titrants > 0) {

@@ -60,7 +60,7 @@ export function threatsOf(task: Task, evaluation: StageEvaluation, knowledge: Kn
         });
       continue;
     }
-    const known = model.system.species.some(
+    const known = model.system.rows.some(
       (s) => (s.components[component] ?? 0) > 0 && (s.components[plan.titrant.id] ?? 0) > 0,
     );
     // A metal that EDTA binds and for which this titrant has no constant is not thereby harmless: count it whole.
@@ -195,7 +195,7 @@ function holds(evaluation: StageEvaluation, ligand: ComponentId, knowledge: Know
   const metal = countedIn(model.plan)[0];
   if (metal === undefined || !knowledge.components.has(ligand)) return false;
   const start = model.at(0);
-  const held = model.system.species.reduce((sum, s, row) => {
+  const held = model.system.rows.reduce((sum, s, row) => {
     const takes = (s.components[metal] ?? 0) > 0 && (s.components[ligand] ?? 0) > 0;
     return takes ? sum + start.result.speciesMolPerL[row]! : sum;
   }, 0);

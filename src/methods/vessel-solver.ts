@@ -117,7 +117,7 @@ export function vesselSolver(
   let activeSolids: readonly number[] =
     near === null || near.solids.length === 0
       ? []
-      : system.solids.flatMap((s, i) => (near.solids.includes(s.id) ? [i] : []));
+      : system.solidRows.flatMap((s, i) => (near.solids.includes(s.id) ? [i] : []));
   return (totals) => {
     if (fast && warm && activeSolids.length === 0) {
       const lnFree = withNewcomers(warm.slice(), totals);

@@ -41,7 +41,9 @@ export function givenSystem(
     components,
     index,
     species,
+    rows: species,
     solids: [],
+    solidRows: [],
     charges: Float64Array.from(species, (s) => s.charge),
     problem: {
       nComponents: components.length,
