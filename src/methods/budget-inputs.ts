@@ -37,22 +37,29 @@ const USUAL_STANDARD = "Zn2+";
 const PIPETTE_RELATIVE = 1e-3 * Math.sqrt(6);
 const BURETTE_FALLBACK_ML = 0.05;
 
-const tolerances = new WeakMap<Knowledge, Map<string, number | null>>();
+/** What a search looks up in a knowledge base again and again, by key. */
+type LookedUp<V> = WeakMap<Knowledge, Map<string, V>>;
+const tolerances: LookedUp<number | null> = new WeakMap();
+const standards: LookedUp<PrimaryStandardRecord | null> = new WeakMap();
 
-/** Class A limit of the smallest ware that holds this volume, mL; null where none on record does. */
-export function toleranceOf(knowledge: Knowledge, kind: GlasswareRecord["kind"], nominalML: number): number | null {
-  let known = tolerances.get(knowledge);
-  if (!known) tolerances.set(knowledge, (known = new Map<string, number | null>()));
-  const key = `${kind} ${nominalML}`;
-  const before = known.get(key);
+function lookedUp<V>(known: LookedUp<V>, knowledge: Knowledge, key: string, find: () => V): V {
+  let own = known.get(knowledge);
+  if (!own) known.set(knowledge, (own = new Map<string, V>()));
+  const before = own.get(key);
   if (before !== undefined) return before;
-  const [fitting] = knowledge.glassware
-    .filter((g) => g.kind === kind && g.nominalML >= nominalML)
-    .sort((a, b) => a.nominalML - b.nominalML || b.toleranceML - a.toleranceML);
-  const found = fitting?.toleranceML ?? null;
-  known.set(key, found);
+  const found = find();
+  own.set(key, found);
   return found;
 }
+
+/** Class A limit of the smallest ware that holds this volume, mL; null where none on record does. */
+export const toleranceOf = (knowledge: Knowledge, kind: GlasswareRecord["kind"], nominalML: number): number | null =>
+  lookedUp(tolerances, knowledge, `${kind} ${nominalML}`, () => {
+    const [fitting] = knowledge.glassware
+      .filter((g) => g.kind === kind && g.nominalML >= nominalML)
+      .sort((a, b) => a.nominalML - b.nominalML || b.toleranceML - a.toleranceML);
+    return fitting?.toleranceML ?? null;
+  });
 
 /** The standardisation of a titrant: what is weighed, measured and read. Volumes mL, masses g. */
 export interface Standardisation {
@@ -86,12 +93,15 @@ export interface BudgetInputs {
 
 /** The standard that serves a titration best: of the metal itself where one is on record, the purest; else the usual one. */
 function standardFor(plan: StagePlan, knowledge: Knowledge): PrimaryStandardRecord | null {
-  const of = (ion: string): PrimaryStandardRecord[] => knowledge.standards.filter((s) => s.forIon === ion);
-  const own = [...countedIn(plan), ...(plan.backTitrant ? [plan.backTitrant.id] : [])].flatMap(of);
-  const [best] = (own.length > 0 ? own : of(USUAL_STANDARD)).sort(
-    (a, b) => a.purityExpandedUncertainty - b.purityExpandedUncertainty,
-  );
-  return best ?? null;
+  const ions = plan.backTitrant ? [...countedIn(plan), plan.backTitrant.id] : countedIn(plan);
+  return lookedUp(standards, knowledge, ions.join(), () => {
+    const of = (ion: string): PrimaryStandardRecord[] => knowledge.standards.filter((s) => s.forIon === ion);
+    const own = ions.flatMap(of);
+    const [best] = (own.length > 0 ? own : of(USUAL_STANDARD)).sort(
+      (a, b) => a.purityExpandedUncertainty - b.purityExpandedUncertainty,
+    );
+    return best ?? null;
+  });
 }
 
 function standardisationOf(task: Task, plan: StagePlan, bandML: number, knowledge: Knowledge): Standardisation | null {
