@@ -1,5 +1,5 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
-import { findBreak, type Probe } from "../numerics/find-break.ts";
+import { type Break, findBreak, type Probe } from "../numerics/find-break.ts";
 import { evaluate } from "./evaluate.ts";
 import type { StageEvaluation } from "./evaluate-stage.ts";
 import type { EvaluatedMethod } from "./methods.ts";
@@ -123,8 +123,34 @@ function limitOf(
     if (other.excess > 0) return { molPerL: 0, endsBy: why(LOWEST_MOL_PER_L) };
   }
   const [good, bad] = start.excess <= 0 ? [start, other] : [other, start];
-  const found = findBreak((x) => at(x).excess, good, bad, { relative: RELATIVE, guesses });
+  const found = confirmedBreak(at, good, bad, guesses, task.requirementPercent);
   return { molPerL: found.holds.x, endsBy: why(found.breaks.x) };
+}
+
+/** This far on either side of a limit it must hold, and must not. */
+const CONFIRMED_AT = 0.01;
+/** A step of the uncertainty larger than this part of the requirement is a jump, not a slope: there may be others near it. */
+const JUMP = 0.005;
+const ROUNDS = 5;
+
+/** The break between two levels, looked at again where the uncertainty jumps and the jump is an island of less than 1 %. */
+function confirmedBreak(
+  at: (x: number) => Probe,
+  holds: Probe,
+  breaks: Probe,
+  guesses: readonly number[],
+  requirementPercent: number,
+): Break {
+  let found = findBreak((x) => at(x).excess, holds, breaks, { relative: RELATIVE, guesses });
+  for (let round = 0; round < ROUNDS; round++) {
+    if (found.breaks.excess - found.holds.excess < JUMP * requirementPercent) break;
+    const above = at(found.holds.x * (1 + CONFIRMED_AT));
+    const below = at(found.holds.x * (1 - CONFIRMED_AT));
+    const [good, bad] = above.excess <= 0 ? [above, breaks] : below.excess > 0 ? [holds, below] : [null, null];
+    if (good === null || bad.x <= good.x) break;
+    found = findBreak((x) => at(x).excess, good, bad, { relative: RELATIVE });
+  }
+  return found;
 }
 
 /** Where the requirement would break if the bias grew in proportion to the level, which it does while the component is bound alike. */
