@@ -1,12 +1,5 @@
-import {
-  CONSTANT,
-  eliminatedStructure,
-  MIXED,
-  NOWHERE,
-  POLYNOMIAL,
-  POLYNUCLEAR,
-  type EliminatedStructure,
-} from "./solve-eliminated-structure.ts";
+import { CONSTANT, MIXED, NOWHERE, POLYNOMIAL, POLYNUCLEAR } from "./solve-eliminated-blocks.ts";
+import { eliminatedStructure, type EliminatedStructure } from "./solve-eliminated-structure.ts";
 import type { MassBalanceProblem } from "./types.ts";
 
 const LARGEST_LN = 600; // a constant beyond e^600 leaves no room for the powers beside it

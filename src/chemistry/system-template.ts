@@ -165,15 +165,22 @@ function chainsOf(rows: readonly TemplateRow[]): Chains {
 /** Chooses a record for every reaction of `template` (on the selection grid of `conditions`) and prepares it for moving. */
 export function chooseConstants(template: SystemTemplate, conditions: Conditions): ChosenConstants {
   const selection = selectionConditions(conditions);
-  const key = `${selection.temperatureC} ${selection.ionicStrengthMolPerL}`;
-  const chosen = template.reactions.map((reaction) => chosenFor(reaction, selection, key));
-  return {
-    records: chosen.map((c) => c.record),
-    passedOver: chosen.map((c) => c.passedOver),
-    movable: chosen.map((c) => c.movable),
-    log10KAtZeroTerm: Float64Array.from(chosen, (c) => c.movable.log10KAtZeroTerm),
-    slope: Float64Array.from(chosen, (c) => c.movable.slope),
-  };
+  const at = choicesAt(selection);
+  const n = template.reactions.length;
+  const records = new Array<ConstantRecord>(n);
+  const passedOver = new Array<number>(n);
+  const movable = new Array<MovableConstant>(n);
+  const log10KAtZeroTerm = new Float64Array(n);
+  const slope = new Float64Array(n);
+  for (let i = 0; i < n; i++) {
+    const chosen = chosenFor(template.reactions[i]!, selection, at);
+    records[i] = chosen.record;
+    passedOver[i] = chosen.passedOver;
+    movable[i] = chosen.movable;
+    log10KAtZeroTerm[i] = chosen.movable.log10KAtZeroTerm;
+    slope[i] = chosen.movable.slope;
+  }
+  return { records, passedOver, movable, log10KAtZeroTerm, slope };
 }
 
 interface ChosenConstant {
@@ -182,20 +189,27 @@ interface ChosenConstant {
   readonly movable: MovableConstant;
 }
 
-/** Selection strengths and temperatures kept per reaction; the oldest goes first. */
-const CHOICES_KEPT = 100;
+/** Points of the selection grid kept; the oldest goes first. */
+const CHOICES_KEPT = 300;
 /** Many templates hold the same reaction: its record is chosen once for each point of the selection grid. */
-const choices = new WeakMap<Reaction, Map<string, ChosenConstant>>();
+const choices = new Map<string, WeakMap<Reaction, ChosenConstant>>();
 
-function chosenFor(reaction: Reaction, selection: Conditions, key: string): ChosenConstant {
-  let own = choices.get(reaction);
-  if (own === undefined) choices.set(reaction, (own = new Map<string, ChosenConstant>()));
-  const known = own.get(key);
+function choicesAt(selection: Conditions): WeakMap<Reaction, ChosenConstant> {
+  const key = `${selection.temperatureC} ${selection.ionicStrengthMolPerL}`;
+  let found = choices.get(key);
+  if (found !== undefined) return found;
+  found = new WeakMap();
+  if (choices.size >= CHOICES_KEPT) choices.delete(choices.keys().next().value!);
+  choices.set(key, found);
+  return found;
+}
+
+function chosenFor(reaction: Reaction, selection: Conditions, at: WeakMap<Reaction, ChosenConstant>): ChosenConstant {
+  const known = at.get(reaction);
   if (known !== undefined) return known;
   const { record, passedOver } = selectRecord(reaction, selection);
   const made = { record, passedOver: passedOver.length, movable: movableConstant(reaction, record, selection) };
-  if (own.size >= CHOICES_KEPT) own.delete(own.keys().next().value!);
-  own.set(key, made);
+  at.set(reaction, made);
   return made;
 }
 
