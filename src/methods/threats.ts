@@ -197,7 +197,7 @@ function holds(evaluation: StageEvaluation, ligand: ComponentId, knowledge: Know
   const start = model.at(0);
   const held = model.system.rows.reduce((sum, s, row) => {
     const takes = (s.components[metal] ?? 0) > 0 && (s.components[ligand] ?? 0) > 0;
-    return takes ? sum + start.result.speciesMolPerL[row]! : sum;
+    return takes ? sum + start.result.species(row) : sum;
   }, 0);
   return Math.log10(1 + held / start.free(metal)) > HELD_LOG10_ALPHA;
 }
