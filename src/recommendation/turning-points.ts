@@ -142,7 +142,8 @@ async function alongNumber(
   knowledge: Knowledge,
 ): Promise<void> {
   const { what, subject, unit, variable } = change;
-  const fields = { what, subject, direction, unit, from: variable.from };
+  // Six figures: a level that came out of another unit carries the noise of its conversion.
+  const fields = { what, subject, direction, unit, from: Number(variable.from.toPrecision(6)) };
   const answers = new Map<number, Standing>();
   const end = await seekTurning(variable, direction, async (value) => {
     const answer = plain(await ask(change.at(value)));
