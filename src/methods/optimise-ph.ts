@@ -14,6 +14,8 @@ export type PHReason =
   | "as-planned"
   /** what would be better lets more interfere or precipitate */
   | "nothing-else-serves"
+  /** another titration of the vessel, or the difference, hangs on it */
+  | "another-hangs-on-it"
   /** less expanded uncertainty, or further from the edges of the working range */
   | "least-uncertainty"
   /** as good, with less acid or alkali than a bench would otherwise have to take */

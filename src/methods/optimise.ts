@@ -1,6 +1,7 @@
 import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import { type DevelopedStage } from "./develop.ts";
 import { evaluate } from "./evaluate.ts";
+import type { StageEvaluation } from "./evaluate-stage.ts";
 import { singleMethod, stageKey, type EvaluatedMethod, type MethodResult } from "./methods.ts";
 import { chooseBuffer, MOST_PH_CHANGE, type BufferChoice } from "./optimise-buffer.ts";
 import { chooseMasks, type MaskChoice, type Tried } from "./optimise-masks.ts";
@@ -45,14 +46,12 @@ interface OptimisedStage {
  * Titrations that others of the same vessel follow, or follow on, keep their conditions.
  */
 export function optimised(task: Task, method: EvaluatedMethod, knowledge: Knowledge): OptimisedMethod {
-  const scans = method.stages.map((stage) => scannedRange(task, stage, knowledge));
-  const asPlanned = (): OptimisedMethod => ({
-    method,
-    ranges: scans.map(({ low, high }) => ({ low, high })),
-    choices: method.stages.map(() => NOTHING_CHOSEN),
-  });
+  const asPlanned = (): OptimisedMethod => {
+    const kept = method.stages.map((stage) => keptStage(task, stage, knowledge));
+    return { method, ranges: kept.map((k) => k.range), choices: kept.map((k) => k.choices) };
+  };
   if (method.mode === "successive") return asPlanned();
-  const made = method.stages.map((stage, i) => optimisedStage(task, stage, scans[i]!, knowledge));
+  const made = method.stages.map((stage) => optimisedStage(task, stage, knowledge));
   const stages = made.map((m) => m.stage);
   const moved = stages.every((s, i) => s === method.stages[i]) ? method : rebuilt(task, method, stages, knowledge);
   if (method.mode === "difference" && !noWorse(moved.results, method.results)) return asPlanned();
@@ -87,15 +86,32 @@ function rebuilt(
   };
 }
 
-function optimisedStage(
-  task: Task,
-  planned: DevelopedStage,
-  scanned: ScannedRange,
-  knowledge: Knowledge,
-): OptimisedStage {
+/** A titration as it was planned, because another hangs on it, with what its pH and its buffer do. */
+function keptStage(task: Task, stage: DevelopedStage, knowledge: Knowledge): OptimisedStage {
+  const { low, high, expandedAt } = scannedRange(task, stage, knowledge);
+  const range = { low, high };
+  const expanded = expandedAt(stage.plan.pH);
+  if (expanded === null) return { stage, range, choices: NOTHING_CHOSEN };
+  const start = { pH: stage.plan.pH, expanded };
+  const buffer = chooseBuffer(task, stage, range, knowledge);
+  const pH: PHChoice = { chosen: start, start, why: "another-hangs-on-it", next: null };
+  return { stage, range, choices: { ...givenUp({ buffer, masks: [] }), pH } };
+}
+
+const optimisedStages = new WeakMap<DevelopedStage, OptimisedStage>();
+
+/** Reckoned once for a titration, which may stand in several methods of its task. */
+function optimisedStage(task: Task, planned: DevelopedStage, knowledge: Knowledge): OptimisedStage {
+  const known = optimisedStages.get(planned);
+  if (known) return known;
+  const made = optimise(task, planned, scannedRange(task, planned, knowledge), knowledge);
+  optimisedStages.set(planned, made);
+  return made;
+}
+
+function optimise(task: Task, planned: DevelopedStage, scanned: ScannedRange, knowledge: Knowledge): OptimisedStage {
   const range = { low: scanned.low, high: scanned.high };
-  if (planned.evaluation.status === "failed" || planned.plan.carried !== null)
-    return { stage: planned, range, choices: NOTHING_CHOSEN };
+  if (planned.evaluation.status === "failed") return { stage: planned, range, choices: NOTHING_CHOSEN };
   const finished = ({ pH, expanded }: PHLook): Finished | null => {
     const moved =
       pH === planned.plan.pH ? planned : asGood(task, planned, atPH(planned.plan, pH, knowledge), expanded, knowledge);
@@ -192,10 +208,24 @@ function asGood(
     analyteLost(evaluation.model)
   )
     return null;
-  const solids = (of: DevelopedStage["evaluation"]): string[] =>
-    supersaturations(task, of.model.plan, knowledge, of.model.ionicStrengthMolPerL)
+  const there = fallingOut(task, before, knowledge);
+  return [...fallingOut(task, evaluation, knowledge)].some((ions) => !there.has(ions))
+    ? null
+    : { ...planned, plan, evaluation, remaining };
+}
+
+const solidsOf = new WeakMap<StageEvaluation, ReadonlySet<string>>();
+
+/** The ions of every solid that the vessel may deposit before the titrant comes; reckoned once for an evaluation. */
+function fallingOut(task: Task, evaluation: StageEvaluation, knowledge: Knowledge): ReadonlySet<string> {
+  const known = solidsOf.get(evaluation);
+  if (known) return known;
+  const { plan, ionicStrengthMolPerL } = evaluation.model;
+  const made = new Set(
+    supersaturations(task, plan, knowledge, ionicStrengthMolPerL)
       .filter((s) => s.pace !== "no")
-      .map((s) => [...s.components].sort().join());
-  const there = new Set(solids(before));
-  return solids(evaluation).some((ions) => !there.has(ions)) ? null : { ...planned, plan, evaluation, remaining };
+      .map((s) => [...s.components].sort().join()),
+  );
+  solidsOf.set(evaluation, made);
+  return made;
 }

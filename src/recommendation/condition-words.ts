@@ -58,6 +58,7 @@ function pHStatement({ chosen, start, why, next }: PHChoice, range: WorkingRange
     published: `the pH in use for ${seen(stage)}, and no other is better by a real amount`,
     "as-planned":
       next === null ? "dye, buffer and masks leave no other to look at" : "no other is better by a real amount",
+    "another-hangs-on-it": "kept, for the other titration hangs on this one",
     "nothing-else-serves": "at others more interferes or precipitates",
     "least-uncertainty":
       chosen.expanded <= start.expanded ? "the least expanded uncertainty clear of the edges" : "clear of the edges",
