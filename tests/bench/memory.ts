@@ -27,7 +27,9 @@ async function measure({ count = COUNT, brief }: BenchOptions): Promise<BenchRep
   const sample = (done: number): void => {
     collect();
     const { heapUsed, arrayBuffers } = process.memoryUsage();
-    samples.push({ done, megabytes: (heapUsed + arrayBuffers) / 2 ** 20 });
+    const megabytes = (heapUsed + arrayBuffers) / 2 ** 20;
+    samples.push({ done, megabytes });
+    process.stderr.write(`${done} of ${count}: ${megabytes.toFixed(1)} MB\n`);
   };
   const every = Math.max(1, Math.floor(count / SAMPLES));
   const started = performance.now();
