@@ -86,9 +86,7 @@ export function blockersOf(model: StageModel, start: VesselState, knowledge: Kno
       const unmasked = model.system.rows.reduce((sum, species, row) => {
         const n = species.components[metal] ?? 0;
         if (n <= 0 || (species.components[plan.titrant.id] ?? 0) > 0) return sum;
-        return Object.keys(species.components).some((c) => masks.has(c))
-          ? sum
-          : sum + n * start.result.species(row);
+        return Object.keys(species.components).some((c) => masks.has(c)) ? sum : sum + n * start.result.species(row);
       }, 0);
       // A hydroxide that nobody asked for blocks like the ion it came from: hydrolysed iron(III) still takes the dye.
       // What a mask has thrown down (a sulfide, a fluoride) is masked.

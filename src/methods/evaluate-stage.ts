@@ -5,7 +5,7 @@ import { holderOf, type EndPointBasis } from "./criterion.ts";
 import { detourAccount } from "./detour-account.ts";
 import { backEndPointL } from "./excess.ts";
 import { inertMetals } from "./kinetics.ts";
-import { readEndPoint, type EndPointFault, type EndPointRead } from "./read-end-point.ts";
+import { readEndPoint, type EndPointFault, type EndPointRead, type EyeOptions } from "./read-end-point.ts";
 import { alphaOfAnalyte, conditionalConstants } from "./stage-measures.ts";
 import { stageModel, type StageModel } from "./stage-model.ts";
 import { vesselSample } from "./solution.ts";
@@ -60,12 +60,14 @@ const NEAR_EXPECTED = 0.2;
 /**
  * Evaluates one titration by its full equilibrium: where the observer stops, what the titre then holds, and why.
  * @param frozen complexes that formed before and do not exchange any more, mol/L in the vessel
+ * @param eye how an end point seen by eye is looked for
  */
 export function evaluateStage(
   task: Task,
   plan: StagePlan,
   knowledge: Knowledge,
   frozen?: ReadonlyMap<ComponentId, number>,
+  eye: EyeOptions = {},
 ): StageEvaluation {
   const hot = plan.preparation.includes("boil") || plan.preparation.includes("heat");
   const sample = vesselSample(task, plan);
@@ -85,10 +87,10 @@ export function evaluateStage(
   const titrantBefore = model.at(0);
   const expectedMol = back ? Math.max(titrantBefore.titrantUnbound * model.volumeL, 1e-9) : metalMol(model, presentMol);
   let equivalenceL = expectedMol / model.burette.molPerL;
-  let read = readEndPoint(model, determined, equivalenceL, knowledge);
+  let read = readEndPoint(model, determined, equivalenceL, knowledge, eye);
   if (back && read.why === "no-end-point" && titrantBefore.ok) {
     equivalenceL = backEndPointL(model);
-    read = readEndPoint(model, determined, equivalenceL, knowledge);
+    read = readEndPoint(model, determined, equivalenceL, knowledge, eye);
   }
   const base = {
     model,

@@ -86,15 +86,17 @@ function blankOfDetour(task: Task, evaluation: StageEvaluation, knowledge: Knowl
   if (!detour || !way || way.record.kind === "conversion") return null;
   const surplus = way.record.kind === "surplus";
   const molPerL = surplus ? detour.reagent.molPerL : evaluation.presentMol / detour.analytePerMetal / volumeL;
-  const alone = evaluateStage(
-    metalAlone(task, detour.metal, molPerL),
-    metalPlan(plan, detour.metal, molPerL),
-    knowledge,
+  const own = metalPlan(plan, detour.metal, molPerL);
+  const alone = remembered(`blank ${molPerL} `, task, own, knowledge, () =>
+    evaluateStage(metalAlone(task, detour.metal, molPerL), own, knowledge, undefined, ONLY_THE_END),
   );
   if (alone.status === "failed" || !cancels(alone.biasFraction)) return null;
   const weight = (detour.analytePerMetal * alone.presentMol) / evaluation.presentMol;
   return { alone, takes: surplus ? weight : "divide" };
 }
+
+/** How widely an observer sees the end of a standard titration does not cancel: only where it lies does. */
+const ONLY_THE_END = { band: false } as const;
 
 /** A solution of one metal, mol/L of the vessel. */
 function metalAlone(task: Task, metal: ComponentId, inVesselMolPerL: number): Task {
@@ -119,7 +121,7 @@ const metalPlan = (plan: StagePlan, metal: ComponentId, molPerL: number): StageP
 
 /** The same titration of the metal alone; a release is done on it as a whole. */
 function standardEvaluation(own: Task, plan: StagePlan, knowledge: Knowledge): StageEvaluation {
-  if (plan.release === null) return evaluateStage(own, plan, knowledge);
+  if (plan.release === null) return evaluateStage(own, plan, knowledge, undefined, ONLY_THE_END);
   const excessTitrantMolPerL = releaseExcess(own, plan, knowledge);
   return evaluateRelease(own, { ...plan, excessTitrantMolPerL }, knowledge);
 }
