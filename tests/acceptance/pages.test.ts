@@ -58,6 +58,7 @@ const PAGES: readonly (readonly [name: string, path: (services: WebServices) => 
   ["answer that does not fit", () => answerTo(3)],
   ["tolerance limits", () => `/limits?brief=${encodeBrief(SCENARIOS[0]?.brief)}&also=Ni2%2B`],
   ["turning points, not begun", () => `/turning-points?brief=${encodeBrief(SCENARIOS[0]?.brief)}`],
+  ["robustness, not begun", () => `/robustness?brief=${encodeBrief(SCENARIOS[0]?.brief)}`],
   ["method map", () => "/method-map"],
   ["ion on the method map", () => "/method-map/Mg2%2B"],
   ["constants", () => "/constants"],

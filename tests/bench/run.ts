@@ -5,10 +5,18 @@ import { equilibriumBench } from "./equilibrium.ts";
 import { componentsBench } from "./components.ts";
 import { curveBench } from "./curve.ts";
 import { memoryBench } from "./memory.ts";
+import { monteCarloBench } from "./monte-carlo.ts";
 import { recommendBench } from "./recommend.ts";
 
 /** The benches there are, in the order in which they run. */
-export const benches: readonly Bench[] = [equilibriumBench, curveBench, componentsBench, recommendBench, memoryBench];
+export const benches: readonly Bench[] = [
+  equilibriumBench,
+  curveBench,
+  componentsBench,
+  recommendBench,
+  monteCarloBench,
+  memoryBench,
+];
 
 const { positionals, values } = parseArgs({
   allowPositionals: true,

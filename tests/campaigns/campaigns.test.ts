@@ -16,6 +16,7 @@ import { runMetamorphic } from "./metamorphic.ts";
 import { runPerturbation } from "./perturbation.ts";
 import { perturbedKnowledge } from "./perturbed-knowledge.ts";
 import { randomBrief, SAMPLE_KINDS } from "./random-brief.ts";
+import { runRobustnessCampaign } from "./robustness.ts";
 import { ruleEffects } from "./rule-effects.ts";
 import { workList, workThrough } from "./work-list.ts";
 
@@ -175,5 +176,20 @@ describe("runCoverage", () => {
     expect(decides).toBeGreaterThan(0);
     expect(idle).not.toContain("safety/cyanide-used");
     expect(lines?.find((line) => line.startsWith("safety/cyanide-used"))).toMatch(/decides|weighs only/);
+  });
+});
+
+describe("robustness", () => {
+  it("comes to the same probability after few draws and after many, and counts the methods that are compiled", async () => {
+    const briefs = (["zinc", "calcium", "magnesium"] as const).map((id) => ({ id, brief: INVENTED_BRIEFS[id] }));
+    const options = { seed: SEED, out: null, print: () => undefined };
+    const { figures, holds, lines } = await runRobustnessCampaign(briefs, { few: 300, many: 1500 }, options, 1);
+    expect(figures["briefs"]).toBe(3);
+    expect(Number(figures["methods"])).toBeGreaterThan(0);
+    expect(lines).toHaveLength(Number(figures["methods"]));
+    expect(Number(figures["worstDifference"])).toBeLessThan(0.06);
+    expect(holds).toBe(Number(figures["worstDifference"]) <= 0.02);
+    // Fewer methods than are asked for prove nothing.
+    expect((await runRobustnessCampaign([], { few: 300, many: 1500 }, options)).holds).toBe(false);
   });
 });

@@ -4,6 +4,7 @@ import { type Campaign, type CampaignOptions, DEFAULTS } from "./campaign.ts";
 import { coverageCampaign } from "./coverage.ts";
 import { metamorphicCampaign } from "./metamorphic.ts";
 import { perturbationCampaign } from "./perturbation.ts";
+import { robustnessCampaign } from "./robustness.ts";
 import { solverCampaign } from "./solver.ts";
 import { turningCampaign } from "./turning-points.ts";
 
@@ -14,6 +15,7 @@ const campaigns: readonly Campaign[] = [
   perturbationCampaign,
   coverageCampaign,
   turningCampaign,
+  robustnessCampaign,
 ];
 
 function refuse(why: string): never {
