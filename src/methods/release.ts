@@ -26,6 +26,21 @@ function readingOf(model: StageModel, determined: ReadonlySet<ComponentId>, know
   return state.ok ? { ...read, model, state } : null;
 }
 
+const firstReadings = new WeakMap<StageModel, Reading | null>();
+
+/** The reading that is discarded: the same for every amount of the agent, which is not yet in. */
+function firstReadingOf(
+  before: StageModel,
+  determined: ReadonlySet<ComponentId>,
+  knowledge: Knowledge,
+): Reading | null {
+  const known = firstReadings.get(before);
+  if (known !== undefined) return known;
+  const reading = readingOf(before, determined, knowledge);
+  firstReadings.set(before, reading);
+  return reading;
+}
+
 /**
  * Evaluates a release: the excess of titrant is titrated back to its end point, which is discarded; then the agent goes in, and
  * what it sets free is titrated with the same metal to the same end point. Volumes of the evaluation count from the first end point.
@@ -34,7 +49,7 @@ function readingOf(model: StageModel, determined: ReadonlySet<ComponentId>, know
 export function evaluateRelease(task: Task, plan: StagePlan, knowledge: Knowledge): StageEvaluation {
   const vessels = releaseVessels(task, plan, knowledge);
   const determined = new Set(plan.determines);
-  const first = readingOf(vessels.before, determined, knowledge);
+  const first = firstReadingOf(vessels.before, determined, knowledge);
   if (first?.why !== null) return failed(plan, vessels, first?.why ?? "not-converged", knowledge);
   const after = vessels.after(first.state);
   const second = readingOf(after, determined, knowledge);
