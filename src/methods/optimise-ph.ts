@@ -40,8 +40,8 @@ export interface PHChoice {
 const SETTING_ERROR_PH = 0.1;
 /** and so far a pH should lie from the edges of its working range: three setting errors, and the fall that is borne while titrating. */
 const CLEAR_OF_EDGES_PH = 3 * SETTING_ERROR_PH + MOST_PH_CHANGE;
-/** A gain below this part of the expanded uncertainty is not real: a bench keeps to the pH it knows. */
-const REAL_GAIN = 0.05;
+/** A gain below this part is not real, for an uncertainty is itself not known better (JCGM 100, E.4.3): a bench keeps to the pH it knows. */
+const REAL_GAIN = 0.1;
 /** Two figures of an uncertainty are given (JCGM 100, 7.2.6): up to this part more is not more. */
 const SAME_UNCERTAINTY = 0.01;
 /** Where dye, buffer and masks leave no more than this every tenth is looked at, */
@@ -70,7 +70,7 @@ export function weighted({ pH, expanded }: PHLook, range: Edges): number {
 /**
  * The pH at which a titration is best done, all else kept: of the bench's half units (tenths where the range is narrow) inside the published
  * window of the dye, the buffer and the records of the masks, the one with the least expanded uncertainty, an edge of the working range nearer
- * than half a unit counting against it. The published pH stays, or else the planned one, where that gains less than a twentieth.
+ * than half a unit counting against it. The published pH stays, or else the planned one, where that gains less than a tenth.
  * Null where the requirement does not hold as planned.
  * @param serves whether nothing else speaks against the titration at a pH: asked of the preferred first, of as few as possible
  */

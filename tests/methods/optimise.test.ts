@@ -83,23 +83,24 @@ describe("the pH", () => {
     // Within the window of the dye and what hexamine buffers (4.5 to 6.2).
     const set = held.filter((pH) => pH >= 4.6 && pH <= 6.2 && Number.isInteger(2 * pH));
     const least = Math.min(...set.map(cost));
-    expect(cost(4.8)).toBeGreaterThan(1.05 * least);
+    expect(cost(4.8)).toBeGreaterThan(1.1 * least);
     expect(cost(planOf(made).pH)).toBe(least);
   });
-  it("stays at the published one where another gains less than a twentieth, and leaves it where the gain is real", () => {
+  it("stays at the published one where another gains less than a tenth, and leaves it where the gain is real", () => {
     expect(planOf(best(zinc, zincAt(6), XYLENOL_ORANGE, 5.5)).pH).toBe(5.5);
     // In dilute solution the end point at pH 5 is soft.
     const dilute = inventedTask({ "Zn2+": 0.002 }, {}, { requirementPercent: 3 });
     const plan = { ...zincAt(5), titrant: { id: "EDTA", molPerL: 0.002 } };
     const made = best(dilute, plan, XYLENOL_ORANGE);
     expect(planOf(made).pH).toBeGreaterThan(5);
-    expect(made.choices[0]!.pH!.chosen.expanded).toBeLessThan(0.95 * made.choices[0]!.pH!.start.expanded);
+    expect(made.choices[0]!.pH!.chosen.expanded).toBeLessThan(0.9 * made.choices[0]!.pH!.start.expanded);
   });
   it("takes no more alkali than it has to: what does at 12.5 is not done at 13.2", () => {
     const task = inventedTask({ "Ca2+": 0.008 });
     for (const id of ["murexide", "calcon"]) {
       const buffer = { id: "sodium-hydroxide", molPerL: 0.25 };
-      const made = best(task, calciumPlan({ pH: 13.2, buffer, indicator: dye(id) }), [12, 13.4]);
+      // No published pH inside the window: the alkali decides.
+      const made = best(task, calciumPlan({ pH: 13.2, buffer, indicator: dye(id) }), [12, 13.4], 14);
       expect(planOf(made).pH, id).toBeGreaterThanOrEqual(12);
       expect(planOf(made).pH, id).toBeLessThanOrEqual(12.5);
       expect(planOf(made).buffer.molPerL, id).toBeLessThan(0.1);
