@@ -5,8 +5,17 @@ import type { EliminatedTerms } from "./solve-eliminated-terms.ts";
 import { unrollBalances, type UnrolledBalances } from "./solve-eliminated-unrolled.ts";
 import { ABSENT_LN_FREE } from "./solve-load.ts";
 
-const TOLERANCE = 5e-13; // as the plain iteration of the general solver
-const SMALL_LAST_STEP = 1e-5;
+/** When a solve is near enough: worst relative residual, last step in ln units, and the share of a total that species of two metals may still move by. */
+export interface EliminatedPrecision {
+  readonly residual: number;
+  readonly lastStep: number;
+  readonly polynuclear: number;
+}
+
+/** As near as doubles allow: the tolerance is that of the plain iteration of the general solver. */
+export const FULL_PRECISION: EliminatedPrecision = { residual: 5e-13, lastStep: 1e-5, polynuclear: 1e-14 };
+/** For draws: the last step leaves about its square, 1e-6 in ln units, which moves no end point by a millionth. */
+export const DRAW_PRECISION: EliminatedPrecision = { residual: 1e-7, lastStep: 1e-3, polynuclear: 1e-10 };
 const SAME_MATRIX_STEP = 1e-3; // ln units; after a step this small the matrix is kept for the next one, which loses less than three digits of it
 const UNROLL_AFTER = 20_000; // evaluations of a structure after which making code for it pays
 const TAYLOR_STEP = 1e-3; // below it five terms give e^step to the last digit
@@ -64,7 +73,7 @@ export class EliminatedNewton {
   }
 
   /** Iterates from `lnFree` at the totals put in and writes the answer there; returns the iterations, or their negative minus one when it did not get there. */
-  newton(lnFree: Float64Array): number {
+  newton(lnFree: Float64Array, { residual: tolerance, lastStep: smallLastStep } = FULL_PRECISION): number {
     const { balances, answer, keptTotal, goneTotal } = this;
     const { k } = this.terms.structure;
     const least = leastOf(keptTotal, goneTotal);
@@ -75,18 +84,18 @@ export class EliminatedNewton {
     let lastStep = Infinity;
     this.conditioned = k === 0;
     for (let iteration = 0; ; iteration++) {
-      const sameMatrix = k > 2 && lastStep <= SAME_MATRIX_STEP && lastStep > SMALL_LAST_STEP;
+      const sameMatrix = k > 2 && lastStep <= SAME_MATRIX_STEP && lastStep > smallLastStep;
       if (this.unrolled === null && (iteration > 0 || begun === ELSEWHERE)) balances.moments();
-      this.evaluate(least, lastStep > SMALL_LAST_STEP && !sameMatrix);
+      this.evaluate(least, lastStep > smallLastStep && !sameMatrix);
       this.measure(keptTotal);
       const { residual } = this;
-      if (residual <= TOLERANCE && (k === 0 || lastStep <= SMALL_LAST_STEP)) {
+      if (residual <= tolerance && (k === 0 || lastStep <= smallLastStep)) {
         if (!this.conditioned) return -1 - iteration;
         this.count(iteration + 1);
         return this.finish(lnFree) ? iteration : -1 - iteration;
       }
       if (iteration >= ITERATIONS || !(residual < 1e290)) return -1 - iteration;
-      if (lastStep <= SMALL_LAST_STEP) this.evaluate(least, true);
+      if (lastStep <= smallLastStep) this.evaluate(least, true);
       lastStep = this.findStep(keptTotal, !sameMatrix);
       if (!(lastStep < Infinity)) return -1 - iteration;
       this.move(lastStep);

@@ -1,9 +1,8 @@
-import { EliminatedNewton } from "./solve-eliminated-newton.ts";
+import { EliminatedNewton, FULL_PRECISION, type EliminatedPrecision } from "./solve-eliminated-newton.ts";
 import { compileEliminated } from "./solve-eliminated-terms.ts";
 import { solveEquilibrium } from "./solve-equilibrium.ts";
 import type { MassBalanceProblem, SolveResult } from "./types.ts";
 
-const POLYNUCLEAR_NONE = 1e-14; // share of a total below which species of two metals are left out
 const POLYNUCLEAR_MOST = 1e-6; // share up to which they are a correction to the totals; above it the general solver takes over
 const CORRECTIONS = 6;
 
@@ -45,11 +44,13 @@ export interface EliminatedSolver {
  *
  * `fixedLnFree`: as in `solveEquilibrium`. `eliminate`: components, e.g. all metals. Returns null when the form does not apply at all (an
  * unknown of mixed sign, constants beyond e^600).
+ * `precision`: full, unless many answers are wanted and none to more digits than draws are.
  */
 export function eliminatedSolver(
   problem: MassBalanceProblem,
   fixedLnFree: ArrayLike<number>,
   eliminate: readonly number[],
+  precision: EliminatedPrecision = FULL_PRECISION,
 ): EliminatedSolver | null {
   const fixed = Float64Array.from(fixedLnFree);
   const terms = compileEliminated(problem, fixed, eliminate);
@@ -90,7 +91,7 @@ export function eliminatedSolver(
     if (work.terms !== terms) work.use(terms);
     load(totals, false);
     for (let pass = 0; ; pass++) {
-      const iterations = work.newton(lnFree);
+      const iterations = work.newton(lnFree, precision);
       evidence.iterations += Math.abs(iterations);
       if (iterations < 0) return general(totals, lnFree);
       if (polynuclear.length === 0) break;
@@ -108,7 +109,7 @@ export function eliminatedSolver(
       }
       evidence.polynuclearShare = share;
       if (!(share <= POLYNUCLEAR_MOST) || pass >= CORRECTIONS) return general(totals, lnFree);
-      if (change <= POLYNUCLEAR_NONE) break;
+      if (change <= precision.polynuclear) break;
       load(totals, true);
     }
     evidence.status = "converged";

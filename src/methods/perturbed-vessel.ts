@@ -1,4 +1,5 @@
 import { daviesTerm, log10ActivityCoefficient } from "../chemistry/activity.ts";
+import { DRAW_PRECISION } from "../chemistry/solve-eliminated-newton.ts";
 import { eliminatedSolver, type EliminatedSolver } from "../chemistry/solve-eliminated.ts";
 import { ABSENT_LN_FREE, solveEquilibrium } from "../chemistry/solve-equilibrium.ts";
 import type { PreparedSystem } from "../chemistry/types.ts";
@@ -72,7 +73,8 @@ export class PerturbedVessel {
     this.#fixed[0] = this.#lnProton(model.plan.pH, model.ionicStrengthMolPerL);
     const metals = new Set(model.metals);
     const columns = model.system.components.flatMap((c, i) => (metals.has(c) ? [i] : []));
-    this.#fast = columns.length > 0 ? eliminatedSolver(this.#system.problem, this.#fixed, columns) : null;
+    this.#fast =
+      columns.length > 0 ? eliminatedSolver(this.#system.problem, this.#fixed, columns, DRAW_PRECISION) : null;
     this.#vessel = { ...model.vessel, system: this.#system, base: this.#amounts.subarray(0, problem.nComponents) };
     this.#anchor(0);
     this.#nominalStrength = this.#strength(this.at(0));
