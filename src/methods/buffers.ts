@@ -39,6 +39,36 @@ const rankOfBuffer = (b: BufferRecord): number => {
   return (i < 0 ? BENCH_ORDER.length : i) * 0.3;
 };
 
+/** Those on every bench (common practice). */
+const USUAL: ReadonlySet<string> = new Set([
+  "ammonia",
+  "hexamine",
+  "acetate",
+  "nitric-acid",
+  "hydrochloric-acid",
+  "sodium-hydroxide",
+  "potassium-hydroxide",
+]);
+
+/**
+ * Where in the window of a dye a usual buffer holds, if at `pH` none does: the half unit of pH nearest to it, or null. A procedure that
+ * works from pH 7 to 8.5 is done at 8.5 in ammonia rather than at 7.5 in a buffer that has to be ordered (common practice).
+ */
+export function pHOfUsualBuffer(
+  pH: number,
+  [low, high]: readonly [number, number],
+  knowledge: Knowledge,
+  shelf: Shelf,
+): number | null {
+  const usual = (at: number): boolean => buffersFor(at, knowledge, shelf, new Set()).some((b) => USUAL.has(b.id));
+  if (usual(pH)) return null;
+  const halves = Array.from(
+    { length: Math.floor(2 * high) - Math.ceil(2 * low) + 1 },
+    (_, i) => Math.ceil(2 * low) / 2 + i / 2,
+  );
+  return halves.filter(usual).sort((a, b) => Math.abs(a - pH) - Math.abs(b - pH))[0] ?? null;
+}
+
 /** Concentration a buffer is used at: the geometric middle of its usual range; strong acid and alkali as the pH demands. */
 export function bufferAmount(buffer: BufferRecord, pH: number): number {
   if (buffer.kind === "strong-acid") return Number((10 ** -pH).toPrecision(2));

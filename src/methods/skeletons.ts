@@ -1,6 +1,6 @@
 import type { BufferRecord, ComponentId, IndicatorRecord, IndicatorUse, Knowledge } from "../constants/knowledge.ts";
-import { bufferAmount, buffersFor, strengthFor } from "./buffers.ts";
-import { benchPH, standingOf, usesFor, type UseStanding } from "./dye-uses.ts";
+import { bufferAmount, buffersFor, pHOfUsualBuffer, strengthFor } from "./buffers.ts";
+import { benchPH, standingOf, usesFor, type UseStanding, type Window } from "./dye-uses.ts";
 import { metalKinetics } from "./kinetics.ts";
 import { stepAllowed, type Shelf } from "./shelf.ts";
 import { vesselSample } from "./solution.ts";
@@ -117,6 +117,21 @@ export const forbidden = (task: Task, preparation: readonly string[]): boolean =
   preparation.some((p) => !stepAllowed(task, p)) ||
   (!task.laboratory.heating && preparation.some((p) => p === "warm" || p === "heat" || p === "boil"));
 
+/** At which pH of a window, and in which buffers: the middle; and, with the usual titrant, where a usual buffer holds if none does there. */
+function buffered(
+  { knowledge, shelf }: Make,
+  window: Window,
+  usualTitrant: boolean,
+): { readonly pH: number; readonly buffer: BufferRecord }[] {
+  const middle = benchPH(window);
+  const beside = usualTitrant ? pHOfUsualBuffer(middle, window, knowledge, shelf) : null;
+  const at = (pH: number, kept: number): { pH: number; buffer: BufferRecord }[] =>
+    buffersFor(pH, knowledge, shelf, new Set())
+      .slice(0, kept)
+      .map((buffer) => ({ pH, buffer }));
+  return [...at(middle, usualTitrant ? BUFFERS_KEPT : 1), ...(beside === null ? [] : at(beside, 1))];
+}
+
 /** Direct titrations, also with a chelate that lends the dye its metal. */
 export function directSkeletons(make: Make): Skeleton[] {
   const { task, knowledge, shelf, determines, field } = make;
@@ -133,11 +148,7 @@ export function directSkeletons(make: Make): Skeleton[] {
       const titrants = named.filter((t) => lent === null || lent.endsWith(`-${t}`));
       for (const titrant of titrants) {
         if (!shelf(titrant)) continue;
-        const pH = benchPH(window);
-        for (const buffer of buffersFor(pH, knowledge, shelf, new Set()).slice(
-          0,
-          titrant === "EDTA" || use.titrant ? BUFFERS_KEPT : 1,
-        )) {
+        for (const { pH, buffer } of buffered(make, window, titrant === "EDTA" || use.titrant !== undefined)) {
           let plan = basePlan(make, titrant, indicator, pH, buffer, use);
           const kinetics = determines.map((ion) => metalKinetics(knowledge, ion, titrant));
           // A slow metal is titrated directly only where the use itself is hot.
