@@ -15,6 +15,8 @@ const CHUNK_OF_WHOLE = 10;
 /** Draws of the first asking: they say how fast the method goes. */
 const FIRST_CHUNK = 10;
 const MAP_ROWS = 13;
+/** How often what there is so far is summed up, ms. */
+const WRITTEN_EVERY_MS = 2000;
 
 /** Who answers: threads, or the same thread. */
 export interface RobustnessAsk {
@@ -66,11 +68,14 @@ export async function runRobustness(
   };
   const first = Math.min(FIRST_CHUNK, work.draws);
   await takeDraws(0, first);
+  let written = performance.now();
   const slow = answers[0]!.draws.whole > 0;
   await inTurn(chunks(work, first, slow ? CHUNK_OF_WHOLE : CHUNK), ask.atOnce, signal, async ({ from, count }) => {
     await takeDraws(from, count);
-    // What there is so far is worth writing only now and then.
-    if (slow || answers.length % 8 === 0) report(done(), total, soFar());
+    // Summing up takes this thread as long as a few chunks take another: now and then is enough for who watches.
+    if (performance.now() - written < WRITTEN_EVERY_MS) return;
+    report(done(), total, soFar());
+    written = performance.now();
   });
   const takeRow = async (row: number): Promise<void> => {
     rows.set(row, await ask.mapRow({ work, row }));
