@@ -93,7 +93,8 @@ export function chooseMasks(
 ): { readonly stage: DevelopedStage; readonly choices: readonly MaskChoice[] } {
   let made = stage;
   const choices: MaskChoice[] = [];
-  for (const agent of new Set(stage.plan.masking.map((m) => m.agent))) {
+  // One after the other in the order of their names: the order of the rows in a brief must not choose the amounts.
+  for (const agent of [...new Set(stage.plan.masking.map((m) => m.agent))].sort()) {
     if (agent === "hydroxide") continue;
     const startMolPerL = Math.max(...stage.plan.masking.filter((m) => m.agent === agent).map((m) => m.molPerL));
     const basis = basisOf(stage.plan, agent);
