@@ -22,7 +22,7 @@ export function conditionsDocument(
       id: null,
       value: pH.chosen.pH,
       planned: pH.start.pH,
-      statement: pHStatement(pH, range, stage),
+      statement: pHStatement(pH, range, stage, amountsMoved(choices)),
     },
     ...(buffer === null
       ? []
@@ -49,7 +49,17 @@ const expanded = (look: PHLook): string => `${figures(100 * look.expanded, 2)} %
 const at = (look: PHLook, chosen: PHLook, range: WorkingRange): string =>
   `${expanded(look)} ${nearerEdge(look.pH, chosen.pH, range) ? "nearer the edge at" : "at"} pH ${figures(look.pH)}`;
 
-function pHStatement({ chosen, start, why, next }: PHChoice, range: WorkingRange, stage: DevelopedStage): string {
+/** Whether buffer or masks stand at other amounts than those with which the pH was chosen. */
+const amountsMoved = ({ buffer, masks }: StageChoices): boolean =>
+  (buffer !== null && buffer.chosen.molPerL !== buffer.start.molPerL) ||
+  masks.some((mask) => mask.chosenMolPerL !== mask.startMolPerL);
+
+function pHStatement(
+  { chosen, start, why, next }: PHChoice,
+  range: WorkingRange,
+  stage: DevelopedStage,
+  amountsMovedSince: boolean,
+): string {
   const works =
     range.low === range.high ? "works at this pH only" : `works from ${figures(range.low)} to ${figures(range.high)}`;
   const others = [start, ...(next === null || next.pH === start.pH ? [] : [next])].filter((l) => l.pH !== chosen.pH);
@@ -64,7 +74,7 @@ function pHStatement({ chosen, start, why, next }: PHChoice, range: WorkingRange
       chosen.expanded <= start.expanded ? "the least expanded uncertainty clear of the edges" : "clear of the edges",
     milder: `as good with ${figures(stage.plan.buffer.molPerL)} mol/L of ${reagentWords(stage.plan.buffer.id)}`,
   }[why];
-  return `pH ${figures(chosen.pH)}: ${works}; ${reason} (${expanded(chosen)} here${beside}).`;
+  return `pH ${figures(chosen.pH)}: ${works}; ${reason} (${amountsMovedSince ? "with the amounts first planned " : ""}${expanded(chosen)} here${beside}).`;
 }
 
 const seen = ({ plan }: DevelopedStage): string =>
@@ -92,9 +102,11 @@ function maskStatement(mask: MaskChoice, { plan }: DevelopedStage, ion: (id: str
   const margin =
     mask.ion === null || log10Margin === null
       ? ""
-      : log10Margin >= 0
-        ? `: holds ${ion(mask.ion)} with ${log10Margin.toFixed(1)} in log alpha to spare`
-        : `: lacks ${(-log10Margin).toFixed(1)} in log alpha for ${ion(mask.ion)} to count for nothing`;
+      : Math.abs(log10Margin) < 0.05
+        ? `: holds ${ion(mask.ion)} just so far that it counts for nothing`
+        : log10Margin > 0
+          ? `: holds ${ion(mask.ion)} with ${log10Margin.toFixed(1)} in log alpha to spare`
+          : `: lacks ${(-log10Margin).toFixed(1)} in log alpha for ${ion(mask.ion)} to count for nothing`;
   const limit = {
     margin: "",
     "level-on-record": "",

@@ -44,7 +44,7 @@ const words = (change: Partial<StageChoices> = {}): string[] =>
 describe("conditionsDocument", () => {
   it("gives a line to pH, buffer and each mask, with its figures", () => {
     expect(words()).toEqual([
-      "pH 5.9: works from 5.2 to 6.3; the least expanded uncertainty clear of the edges (0.31 % here, 0.44 % nearer the edge at pH 5.3 and 0.38 % nearer the edge at pH 5.5).",
+      "pH 5.9: works from 5.2 to 6.3; the least expanded uncertainty clear of the edges (with the amounts first planned 0.31 % here, 0.44 % nearer the edge at pH 5.3 and 0.38 % nearer the edge at pH 5.5).",
       "hexamine 0.1 mol/L: the pH falls by 0.03 until the end point; with 0.05 mol/L the pH falls by 0.06.",
       "acetylacetone 0.05 mol/L (usual: 0.08): holds Al3+ with 1.3 in log alpha to spare; less is in no recipe.",
     ]);
@@ -60,7 +60,7 @@ describe("conditionsDocument", () => {
   it("says why the published pH stays, and where nothing else can be looked at", () => {
     const pH = { ...choices.pH!, start: choices.pH!.chosen, next: null };
     expect(words({ pH: { ...pH, why: "published" } })[0]).toBe(
-      "pH 5.9: works from 5.2 to 6.3; the pH in use for xylenol orange, and no other is better by a real amount (0.31 % here).",
+      "pH 5.9: works from 5.2 to 6.3; the pH in use for xylenol orange, and no other is better by a real amount (with the amounts first planned 0.31 % here).",
     );
     expect(words({ pH: { ...pH, why: "as-planned" } })[0]).toContain("dye, buffer and masks leave no other");
   });
@@ -73,6 +73,11 @@ describe("conditionsDocument", () => {
       "acetylacetone 0.05 mol/L: the usual amount for Al3+.",
     );
     expect(words({ masks: [{ ...mask!, log10Margin: -0.5, why: "as-planned" }] })[2]).toContain("lacks 0.5");
+    expect(words({ masks: [{ ...mask!, log10Margin: -0.02, why: "as-planned" }] })[2]).toContain("just so far");
+  });
+  it("names the planned amounts only where they were changed", () => {
+    const { buffer } = choices;
+    expect(words({ buffer: { ...buffer!, chosen: buffer!.start }, masks: [] })[0]).toContain("(0.31 % here");
   });
   it("is empty where nothing was chosen", () => {
     expect(words({ pH: null })).toEqual([]);
