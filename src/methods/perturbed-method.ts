@@ -19,7 +19,7 @@ import {
 } from "./robustness-parameters.ts";
 import type { StageModel } from "./stage-model.ts";
 import type { MethodMode, StagePlan, Task } from "./types.ts";
-import { combineDifference, stageBudget } from "./uncertainty.ts";
+import { combineDifference, isAsked, stageBudget } from "./uncertainty.ts";
 
 /** A method as it is to be carried out: its titrations in order. */
 export interface PlannedMethod {
@@ -123,7 +123,7 @@ function resultsOf(
   const [whole, part] = drawn;
   if (mode !== "difference" || !whole || !part) return drawn.map(alone);
   const { biasFraction, budget } = combineDifference(task, whole, part, knowledge);
-  return [alone(part), { biasFraction, expandedFraction: budget.expanded }];
+  return [...(isAsked(task, part) ? [alone(part)] : []), { biasFraction, expandedFraction: budget.expanded }];
 }
 
 /** One parameter for each reaction that any vessel of the method rests on, with the standard uncertainty of its constant there. */

@@ -14,7 +14,7 @@ import {
   type LimitEnd,
 } from "./tolerance-ends.ts";
 import type { MethodMode, StagePlan, Task } from "./types.ts";
-import { combineDifference, stageBudget } from "./uncertainty.ts";
+import { combineDifference, isAsked, stageBudget } from "./uncertainty.ts";
 
 /** The level of one component up to which the method still meets the requirement, mol/L in the sample, and what ends it. */
 export interface ToleranceLimit {
@@ -62,10 +62,13 @@ function standing(task: Task, mode: MethodMode, plans: readonly StagePlan[], kno
   if (evaluations.some((e) => e.status === "failed" || e.blockedBy.length > 0))
     return { evaluations, excess: Number.POSITIVE_INFINITY };
   const [whole, part] = evaluations;
-  // A difference is judged as the difference it is.
+  // A difference is judged as the difference it is; what is subtracted counts for itself only where it was asked for.
   const expanded =
     mode === "difference" && whole && part
-      ? [stageBudget(task, part, knowledge).expanded, combineDifference(task, whole, part, knowledge).budget.expanded]
+      ? [
+          ...(isAsked(task, part) ? [stageBudget(task, part, knowledge).expanded] : []),
+          combineDifference(task, whole, part, knowledge).budget.expanded,
+        ]
       : evaluations.map((e) => stageBudget(task, e, knowledge).expanded);
   return { evaluations, excess: Math.max(...expanded.map((u) => 100 * u - task.requirementPercent)) };
 }

@@ -131,6 +131,10 @@ export function largestOf({
   return bias.relative > COVERAGE_FACTOR * term.relative ? bias : term;
 }
 
+/** Whether a titration determines what the brief asks for; what is subtracted may be a metal of the matrix. */
+export const isAsked = (task: Task, { model }: StageEvaluation): boolean =>
+  task.analytes.some(({ component }) => model.plan.determines.includes(component));
+
 /** Terms that two titrations of separate portions have in common: one pipette, one room, and one bottle where they have one titrant. */
 export function commonTerms(whole: StageEvaluation, part: StageEvaluation): ReadonlySet<string> {
   const [a, b] = [whole.model.plan.titrant, part.model.plan.titrant];

@@ -1,4 +1,4 @@
-import type { Knowledge } from "../constants/knowledge.ts";
+import type { ComponentId, Knowledge } from "../constants/knowledge.ts";
 import type { Facts } from "../inference/types.ts";
 import { metalKinetics } from "../methods/kinetics.ts";
 import { separationsOf } from "../methods/separation.ts";
@@ -6,6 +6,12 @@ import { countedIn, type Task } from "../methods/types.ts";
 import { worst, finite, has, heats, usable } from "./fact-values.ts";
 import { hazardTagsOf, reagentsOf } from "./reagents.ts";
 import type { MethodUnderJudgement } from "./under-judgement.ts";
+
+/** Below this, mol/L of the sample, a component is as good as absent. */
+const ABSENT_MOL_PER_L = 1e-9;
+
+const isThere = ({ analytes, matrix }: Task, ion: ComponentId): boolean =>
+  [...analytes, ...matrix].some(({ component, molPerL }) => component === ion && molPerL > ABSENT_MOL_PER_L);
 
 /** Facts of a whole method, by the catalogue of the rule layer. */
 export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge: Knowledge): Facts {
@@ -73,7 +79,7 @@ export function methodFacts(task: Task, judged: MethodUnderJudgement, knowledge:
     separationUnknownCount: new Set(separations.flatMap((s) => s.unknown)).size,
     separationUnknown: [...new Set(separations.flatMap((s) => s.unknown))],
     preparation: [...new Set(stages.flatMap((s) => s.plan.preparation))],
-    maskedComponentCount: new Set(masking.flatMap((m) => m.masks)).size,
+    maskedComponentCount: new Set(masking.flatMap((m) => m.masks).filter((ion) => isThere(task, ion))).size,
     empiricalMasking: masking.some((m) => m.basis === "empirical"),
     empiricalEndPoint: stages.some((s) => s.evaluation.basis === "empirical"),
     analyteKinetics: worst(

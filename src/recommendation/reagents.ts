@@ -12,7 +12,10 @@ export function reagentsOf(plan: StagePlan): string[] {
       ...(plan.backTitrant ? [plan.backTitrant.id] : []),
       ...(plan.indicator ? [plan.indicator.id] : []),
       plan.buffer.id,
-      ...plan.masking.map((m) => m.agent).filter((id) => id !== "hydroxide"),
+      ...plan.masking
+        .map((m) => m.agent)
+        .filter((id) => id !== "hydroxide")
+        .sort(), // not in the order of the rows of a brief
       ...plan.auxiliary.map((a) => a.id),
       ...plan.added.map((a) => a.id),
       ...(plan.chelate ? [plan.chelate.metal] : []),
