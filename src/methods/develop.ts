@@ -103,13 +103,20 @@ export function develop(
   separate = true,
 ): DevelopedStage[] {
   const { threats } = start;
+  const named = (stage: DevelopedStage): DevelopedStage => {
+    const said = declared(stage, knowledge);
+    if (said === stage) return stage;
+    // What a step throws down may take minutes to form: once named it is in the calculation.
+    const evaluation = evaluate(task, said.plan, knowledge);
+    return { ...said, evaluation, remaining: threatsOf(task, evaluation, knowledge) };
+  };
   const finished = (variants: readonly DevelopedStage[]): DevelopedStage[] =>
     variants.flatMap((v) => {
       const clear = v.remaining.length === 0 ? withoutFlocs(v, knowledge, shelf) : null;
-      if (clear === null) return [declared(v, knowledge)];
+      if (clear === null) return [named(v)];
       const evaluation = evaluate(task, clear, knowledge);
       const remaining = threatsOf(task, evaluation, knowledge);
-      return [v, { ...v, plan: clear, evaluation, remaining }].map((each) => declared(each, knowledge));
+      return [v, { ...v, plan: clear, evaluation, remaining }].map(named);
     });
   if (threats.length === 0) return finished([{ ...start, evaluation: start.bare, remaining: [] }]);
   const { out, failed } = masked(task, start, knowledge, shelf);
