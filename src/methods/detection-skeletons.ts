@@ -110,6 +110,8 @@ function directWith(make: Make, electrode: ElectrodeRecord): Skeleton[] {
   const { task, knowledge, shelf, determines, field } = make;
   const step = electrode.chelate === null ? null : `add-${electrode.chelate}`;
   if (step !== null && !stepAllowed(task, step)) return [];
+  // The other half of the couple is a bottle like any other.
+  if (electrode.couple !== null && !shelf(electrode.couple)) return [];
   return field.titrants.flatMap((titrant) => {
     if (!shelf(titrant) || (electrode.chelate !== null && electrode.chelate !== `Cu-${titrant}`)) return [];
     if (determines.some((ion) => metalKinetics(knowledge, ion, titrant).class !== "fast")) return [];

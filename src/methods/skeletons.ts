@@ -138,8 +138,12 @@ export function directSkeletons(make: Make): Skeleton[] {
   const out: Skeleton[] = [];
   for (const indicator of knowledge.indicators.values()) {
     if (field.dyes && !field.dyes.has(indicator.id)) continue;
-    if (!shelf(indicator.id) && !(indicator.id === "Cu-PAN" && shelf("PAN") && task.laboratory.available === null))
-      continue;
+    const madeUp =
+      indicator.id === "Cu-PAN" &&
+      shelf("PAN") &&
+      task.laboratory.available === null &&
+      !task.laboratory.avoid.includes("Cu-PAN");
+    if (!shelf(indicator.id) && !madeUp) continue;
     for (const { window, use, basis } of usesFor(indicator, determines, ["direct", "displacement"])) {
       // A use that names its titrant belongs to the first round: EGTA with zincon is not a variant of EDTA.
       const named = use.titrant ? (field.titrants.includes("EDTA") ? [use.titrant] : []) : field.titrants;
