@@ -1,4 +1,5 @@
 import { describe, expect, it } from "vitest";
+import { expectRelative } from "../expect-relative.ts";
 import type { Knowledge } from "../../src/constants/knowledge.ts";
 import { evaluate } from "../../src/methods/evaluate.ts";
 import { evaluateStage } from "../../src/methods/evaluate-stage.ts";
@@ -122,7 +123,7 @@ describe("perturbedMethod", () => {
     expect(method.notCompiled).toEqual(["solid"]);
     const drawn = method.at(new Float64Array(method.parameters.length));
     expect(drawn.whole).toBe(true);
-    expect(drawn.results![0]!.biasFraction).toBeCloseTo(evaluate(task, calciumPlan(), KNOWLEDGE).biasFraction, 9);
+    expectRelative(drawn.results![0]!.biasFraction, evaluate(task, calciumPlan(), KNOWLEDGE).biasFraction, 1e-9);
   });
 
   it("goes over to the whole evaluation in the draws in which a solid would form", () => {
